@@ -1,0 +1,1 @@
+"""The ground floor: faults, units, notation, the kernel decorator."""

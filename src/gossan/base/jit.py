@@ -1,0 +1,52 @@
+"""The one decorator of all kernels: compiled code, cached on disk, keyed by every kernel's source.
+
+Numba's own cache looks at the file that defines a function and not at the files it calls into, nor at
+the switch that turns bounds checks on; so the folder of the cache is named by a digest of all of them.
+"""
+
+from __future__ import annotations
+
+import hashlib
+import os
+from pathlib import Path
+
+PACKAGE = Path(__file__).resolve().parents[1]
+
+
+def cache_home() -> Path:
+    """The folder below which compiled kernels are kept (XDG_CACHE_HOME, or the user's cache)."""
+    return Path(os.environ.get("XDG_CACHE_HOME") or Path.home() / ".cache") / "gossan"
+
+
+def sources_digest() -> str:
+    """A digest of every kernel source and of the switch for bounds checks."""
+    digest = hashlib.sha256(os.environ.get("NUMBA_BOUNDSCHECK", "0").encode())
+    digest.update(Path(__file__).read_bytes())
+    for path in sorted(PACKAGE.glob("*/kernel/*.py")):
+        digest.update(path.name.encode())
+        digest.update(path.read_bytes())
+    return digest.hexdigest()[:16]
+
+
+def cache_folder() -> Path:
+    """Where the compiled kernels of exactly these sources are kept."""
+    return cache_home() / f"kernels-{sources_digest()}"
+
+
+def is_compiled() -> bool:
+    """Whether an earlier run left compiled kernels of these sources behind."""
+    return any(cache_folder().rglob("*.nbc"))
+
+
+os.environ.setdefault("NUMBA_CACHE_DIR", str(cache_folder()))
+
+import numba  # noqa: E402  (numba reads NUMBA_CACHE_DIR when it is imported)
+
+
+def kernel(function=None, **options):
+    """Compile a function on plain arrays at its first call, and keep the code on disk.
+
+    The global lock is released, division follows IEEE, and no fast-math is used: same input, same bits.
+    """
+    settings = {"cache": True, "nogil": True, "error_model": "numpy"} | options
+    return numba.njit(**settings)(function) if function else numba.njit(**settings)

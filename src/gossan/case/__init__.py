@@ -1,0 +1,1 @@
+"""From the text of a case to the problem it states."""

@@ -1,0 +1,1 @@
+"""Speciation of a water and its equilibrium with minerals."""

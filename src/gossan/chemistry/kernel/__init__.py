@@ -1,0 +1,1 @@
+"""Compiled functions on plain arrays."""

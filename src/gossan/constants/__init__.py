@@ -1,0 +1,1 @@
+"""Equilibrium constants, molar volumes and diffusion coefficients, each with its source."""

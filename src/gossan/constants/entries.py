@@ -1,0 +1,124 @@
+"""The records of the table: what a constant, a component, a species, a mineral and a gas are."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+
+@dataclass(frozen=True, slots=True)
+class Constant:
+    """A number from the literature and what is known of its error."""
+
+    value: float
+    sd: float | None  # standard uncertainty, same unit; None where the source gives none
+    unit: str  # "1" for a log10 K
+    source: str  # key in sources.toml
+    from_memory: bool = False  # recalled from the named source, not yet seen there
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class TemperatureFit:
+    """log10 K = constant + linear T + inverse / T + log10 log10(T) + inverse_square / T^2, T in K."""
+
+    constant: float = 0.0
+    linear: float = 0.0
+    inverse: float = 0.0
+    log10: float = 0.0
+    inverse_square: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class Alternative:
+    """A published value that was not chosen."""
+
+    value: float
+    source: str
+    from_memory: bool
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Component:
+    """A building stone of waters: every species and mineral is made of components, water and electrons."""
+
+    name: str  # plain-text IUPAC, "Zn^2+"
+    charge: int
+    ion_size: Constant | None = None  # m, Kielland's parameter
+    diffusion: Constant | None = None  # m2/s at 25 degC in free water
+    half_reaction: str = ""  # how the couple to its element's first ion is written; "" for a first ion
+    half_log10_k: Constant | None = None
+    half_enthalpy: Constant | None = None  # J/mol
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Reaction:
+    """A balanced reaction, already reduced to components.
+
+    components maps a component's name to its coefficient in the species (or in what a mineral or gas
+    dissolves to); water and electrons are the coefficients of H2O and of e^-.
+    """
+
+    text: str  # as published
+    components: dict[str, float]
+    water: float = 0.0
+    electrons: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class Species:
+    """A dissolved complex, formed from components with this constant."""
+
+    name: str
+    charge: int
+    reaction: Reaction
+    log10_k: Constant  # of formation from components
+    enthalpy: Constant | None = None  # J/mol of the same reaction
+    fit: TemperatureFit | None = None
+    ion_size: Constant | None = None  # m
+    default: bool = True  # False: only where a case asks for it
+    note: str = ""
+    alternatives: tuple[Alternative, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Mineral:
+    """A solid phase, dissolving to components with this constant."""
+
+    name: str
+    formula: str
+    reaction: Reaction
+    log10_k: Constant  # of dissolution to components
+    molar_volume: Constant  # m3/mol
+    molar_mass: float  # kg/mol
+    forms: bool  # on the default list: forms on the time scale of a column
+    enthalpy: Constant | None = None
+    fit: TemperatureFit | None = None
+    also_called: tuple[str, ...] = ()
+    note: str = ""
+    alternatives: tuple[Alternative, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Gas:
+    """A gas, dissolving to components with this constant (mol/kg per atm)."""
+
+    name: str  # "CO2"
+    reaction: Reaction
+    log10_k: Constant
+    enthalpy: Constant | None = None
+    fit: TemperatureFit | None = None
+    note: str = ""
+    alternatives: tuple[Alternative, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Table:
+    """All constants by name, and the list of their sources."""
+
+    components: dict[str, Component] = field(default_factory=dict)
+    species: dict[str, Species] = field(default_factory=dict)
+    minerals: dict[str, Mineral] = field(default_factory=dict)
+    gases: dict[str, Gas] = field(default_factory=dict)
+    sources: dict[str, str] = field(default_factory=dict)

@@ -1,0 +1,1 @@
+"""Where transport meets chemistry: the march in time."""

@@ -1,0 +1,1 @@
+"""Result files: what they hold, how they are written and read."""

@@ -1,0 +1,1 @@
+"""Water and solutes on their way through a column."""

@@ -1,0 +1,1 @@
+"""Figures and tables of a result."""
