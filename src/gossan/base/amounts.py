@@ -10,7 +10,8 @@ import re
 from dataclasses import dataclass
 
 from gossan.base.notation import parse_formula
-from gossan.base.units import UnitError, measured
+from gossan.base.units import measured
+from gossan.base.wrong import Wrong
 
 IN_WATER = ("kg/m3", "mol/m3", "eq/m3", "mol/kg", "kg/kg", "eq/kg")  # per volume or per kg of water
 OF_ALKALINITY = ("eq/m3", "kg/m3", "eq/kg", "kg/kg")
@@ -42,7 +43,7 @@ class Amount:
 
 
 def amount(text: str, units: tuple[str, ...], line: int = 0, needed: str = "", example: str = "") -> Amount:
-    """A quantity in one of the SI units, without detection limit or `as`; raises UnitError.
+    """A quantity in one of the SI units, without detection limit or `as`; raises Wrong.
 
     >>> amount("20 PV", ("s", "PV"))
     Amount(text='20 PV', si=20.0, unit='PV', line=0, as_formula='', below_detection=False)
@@ -55,14 +56,14 @@ def in_water(text: str, line: int = 0, units: tuple[str, ...] = IN_WATER, needed
              example: str = "24 mg/L") -> Amount:
     """An amount in water as a laboratory writes it: `24 mg/L`, `<0.5 ug/L`, `10 mg/L as N`, `2.1 meq/L`.
 
-    Raises  UnitError: besides those of units, a qualifier without a number, `as` with moles, no formula
+    Raises  Wrong: besides those of units, a qualifier without a number, `as` with moles, no formula
 
     >>> in_water("<0.5 ug/L").si
     2.5e-07
     """
     if NOT_DETECTED.fullmatch(text):
         cure = 'write the detection limit, such as "<0.0005 mg/L": half of it is used'
-        raise UnitError(f'is "{text}"', cure)
+        raise Wrong(f'is "{text}"', cure)
     below = BELOW.match(text)
     plain = text[below.end() :] if below else text
     named = AS_FORMULA.search(plain)
@@ -76,9 +77,9 @@ def alkalinity(text: str, line: int = 0) -> Amount:
     found = in_water(text, line, OF_ALKALINITY, "an alkalinity", "6 mg/L as CaCO3")
     if found.unit in ("kg/m3", "kg/kg") and not found.as_formula:
         wrong = f'is "{text}", without the substance it is counted as'
-        raise UnitError(wrong, f'did you mean "{text} as CaCO3"?')
+        raise Wrong(wrong, f'did you mean "{text} as CaCO3"?')
     if found.as_formula not in ("", "CaCO3", "HCO3"):
-        raise UnitError(f'is "{text}"', "an alkalinity is counted as CaCO3 or as HCO3")
+        raise Wrong(f'is "{text}"', "an alkalinity is counted as CaCO3 or as HCO3")
     return found
 
 
@@ -90,7 +91,7 @@ def in_solid(text: str, line: int = 0) -> Amount:
     """
     if re.search(r"\d\s*%", text):
         by_weight, by_volume = text.replace("%", "wt%"), text.replace("%", "vol%")
-        raise UnitError(f'is "{text}"', f'say of what: "{by_weight}" or "{by_volume}"')
+        raise Wrong(f'is "{text}"', f'say of what: "{by_weight}" or "{by_volume}"')
     needed = "an amount of solid (wt%, g/kg, umol/g, vol%, mol/L of bulk)"
     return amount(text, IN_SOLID, line, needed, "0.8 wt%")
 
@@ -98,11 +99,11 @@ def in_solid(text: str, line: int = 0) -> Amount:
 def _formula(written: str, text: str, unit: str) -> str:
     """The formula after `as`, without a charge."""
     if unit not in ("kg/m3", "kg/kg"):
-        raise UnitError(f'is "{text}"', f'"as {written}" goes with a mass, such as "10 mg/L as {written}"')
+        raise Wrong(f'is "{text}"', f'"as {written}" goes with a mass, such as "10 mg/L as {written}"')
     formula = written.partition("^")[0].rstrip("+-")
     try:
         parse_formula(formula)
     except ValueError:
         wrong = f'is "{text}", and "{written}" is no formula'
-        raise UnitError(wrong, 'write for instance "as N" or "as CaCO3"') from None
+        raise Wrong(wrong, 'write for instance "as N" or "as CaCO3"') from None
     return formula

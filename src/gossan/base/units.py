@@ -9,10 +9,11 @@ from __future__ import annotations
 
 import math
 import re
-from difflib import get_close_matches
 from fractions import Fraction
 from functools import cache, lru_cache
 from typing import NamedTuple
+
+from gossan.base.wrong import Wrong, closest
 
 # SI unit -> what a person calls it, and how one is written; the first texts of a row are also suggestions
 KINDS: dict[str, tuple[str, tuple[str, ...]]] = {
@@ -108,19 +109,9 @@ NUMBER = re.compile(r"[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?")
 SYMBOL = r"[A-Za-z%]+(?:\^?-?[1-9])?"
 UNIT = re.compile(rf"(?:1|{SYMBOL})(?:\s*[*/ ]\s*\(?\s*{SYMBOL}\s*\)?)*")
 CHARACTERS = str.maketrans(
-    {"µ": "u", "μ": "u", "²": "2", "³": "3", "⁻": "-", "¹": "1", "·": "*", "⋅": "*", "\u2212": "-", "\u00d7": "x", "\u00a0": " "}
+    {"µ": "u", "μ": "u", "²": "2", "³": "3", "⁻": "-", "¹": "1", "·": "*", "⋅": "*"}
+    | {"\u2212": "-", "\u00d7": "x", "\u00a0": " "}  # minus and times signs, a space that does not break
 )
-
-
-class UnitError(ValueError):
-    """A text that is not the quantity needed; `wrong` follows a key's name, `right` is the cure."""
-
-    def __init__(self, wrong: str, right: str = ""):
-        super().__init__(wrong, right)
-        self.wrong, self.right = wrong, right
-
-    def __str__(self) -> str:
-        return f"the value {self.wrong}" + (f": {self.right}" if self.right else "")
 
 
 class Quantity(NamedTuple):
@@ -135,7 +126,7 @@ def si(text: str, unit: str) -> float:
 
     text    a number and a unit, "0.12 m/d"
     unit    one of KINDS, "m/s"
-    Raises  UnitError in a sentence: no unit, unknown unit, another dimension, not a finite number
+    Raises  Wrong in a sentence: no unit, unknown unit, another dimension, not a finite number
 
     >>> si("36 cm/h", "m/s")
     0.0001
@@ -149,7 +140,7 @@ def measured(text: str, units: tuple[str, ...], needed: str = "", example: str =
     """The quantity in `text`, which must be in one of several SI units.
 
     needed, example   what to call it and how one is written, where the words of KINDS are too wide
-    Raises            UnitError
+    Raises            Wrong
 
     >>> measured("0.8 wt%", ("kg/kg", "mol/kg"))
     Quantity(si=0.008, unit='kg/kg')
@@ -160,40 +151,40 @@ def measured(text: str, units: tuple[str, ...], needed: str = "", example: str =
     said = f'is "{text.strip()}"'
     if not unit_text and units != ("1",):
         usual = example.split(" ", 1)[1]
-        raise UnitError(f"{said}, without a unit; {needed} is needed", f'did you mean "{number} {usual}"?')
+        raise Wrong(f"{said}, without a unit; {needed} is needed", f'did you mean "{number} {usual}"?')
     try:
         quantity = in_si(number, unit_text or "1")
     except UnknownUnit as unknown:
         close = _suggestion(unit_text, units)
         cure = f'did you mean "{number} {close}"?' if close else f'{needed} is written such as "{example}"'
-        raise UnitError(f'{said}, and "{unit_text}" {unknown}', cure) from None
+        raise Wrong(f'{said}, and "{unit_text}" {unknown}', cure) from None
     if quantity.unit not in units:
         close = _suggestion(unit_text, units, cutoff=0.8)
         given = f"{KINDS[quantity.unit][0]}, where" if quantity.unit in KINDS else "but"
         cure = f'did you mean "{number} {close}"?' if close else f'write for instance "{example}"'
-        raise UnitError(f"{said}, {given} {needed} is needed", cure)
+        raise Wrong(f"{said}, {given} {needed} is needed", cure)
     return quantity
 
 
 def split(text: str, needed: str, example: str) -> tuple[str, str]:
     """The number and the unit of a text, both still text.
 
-    Raises  UnitError where it does not start with a finite number written with a decimal point
+    Raises  Wrong where it does not start with a finite number written with a decimal point
     """
     plain = text.strip().translate(CHARACTERS).replace("**", "^")
     said = f'is "{text.strip()}"'
     match = NUMBER.match(plain)
     if re.match(r"[+-]?\d+,\d", plain):
         point, rest = plain.replace(",", ".", 1), plain.replace(",", "")
-        raise UnitError(f"{said}, with a comma", f'the decimal sign is a point: "{point}", or "{rest}"?')
+        raise Wrong(f"{said}, with a comma", f'the decimal sign is a point: "{point}", or "{rest}"?')
     if re.match(r"[+-]?[\d.]+\s*[x*]\s*10\s*\^?", plain):
-        raise UnitError(said, f'powers of ten are written with an e, such as "1e-9": "{example}"')
+        raise Wrong(said, f'powers of ten are written with an e, such as "1e-9": "{example}"')
     if not match or re.match(r"[\d.]", plain[match.end() :]):
         what = "not a finite number" if re.match(r"[+-]?(nan|inf)", plain, re.I) else f"not {needed}"
-        raise UnitError(f"{said}, {what}", f'write for instance "{example}"')
+        raise Wrong(f"{said}, {what}", f'write for instance "{example}"')
     number = match.group()
     if not math.isfinite(float(number)):
-        raise UnitError(f"{said}, too large a number", f'write for instance "{example}"')
+        raise Wrong(f"{said}, too large a number", f'write for instance "{example}"')
     return number, plain[match.end() :].strip()
 
 
@@ -220,7 +211,7 @@ def in_si(number: str, unit: str) -> Quantity:
 
 
 def _exact(number: str) -> Fraction:
-    """The number as a fraction; zero where it is too small for a double, whose fraction could fill the memory."""
+    """The number as a fraction; zero below the range of doubles, where a fraction could fill the memory."""
     return Fraction(number) if float(number) else Fraction(0)
 
 
@@ -250,7 +241,7 @@ def _registry():
 
 @cache
 def _dimensions() -> dict:
-    """Pint's dimensionality -> our SI unit; shares (kg/kg, m3/m3) are left out: pint cannot tell them apart."""
+    """Pint's dimensionality -> our SI unit; shares (kg/kg, m3/m3) are left out, pint cannot tell them."""
     registry = _registry()
     kinds = {}
     for unit in KINDS:
@@ -288,6 +279,4 @@ def _suggestion(unit: str, units: tuple[str, ...], cutoff: float = 0.5) -> str:
     if "K" in units and unit.lower() in ("c", "deg c", "°", "deg", "celsius", "degrees c", "degree c"):
         return "degC"
     choices = {text.split(" ", 1)[1]: None for name in units for text in KINDS[name][1] if " " in text}
-    lowered = {choice.lower(): choice for choice in choices}
-    close = get_close_matches(unit.lower(), lowered, n=1, cutoff=cutoff)
-    return lowered[close[0]] if close else ""
+    return closest(unit, choices, cutoff)
