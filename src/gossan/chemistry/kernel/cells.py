@@ -1,0 +1,81 @@
+"""A block of cells brought to equilibrium, each on its own."""
+
+from __future__ import annotations
+
+from gossan.base.jit import kernel
+from gossan.base.outcome import SOLVED
+from gossan.chemistry.kernel.complement import NOWHERE, settle
+
+
+@kernel
+def settle_cells(
+    matrices, bench, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength,
+    solved, skip, cold, outcome, steps, first, last,
+):
+    """Equilibrate cells first to last (equations.md, 7-18); returns how many failed.
+
+    kilograms (cell,) kg of water per m3 of bulk
+    amount (component, cell) mol m-3 of bulk dissolved; solid, upper (mineral, cell) mol m-3 of bulk
+    presence (mineral, cell) int8; ln_activity (component, cell); ionic_strength (cell,) mol/kg
+    solved (component, cell) mol/kg: what was dissolved after the last solve; a cell whose dissolved
+        amounts all stand within skip of it (relative) is left alone
+    cold: start from nothing; outcome (cell,) int64 and steps (cell,) int64 are overwritten
+    All state arrays are changed in place, a failed cell's are left as they were.
+    """
+    components, minerals = amount.shape[0], solid.shape[0]
+    failed = 0
+    for i in range(first, last):
+        steps[i] = 0
+        outcome[i] = SOLVED
+        weight = kilograms[i]
+        same = not cold
+        for k in range(components):
+            now = amount[k, i] / weight
+            bench.dissolved[k] = now
+            if not abs(now - solved[k, i]) <= skip * abs(solved[k, i]):
+                same = False
+        if same:
+            continue
+        for m in range(minerals):
+            bench.solid[m] = solid[m, i] / weight
+            bench.upper[m] = upper[m, i] / weight
+            bench.presence[m] = presence[m, i]
+            if bench.presence[m] == 0 and bench.solid[m] > 0.0:
+                bench.presence[m] = 1
+        for k in range(components):
+            bench.ln_activity[k] = ln_activity[k, i]
+        outcome[i], strength, steps[i] = settle(
+            matrices, bench, bench.dissolved, bench.solid, bench.upper, bench.presence,
+            ionic_strength[i], cold,
+        )
+        if outcome[i] != SOLVED:
+            failed += 1
+            continue
+        ionic_strength[i] = strength
+        for k in range(components):
+            if bench.ln_activity[k] == NOWHERE:
+                ln_activity[k, i] = NOWHERE
+            else:
+                ln_activity[k, i] = bench.ln_activity[k]
+        for m in range(minerals):
+            gained = bench.gained[m] * weight
+            mark = bench.presence[m]
+            presence[m, i] = mark
+            if mark == 0:
+                gained = -solid[m, i]
+                solid[m, i] = 0.0
+            elif mark == 2:
+                gained = upper[m, i] - solid[m, i]
+                solid[m, i] = upper[m, i]
+            else:
+                solid[m, i] += gained
+            if gained != 0.0:
+                for k in range(components):
+                    amount[k, i] -= matrices.solid[m, k] * gained
+        # a pivot's dissolved amount is known from speciation, to its last digit; by subtraction from
+        # what the solids hold it would be noise
+        for k in range(components):
+            if bench.place[k] < 0 and bench.place[k] > -99:
+                amount[k, i] = bench.sums[k] * weight
+            solved[k, i] = amount[k, i] / weight
+    return failed

@@ -1,0 +1,335 @@
+"""Which minerals are present, and how much of each: the complementarity problem of one water.
+
+Every mineral is absent (0, and then undersaturated), present (1, and then saturated) or full (2: it may
+only dissolve, has lost nothing, and may be supersaturated).  An active set of these marks is guessed, the
+water solved with it, and the marks that contradict the answer are changed, until none does.
+"""
+
+from __future__ import annotations
+
+import math
+
+from gossan.base.jit import kernel
+from gossan.base.outcome import CYCLING, DIVERGED, ITERATIONS, SINGULAR, SOLVED
+from gossan.chemistry.kernel.activity import activity_coefficients
+from gossan.chemistry.kernel.newton import balances, convex_step, dual_energy, far_merit, far_step, molalities, near_step
+from gossan.chemistry.kernel.nullspace import (
+    GONE,
+    eliminate,
+    pivots_follow,
+    reduce_species,
+    reduce_totals,
+)
+
+ABSENT = 1e-40  # mol/kg: less than one molecule in a lake; below, a component is left out of the solve
+NOWHERE = -1e6  # ln activity of an absent component
+SETTLED = 1e-7  # a last step below this leaves an error of its square
+EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
+NEAR = 0.3  # mismatch below which the balances' own Newton step converges
+LOOK = 1e-2  # mismatch below which wrong marks already show
+SLACK = 1e-11  # ln of a saturation ratio that counts as none: between rounding and what is asked for
+PASSES = 12  # of the continued fraction in a cold start
+NEWTON_LIMIT = 300  # steps for one set of marks
+BRIM = 100.0  # mol/kg: no water holds more; far from the answer the sums may claim it
+LEAST_SHARE = 0.1  # of a step: less is not worth trying
+FAR, CONVEX = 0, 1  # the two ways from afar
+
+
+@kernel
+def survey(matrices, bench, ionic_strength):
+    """Fill bench.sums and bench.abundance from all ln activities; returns the ionic strength made."""
+    activity_coefficients(
+        matrices.model, matrices.debye_hueckel, matrices.kind_charge_squared, matrices.kind_size,
+        ionic_strength, bench.ln_gamma, bench.slope,
+    )
+    for k in range(bench.sums.shape[0]):
+        bench.sums[k] = 0.0
+        bench.abundance[k] = 0.0
+    made = 0.0
+    for s in range(matrices.ln_k.shape[0]):
+        exponent = matrices.ln_k[s] - bench.ln_gamma[matrices.kind[s]]
+        for e in range(matrices.start[s], matrices.start[s + 1]):
+            exponent += matrices.coefficient[e] * bench.ln_activity[matrices.member[e]]
+        molality = math.exp(exponent) if exponent < 60.0 else math.exp(60.0)
+        bench.molality[s] = molality
+        made += matrices.charge_squared[s] * molality
+        for e in range(matrices.start[s], matrices.start[s + 1]):
+            amount = matrices.coefficient[e] * molality
+            bench.sums[matrices.member[e]] += amount
+            bench.abundance[matrices.member[e]] += abs(amount)
+    return 0.5 * made
+
+
+@kernel
+def approach(matrices, bench, dissolved):
+    """Bring a cold water near its balances by damped continued fractions; returns the ionic strength.
+
+    Source: Carrayrou, Mose & Behra (2002), AIChE J. 48, 894-904: every component in turn multiplied by
+    the ratio of the two sides of its balance, damped by 0.9 - 0.8 (smaller / larger side).
+    """
+    components = bench.ln_activity.shape[0]
+    for k in range(components):
+        if k == matrices.signed:
+            bench.ln_activity[k] = math.log(1e-7)
+        elif bench.total[k] > ABSENT:
+            bench.ln_activity[k] = math.log(dissolved[k] if dissolved[k] > 1e-12 else 1e-12)
+        else:
+            bench.ln_activity[k] = NOWHERE
+    made = 0.0
+    for _ in range(PASSES):
+        made = survey(matrices, bench, 0.0)
+        for k in range(components):
+            bench.weight[k] = 0.0
+        for s in range(matrices.ln_k.shape[0]):
+            size = 0.0
+            for e in range(matrices.start[s], matrices.start[s + 1]):
+                size += abs(matrices.coefficient[e])
+            for e in range(matrices.start[s], matrices.start[s + 1]):
+                bench.weight[matrices.member[e]] += size * abs(matrices.coefficient[e]) * bench.molality[s]
+        for k in range(components):
+            if bench.ln_activity[k] == NOWHERE:
+                continue
+            total = dissolved[k] if dissolved[k] > 1e-12 or k == matrices.signed else 1e-12
+            positive = 0.5 * (bench.abundance[k] + bench.sums[k]) - (total if total < 0.0 else 0.0)
+            negative = 0.5 * (bench.abundance[k] - bench.sums[k]) + (total if total > 0.0 else 0.0)
+            ratio = math.log((negative + 1e-300) / (positive + 1e-300))
+            crowd = bench.weight[k] / bench.abundance[k] if bench.abundance[k] > 0.0 else 1.0
+            bench.ln_activity[k] += ratio / crowd
+    return made if made < 1.0 else 1.0
+
+
+@kernel
+def set_totals(matrices, bench, dissolved, solid, upper, presence):
+    """Fill bench.total with what is dissolved or must dissolve under these marks; mark absent components.
+
+    A mineral that is present adds nothing: its own formula drops out of the reduced totals exactly.
+    """
+    for k in range(dissolved.shape[0]):
+        bench.total[k] = dissolved[k]
+    for mineral in range(solid.shape[0]):
+        given = 0.0
+        if presence[mineral] == 0:
+            given = solid[mineral]
+        elif presence[mineral] == 2:
+            given = solid[mineral] - upper[mineral]
+        if given != 0.0:
+            for k in range(dissolved.shape[0]):
+                bench.total[k] += matrices.solid[mineral, k] * given
+    for k in range(dissolved.shape[0]):
+        bench.place[k] = 0
+        if k == matrices.signed or bench.total[k] > ABSENT:
+            continue
+        held = False
+        for mineral in range(solid.shape[0]):
+            if matrices.solid[mineral, k] != 0.0 and presence[mineral] != 0:
+                if presence[mineral] == 2:
+                    presence[mineral] = 1  # without this component in the water it cannot but dissolve
+                held = True
+        if held:
+            # minerals that were full are present now, and give their share back through the reduction
+            bench.total[k] = bench.total[k] if bench.total[k] > 0.0 else 0.0
+        else:
+            bench.place[k] = GONE
+    for k in range(dissolved.shape[0]):
+        if bench.place[k] == GONE:
+            bench.ln_activity[k] = NOWHERE
+        elif not bench.ln_activity[k] > -1e5:
+            total = bench.total[k]
+            bench.ln_activity[k] = math.log(total if total > 1e-12 else 1e-12)
+
+
+@kernel
+def weigh(matrices, bench, active, solid, upper, presence):
+    """Fill the amounts gained and ln saturation ratios; returns the marks most at fault, -1 for none.
+
+    Returns (mineral to drop or fill, mineral to add or loosen): the largest negative amount or excess,
+    and the largest contradiction of a saturation ratio.
+    """
+    survey_sums(matrices, bench)
+    drop, add = -1, -1
+    worst_amount, worst_ratio = 0.0, SLACK
+    for mineral in range(solid.shape[0]):
+        ratio = -matrices.solid_ln_k[mineral]
+        for k in range(matrices.solid.shape[1]):
+            if matrices.solid[mineral, k] != 0.0:
+                ratio += matrices.solid[mineral, k] * bench.ln_activity[k]
+        bench.saturation[mineral] = ratio
+        bench.gained[mineral] = 0.0
+        if presence[mineral] == 0:
+            bench.gained[mineral] = -solid[mineral]
+            if ratio > worst_ratio and upper[mineral] > 0.0:
+                worst_ratio, add = ratio, mineral
+        elif presence[mineral] == 2:
+            bench.gained[mineral] = upper[mineral] - solid[mineral]
+            if -ratio > worst_ratio:
+                worst_ratio, add = -ratio, mineral
+    for m in range(active):
+        mineral = bench.active[m]
+        gained = 0.0
+        for r in range(active):
+            p = bench.pivot[r]
+            gained += bench.turns[r, m] * (bench.total[p] - bench.sums[p])
+        bench.gained[mineral] = gained
+        amount = solid[mineral] + gained
+        if amount < worst_amount:
+            worst_amount, drop = amount, mineral
+        if upper[mineral] - amount < worst_amount:
+            worst_amount, drop = upper[mineral] - amount, mineral
+    return drop, add
+
+
+@kernel
+def survey_sums(matrices, bench):
+    """Fill bench.sums and bench.abundance from the molalities of the last evaluation."""
+    for k in range(bench.sums.shape[0]):
+        bench.sums[k] = 0.0
+        bench.abundance[k] = 0.0
+    for s in range(matrices.ln_k.shape[0]):
+        for e in range(matrices.start[s], matrices.start[s + 1]):
+            amount = matrices.coefficient[e] * bench.molality[s]
+            bench.sums[matrices.member[e]] += amount
+            bench.abundance[matrices.member[e]] += abs(amount)
+
+
+@kernel
+def mark(drop, add, solid, upper, presence, bench):
+    """Change the marks that weigh found at fault."""
+    if drop >= 0:
+        presence[drop] = 0 if solid[drop] + bench.gained[drop] < 0.0 else 2
+    if add >= 0:
+        presence[add] = 1
+
+
+@kernel
+def reduce_all(matrices, bench, presence):
+    """Eliminate the present minerals and reduce totals and, where the set is new, species."""
+    active = eliminate(matrices, bench, presence, presence.shape[0])
+    free = 0
+    same = bench.active_before[-1] == active
+    for k in range(bench.place.shape[0]):
+        if bench.place[k] >= 0:
+            free += 1
+        same = same and bench.place[k] == bench.place_before[k]
+    for m in range(active):
+        same = same and bench.active_before[m] == bench.active[m]
+    if not same:
+        reduce_species(matrices, bench, active, free)
+        bench.active_before[-1] = active
+        for m in range(active):
+            bench.active_before[m] = bench.active[m]
+        for k in range(bench.place.shape[0]):
+            bench.place_before[k] = bench.place[k]
+    reduce_totals(bench, active, free)
+    return active, free
+
+
+@kernel
+def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, cold):
+    """Bring one water to equilibrium with its minerals; returns (outcome, ionic strength, steps).
+
+    dissolved (component,) mol/kg; solid, upper (mineral,) mol/kg; presence (mineral,) int8 and
+    bench.ln_activity are the start (unless cold) and the answer; bench.gained and bench.sums hold what
+    each mineral gained and what is dissolved afterwards.
+    """
+    minerals = solid.shape[0]
+    if cold:
+        for mineral in range(minerals):
+            presence[mineral] = 1 if solid[mineral] > 0.0 else 0
+    set_totals(matrices, bench, dissolved, solid, upper, presence)
+    if cold:
+        for k in range(dissolved.shape[0]):
+            if bench.place[k] != GONE and bench.total[k] <= ABSENT:
+                bench.total[k] = 1e-12
+        ionic_strength = approach(matrices, bench, dissolved)
+        set_totals(matrices, bench, dissolved, solid, upper, presence)
+    survey(matrices, bench, ionic_strength)
+    steps, changes = 0, 0
+    most = 6 * (minerals + 4)
+    while changes < most:
+        active, free = reduce_all(matrices, bench, presence)
+        looked = changes > 2 * (minerals + 2)  # going round: from now on judge settled waters only
+        last, best, factor, before = 1.0, math.inf, 1.0, ionic_strength
+        mode, near, worse = FAR, NEAR, math.inf
+        code = ITERATIONS
+        for newton in range(NEWTON_LIMIT):
+            made = molalities(matrices, bench, ionic_strength)
+            mismatch = balances(matrices, bench, free)
+            if last < SETTLED or (mismatch < EXACT and abs(made - ionic_strength) < 1e-13 * made + 1e-30):
+                code = SOLVED
+                break
+            if mismatch < LOOK and not looked:
+                looked = True
+                pivots_follow(matrices, bench, active, free)
+                drop, add = weigh(matrices, bench, active, solid, upper, presence)
+                if drop >= 0 or (add >= 0 and abs(bench.saturation[add]) > 0.1):
+                    code = CYCLING
+                    break
+            steps += 1
+            rise = made - ionic_strength
+            found = False
+            if mismatch > worse:
+                near *= 0.1  # the near step was not near enough
+            worse = math.inf
+            if mismatch < near:
+                found, rise = near_step(matrices, bench, free, rise)
+                mode, worse = FAR, mismatch
+            if not found:
+                merit = far_merit(bench, free) if mode == FAR else dual_energy(matrices, bench, free)
+                if merit > best:
+                    # the step went too far: back by half of it, or over to the way that always descends
+                    shrink = 0.5 if factor > LEAST_SHARE else 1.0
+                    for j in range(free):
+                        bench.ln_activity[bench.free[j]] -= shrink * bench.taken[j]
+                        bench.taken[j] *= 1.0 - shrink
+                    factor *= 0.5
+                    ionic_strength = before
+                    if shrink == 1.0:
+                        best, factor = math.inf, 1.0
+                        mode = CONVEX if mode == FAR else FAR
+                    continue
+                best, factor = merit, 1.0
+                going = far_step(matrices, bench, free) if mode == FAR else convex_step(matrices, bench, free)
+                if not going:
+                    code = SINGULAR
+                    break
+                if mode == CONVEX:
+                    rise = 0.0
+            largest = 0.0
+            for j in range(free):
+                size = abs(bench.right[j])
+                if not size <= largest:
+                    largest = size
+            if not largest < 1e30:
+                code = DIVERGED
+                break
+            cap = 30.0 if newton < 25 else (3.0 if newton < 50 else 1.0)
+            share = cap / largest if largest > cap else 1.0
+            for j in range(free):
+                bench.taken[j] = share * bench.right[j]
+                bench.ln_activity[bench.free[j]] += bench.taken[j]
+            risen = ionic_strength + share * rise
+            if risen > 5.0 * ionic_strength:
+                risen = 5.0 * ionic_strength
+            if risen < 0.2 * ionic_strength:
+                risen = 0.2 * ionic_strength
+            risen = risen if risen > 1e-12 else 1e-12
+            risen = risen if risen < BRIM else BRIM
+            move = abs(risen - ionic_strength) / (ionic_strength + 1e-6)
+            before, ionic_strength = ionic_strength, risen
+            last = 1.0
+            if found:
+                last = largest if largest > move else move
+                best = math.inf
+        if code == SOLVED:
+            pivots_follow(matrices, bench, active, free)
+            drop, add = weigh(matrices, bench, active, solid, upper, presence)
+            if drop < 0 and add < 0:
+                return SOLVED, ionic_strength, steps
+            if drop >= 0 and changes > 2 * (minerals + 2):
+                add = -1  # one change at a time once it goes round
+        elif code != CYCLING:
+            return code, ionic_strength, steps
+        mark(drop, add, solid, upper, presence, bench)
+        set_totals(matrices, bench, dissolved, solid, upper, presence)
+        changes += 1
+    return CYCLING, ionic_strength, steps

@@ -1,0 +1,141 @@
+"""A slower way to find which minerals are present, for the waters on which the active set goes wrong."""
+
+from __future__ import annotations
+
+import math
+
+from gossan.base.jit import kernel
+from gossan.chemistry.kernel.complement import GONE, NOWHERE, set_totals, survey
+from gossan.chemistry.kernel.dense import solve_general
+
+LIMIT = 300  # steps
+GOOD = 1e-8  # scaled residual at which the marks are certain
+
+
+@kernel
+def fischer_burmeister(a, b):
+    """Value and both slopes of a + b - sqrt(a^2 + b^2), zero where a, b >= 0 and a b = 0."""
+    size = math.sqrt(a * a + b * b)
+    if size < 1e-30:
+        return 0.0, 1.0 - math.sqrt(0.5), 1.0 - math.sqrt(0.5)
+    # a + b - size loses its digits where one of them is large and positive
+    value = 2.0 * a * b / (a + b + size) if a + b > 0.0 else a + b - size
+    return value, 1.0 - a / size, 1.0 - b / size
+
+
+@kernel
+def find_minerals(matrices, bench, dissolved, solid, upper, presence, ionic_strength, amount, reach):
+    """Mark the minerals present by a semismooth Newton iteration on everything at once.
+
+    Balances of all components and, for each mineral, Fischer-Burmeister functions of its amount and its
+    saturation (two of them nested where the amount has an upper bound).  bench.ln_activity and presence
+    are left near the answer, to be settled from there; returns (found, ionic strength).
+    Source: Kraeutle (2011), Adv. Water Resour. 34, 137-151, for the method; Billups (1995) for two bounds.
+    amount, reach (mineral,) are working space.
+    """
+    components, minerals = dissolved.shape[0], solid.shape[0]
+    n = components + minerals
+    for m in range(minerals):
+        presence[m] = 0
+    set_totals(matrices, bench, dissolved, solid, upper, presence)
+    for m in range(minerals):
+        reach[m] = 1e300
+        for k in range(components):
+            if matrices.solid[m, k] != 0.0 and k != matrices.signed:
+                most = 0.0 if bench.place[k] == GONE else bench.total[k] / abs(matrices.solid[m, k])
+                if most < reach[m]:
+                    reach[m] = most
+        amount[m] = 0.01 * reach[m]
+        if amount[m] > upper[m]:
+            amount[m] = upper[m]
+    matrix, right = bench.matrix, bench.right
+    for step in range(LIMIT):
+        made = survey(matrices, bench, ionic_strength)
+        for i in range(n):
+            right[i] = 0.0
+            for j in range(n):
+                matrix[i, j] = 0.0
+        for k in range(components):
+            total = bench.total[k]
+            bench.positive[k] = 0.5 * (bench.abundance[k] + bench.sums[k]) - (total if total < 0.0 else 0.0)
+            bench.negative[k] = 0.5 * (bench.abundance[k] - bench.sums[k]) + (total if total > 0.0 else 0.0)
+            for m in range(minerals):
+                part = matrices.solid[m, k] * amount[m]
+                if part > 0.0:
+                    bench.positive[k] += part
+                else:
+                    bench.negative[k] -= part
+        worst = 0.0
+        for k in range(components):
+            if bench.place[k] == GONE:
+                matrix[k, k] = 1.0
+                continue
+            # far: logarithms reach further; their slope is the balances' own, row by row
+            right[k] = math.log((bench.negative[k] + 1e-300) / (bench.positive[k] + 1e-300))
+            worst = max(worst, abs(right[k]))
+            for m in range(minerals):
+                value = matrices.solid[m, k]
+                if value != 0.0:
+                    side = bench.positive[k] if value * amount[m] > 0.0 else bench.negative[k]
+                    matrix[k, components + m] = value * reach[m] / (side + 1e-300)
+        for s in range(matrices.ln_k.shape[0]):
+            exponent = matrices.ln_k[s] - bench.ln_gamma[matrices.kind[s]]
+            for e in range(matrices.start[s], matrices.start[s + 1]):
+                exponent += matrices.coefficient[e] * bench.ln_activity[matrices.member[e]]
+            molality = math.exp(min(exponent, 60.0))
+            for e in range(matrices.start[s], matrices.start[s + 1]):
+                k = matrices.member[e]
+                if bench.place[k] == GONE:
+                    continue
+                value = matrices.coefficient[e]
+                side = bench.positive[k] if value > 0.0 else bench.negative[k]
+                share = value * molality / (side + 1e-300)
+                for d in range(matrices.start[s], matrices.start[s + 1]):
+                    matrix[k, matrices.member[d]] += share * matrices.coefficient[d]
+        for m in range(minerals):
+            row = components + m
+            under = matrices.solid_ln_k[m]
+            for k in range(components):
+                if matrices.solid[m, k] != 0.0:
+                    under -= matrices.solid[m, k] * bench.ln_activity[k]
+            if reach[m] <= 0.0 or upper[m] <= 0.0:
+                matrix[row, row] = 1.0
+                right[row] = 0.0
+                amount[m] = 0.0
+                continue
+            share = amount[m] / reach[m]
+            slack, from_amount, from_under = under, 0.0, 1.0
+            if upper[m] < 1e299:
+                value, first, second = fischer_burmeister(upper[m] / reach[m] - share, -under)
+                slack, from_amount, from_under = -value, first, second
+            value, first, second = fischer_burmeister(share, slack)
+            right[row] = -value
+            worst = max(worst, abs(value))
+            matrix[row, row] = first + second * from_amount
+            for k in range(components):
+                if bench.place[k] != GONE:
+                    matrix[row, k] = -second * from_under * matrices.solid[m, k]
+        if worst < GOOD and abs(made - ionic_strength) < 1e-6 * (made + 1e-9):
+            for m in range(minerals):
+                if reach[m] > 0.0 and amount[m] / reach[m] > 1e-9:
+                    presence[m] = 2 if upper[m] - amount[m] < 1e-9 * upper[m] else 1
+            return True, ionic_strength
+        if not solve_general(matrix, n, right):
+            return False, ionic_strength
+        largest = 0.0
+        for i in range(components):
+            largest = max(largest, abs(right[i]))
+        if not largest < 1e30:
+            return False, ionic_strength
+        cap = 5.0 if step < 100 else 1.0
+        factor = cap / largest if largest > cap else 1.0
+        for k in range(components):
+            if bench.place[k] != GONE:
+                bench.ln_activity[k] += factor * right[k]
+            else:
+                bench.ln_activity[k] = NOWHERE
+        for m in range(minerals):
+            amount[m] += factor * right[components + m] * reach[m]
+        ionic_strength = min(max(made, 0.2 * ionic_strength), 5.0 * ionic_strength)
+        ionic_strength = max(ionic_strength, 1e-12)
+    return False, ionic_strength
