@@ -19,9 +19,11 @@ _VALENCE = re.compile(r"\((?:I{1,3}|I?V|VI{0,3})\)")
 _PIECE = re.compile(r"(?P<open>\()|(?:(?P<element>[A-Z][a-z]?)|(?P<close>\)))(?P<count>\d+(?:\.\d+)?)?")
 _DOT = re.compile(r"[·•⋅*]")
 _PLAIN_DOT = re.compile(r"\.(?=\d*H2O$)")  # only before water: Fe0.95S has a decimal point
+_PLUS = re.compile(r"\s+\+\s+")
 _COEFFICIENT = re.compile(r"(?:(?P<top>\d+)/(?P<bottom>[1-9]\d*)|(?P<number>\d+(?:\.\d+)?))\s*(?P<name>\S.*)")
 
 
+@lru_cache(maxsize=4096)
 def normal_ion(text: str) -> str:
     """Write an ion or molecule in the one form that the program uses.
 
@@ -47,7 +49,7 @@ def normal_ion(text: str) -> str:
             raise ValueError(f"'{text}' has no readable charge: write it like Zn^2+ or Cl^-")
         size = "" if match["size"] in ("", "1") else match["size"]
         name = f"{match['formula']}^{size}{match['sign']}"
-    elif re.search(r"[+-]", name):
+    elif "+" in name or "-" in name:
         raise ValueError(f"'{text}' has no readable charge: write it like Zn^2+ or Cl^-")
     return name + (f"({phase})" if phase in ("s", "g") else "")
 
@@ -156,16 +158,22 @@ def parse_reaction(text: str) -> tuple[dict[str, float], dict[str, float]]:
     >>> parse_reaction("FeS(s) + H^+ = Fe^2+ + HS^-")
     ({'FeS(s)': 1.0, 'H^+': 1.0}, {'Fe^2+': 1.0, 'HS^-': 1.0})
     """
+    left, right = _sides(text)
+    return dict(left), dict(right)
+
+
+@lru_cache(maxsize=4096)
+def _sides(text: str) -> tuple[dict[str, float], dict[str, float]]:
+    """Read both sides; the dicts are remembered and not for giving away."""
     sides = text.replace("⇌", "=").split("=")
     if len(sides) != 2:
         raise ValueError(f"'{text}' is no reaction: write two sides joined by one '='")
-    left, right = (_side(side, text) for side in sides)
-    return left, right
+    return _side(sides[0], text), _side(sides[1], text)
 
 
 def _side(side: str, text: str) -> dict[str, float]:
     terms: dict[str, float] = {}
-    for term in re.split(r"\s\+\s", side.strip()):
+    for term in _PLUS.split(side.strip()):
         coefficient, name = 1.0, term.strip()
         match = _COEFFICIENT.fullmatch(name)
         if match:
@@ -174,7 +182,7 @@ def _side(side: str, text: str) -> dict[str, float]:
             coefficient = float(top) / float(bottom)
         if not name or not coefficient > 0.0:
             raise ValueError(f"'{text}' is no reaction: a side or a term is empty")
-        if re.search(r"\s", name):
+        if len(name.split()) > 1:
             raise ValueError(f"'{text}' is no reaction: '{name}' is not one substance (join terms by ' + ')")
         name = normal_ion(name)
         terms[name] = terms.get(name, 0.0) + coefficient
@@ -187,7 +195,7 @@ def imbalance(text: str) -> dict[str, float]:
     >>> imbalance("ZnS(s) + H^+ = Zn^2+ + HS^-"), imbalance("ZnS(s) = Zn^2+ + HS^-")
     ({}, {'charge': 1.0, 'H': 1.0})
     """
-    left, right = parse_reaction(text)
+    left, right = _sides(text)
     gained: dict[str, float] = {}
     for side, sign in ((left, -1.0), (right, 1.0)):
         for name, coefficient in side.items():

@@ -39,6 +39,21 @@ class Alternative:
 
 
 @dataclass(frozen=True, slots=True)
+class Reaction:
+    """A balanced reaction, reduced to components.
+
+    components maps a component's name to its coefficient in one mole of the species (or in what a mole of
+    the mineral or gas dissolves to); water and electrons are the coefficients of H2O and of e^-. Electrons
+    other than 0 need coupled redox.
+    """
+
+    text: str  # as published, perhaps through other species
+    components: dict[str, float]
+    water: float = 0.0
+    electrons: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
 class Component:
     """A building stone of waters: every species and mineral is made of components, water and electrons."""
 
@@ -46,24 +61,12 @@ class Component:
     charge: int
     ion_size: Constant | None = None  # m, Kielland's parameter
     diffusion: Constant | None = None  # m2/s at 25 degC in free water
-    half_reaction: str = ""  # how the couple to its element's first ion is written; "" for a first ion
-    half_log10_k: Constant | None = None
-    half_enthalpy: Constant | None = None  # J/mol
+    half_reaction: Reaction | None = None  # formation from the first ion of its element; None for a first ion
+    half_log10_k: Constant | None = None  # of half_reaction as published
+    half_enthalpy: Constant | None = None  # J/mol, the same
+    half_fit: TemperatureFit | None = None  # of half_reaction, reduced to first ions
     note: str = ""
-
-
-@dataclass(frozen=True, slots=True)
-class Reaction:
-    """A balanced reaction, already reduced to components.
-
-    components maps a component's name to its coefficient in the species (or in what a mineral or gas
-    dissolves to); water and electrons are the coefficients of H2O and of e^-.
-    """
-
-    text: str  # as published
-    components: dict[str, float]
-    water: float = 0.0
-    electrons: float = 0.0
+    alternatives: tuple[Alternative, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -73,13 +76,15 @@ class Species:
     name: str
     charge: int
     reaction: Reaction
-    log10_k: Constant  # of formation from components
-    enthalpy: Constant | None = None  # J/mol of the same reaction
-    fit: TemperatureFit | None = None
+    log10_k: Constant  # at 25 degC, of formation from components; its sd is that of the published constant
+    enthalpy: Constant | None = None  # J/mol of reaction.text as published
+    fit: TemperatureFit | None = None  # of formation from components; the loader fills it always
     ion_size: Constant | None = None  # m
+    diffusion: Constant | None = None  # m2/s at 25 degC in free water
     default: bool = True  # False: only where a case asks for it
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
+    published: Constant | None = None  # log10 K of reaction.text, where that runs through other species
 
 
 @dataclass(frozen=True, slots=True)
@@ -89,15 +94,16 @@ class Mineral:
     name: str
     formula: str
     reaction: Reaction
-    log10_k: Constant  # of dissolution to components
+    log10_k: Constant  # at 25 degC, of dissolution to components; its sd is that of the published constant
     molar_volume: Constant  # m3/mol
     molar_mass: float  # kg/mol
     forms: bool  # on the default list: forms on the time scale of a column
-    enthalpy: Constant | None = None
-    fit: TemperatureFit | None = None
+    enthalpy: Constant | None = None  # J/mol of reaction.text as published
+    fit: TemperatureFit | None = None  # of dissolution to components; the loader fills it always
     also_called: tuple[str, ...] = ()
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
+    published: Constant | None = None  # log10 K of reaction.text, where that runs through other species
 
 
 @dataclass(frozen=True, slots=True)
@@ -106,11 +112,12 @@ class Gas:
 
     name: str  # "CO2"
     reaction: Reaction
-    log10_k: Constant
-    enthalpy: Constant | None = None
-    fit: TemperatureFit | None = None
+    log10_k: Constant  # at 25 degC, of dissolution to components; its sd is that of the published constant
+    enthalpy: Constant | None = None  # J/mol of reaction.text as published
+    fit: TemperatureFit | None = None  # of dissolution to components; the loader fills it always
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
+    published: Constant | None = None  # log10 K of reaction.text, where that runs through other species
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,0 +1,86 @@
+"""Finding an entry of the table by what people call it."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from difflib import get_close_matches
+
+from gossan.base.notation import charge_of, normal_ion, parse_formula
+from gossan.constants.entries import Component, Gas, Mineral, Species, Table
+
+
+class UnknownName(LookupError):
+    """A name that the table lacks, or a formula that several minerals share.
+
+    wrong and right are the two halves of a Fault.
+    """
+
+    def __init__(self, wrong: str, right: str):
+        super().__init__(wrong, right)
+        self.wrong, self.right = wrong, right
+
+    def __str__(self) -> str:
+        return f"{self.wrong}: {self.right}" if self.right else self.wrong
+
+
+def find_mineral(table: Table, name: str) -> Mineral:
+    """Find a mineral by its name, another name of it, or its formula where no other mineral has the same.
+
+    Raises  UnknownName, with near names or the minerals that share the formula
+
+    >>> from gossan.constants.load import load_table
+    >>> find_mineral(load_table(), "Zinc oxide").name, find_mineral(load_table(), "ZnO").name
+    ('zincite', 'zincite')
+    """
+    wanted = " ".join(name.split()).casefold()
+    called = {}
+    for mineral in table.minerals.values():
+        called.update({alias.casefold(): mineral for alias in (mineral.name, *mineral.also_called)})
+    if wanted in called:
+        return called[wanted]
+    sharing = _with_formula(table, name)
+    if len(sharing) == 1:
+        return sharing[0]
+    if sharing:
+        names = [mineral.name for mineral in sharing]
+        wrong = f"'{name}' is the formula of {len(names)} minerals"
+        raise UnknownName(wrong, f"name one: {', '.join(names)}")
+    raise UnknownName(f"no mineral is called '{name}'", _near(wanted, called))
+
+
+def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, ...]:
+    """Find everything that bears a name: CO2 is a species and a gas, CaCO3 a species and three minerals.
+
+    Raises  UnknownName, with near names
+    """
+    try:
+        ion = normal_ion(name)
+    except ValueError:
+        ion = name
+    groups = (table.components, table.species, table.gases)
+    found: list[Component | Species | Mineral | Gas] = [group[ion] for group in groups if ion in group]
+    try:
+        found.append(find_mineral(table, name))
+    except UnknownName as unknown:
+        found += _with_formula(table, name)
+        if not found:
+            known = [each for group in groups for each in group]
+            raise UnknownName(f"the table has no '{name}'", _near(ion, known) or unknown.right) from None
+    return tuple(found)
+
+
+def _with_formula(table: Table, formula: str) -> list[Mineral]:
+    """Minerals of this composition, however the formula is written."""
+    try:
+        counts = parse_formula(formula)
+        charged = charge_of(formula) != 0
+    except ValueError:
+        return []
+    if charged:
+        return []
+    return [mineral for mineral in table.minerals.values() if parse_formula(mineral.formula) == counts]
+
+
+def _near(word: str, known: Iterable[str]) -> str:
+    near = get_close_matches(word, list(known), n=3, cutoff=0.7)
+    return f"did you mean {' or '.join(near)}?" if near else ""

@@ -1,0 +1,177 @@
+"""Every reaction of a table brought down to components, water and electrons."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+from gossan.base.notation import imbalance, parse_reaction, split_phase
+from gossan.constants.document import Entry, did_you_mean
+from gossan.constants.entries import Constant, Reaction, TemperatureFit
+from gossan.constants.temperature import REFERENCE, combined, evaluated, van_t_hoff
+
+WATER, ELECTRON = "H2O", "e^-"
+NEGLIGIBLE = 1e-12  # coefficients that cancelled leave this much
+FIT_AGREES = 0.01  # how far a fit may be from log10_k at 25 degC even where the constant is known better
+
+
+@dataclass(frozen=True, slots=True)
+class Published:
+    """What a file gives for a reaction as it is printed there."""
+
+    log10_k: Constant
+    enthalpy: Constant | None
+    fit: TemperatureFit | None
+
+
+@dataclass(frozen=True, slots=True)
+class Reduced:
+    """One mole of something, taken apart: log a = log10_k + sum of made[name] times log a of name."""
+
+    made: dict[str, float]  # components, H2O and e^-
+    log10_k: float  # of formation from these at 25 degC
+    fit: TemperatureFit  # the same against temperature
+    direct: bool  # the printed reaction holds nothing else
+
+    def reaction(self, text: str) -> Reaction:
+        """Give the record of this reaction, printed as text."""
+        components = {name: times for name, times in self.made.items() if name not in (WATER, ELECTRON)}
+        return Reaction(text, components, self.made.get(WATER, 0.0), self.made.get(ELECTRON, 0.0))
+
+
+class Faulty(Exception):
+    """An entry that cannot be reduced; its fault is already on the list."""
+
+
+class Reducer:
+    """Reduces entries on demand and remembers them, so that each is walked once.
+
+    entries    kind -> name -> entry
+    published  (kind, name) -> constants of its printed reaction, None where there are none or they are faulty
+    """
+
+    def __init__(
+        self, entries: dict[str, dict[str, Entry]], published: dict[tuple[str, str], Published | None]
+    ):
+        self._entries = entries
+        self._published = published
+        self._done: dict[tuple[str, str, bool], Reduced | None] = {}
+        self._solids: dict[str, list[str]] = {}
+        for name, entry in entries["minerals"].items():
+            self._solids.setdefault(solid_of(entry), []).append(name)
+
+    def reduced(self, kind: str, name: str, held: bool = True) -> Reduced:
+        """Reduce one entry; held = False takes held components apart too, down to first ions and e^-.
+
+        Raises  Faulty, with the reason on the entry's list
+        """
+        key = (kind, name, held)
+        if key not in self._done:
+            self._done[key] = None  # met again while it is None: the chain of reactions bites its tail
+            self._done[key] = self._walk(self._entries[kind][name], held)
+        found = self._done[key]
+        if found is None:
+            raise Faulty
+        return found
+
+    def _walk(self, entry: Entry, held: bool) -> Reduced:
+        key = "half_reaction" if entry.kind == "components" else "reaction"
+        published = self._published[entry.kind, entry.name]
+        left, right = _sides(entry, key)
+        own, forms = _own_term(entry, left, right)
+        if own is None:
+            does = {"minerals": "one solid, marked (s), on its left", "gases": f"one {entry.name}(g) on its left"}
+            entry.fault(key, f"does not have {does.get(entry.kind, f'one {entry.name} on its right')}")
+        if own is None or published is None:
+            raise Faulty
+        sign = 1.0 if forms else -1.0
+        parts = [(sign, Reduced({}, published.log10_k.value, _fit_of(entry, published), True))]
+        for side, times in ((left, sign), (right, -sign)):
+            for term, count in side.items():
+                if term != own:
+                    parts.append((times * count, self._term(entry, key, term, held)))
+        made: dict[str, float] = {}
+        for times, part in parts:
+            for name, count in part.made.items():
+                made[name] = made.get(name, 0.0) + times * count
+        return Reduced(
+            {name: count for name, count in made.items() if abs(count) > NEGLIGIBLE},
+            sum(times * part.log10_k for times, part in parts),
+            combined((times, part.fit) for times, part in parts),
+            all(part.direct for _, part in parts),
+        )
+
+    def _term(self, entry: Entry, key: str, term: str, held: bool) -> Reduced:
+        """Reduce one term of a reaction: at once where it is a component, H2O or e^-."""
+        components = self._entries["components"]
+        if term in (WATER, ELECTRON) or (term in components and (held or _is_first(components[term]))):
+            return Reduced({term: 1.0}, 0.0, TemperatureFit(), True)
+        name, phase = split_phase(term)
+        kind = "components" if term in components else {"s": "minerals", "g": "gases"}.get(phase, "species")
+        if kind == "minerals":
+            solids = self._solids.get(name, [])
+            if len(solids) > 1:
+                entry.fault(key, f"uses {term}, which could be {' or '.join(solids)}")
+                raise Faulty
+            name = solids[0] if solids else name
+        if name not in self._entries[kind]:
+            right = did_you_mean(term, [*components, *self._entries["species"]])
+            entry.fault(key, f"uses {term}, which the table lacks", right)
+            raise Faulty
+        try:
+            return replace(self.reduced(kind, name, held), direct=False)
+        except Faulty:
+            entry.fault(key, f"leads to {term}, whose own reaction is at fault or leads back here")
+            raise
+
+
+def solid_of(entry: Entry) -> str:
+    """Formula of the solid that a mineral's reaction dissolves, "" where it cannot be read."""
+    try:
+        left, _ = parse_reaction(str(entry.keys.get("reaction", "")))
+    except ValueError:
+        return ""
+    return next((split_phase(term)[0] for term in left if split_phase(term)[1] == "s"), "")
+
+
+def _sides(entry: Entry, key: str) -> tuple[dict[str, float], dict[str, float]]:
+    """Read a reaction and refuse one that gains or loses charge or an element."""
+    text = entry.typed(key, str, "")
+    if not text:
+        raise Faulty  # missing or no text, and noted as such
+    try:
+        sides, gained = parse_reaction(text), imbalance(text)
+    except ValueError as error:
+        entry.fault(key, f"cannot be read ({error})")
+        raise Faulty from None
+    if gained:
+        amounts = ", ".join(f"{what} {amount:+g}" for what, amount in sorted(gained.items()))
+        entry.fault(key, "is not balanced", f"from left to right it gains {amounts}")
+        raise Faulty
+    return sides
+
+
+def _is_first(component: Entry) -> bool:
+    return "half_reaction" not in component.keys
+
+
+def _fit_of(entry: Entry, published: Published) -> TemperatureFit:
+    """Temperature fit of a printed reaction: its own, or van 't Hoff's law as one."""
+    log10_k = published.log10_k
+    if published.fit is None:
+        return van_t_hoff(log10_k.value, published.enthalpy.value if published.enthalpy else 0.0)
+    off = evaluated(published.fit, REFERENCE) - log10_k.value
+    if abs(off) > max(FIT_AGREES, log10_k.sd or 0.0):
+        entry.fault("temperature_fit", f"is {off:+.3g} away from log10_k at 25 degC")
+    return published.fit
+
+
+def _own_term(entry: Entry, left: dict[str, float], right: dict[str, float]) -> tuple[str | None, bool]:
+    """Find the entry's own term, and whether the reaction forms it (else it dissolves it)."""
+    if entry.kind == "minerals":
+        solids = [term for term in left if split_phase(term)[1] == "s"]
+        own, side, forms = solids[0] if len(solids) == 1 else "", left, False
+    elif entry.kind == "gases":
+        own, side, forms = f"{entry.name}(g)", left, False
+    else:
+        own, side, forms = entry.name, right, True
+    return (own if side.get(own) == 1.0 else None), forms
