@@ -51,7 +51,7 @@ class Document:
         path = re.escape(kind)
         if name:
             path += rf"\s*\.\s*(?:\"{re.escape(name)}\"|'{re.escape(name)}'|{re.escape(name)})"
-        heading = re.compile(rf"\s*\[\s*{path}\s*\]")
+        heading = re.compile(rf"\s*\[\s*{path}\s*" + (r"\]" if name else r"[.\]]"))
         lines = self.text.splitlines()
         start = next((i for i, line in enumerate(lines) if heading.match(line)), None)
         if start is None:

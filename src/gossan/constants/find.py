@@ -2,10 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
-from difflib import get_close_matches
-
 from gossan.base.notation import charge_of, normal_ion, parse_formula
+from gossan.constants.document import did_you_mean
 from gossan.constants.entries import Component, Gas, Mineral, Species, Table
 
 
@@ -26,7 +24,7 @@ class UnknownName(LookupError):
 def find_mineral(table: Table, name: str) -> Mineral:
     """Find a mineral by its name, another name of it, or its formula where no other mineral has the same.
 
-    Raises  UnknownName, with near names or the minerals that share the formula
+    Raises  UnknownName, with the nearest name, or the minerals that share the formula
 
     >>> from gossan.constants.load import load_table
     >>> find_mineral(load_table(), "Zinc oxide").name, find_mineral(load_table(), "ZnO").name
@@ -45,13 +43,13 @@ def find_mineral(table: Table, name: str) -> Mineral:
         names = [mineral.name for mineral in sharing]
         wrong = f"'{name}' is the formula of {len(names)} minerals"
         raise UnknownName(wrong, f"name one: {', '.join(names)}")
-    raise UnknownName(f"no mineral is called '{name}'", _near(wanted, called))
+    raise UnknownName(f"no mineral is called '{name}'", did_you_mean(wanted, called))
 
 
 def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, ...]:
     """Find everything that bears a name: CO2 is a species and a gas, CaCO3 a species and three minerals.
 
-    Raises  UnknownName, with near names
+    Raises  UnknownName, with the nearest name
     """
     try:
         ion = normal_ion(name)
@@ -65,7 +63,7 @@ def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, 
         found += _with_formula(table, name)
         if not found:
             known = [each for group in groups for each in group]
-            raise UnknownName(f"the table has no '{name}'", _near(ion, known) or unknown.right) from None
+            raise UnknownName(f"the table has no '{name}'", did_you_mean(ion, known) or unknown.right) from None
     return tuple(found)
 
 
@@ -79,8 +77,3 @@ def _with_formula(table: Table, formula: str) -> list[Mineral]:
     if charged:
         return []
     return [mineral for mineral in table.minerals.values() if parse_formula(mineral.formula) == counts]
-
-
-def _near(word: str, known: Iterable[str]) -> str:
-    near = get_close_matches(word, list(known), n=3, cutoff=0.7)
-    return f"did you mean {' or '.join(near)}?" if near else ""

@@ -79,8 +79,8 @@ class Reducer:
         left, right = _sides(entry, key)
         own, forms = _own_term(entry, left, right)
         if own is None:
-            does = {"minerals": "one solid, marked (s), on its left", "gases": f"one {entry.name}(g) on its left"}
-            entry.fault(key, f"does not have {does.get(entry.kind, f'one {entry.name} on its right')}")
+            own_terms = {"minerals": "solid, marked (s), on its left", "gases": f"{entry.name}(g) on its left"}
+            entry.fault(key, f"does not have one {own_terms.get(entry.kind, f'{entry.name} on its right')}")
         if own is None or published is None:
             raise Faulty
         sign = 1.0 if forms else -1.0
