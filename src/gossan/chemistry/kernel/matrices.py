@@ -66,6 +66,7 @@ class Bench(NamedTuple):
     weight: np.ndarray  # (component,)
     taken: np.ndarray  # (component,) the last step of the free ln activities
     gained: np.ndarray  # (mineral,) what a mineral gained in this solve, mol/kg
+    reach: np.ndarray  # (mineral,) the most of a mineral its components allow, mol/kg
     saturation: np.ndarray  # (mineral,) ln of activity product over K
 
 
@@ -87,5 +88,5 @@ def bench(components: int, species: int, minerals: int, kinds: int) -> Bench:
         real(components), real(some, components), real(some, some), whole(some), whole(some),
         whole(components), whole(components), np.full(some + 1, -1), whole(components), whole(species + 1), whole(wide), real(wide), real(species),
         real(components), real(components), real(components), real(both, both), real(both), real(both),
-        real(components), real(components), real(some), real(some),
+        real(components), real(components), real(some), real(some), real(some),
     )

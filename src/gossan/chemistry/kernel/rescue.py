@@ -5,7 +5,9 @@ from __future__ import annotations
 import math
 
 from gossan.base.jit import kernel
-from gossan.chemistry.kernel.complement import GONE, NOWHERE, set_totals, survey
+from gossan.chemistry.kernel.complement import approach, set_totals, survey
+from gossan.chemistry.kernel.complement import NOWHERE
+from gossan.chemistry.kernel.nullspace import GONE
 from gossan.chemistry.kernel.dense import solve_general
 
 LIMIT = 300  # steps
@@ -24,7 +26,7 @@ def fischer_burmeister(a, b):
 
 
 @kernel
-def find_minerals(matrices, bench, dissolved, solid, upper, presence, ionic_strength, amount, reach):
+def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, reach):
     """Mark the minerals present by a semismooth Newton iteration on everything at once.
 
     Balances of all components and, for each mineral, Fischer-Burmeister functions of its amount and its
@@ -38,6 +40,7 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, ionic_stre
     for m in range(minerals):
         presence[m] = 0
     set_totals(matrices, bench, dissolved, solid, upper, presence)
+    ionic_strength = approach(matrices, bench, bench.total)
     for m in range(minerals):
         reach[m] = 1e300
         for k in range(components):
@@ -139,3 +142,23 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, ionic_stre
         ionic_strength = min(max(made, 0.2 * ionic_strength), 5.0 * ionic_strength)
         ionic_strength = max(ionic_strength, 1e-12)
     return False, ionic_strength
+
+
+@kernel
+def find_minerals_in(matrices, bench, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength):
+    """Mark the minerals present in one cell (arrays as in settle_cells, one cell long), in place."""
+    minerals = solid.shape[0]
+    for k in range(amount.shape[0]):
+        bench.dissolved[k] = amount[k, 0] / kilograms[0]
+    for m in range(minerals):
+        bench.solid[m] = solid[m, 0] / kilograms[0]
+        bench.upper[m] = upper[m, 0] / kilograms[0]
+    found, strength = find_minerals(
+        matrices, bench, bench.dissolved, bench.solid, bench.upper, bench.presence, bench.gained, bench.reach
+    )
+    ionic_strength[0] = strength
+    for k in range(amount.shape[0]):
+        ln_activity[k, 0] = bench.ln_activity[k]
+    for m in range(minerals):
+        presence[m, 0] = bench.presence[m]
+    return found

@@ -1,0 +1,161 @@
+"""Waters and their minerals brought to local equilibrium."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from gossan.base.errors import SolveError
+from gossan.base.outcome import SENTENCES, SOLVED
+from gossan.chemistry.system import LN10, System
+
+START_STRENGTH = 0.1  # mol/kg, where a cold start begins
+UNBOUNDED = np.inf
+
+
+@dataclass(frozen=True, eq=False)
+class Equilibrium:
+    """Waters at equilibrium, one a column; made anew by every solve, never changed.
+
+    The amounts are per whatever `kilograms` counted: mol per kg of water where that is 1.
+    """
+
+    system: System
+    amount: np.ndarray  # (component, cell) dissolved
+    solid: np.ndarray  # (mineral, cell)
+    presence: np.ndarray  # (mineral, cell) int8: 0 absent, 1 present, 2 full
+    ln_activity: np.ndarray  # (component, cell)
+    ionic_strength: np.ndarray  # (cell,) mol/kg
+    solved: np.ndarray  # (component, cell) mol/kg: dissolved after the last solve
+    steps: np.ndarray  # (cell,) Newton steps; 0 where the last answer still held
+
+    def log10_activity(self) -> np.ndarray:
+        """(species, cell): log10 of the activity of every species, -inf where a component is absent."""
+        return log10_activity(self.system, self.ln_activity)
+
+    def molality(self) -> np.ndarray:
+        """(species, cell): mol per kg of water."""
+        ln_gamma = self.system.activity.ln_gamma(self.ionic_strength)
+        return np.exp(LN10 * self.log10_activity() - ln_gamma)
+
+    def saturation(self) -> np.ndarray:
+        """(mineral, cell): saturation indices, NaN where a component is absent."""
+        matrices = self.system.matrices
+        return saturation(self.system.mineral_stoichiometry, matrices.solid_ln_k, self.ln_activity)
+
+    def gas_pressure(self) -> np.ndarray:
+        """(gas, cell): partial pressures in atm, NaN where a component is absent."""
+        system = self.system
+        return 10.0 ** saturation(system.gas_stoichiometry, system.gas_ln_k, self.ln_activity)
+
+
+def log10_activity(system: System, ln_activity: np.ndarray) -> np.ndarray:
+    """(species, cell): log10 of the activity of every species from those of the components."""
+    ln = system.stoichiometry @ ln_activity + system.matrices.ln_k[:, None]
+    return np.where(ln < -1e4, -np.inf, ln / LN10)
+
+
+def saturation(stoichiometry: np.ndarray, ln_k: np.ndarray, ln_activity: np.ndarray) -> np.ndarray:
+    """(solid, cell): log10 of ion activity product over K; NaN where a component is absent."""
+    ln = stoichiometry @ ln_activity - ln_k[:, None]
+    return np.where(ln < -1e4, np.nan, ln / LN10)
+
+
+class Solver:
+    """Local equilibrium of many cells of one system, with its working space laid out once."""
+
+    def __init__(self, system: System):
+        from gossan.chemistry.kernel.matrices import bench
+
+        self.system = system
+        matrices = system.matrices
+        self._bench = bench(
+            len(system.components), len(system.species), len(system.minerals), len(matrices.kind_size)
+        )
+
+    def cold(self, kilograms, amount, solid, upper=None) -> Equilibrium:
+        """Equilibrate from nothing but the amounts; arguments as for `settled`."""
+        cells = amount.shape[1]
+        system = self.system
+        start = Equilibrium(
+            system=system,
+            amount=amount,
+            solid=solid,
+            presence=np.zeros((len(system.minerals), cells), np.int8),
+            ln_activity=np.zeros((len(system.components), cells)),
+            ionic_strength=np.full(cells, START_STRENGTH),
+            solved=np.full((len(system.components), cells), np.nan),
+            steps=np.zeros(cells, np.int64),
+        )
+        return self.settled(start, kilograms, amount, solid, upper, cold=True)
+
+    def settled(
+        self, start: Equilibrium, kilograms, amount, solid, upper=None, *, skip=-1.0, cold=False
+    ) -> Equilibrium:
+        """Equilibrate these amounts, starting from an earlier equilibrium.
+
+        kilograms (cell,) kg of water per unit the amounts are per (kg per m3 of bulk; 1 for mol/kg)
+        amount (component, cell) dissolved, solid (mineral, cell) before
+        upper (mineral, cell) the most of a mineral there may be: inf, or what there was at the start for
+            one that may only dissolve; default: by system.may_form
+        skip: leave a cell alone whose dissolved amounts all stand within this (relative) of the last solve
+        Raises   SolveError naming the cell; nothing given is changed
+        """
+        from gossan.chemistry.kernel.cells import settle_cells
+
+        system = self.system
+        if upper is None:
+            upper = np.where(system.may_form[:, None], UNBOUNDED, solid)
+        amount, solid, upper = (np.array(a, float, order="C") for a in (amount, solid, upper))
+        kilograms = np.ascontiguousarray(kilograms, float)
+        presence, ln_activity = start.presence.copy(), start.ln_activity.copy()
+        ionic_strength, solved = start.ionic_strength.copy(), start.solved.copy()
+        cells = amount.shape[1]
+        outcome, steps = np.zeros(cells, np.int64), np.zeros(cells, np.int64)
+        failed = settle_cells(
+            system.matrices, self._bench, kilograms, amount, solid, upper, presence, ln_activity,
+            ionic_strength, solved, skip, cold, outcome, steps, 0, cells,
+        )  # fmt: skip
+        if failed:
+            self._rescue(
+                kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, outcome, steps
+            )
+        return replace(
+            start, amount=amount, solid=solid, presence=presence, ln_activity=ln_activity,
+            ionic_strength=ionic_strength, solved=solved, steps=steps,
+        )  # fmt: skip
+
+    def _rescue(
+        self, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, outcome, steps
+    ) -> None:
+        """Find the minerals of failed cells another way, then settle them again; in place."""
+        from gossan.chemistry.kernel.cells import settle_cells
+        from gossan.chemistry.kernel.rescue import find_minerals_in
+
+        arrays = (kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved)
+        for i in np.flatnonzero(outcome != SOLVED):
+            one = [np.ascontiguousarray(a[..., i : i + 1]) for a in arrays]
+            result, count = outcome[i : i + 1].copy(), steps[i : i + 1].copy()
+            find_minerals_in(self.system.matrices, self._bench, *one[:7])
+            settle_cells(self.system.matrices, self._bench, *one, -1.0, False, result, count, 0, 1)
+            if result[0] != SOLVED:
+                result[0] = outcome[i]
+                raise SolveError(SENTENCES[int(result[0])], cell=int(i))
+            for a, new in zip(arrays[1:], one[1:], strict=True):
+                a[..., i] = new[..., 0]
+            outcome[i], steps[i] = result[0], count[0]
+
+
+def equilibrate(system: System, dissolved: np.ndarray, solid: np.ndarray | None = None) -> Equilibrium:
+    """Bring waters to equilibrium with their minerals, from nothing but the amounts.
+
+    dissolved (component,) or (component, cell) mol per kg of water; H^+ is its total excess
+    solid     (mineral, cell) mol per kg of water that are there; default none
+    Returns   an Equilibrium in mol per kg of water
+    Raises    SolveError
+    """
+    amount = np.asarray(dissolved, float).reshape(len(system.components), -1)
+    if solid is None:
+        solid = np.zeros((len(system.minerals), amount.shape[1]))
+    return Solver(system).cold(np.ones(amount.shape[1]), amount, np.asarray(solid, float))
