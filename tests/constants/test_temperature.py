@@ -35,7 +35,9 @@ def test_every_power_of_a_fit_counts():
 @given(fits, fits, st.floats(-5, 5), st.floats(273.15, 323.15))
 def test_sums_of_fits_are_fits_of_sums(first, second, times, t):
     both = evaluated(combined([(1.0, first), (times, second)]), t)
-    size = sum(abs(n) for fit in (first, second) for n in (fit.constant, fit.linear * t, fit.log10 * 3)) + 10.0
+    size = (
+        sum(abs(n) for fit in (first, second) for n in (fit.constant, fit.linear * t, fit.log10 * 3)) + 10.0
+    )
     assert both == pytest.approx(evaluated(first, t) + times * evaluated(second, t), abs=1e-13 * size * 6)
 
 

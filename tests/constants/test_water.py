@@ -1,5 +1,6 @@
 """Pure water: interpolation between the tabulated parameters, ranges."""
 
+import itertools
 import tomllib
 from importlib.resources import files
 
@@ -19,11 +20,11 @@ def test_tabulated_values_come_back():
 def test_between_the_values_the_curve_is_smooth_and_rising():
     values = [debye_huckel(273.15 + 0.25 * i) for i in range(241)]
     for name in (0, 1):
-        steps = [after[name] - before[name] for before, after in zip(values, values[1:], strict=False)]
+        steps = [after[name] - before[name] for before, after in itertools.pairwise(values)]
         assert min(steps) > 0.0
         # the table rounds to 1e-4 over 5 degC steps of 4e-4 to 11e-4: no jump between neighbours is larger
         # than that rounding makes it
-        assert max(abs(b - a) for a, b in zip(steps, steps[1:], strict=False)) < 0.2 * max(steps)
+        assert max(abs(b - a) for a, b in itertools.pairwise(steps)) < 0.2 * max(steps)
 
 
 @pytest.mark.parametrize("celsius", [-0.5, 60.5])

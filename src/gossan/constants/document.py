@@ -141,9 +141,11 @@ class Entry:
     def alternatives(self, sources: dict[str, str]) -> tuple[Alternative, ...]:
         """Value of alternatives: published constants that were not chosen."""
         rows = self.keys.get("alternatives", [])
-        complaints = [_complaint(row, sources, ("value",)) for row in rows] if isinstance(rows, list) else [
-            (f"is {rows!r}", 'write a list, like [{value = -8.35, source = "..."}]')
-        ]
+        complaints = (
+            [_complaint(row, sources, ("value",)) for row in rows]
+            if isinstance(rows, list)
+            else [(f"is {rows!r}", 'write a list, like [{value = -8.35, source = "..."}]')]
+        )
         for complaint in filter(None, complaints):
             self.fault("alternatives", *complaint)
         if any(complaints):

@@ -63,7 +63,9 @@ def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, 
         found += _with_formula(table, name)
         if not found:
             known = [each for group in groups for each in group]
-            raise UnknownName(f"the table has no '{name}'", did_you_mean(ion, known) or unknown.right) from None
+            raise UnknownName(
+                f"the table has no '{name}'", did_you_mean(ion, known) or unknown.right
+            ) from None
     return tuple(found)
 
 

@@ -79,7 +79,10 @@ class Reducer:
         left, right = _sides(entry, key)
         own, forms = _own_term(entry, left, right)
         if own is None:
-            own_terms = {"minerals": "solid, marked (s), on its left", "gases": f"{entry.name}(g) on its left"}
+            own_terms = {
+                "minerals": "solid, marked (s), on its left",
+                "gases": f"{entry.name}(g) on its left",
+            }
             entry.fault(key, f"does not have one {own_terms.get(entry.kind, f'{entry.name} on its right')}")
         if own is None or published is None:
             raise Faulty

@@ -36,11 +36,7 @@ def evaluated(fit: TemperatureFit, temperature_k: float) -> float:
     """Value of a fit at a temperature in K."""
     t = temperature_k
     return (
-        fit.constant
-        + fit.linear * t
-        + fit.inverse / t
-        + fit.log10 * log10(t)
-        + fit.inverse_square / (t * t)
+        fit.constant + fit.linear * t + fit.inverse / t + fit.log10 * log10(t) + fit.inverse_square / (t * t)
     )
 
 
