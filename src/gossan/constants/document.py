@@ -78,7 +78,9 @@ class Entry:
         """Add a fault of this entry, at the key's line."""
         path = f"{self.kind}.{self.name}" + (f".{key}" if key else "")
         line = self.document.line_of(self.kind, self.name, key)
-        self.faults.append(Fault(self.document.file, line, path, wrong, right))
+        fault = Fault(self.document.file, line, path, wrong, right)
+        if fault not in self.faults:  # a reaction may be walked twice, with and without held components
+            self.faults.append(fault)
 
     def check_keys(self) -> None:
         """Note every key that is unknown or missing."""

@@ -55,6 +55,7 @@ class Reducer:
         self._entries = entries
         self._published = published
         self._done: dict[tuple[str, str, bool], Reduced | None] = {}
+        self._walking: set[tuple[str, str, bool]] = set()
         self._solids: dict[str, list[str]] = {}
         for name, entry in entries["minerals"].items():
             self._solids.setdefault(solid_of(entry), []).append(name)
@@ -66,8 +67,12 @@ class Reducer:
         """
         key = (kind, name, held)
         if key not in self._done:
-            self._done[key] = None  # met again while it is None: the chain of reactions bites its tail
-            self._done[key] = self._walk(self._entries[kind][name], held)
+            self._done[key] = None  # what it stays if the walk fails
+            self._walking.add(key)
+            try:
+                self._done[key] = self._walk(self._entries[kind][name], held)
+            finally:
+                self._walking.remove(key)
         found = self._done[key]
         if found is None:
             raise Faulty
@@ -120,11 +125,9 @@ class Reducer:
             right = did_you_mean(term, [*components, *self._entries["species"]])
             entry.fault(key, f"uses {term}, which the table lacks", right)
             raise Faulty
-        try:
-            return replace(self.reduced(kind, name, held), direct=False)
-        except Faulty:
-            entry.fault(key, f"leads to {term}, whose own reaction is at fault or leads back here")
-            raise
+        if (kind, name, held) in self._walking:
+            entry.fault(key, f"goes round in a circle: {term} is itself made from {entry.name}")
+        return replace(self.reduced(kind, name, held), direct=False)
 
 
 def solid_of(entry: Entry) -> str:
@@ -169,12 +172,12 @@ def _fit_of(entry: Entry, published: Published) -> TemperatureFit:
 
 
 def _own_term(entry: Entry, left: dict[str, float], right: dict[str, float]) -> tuple[str | None, bool]:
-    """Find the entry's own term, and whether the reaction forms it (else it dissolves it)."""
+    """Find the entry's own term, once and on its side, and whether the reaction forms or dissolves it."""
     if entry.kind == "minerals":
         solids = [term for term in left if split_phase(term)[1] == "s"]
-        own, side, forms = solids[0] if len(solids) == 1 else "", left, False
-    elif entry.kind == "gases":
-        own, side, forms = f"{entry.name}(g)", left, False
+        own = solids[0] if len(solids) == 1 else ""
     else:
-        own, side, forms = entry.name, right, True
-    return (own if side.get(own) == 1.0 else None), forms
+        own = f"{entry.name}(g)" if entry.kind == "gases" else entry.name
+    forms = entry.kind in ("components", "species")
+    side, other = (right, left) if forms else (left, right)
+    return (own if side.get(own) == 1.0 and own not in other else None), forms
