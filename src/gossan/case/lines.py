@@ -113,7 +113,7 @@ class _Scan:
 
     def key(self) -> list[str]:
         """The parts of a key, `a."b c".d`; the scan stands behind it afterwards."""
-        parts = []
+        parts: list[str] = []
         while True:
             self.skip(_BLANK)
             for pattern in (_BASIC, _LITERAL, _BARE_KEY):

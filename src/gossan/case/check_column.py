@@ -1,0 +1,179 @@
+"""Checks of the column: layers, flow and ports must fit together."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Iterable
+
+from gossan.base.amounts import Amount
+from gossan.base.wrong import did_you_mean
+from gossan.case.check_waters import mineral_named
+from gossan.case.draft import Draft
+from gossan.case.lines import Path
+from gossan.case.model import MOST_CELLS
+from gossan.constants.entries import Table
+
+ROUND_OFF = 1e-9  # lengths and shares that differ by less than this are the same
+
+
+def check_layers(draft: Draft, table: Table) -> None:
+    """Names, waters, cells, solids, conductivity and clogging of every layer."""
+    layers = draft.case.layers or ()
+    _check_names_once(draft, "layers", layers)
+    for index, layer in enumerate(layers):
+        path: Path = ("layers", index)
+        _check_water_name(draft, layer.water, (*path, "water"))
+        _check_cells(draft, layer, path)
+        _check_solids(draft, table, layer, path)
+        _check_conductivity(draft, path)
+        _check_clogging(draft, layer, path)
+
+
+def _check_conductivity(draft: Draft, path: Path) -> None:
+    flow = draft.case.flow
+    if flow and flow.head_drop is not None and "conductivity" not in draft.at(path):
+        wrong = "is missing: with a head_drop every layer needs one"
+        draft.fault((*path, "conductivity"), wrong, 'write conductivity = "25 m/d"')
+
+
+def _check_clogging(draft: Draft, layer, path: Path) -> None:
+    """The numbers that a law needs; those that it does not use are let be."""
+    if layer.clogging is None or layer.clogging.law not in ("power", "threshold"):
+        return
+    law = layer.clogging.law
+    path = (*path, "clogging")
+    needed = {"exponent": "3.0"} | ({"critical_porosity": "0.05"} if law == "threshold" else {})
+    for name, example in needed.items():
+        if name not in draft.at(path):
+            draft.fault((*path, name), f'is missing: law = "{law}" needs it', f"write {name} = {example}")
+    critical = layer.clogging.critical_porosity if law == "threshold" else None
+    if critical is not None and layer.porosity is not None and critical >= layer.porosity:
+        wrong = f"is {critical:g}, but the layer starts with a porosity of {layer.porosity:g}"
+        draft.fault((*path, "critical_porosity"), wrong, "it must be less")
+
+
+def _check_names_once(draft: Draft, what: str, entries: Iterable) -> None:
+    seen: set[str] = set()
+    for index, entry in enumerate(entries):
+        if entry.name in seen:
+            draft.fault((what, index, "name"), f'is "{entry.name}" a second time', "every name stands once")
+        if entry.name is not None:
+            seen.add(entry.name)
+
+
+def _check_water_name(draft: Draft, name: str | None, at: Path) -> None:
+    waters = draft.at(("waters",))
+    if name is not None and waters and name not in waters:
+        draft.fault(at, f'is "{name}", but there is no [waters.{name}]', did_you_mean(name, waters))
+
+
+def _check_cells(draft: Draft, layer, path: Path) -> None:
+    given = [key for key in ("cells", "cell") if key in draft.at(path)]
+    if not given:
+        draft.fault((*path, "cells"), "is missing", 'write cells = 60, or cell = "2 cm"')
+    elif len(given) == 2:
+        draft.fault((*path, "cell"), "stands beside cells: the same fact twice", "keep one of the two")
+    elif layer.cell is not None and layer.length is not None:
+        if layer.cell.si > layer.length.si * (1 + ROUND_OFF):
+            wrong = f'is "{layer.cell}", longer than the layer ("{layer.length}")'
+            draft.fault((*path, "cell"), wrong, f'at most "{layer.length}"')
+        elif layer.length.si / layer.cell.si > MOST_CELLS:
+            wrong = f'is "{layer.cell}", {layer.length.si / layer.cell.si:.3g} cells in "{layer.length}"'
+            draft.fault((*path, "cell"), wrong, f"at most {MOST_CELLS} cells are possible")
+
+
+def _check_solids(draft: Draft, table: Table, layer, path: Path) -> None:
+    """Minerals of a layer: known, once each, no more than the solid that is there."""
+    names: dict[str, str] = {}
+    for key in layer.minerals or {}:
+        at = (*path, "minerals", key)
+        name = mineral_named(draft, table, key, at)
+        if name in names:
+            draft.fault(at, f'is {name} a second time, after "{names[name]}"', "keep one of the two")
+        if name:
+            names[name] = key
+    given = [solid.amount for solid in (layer.minerals or {}).values() if solid]
+    of_mass = math.fsum(each.si for each in given if each.unit == "kg/kg")
+    of_bulk = math.fsum(each.si for each in given if each.unit == "m3/m3")
+    if of_mass > 1 + ROUND_OFF:
+        wrong = f"add up to {100 * of_mass:.4g} wt% of the dry solid"
+        draft.fault((*path, "minerals"), wrong, "at most 100 wt%")
+    if layer.porosity is not None and of_bulk > (1 - layer.porosity) * (1 + ROUND_OFF):
+        wrong = f"add up to {100 * of_bulk:.4g} vol% of the bulk, with a porosity of {layer.porosity:g}"
+        draft.fault((*path, "minerals"), wrong, f"at most {100 * (1 - layer.porosity):.4g} vol% is solid")
+
+
+def check_flow(draft: Draft) -> None:
+    """One way of driving the water; a feed that starts at zero and goes on in order."""
+    flow = draft.case.flow
+    if flow is None:
+        return
+    given = [key for key in ("darcy_flux", "head_drop") if key in draft.at(("flow",))]
+    if not given:
+        draft.fault(("flow", "darcy_flux"), "is missing", 'write darcy_flux = "0.12 m/d", or a head_drop')
+    if len(given) == 2:
+        wrong = "stands beside darcy_flux: only one can be held"
+        draft.fault(("flow", "head_drop"), wrong, "keep one of the two")
+    seconds = _clock(draft)
+    last = -math.inf
+    for index, feed in enumerate(flow.feed or ()):
+        path: Path = ("flow", "feed", index)
+        _check_water_name(draft, feed.water, (*path, "water"))
+        if feed.from_ is None:
+            continue
+        start = seconds(feed.from_, (*path, "from"))
+        if start is None:
+            continue
+        if index == 0 and start != 0:
+            wrong = f'is "{feed.from_}"; the first feed starts with the run'
+            draft.fault((*path, "from"), wrong, 'write "0 d"')
+        elif start <= last:
+            wrong = f'is "{feed.from_}", not later than the feed before'
+            draft.fault((*path, "from"), wrong, "put them in order")
+        _check_inside_run(draft, feed.from_, start, (*path, "from"), seconds)
+        last = max(last, start)
+
+
+def _clock(draft: Draft) -> Callable[[Amount, Path | None], float | None]:
+    """Turns times and pore volumes into s; None where the text does not say enough."""
+    flow, layers = draft.case.flow, draft.case.layers or ()
+
+    def seconds(time: Amount, at: Path | None) -> float | None:
+        if time.unit == "s" or time.si == 0:
+            return time.si
+        if flow and flow.head_drop is not None:
+            if at:
+                wrong = f'is "{time}", which is no time before the run: with a head_drop the flux changes'
+                draft.fault(at, wrong, 'give a time, such as "30 d"')
+            return None
+        complete = layers and all(layer.length and layer.porosity for layer in layers)
+        if not (flow and flow.darcy_flux and complete):
+            return None
+        return time.si * math.fsum(layer.length.si * layer.porosity for layer in layers) / flow.darcy_flux.si
+
+    return seconds
+
+
+def _check_inside_run(draft: Draft, given: Amount, start: float, at: Path, seconds: Callable) -> None:
+    run = draft.case.run
+    end = seconds(run.duration, None) if run and run.duration is not None else None
+    if end is not None and start >= end:
+        draft.fault(at, f'is "{given}", not before the end of the run ("{run.duration}")', "leave it out?")
+
+
+def check_ports(draft: Draft) -> None:
+    """Port names stand once, ports lie within the column, `outlet` at its end."""
+    ports = draft.case.ports or ()
+    _check_names_once(draft, "ports", ports)
+    lengths = [layer.length for layer in draft.case.layers or ()]
+    column = math.fsum(length.si for length in lengths) if lengths and all(lengths) else None
+    for index, port in enumerate(ports):
+        if not isinstance(port.at, Amount) or column is None:
+            continue
+        at: Path = ("ports", index, "at")
+        if port.at.si > column * (1 + ROUND_OFF):
+            wrong = f'is "{port.at}", beyond the column of {column:.6g} m'
+            draft.fault(at, wrong, f'at most "{column:.6g} m"')
+        elif port.name == "outlet" and port.at.si < column * (1 - ROUND_OFF):
+            wrong = f'is "{port.at}", but the port outlet is the end of the column at {column:.6g} m'
+            draft.fault(at, wrong, "call it something else")

@@ -1,0 +1,131 @@
+"""Checks of the waters: names that must exist in the table of constants, facts given twice."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+from gossan.base.amounts import Amount
+from gossan.base.wrong import Wrong, did_you_mean
+from gossan.case.draft import Draft
+from gossan.case.lines import Path
+from gossan.case.model import Water
+from gossan.constants.entries import Table
+from gossan.constants.find import UnknownName, find_mineral
+from gossan.constants.names import Named, component_named, moles
+
+
+def check_waters(draft: Draft, table: Table) -> None:
+    """Solutes, balance ions, minerals, gases and tracers of every water."""
+    if draft.case.waters == {}:
+        draft.fault(("waters",), "is empty", "every case has at least one water: begin it with [waters.NAME]")
+    for name, water in (draft.case.waters or {}).items():
+        if water is None:
+            continue
+        path: Path = ("waters", name)
+        named = _check_analysis(draft, table, water, path)
+        _check_same_fact(draft, water, named, path)
+        _check_balance_ion(draft, table, water, path)
+        for solid, wanted in (water.saturated_with or {}).items():
+            _check_saturation(draft, table, solid, wanted, (*path, "saturated_with", solid))
+        for tracer, given in (water.tracers or {}).items():
+            check_tracer(draft, tracer, given, (*path, "tracers", tracer))
+
+
+def _check_analysis(draft: Draft, table: Table, water: Water, path: Path) -> dict[str, Named]:
+    """Each name of an analysis must be a component, once; returns those that are."""
+    found: dict[str, Named] = {}
+    for key, given in (water.analysis or {}).items():
+        at = (*path, "analysis", key)
+        if key in Water.model_fields:
+            cure = f"it is a key of the water itself: write it below [{draft.key(path)}]"
+            draft.fault(at, "is no solute", cure)
+            continue
+        named = solute_named(draft, table, key, given, at)
+        if named is None:
+            continue
+        twin = next((other for other, it in found.items() if it.component == named.component), None)
+        if twin:
+            what = "inorganic carbon" if named.component == "CO3^2-" else named.component
+            draft.fault(at, f"gives {what} a second time, after {twin}", "keep one of the two")
+        found[key] = named
+    return found
+
+
+def solute_named(draft: Draft, table: Table, key: str, given: Amount | None, at: Path) -> Named | None:
+    """The component that a key names, its amount checked for having moles; None after a fault."""
+    try:
+        named = component_named(key, table.components)
+        if given is not None:
+            moles(given, named)
+    except Wrong as wrong:
+        draft.fault(at, wrong.wrong, wrong.right)
+        return None
+    return named
+
+
+def _check_same_fact(draft: Draft, water: Water, named: dict[str, Named], path: Path) -> None:
+    if water.alkalinity is not None:
+        for key, it in named.items():
+            if it.component == "CO3^2-":
+                wrong = "gives inorganic carbon, which the alkalinity gives already"
+                draft.fault((*path, "analysis", key), wrong, "keep one of the two")
+    if water.balance_on == "pH" and water.alkalinity is not None:
+        wrong = 'is "pH" beside an alkalinity: the same fact twice'
+        draft.fault((*path, "balance_on"), wrong, "leave one of them out, or balance on an ion")
+
+
+def _check_balance_ion(draft: Draft, table: Table, water: Water, path: Path) -> None:
+    if not water.balance_on or water.balance_on == "pH":
+        return
+    at = (*path, "balance_on")
+    try:
+        named = component_named(water.balance_on, table.components)
+    except Wrong as wrong:
+        draft.fault(at, wrong.wrong, wrong.right)
+        return
+    if table.components[named.component].charge == 0:
+        draft.fault(at, f'is "{water.balance_on}", which has no charge', "name an ion, or pH")
+
+
+def _check_saturation(draft: Draft, table: Table, name: str, wanted: float | Amount | None, at: Path) -> None:
+    if name in table.gases:
+        if isinstance(wanted, float):
+            draft.fault(at, f"is {wanted:g}, but a gas has a pressure", f'did you mean "{wanted:g} atm"?')
+        return
+    mineral = mineral_named(draft, table, name, at, more=table.gases)
+    if mineral and isinstance(wanted, Amount):
+        draft.fault(at, f'is "{wanted}", but a mineral has a saturation index', "such as 0.0")
+
+
+def mineral_named(draft: Draft, table: Table, name: str, at: Path, more: Iterable[str] = ()) -> str | None:
+    """The accepted name of a mineral that the program can use; None after a fault."""
+    try:
+        mineral = find_mineral(table, name)
+    except UnknownName as unknown:
+        cure = unknown.right or did_you_mean(name, more)
+        draft.fault(at, f'names "{name}", but {unknown.wrong.replace(chr(39), chr(34))}', cure)
+        return None
+    if mineral.reaction.electrons:
+        wrong = f'names "{name}", which gives or takes electrons: that has not landed yet'
+        draft.fault(at, wrong, 'it needs redox = "coupled"')
+        return None
+    return mineral.name
+
+
+def check_tracer(draft: Draft, name: str, given: Amount | None, at: Path) -> None:
+    declared = draft.case.tracers or {}
+    if declared and name not in declared:
+        cure = did_you_mean(name, declared)
+        draft.fault(at, "is a tracer without a table", f"{cure} or write [tracers.{name}]".strip())
+    if given is None:
+        return
+    if given.unit.startswith("eq") or given.as_formula:
+        draft.fault(at, f'is "{given}"', "a tracer has no formula: give mg/L with its molar mass, or mmol/L")
+    elif given.unit.startswith("kg") and not _has_molar_mass(draft, name):
+        wrong = f'is "{given}", a mass, but the molar mass is not known'
+        draft.fault(at, wrong, f'write [tracers.{name}] with molar_mass = "79.9 g/mol", or give mmol/L')
+
+
+def _has_molar_mass(draft: Draft, name: str) -> bool:
+    """Whether a tracer's molar mass is given (or was given wrongly, which has its own fault)."""
+    return "molar_mass" in draft.at(("tracers", name))

@@ -1,0 +1,92 @@
+"""What no single key can show: names that must exist, facts given twice, things that must fit together.
+
+Each check reads the draft of a case, in which a hole (None) is a value that has been complained of already.
+"""
+
+from __future__ import annotations
+
+from gossan.base.amounts import Amount
+from gossan.base.wrong import did_you_mean
+from gossan.case.check_column import check_flow, check_layers, check_ports
+from gossan.case.check_waters import check_tracer, check_waters, mineral_named, solute_named
+from gossan.case.draft import Draft
+from gossan.case.lines import Path
+from gossan.case.quantities import Range
+from gossan.constants.entries import Table
+from gossan.constants.find import UnknownName, find_mineral
+
+
+def check_case(draft: Draft, table: Table) -> None:
+    """Run every check across keys; faults are added to the draft."""
+    check_waters(draft, table)
+    check_layers(draft, table)
+    check_flow(draft)
+    check_chemistry(draft, table)
+    check_ports(draft)
+    check_limits(draft, table)
+
+
+def check_chemistry(draft: Draft, table: Table) -> None:
+    """Minerals and species that are named must exist; a thing cannot be both asked for and left out."""
+    chemistry = draft.case.chemistry
+    if chemistry is None:
+        return
+    given = draft.at(("chemistry",))
+    if "minerals" in given and "also" in given:
+        wrong = "stands beside minerals: minerals is the whole list, also adds to the default list"
+        draft.fault(("chemistry", "also"), wrong, "keep one of the two")
+    wanted = {}
+    for key in ("minerals", "also"):
+        for index, name in enumerate(getattr(chemistry, key) or ()):
+            wanted[mineral_named(draft, table, name, ("chemistry", key, index))] = name
+    for index, name in enumerate(chemistry.exclude or ()):
+        at: Path = ("chemistry", "exclude", index)
+        if name in table.species:
+            continue
+        if name in table.components:
+            draft.fault(at, f'names "{name}", a component', "leave it out of the waters instead")
+            continue
+        try:
+            accepted = find_mineral(table, name).name
+        except UnknownName as unknown:
+            cure = did_you_mean(name, [*table.species, *table.minerals]) or unknown.right
+            draft.fault(at, f'names "{name}", which is neither a mineral nor a species of the table', cure)
+            continue
+        if accepted in wanted:
+            draft.fault(at, f'names "{name}", which is asked for as well', "keep one of the two")
+
+
+def check_limits(draft: Draft, table: Table) -> None:
+    """Limits stand at ports that exist, for solutes that exist, once each."""
+    ports = [port.name for port in draft.case.ports or () if port.name is not None]
+    tracers = _tracer_names(draft)
+    for port, limits in (draft.case.limits or {}).items():
+        if port not in (*ports, "outlet"):
+            cure = did_you_mean(port, dict.fromkeys((*ports, "outlet")))
+            draft.fault(("limits", port), "is no port", cure)
+        seen: dict[str, str] = {}
+        for key, limit in (limits or {}).items():
+            at: Path = ("limits", port, key)
+            if key == "pH":
+                if isinstance(limit, Amount):
+                    draft.fault(at, f'is "{limit}"', "a limit of pH is a range: [6.5, 9.0]")
+                continue
+            if isinstance(limit, Range):
+                wrong = f"is a range ({limit.low:g} to {limit.high:g}); a solute has a highest amount"
+                draft.fault(at, wrong, 'such as "0.12 mg/L"')
+                continue
+            if key in tracers:
+                check_tracer(draft, key, limit, at)
+                continue
+            named = solute_named(draft, table, key, limit, at)
+            if named and named.component in seen:
+                wrong = f"limits {named.component} a second time, after {seen[named.component]}"
+                draft.fault(at, wrong, "keep one of the two")
+            if named:
+                seen[named.component] = key
+
+
+def _tracer_names(draft: Draft) -> set[str]:
+    waters = (draft.case.waters or {}).values()
+    named = {name for water in waters if water for name in water.tracers or {}}
+    return named | set(draft.case.tracers or {})
