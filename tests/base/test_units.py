@@ -99,6 +99,7 @@ def test_what_the_table_knows_is_the_nearest_double():
         ("24 ppm", "kg/m3", '"ppm" can be mg/L, mg/kg'),
         ("3 furlongss", "m", '"furlongss" is not a unit that is known'),
         ("0,12 m/d", "m/s", 'the decimal sign is a point: "0.12 m/d"'),
+        ("1,300 mg/L", "kg/m3", 'the decimal sign is a point: "1.300 mg/L", or "1300 mg/L"?'),
         ("1x10^-9 m2/s", "m2/s", 'such as "1e-9"'),
         ("nan m", "m", "not a finite number"),
         ("inf m", "m", "not a finite number"),

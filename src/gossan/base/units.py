@@ -175,8 +175,10 @@ def split(text: str, needed: str, example: str) -> tuple[str, str]:
     said = f'is "{text.strip()}"'
     match = NUMBER.match(plain)
     if re.match(r"[+-]?\d+,\d", plain):
-        point, rest = plain.replace(",", ".", 1), plain.replace(",", "")
-        raise Wrong(f"{said}, with a comma", f'the decimal sign is a point: "{point}", or "{rest}"?')
+        cure = f'the decimal sign is a point: "{plain.replace(",", ".", 1)}"'
+        if re.match(r"[+-]?[1-9]\d{0,2}(,\d{3})+(?!\d)", plain):
+            cure += f', or "{plain.replace(",", "")}"?'
+        raise Wrong(f"{said}, with a comma", cure)
     if re.match(r"[+-]?[\d.]+\s*[x*]\s*10\s*\^?", plain):
         raise Wrong(said, f'powers of ten are written with an e, such as "1e-9": "{example}"')
     if not match or re.match(r"[\d.]", plain[match.end() :]):

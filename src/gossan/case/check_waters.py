@@ -29,6 +29,9 @@ def check_waters(draft: Draft, table: Table) -> None:
             _check_saturation(draft, table, solid, wanted, (*path, "saturated_with", solid))
         for tracer, given in (water.tracers or {}).items():
             check_tracer(draft, tracer, given, (*path, "tracers", tracer))
+            _check_tracer_name(draft, table, tracer, (*path, "tracers", tracer))
+    for tracer in draft.case.tracers or {}:
+        _check_tracer_name(draft, table, tracer, ("tracers", tracer))
 
 
 def _check_analysis(draft: Draft, table: Table, water: Water, path: Path) -> dict[str, Named]:
@@ -102,8 +105,9 @@ def mineral_named(draft: Draft, table: Table, name: str, at: Path, more: Iterabl
     try:
         mineral = find_mineral(table, name)
     except UnknownName as unknown:
-        cure = unknown.right or did_you_mean(name, more)
-        draft.fault(at, f'names "{name}", but {unknown.wrong.replace(chr(39), chr(34))}', cure)
+        shared = "is the formula" in unknown.wrong
+        wrong = "the formula of several" if shared else "which the table of constants lacks"
+        draft.fault(at, f'names the mineral "{name}", {wrong}', unknown.right or did_you_mean(name, more))
         return None
     if mineral.reaction.electrons:
         wrong = f'names "{name}", which gives or takes electrons: that has not landed yet'
@@ -124,6 +128,12 @@ def check_tracer(draft: Draft, name: str, given: Amount | None, at: Path) -> Non
     elif given.unit.startswith("kg") and not _has_molar_mass(draft, name):
         wrong = f'is "{given}", a mass, but the molar mass is not known'
         draft.fault(at, wrong, f'write [tracers.{name}] with molar_mass = "79.9 g/mol", or give mmol/L')
+
+
+def _check_tracer_name(draft: Draft, table: Table, name: str, at: Path) -> None:
+    """Tracers and components share an axis of the result file, so their names must differ."""
+    if name in table.components:
+        draft.fault(at, f'is "{name}", a component with chemistry', "call the tracer something else")
 
 
 def _has_molar_mass(draft: Draft, name: str) -> bool:

@@ -100,6 +100,7 @@ class Number(Kind):
     low: float = -math.inf
     high: float = math.inf
     is_open: bool = False
+    is_share: bool = False  # where 38 may mean 38 %
     whole: bool = False
     example: str = "1"
     unit = "number"
@@ -142,7 +143,7 @@ class Number(Kind):
 
     def _percent(self, value: float) -> str:
         """The cure of a share given in per cent."""
-        if (self.low, self.high) == (0, 1) and 1 < value < 100:
+        if self.is_share and 1 < value < 100:
             return f"did you mean {value / 100:.12g}?"
         return f"such as {self.example}"
 

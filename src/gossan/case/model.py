@@ -35,6 +35,7 @@ TEMPERATURE = Quantity(
     ("K",), "a temperature", '"12 degC"', 273.15, 323.15,
     says="water must be liquid and its constants valid: between 0 and 50 degC",
 )  # fmt: skip
+POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
 
 
@@ -94,7 +95,7 @@ class Clogging(TableOfCase):
         default=None, description="of power and threshold, which need it"
     )
     critical_porosity: Annotated[
-        float | None, Number("a critical porosity", 0, 1, is_open=True, example="0.05")
+        float | None, Number("a critical porosity", 0, 1, is_open=True, is_share=True, example="0.05")
     ] = Field(default=None, description="of threshold, which needs it: no flow below")
 
 
@@ -111,7 +112,7 @@ class Layer(TableOfCase):
     cell: Annotated[Amount | None, Quantity(("m",), "a length of a cell", '"2 cm"', positive=True)] = Field(
         default=None, description="the length of a cell at most: the layer is divided evenly"
     )
-    porosity: Annotated[float, Number("a porosity", 0, 1, is_open=True, example="0.38")] = Field(
+    porosity: Annotated[float, POROSITY] = Field(
         description="water-filled fraction with the starting minerals in place"
     )
     dispersivity: Annotated[Amount, Quantity(("m",), "a dispersivity", '"4 cm"', 0.0)] = Field(
@@ -279,6 +280,7 @@ class Case(TableOfCase):
 
     _file: str = PrivateAttr("")
     _text: str = PrivateAttr("")
+    _lines: dict[tuple[str | int, ...], int] = PrivateAttr(default={})
 
     @property
     def file(self) -> str:
@@ -289,6 +291,10 @@ class Case(TableOfCase):
     def text(self) -> str:
         """The whole TOML text, as read."""
         return self._text
+
+    def line_of(self, *path: str | int) -> int:
+        """The line of a key or table in the text, 0 where it is not known."""
+        return self._lines.get(path, 0)
 
     @property
     def length(self) -> float:

@@ -128,7 +128,8 @@ class SolidAmount(Kind):
         if "amount" not in value:
             raise Wrong("has no amount", 'write {amount = "3 wt%", reactive = 0.4}')
         try:
-            share = Number("a reactive share", 0, 1, example="0.4").read(value.get("reactive", 1.0))
+            kind = Number("a reactive share", 0, 1, is_share=True, example="0.4")
+            share = kind.read(value.get("reactive", 1.0))
         except Wrong as wrong:
             raise Wrong(f"has a reactive share that {wrong.wrong}", wrong.right) from None
         return Solid(self._amount(value["amount"], line), share)

@@ -63,9 +63,10 @@ def _checked(data: dict[str, Any], lines: dict[KeyPath, int], name: str, text: s
     draft.faults[:0] = faults
     check_case(draft, _table(draft, folder))
     if draft.faults:
-        raise InputError(sorted(draft.faults, key=lambda fault: fault.line))
+        # the case's own faults in the order of lines, then those of other files
+        raise InputError(sorted(draft.faults, key=lambda fault: (fault.file != name, fault.line)))
     case: Case = draft.case
-    case._file, case._text = name, text
+    case._file, case._text, case._lines = name, text, lines
     return case
 
 
