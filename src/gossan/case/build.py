@@ -1,0 +1,230 @@
+"""From the model of a case to the problem that it states."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from gossan.base.notation import molar_mass
+from gossan.case.model import Case, Layer
+from gossan.case.quantities import Solid
+from gossan.case.waters import constants_of, excluded_by, read_waters
+from gossan.chemistry.equilibrium import Equilibrium, Solver
+from gossan.chemistry.system import System, build_system
+from gossan.chemistry.water import Water
+from gossan.constants.entries import Mineral, Table
+from gossan.constants.find import find_mineral
+from gossan.coupling.pace import Pace
+from gossan.coupling.problem import Port, Problem
+from gossan.coupling.schedule import Schedule, every
+from gossan.coupling.state import State
+from gossan.transport import clogging, grid
+from gossan.transport.step import transport_of
+
+FRAMES, RECORDS = 100, 1000  # default divisions of a run
+
+
+def build(case: Case) -> Problem:
+    """Set up a column: waters read, solids in moles, every cell at equilibrium with its own minerals.
+
+    Raises   InputError where the case lacks what a run needs, or a water cannot be what it says; SolveError
+    """
+    case.require_column()
+    assert case.flow is not None and case.run is not None
+    table = constants_of(case)
+    used = dict.fromkeys([layer.water for layer in case.layers] + [feed.water for feed in case.flow.feed])
+    waters = read_waters(case, list(used))
+    solids = [_starting_solids(layer, table) for layer in case.layers]
+    system = _system(case, table, waters, solids)
+    cells = grid.grid_of([_cut(layer) for layer in case.layers])
+    tracers = case.tracer_names
+    composition = {name: _composition(case, name, water, system) for name, water in waters.items()}
+    porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
+    chemical = len(system.components)
+    by_volume = case.run.duration.unit == "PV"
+    ports = tuple(
+        Port(name, cells.face_at(x), float(cells.edges[cells.face_at(x)]))
+        for name, x in case.port_positions.items()
+    )
+    return Problem(
+        system=system,
+        tracers=tracers,
+        transport=transport_of(cells, _groups(chemical, len(tracers)), case.flow.inlet),
+        inflow=np.array([composition[feed.water] for feed in case.flow.feed]),
+        feeds=_feeds(case),
+        inlet_flux=case.flow.darcy_flux.si if case.flow.darcy_flux else None,
+        head_drop=case.flow.head_drop.si if case.flow.head_drop else None,
+        conductivity=np.array(
+            [layer.conductivity.si if layer.conductivity else np.nan for layer in case.layers]
+        )[cells.layer],
+        clogging=tuple(_clogging(layer) for layer in case.layers),
+        porosity=porosity,
+        initial=_initial(case, system, cells, composition, solids, len(ports)),
+        end=Schedule(np.array([case.run.duration.si]), by_volume),
+        frames=_interval(case, "profiles_every", FRAMES),
+        records=_interval(case, "ports_every", RECORDS),
+        ports=ports,
+        coupling=case.run.coupling,
+        accuracy=case.run.accuracy,
+        max_courant=case.run.max_courant,
+    )
+
+
+def first_pace(problem: Problem) -> Pace:
+    """Where a run begins: a short step, which grows as fast as its error allows."""
+    flux = problem.inlet_flux or 0.0
+    crossing = problem.pore_volume / flux if flux > 0.0 else 86400.0
+    return Pace(crossing / (50.0 * len(problem.grid.width)))
+
+
+def _cut(layer: Layer) -> grid.Layer:
+    return grid.Layer(
+        name=layer.name,
+        length=layer.length.si,
+        cells=layer.cell_count,
+        dispersivity=layer.dispersivity.si,
+        diffusion=layer.diffusion.si,
+        tortuosity=float("nan") if layer.tortuosity is None else layer.tortuosity,
+    )
+
+
+def _clogging(layer: Layer) -> clogging.Clogging:
+    said = layer.clogging
+    return clogging.Clogging(
+        law=said.law,
+        exponent=said.exponent if said.exponent is not None else 3.0,
+        critical_porosity=said.critical_porosity or 0.0,
+    )
+
+
+def _groups(chemical: int, tracers: int) -> np.ndarray:
+    return np.concatenate([np.zeros(chemical, int), 1 + np.arange(tracers)])
+
+
+def _starting_solids(layer: Layer, table: Table) -> dict[str, float]:
+    """mol per m3 of bulk that water reaches, by mineral."""
+    found: dict[str, float] = {}
+    for name, solid in layer.minerals.items():
+        mineral = find_mineral(table, name)
+        found[mineral.name] = found.get(mineral.name, 0.0) + _moles_of_solid(solid, mineral, layer)
+    return found
+
+
+def _moles_of_solid(solid: Solid, mineral: Mineral, layer: Layer) -> float:
+    dry = layer.grain_density.si * (1.0 - layer.porosity)  # kg of dry solid per m3 of bulk
+    amount = solid.amount
+    per_bulk = {
+        "kg/kg": dry / mineral.molar_mass,
+        "mol/kg": dry,
+        "m3/m3": 1.0 / mineral.molar_volume.value,
+        "mol/m3": 1.0,
+    }[amount.unit]
+    return amount.si * per_bulk * solid.reactive
+
+
+def _system(case: Case, table: Table, waters: dict[str, Water], solids: list[dict[str, float]]) -> System:
+    """The system of all that is in the waters and solids of the column."""
+    components = {name for water in waters.values() for name in water.totals}
+    dissolving = list(dict.fromkeys(name for layer in solids for name in layer))
+    for name in dissolving:
+        components |= set(table.minerals[name].reaction.components)
+    chemistry = case.chemistry
+    listed = None
+    if chemistry.minerals is not None:
+        listed = [find_mineral(table, name).name for name in chemistry.minerals]
+    elif chemistry.also:
+        listed = [name for name, mineral in table.minerals.items() if mineral.forms]
+        listed += [find_mineral(table, name).name for name in chemistry.also]
+    return build_system(
+        table,
+        components,
+        listed,
+        dissolving=dissolving,
+        temperature=case.temperature.si,
+        activity=chemistry.activity,
+        excluded=excluded_by(case, table),
+    )
+
+
+def _composition(case: Case, name: str, water: Water, system: System) -> np.ndarray:
+    """(solute,) mol per m3 of water, as the laboratory counts its litres."""
+    totals = water.totals
+    chemical = [totals.get(component, 0.0) * water.system.water_density for component in system.components]
+    said = case.waters[name].tracers
+    return np.array(chemical + [_tracer(case, tracer, said) for tracer in case.tracer_names])
+
+
+def _tracer(case: Case, name: str, said: dict) -> float:
+    amount = said.get(name)
+    if amount is None:
+        return 0.0
+    if amount.unit.startswith("mol"):
+        return amount.si
+    declared = case.tracers.get(name)
+    mass = declared.molar_mass.si if declared and declared.molar_mass else molar_mass(name)
+    return amount.si / mass
+
+
+def _feeds(case: Case) -> Schedule:
+    assert case.flow is not None
+    starts = [feed.from_ for feed in case.flow.feed]
+    if case.flow.darcy_flux is None:
+        return Schedule(np.array([start.si for start in starts]), any(s.unit == "PV" for s in starts))
+    return Schedule(np.array([case.seconds(start) for start in starts]))
+
+
+def _interval(case: Case, key: str, divisions: int) -> Schedule:
+    """When to record: every so often, on the clock of the interval, and at the end."""
+    assert case.run is not None
+    duration, interval = case.run.duration, getattr(case.run, key)
+    if interval is None:
+        return every(duration.si / divisions, duration.si, duration.unit == "PV")
+    if interval.unit == duration.unit:
+        return every(interval.si, duration.si, interval.unit == "PV")
+    if case.flow is not None and case.flow.darcy_flux is not None:
+        return every(case.seconds(interval), case.seconds(duration))
+    return every(interval.si, 1e6 * interval.si, interval.unit == "PV")
+
+
+def _initial(
+    case: Case, system: System, cells: grid.Grid, composition: dict[str, np.ndarray],
+    solids: list[dict[str, float]], ports: int,
+) -> State:
+    """Every cell at equilibrium with its own minerals: one solve a layer."""
+    settled = [
+        _settled_layer(layer, system, composition[layer.water], solid)
+        for layer, solid in zip(case.layers, solids, strict=True)
+    ]
+    chemical = len(system.components)
+    tracers = np.array([composition[layer.water][chemical:] for layer in case.layers])
+
+    def spread(field: str) -> np.ndarray:
+        return np.ascontiguousarray(np.concatenate([getattr(one, field) for one in settled], -1)[..., cells.layer])
+
+    porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
+    solutes = chemical + tracers.shape[1]
+    return State(
+        time=0.0,
+        step=0,
+        dissolved=np.vstack([spread("amount") / porosity, tracers[cells.layer].T]),
+        solid=spread("solid"),
+        water=porosity.copy(),
+        swelling=np.zeros(len(porosity)),
+        ln_activity=spread("ln_activity"),
+        ionic_strength=spread("ionic_strength"),
+        presence=spread("presence"),
+        solved=spread("solved"),
+        entered=np.zeros((solutes, 2)),
+        left=np.zeros((solutes, 2)),
+        water_entered=np.zeros(2),
+        water_left=np.zeros(2),
+        water_freed=np.zeros(2),
+        passed=np.zeros((ports, solutes, 2)),
+        splitting_error=0.0,
+    )
+
+
+def _settled_layer(layer: Layer, system: System, water: np.ndarray, solid: dict[str, float]) -> Equilibrium:
+    amount = water[: len(system.components), None] * layer.porosity
+    grains = np.array([[solid.get(name, 0.0)] for name in system.minerals]).reshape(len(system.minerals), 1)
+    kilograms = np.array([layer.porosity * system.water_density])
+    return Solver(system).cold(kilograms, amount, grains)

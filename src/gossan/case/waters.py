@@ -1,0 +1,113 @@
+"""The waters of a case, read at the laboratory's word and brought to equilibrium within themselves."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from gossan.base.amounts import Amount
+from gossan.base.errors import Fault, InputError
+from gossan.base.notation import molar_mass, split_ion
+from gossan.base.wrong import Wrong
+from gossan.case.model import Case
+from gossan.chemistry.water import LabReport, Water, read_water
+from gossan.constants.entries import Table
+from gossan.constants.find import find_mineral
+from gossan.constants.load import load_table
+from gossan.constants.names import Named, component_named, equivalents, moles
+from gossan.constants.water import density
+
+ATMOSPHERE = 101325.0  # Pa, exact
+
+
+def constants_of(case: Case) -> Table:
+    """The constants in force: the program's own, with the case's file over them."""
+    extra = case.chemistry.constants
+    return load_table(Path(case.file).parent / extra) if extra else load_table()
+
+
+def excluded_by(case: Case, table: Table) -> frozenset[str]:
+    """Names of the species and minerals that a case leaves out, as the table has them."""
+    return frozenset(
+        name if name in table.species else find_mineral(table, name).name for name in case.chemistry.exclude
+    )
+
+
+def read_waters(case: Case, names: list[str] | None = None) -> dict[str, Water]:
+    """Read waters of a case by name; all of them by default.
+
+    Raises   InputError with the faults of all of them that cannot be what they say
+    """
+    table = constants_of(case)
+    excluded = excluded_by(case, table)
+    found: dict[str, Water] = {}
+    faults: list[Fault] = []
+    for name in names if names is not None else case.waters:
+        try:
+            report = lab_report(case, name, table)
+            found[name] = read_water(report, table, activity=case.chemistry.activity, excluded=excluded)
+        except Wrong as wrong:
+            line = case.line_of("waters", name)
+            faults.append(Fault(case.file, line, f"waters.{name}", wrong.wrong, wrong.right))
+    if faults:
+        raise InputError(faults)
+    return found
+
+
+def lab_report(case: Case, name: str, table: Table) -> LabReport:
+    """A water of a case in moles per kg of water; raises Wrong for an amount that has no moles."""
+    water = case.waters[name]
+    temperature = case.temperature_of(name)
+    solutes = [(component_named(key, table.components), amount) for key, amount in water.analysis.items()]
+    volume = _water_per_volume(solutes, water.density.si if water.density else None, temperature)
+    dissolved = {
+        named.component: moles(amount, named) / (1.0 if amount.unit.endswith("/kg") else volume)
+        for named, amount in solutes
+    }
+    alkalinity = None
+    if water.alkalinity is not None:
+        alkalinity = equivalents(water.alkalinity) / (1.0 if water.alkalinity.unit.endswith("/kg") else volume)
+    minerals, gases = {}, {}
+    for key, wanted in water.saturated_with.items():
+        if key in table.gases:
+            assert not isinstance(wanted, float)
+            gases[key] = wanted.si / ATMOSPHERE
+        else:
+            minerals[find_mineral(table, key).name] = float(wanted)  # type: ignore[arg-type]
+    balance = water.balance_on
+    if balance and balance != "pH":
+        balance = component_named(balance, table.components).component
+    return LabReport(
+        name=name,
+        temperature=temperature,
+        dissolved=dissolved,
+        pH=water.pH if "pH" in water.model_fields_set else None,
+        alkalinity=alkalinity,
+        balance_on=balance or None,
+        minerals=minerals,
+        gases=gases,
+        accept_imbalance=water.accept_imbalance,
+    )
+
+
+def _water_per_volume(solutes: list[tuple[Named, Amount]], sample: float | None, temperature: float) -> float:
+    """kg of water that one m3 of a report stands for.
+
+    Without a density of the sample (kg/m3) a litre counts as a litre of pure water; with it, as what is
+    left of the sample's weight once its solutes are taken away.
+    """
+    if sample is None:
+        return density(temperature)
+    weight = 0.0
+    for named, amount in solutes:
+        if not amount.unit.endswith("/kg"):
+            weight += moles(amount, named) * molar_mass(split_ion(named.component)[0])
+    return sample - weight
+
+
+def detection_notes(case: Case, name: str) -> list[str]:
+    """What was below detection in a water, and what is used in its place."""
+    return [
+        f"{key} {amount.text} is below detection: half the limit is used"
+        for key, amount in case.waters[name].analysis.items()
+        if amount.below_detection
+    ]

@@ -1,0 +1,145 @@
+"""One trial step: transport, then chemistry, once or twice (equations.md, 35-37)."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from gossan.base.sums import added
+from gossan.chemistry.equilibrium import UNBOUNDED, Equilibrium, Solver
+from gossan.coupling.pores import pore_space
+from gossan.coupling.problem import Problem
+from gossan.coupling.state import State
+from gossan.transport.step import corrected, courant, passages
+
+# A cell is left alone while its dissolved amounts stand within this of its last solve: far below any
+# accuracy that a case may ask for, far above rounding.
+SKIP = 1e-12
+
+
+@dataclass(frozen=True, eq=False)
+class Trial:
+    """A step that was tried."""
+
+    state: State
+    dt: float
+    error: float  # estimated relative error in time and splitting
+    pore_change: float  # largest relative change of a cell's pores
+    courant: float
+    solves: int  # cells that chemistry was solved for
+
+
+def attempt(
+    problem: Problem, solver: Solver, state: State, darcy_flux: np.ndarray, inflow: np.ndarray, dt: float,
+    theta: float | None,
+) -> Trial:
+    """March one step of dt from a state.
+
+    darcy_flux (face,) m s-1 during the step; inflow (solute,) mol m-3
+    theta      None: explicit dispersion; else the weight of the end in an implicit one
+    Raises     SolveError where a cell finds no equilibrium
+    """
+    transport = problem.transport
+    width = problem.grid.width
+    amount = state.dissolved * state.water
+    water = state.water + dt * (darcy_flux[:-1] - darcy_flux[1:]) / width
+    before = _equilibrium(problem, state)
+
+    first = passages(transport, state.dissolved, state.water, darcy_flux, inflow, dt, theta)
+    passed = first.passed
+    moved = amount + (passed[:, :-1] - passed[:, 1:]) / width
+    found = _react(problem, solver, before, moved, state.solid, water)
+    solves = int(np.count_nonzero(found.steps))
+    scale = _scale(problem, inflow)
+    if problem.coupling == "two-stage":
+        predicted = moved.copy()
+        predicted[: problem.chemical] = found.amount
+        held = water + _freed(problem, found.solid - state.solid)
+        passed = corrected(transport, first, state.dissolved, predicted / held)
+        better = amount + (passed[:, :-1] - passed[:, 1:]) / width
+        error = _relative(better - moved, width, scale)
+        moved = better
+        found = _react(problem, solver, found, moved, state.solid, water)
+        solves += int(np.count_nonzero(found.steps))
+    else:
+        held = water + _freed(problem, found.solid - state.solid)
+        predicted = moved.copy()
+        predicted[: problem.chemical] = found.amount
+        ending = corrected(transport, first, state.dissolved, predicted / held) - passed
+        error = _relative((ending[:, :-1] - ending[:, 1:]) / width, width, scale)
+    moved[: problem.chemical] = found.amount
+    gained = found.solid - state.solid
+    freed = _freed(problem, gained)
+    filled = water + freed
+    lost = pore_space(problem, state.solid) - pore_space(problem, found.solid)
+    entering, leaving = dt * darcy_flux[0], dt * darcy_flux[-1]
+    after = replace(
+        state,
+        time=state.time + dt,
+        step=state.step + 1,
+        dissolved=moved / filled,
+        solid=found.solid,
+        water=filled,
+        swelling=(lost + freed) / dt,
+        ln_activity=found.ln_activity,
+        ionic_strength=found.ionic_strength,
+        presence=found.presence,
+        solved=found.solved,
+        entered=added(state.entered, passed[:, 0]),
+        left=added(state.left, passed[:, -1]),
+        water_entered=added(state.water_entered, entering),
+        water_left=added(state.water_left, leaving),
+        water_freed=added(state.water_freed, float(np.sum(freed * width))),
+        passed=added(state.passed, passed[:, [port.face for port in problem.ports]].T),
+        splitting_error=state.splitting_error + error,
+    )
+    change = float(np.max(np.abs(lost) / state.water)) if len(lost) else 0.0
+    return Trial(after, dt, error, change, courant(transport, state.water, darcy_flux, dt), solves)
+
+
+def _equilibrium(problem: Problem, state: State) -> Equilibrium:
+    """The equilibrium that a state was left in, where the next solve starts."""
+    return Equilibrium(
+        system=problem.system,
+        amount=state.dissolved[: problem.chemical],
+        solid=state.solid,
+        presence=state.presence,
+        ln_activity=state.ln_activity,
+        ionic_strength=state.ionic_strength,
+        solved=state.solved,
+        steps=np.zeros(len(state.water), np.int64),
+    )
+
+
+def _react(
+    problem: Problem, solver: Solver, start: Equilibrium, moved: np.ndarray, solid: np.ndarray, water: np.ndarray
+) -> Equilibrium:
+    """Equilibrate what transport left in every cell; amounts are per bulk."""
+    upper = np.where(problem.system.may_form[:, None], UNBOUNDED, solid)
+    kilograms = water * problem.system.water_density
+    return solver.settled(start, kilograms, moved[: problem.chemical], solid, upper, skip=SKIP)
+
+
+def _freed(problem: Problem, gained: np.ndarray) -> np.ndarray:
+    """(cell,) m3 of water per m3 of bulk that solids freed, having gained (mineral, cell) mol m-3 of bulk."""
+    return -problem.volume_of_water * (problem.system.mineral_water @ gained)
+
+
+def _scale(problem: Problem, inflow: np.ndarray) -> np.ndarray:
+    """(solute,) mol m-2: what an error is measured against, the most that the column is sure to hold."""
+    return np.maximum(stored(problem, problem.initial), np.abs(inflow) * problem.pore_volume)
+
+
+def stored(problem: Problem, state: State) -> np.ndarray:
+    """(solute,) mol m-2 of cross-section: dissolved and solid in the whole column."""
+    held = state.dissolved * state.water
+    held[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
+    return held @ problem.grid.width
+
+
+def _relative(difference: np.ndarray, width: np.ndarray, scale: np.ndarray) -> float:
+    """The largest L1 norm of a difference of amounts (solute, cell), relative to each solute's scale."""
+    size = np.abs(difference) @ width
+    known = scale > 0.0
+    return float(np.max(size[known] / scale[known])) if known.any() else 0.0

@@ -1,0 +1,63 @@
+"""What entered, left and stayed: the books of every solute, of charge and of water."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from gossan.coupling.attempt import stored
+from gossan.coupling.problem import Problem
+from gossan.coupling.state import State
+
+
+@dataclass(frozen=True, eq=False)
+class Ledger:
+    """The books at one time; error = (entered - left - stored + made) / the largest amount there ever was."""
+
+    time: float
+    entered: np.ndarray  # (solute,) mol m-2
+    left: np.ndarray
+    stored: np.ndarray  # since the start
+    made: np.ndarray
+    error: np.ndarray  # (solute,) relative
+    water_error: float
+    charge_error: float
+
+
+class Books:
+    """Closes the ledger of states of one problem, whose first stock is counted once."""
+
+    def __init__(self, problem: Problem):
+        self.problem = problem
+        self.first = stored(problem, problem.initial)
+        self.first_water = float(np.sum(problem.initial.water * problem.grid.width))
+
+    def closed(self, state: State) -> Ledger:
+        """The ledger of a state."""
+        problem = self.problem
+        now = stored(problem, state)
+        entered, left = state.entered.sum(axis=-1), state.left.sum(axis=-1)
+        made = np.zeros_like(entered)
+        change = now - self.first
+        open_ = entered - left - change + made
+        most = np.abs(self.first) + np.abs(entered) + np.abs(made)
+        error = np.divide(open_, most, out=np.zeros_like(open_), where=most > 0.0)
+        charge = problem.system.component_charge
+        chemical = problem.chemical
+        charges = float(np.abs(charge) @ most[:chemical])
+        water_in, water_out, freed = (
+            float(pair.sum()) for pair in (state.water_entered, state.water_left, state.water_freed)
+        )
+        water_now = float(np.sum(state.water * problem.grid.width))
+        water_open = water_in - water_out + freed - (water_now - self.first_water)
+        return Ledger(
+            time=state.time,
+            entered=entered,
+            left=left,
+            stored=change,
+            made=made,
+            error=error,
+            water_error=water_open / (self.first_water + abs(water_in)),
+            charge_error=float(charge @ open_[:chemical]) / charges if charges else 0.0,
+        )

@@ -1,0 +1,153 @@
+"""The walk through time: steps that land on what is to be recorded, yielded one by one."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from gossan.base.errors import SolveError
+from gossan.chemistry.equilibrium import Solver
+from gossan.coupling.attempt import Trial, attempt
+from gossan.coupling.pace import Pace, acceptable
+from gossan.coupling.pores import flow, pore_space
+from gossan.coupling.problem import Problem
+from gossan.coupling.state import State
+from gossan.transport.step import courant, explicit_limit
+
+CLOGGED = 1e-3  # porosity at which a cell counts as closed and the run stops
+SHORTEST = 1e-9  # of the run: a step below this has no chance left
+IMPLICIT_GAIN = 3.0  # explicit dispersion may cost so many times the steps; beyond, it is solved implicitly
+DAMPED_STEPS = 4  # fully implicit steps after a switch of feed (Rannacher 1984)
+SWITCH_SHARE = 0.05  # the first step after a switch, as a share of the longest
+
+
+@dataclass(frozen=True, eq=False)
+class Stride:
+    """An accepted step: where it led, how, and which records fall due there."""
+
+    state: State
+    pace: Pace
+    trial: Trial
+    head: np.ndarray  # (face,) m
+    frame_due: bool
+    record_due: bool
+    rejected: int
+
+
+class Clogged(Exception):
+    """A cell has closed; not a fault: the run stops there, and says so."""
+
+    def __init__(self, cell: int, time: float):
+        super().__init__(cell, time)
+        self.cell, self.time = cell, time
+
+
+def pore_volumes(problem: Problem, state: State) -> float:
+    """Water that has entered over the water there was at the start."""
+    return float(state.water_entered.sum()) / problem.pore_volume
+
+
+def march(problem: Problem, state: State, pace: Pace, solver: Solver | None = None) -> Iterator[Stride]:
+    """Walk from state.time to the end. To resume is this same call, with a stored state and pace.
+
+    Raises   Clogged when a cell closes; SolveError, naming cell and time, when no step length helps
+    """
+    solver = solver or Solver(problem.system)
+    while True:
+        entered = pore_volumes(problem, state)
+        if problem.end.passed(problem.end.clock(state.time, entered)):
+            return
+        stride = _step(problem, solver, state, pace, entered)
+        state, pace = stride.state, stride.pace
+        yield stride
+
+
+def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: float) -> Stride:
+    feed = max(problem.feeds.passed(problem.feeds.clock(state.time, entered)) - 1, 0)
+    inflow = problem.inflow[feed]
+    closed = pore_space(problem, state.solid)
+    if closed.min() < CLOGGED:
+        raise Clogged(int(closed.argmin()), state.time)
+    shortest = SHORTEST * max(state.time, pace.dt)
+    failure: SolveError | None = None
+    rejected = 0
+    while True:
+        darcy_flux, head = flow(problem, state, pace.dt)
+        longest, implicit = _longest(problem, state, darcy_flux)
+        theta = (1.0 if pace.afresh < DAMPED_STEPS else 0.5) if implicit else None
+        dt, lands = _fitted(problem, state, entered, darcy_flux[0], min(pace.dt, longest))
+        try:
+            trial = attempt(problem, solver, state, darcy_flux, inflow, dt, theta)
+        except SolveError as error:
+            failure, trial = error, None
+        if trial is not None:
+            following = pace.after(dt, trial.error, trial.pore_change, problem.accuracy, longest)
+            if acceptable(trial.error, trial.pore_change, problem.accuracy):
+                break
+            pace = replace(following, dt=min(following.dt, 0.5 * dt))
+        else:
+            pace = replace(pace, dt=0.25 * dt)
+        rejected += 1
+        if pace.dt < shortest:
+            raise _given_up(problem, state, failure)
+    if lands and following.dt >= dt:
+        following = replace(following, dt=max(following.dt, pace.dt))  # a record cut it short, not its error
+    now = pore_volumes(problem, trial.state)
+    switched = problem.feeds.passed(problem.feeds.clock(trial.state.time, now)) - 1 > feed
+    if switched:
+        following = Pace(min(following.dt, SWITCH_SHARE * longest) if implicit else following.dt, 0)
+    else:
+        following = replace(following, afresh=pace.afresh + 1)
+    return Stride(
+        state=trial.state,
+        pace=following,
+        trial=trial,
+        head=head,
+        frame_due=_due(problem.frames, state, trial.state, entered, now),
+        record_due=_due(problem.records, state, trial.state, entered, now),
+        rejected=rejected,
+    )
+
+
+def _due(schedule, before: State, after: State, entered: float, now: float) -> bool:
+    return schedule.passed(schedule.clock(after.time, now)) > schedule.passed(
+        schedule.clock(before.time, entered)
+    )
+
+
+def _longest(problem: Problem, state: State, darcy_flux: np.ndarray) -> tuple[float, bool]:
+    """The longest step that Courant's number allows, and whether dispersion must be implicit in it."""
+    unit = courant(problem.transport, state.water, darcy_flux, 1.0)
+    by_courant = problem.max_courant / unit if unit > 0.0 else math.inf
+    by_dispersion = explicit_limit(problem.transport, state.water, darcy_flux)
+    if by_dispersion * IMPLICIT_GAIN >= by_courant:
+        return min(by_courant, by_dispersion), False
+    if by_courant == math.inf:
+        return 1e3 * by_dispersion, True
+    return by_courant, True
+
+
+def _fitted(problem: Problem, state: State, entered: float, inlet_flux: float, dt: float) -> tuple[float, bool]:
+    """A step no longer than dt that ends on the next event, or leaves a decent step before it."""
+    nearest = math.inf
+    for schedule in (problem.frames, problem.records, problem.feeds, problem.end):
+        ahead = schedule.ahead(schedule.clock(state.time, entered))
+        if schedule.by_volume:
+            ahead = ahead * problem.pore_volume / inlet_flux if inlet_flux > 0.0 else math.inf
+        nearest = min(nearest, ahead)
+    if nearest <= dt * (1.0 + 1e-9):
+        return nearest, True
+    if nearest < 2.0 * dt:
+        return 0.5 * nearest, True
+    return dt, False
+
+
+def _given_up(problem: Problem, state: State, failure: SolveError | None) -> SolveError:
+    if failure is None:
+        return SolveError("steps became too short for the accuracy asked for", time=state.time)
+    cell = failure.cell
+    layer = problem.grid.layers[problem.grid.layer[cell]].name
+    return SolveError(failure.reason, cell, layer, float(problem.grid.centres[cell]), state.time)

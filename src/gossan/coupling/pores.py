@@ -1,0 +1,37 @@
+"""Solids to pores: porosity, the conductivity it leaves, and the water that is pushed about (equations.md, 31-34)."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from gossan.coupling.problem import Problem
+from gossan.coupling.state import State
+from gossan.transport.clogging import conductivity_left
+from gossan.transport.flow import flow_of_flux, flow_of_head
+
+
+def pore_space(problem: Problem, solid: np.ndarray) -> np.ndarray:
+    """(cell,) m3 m-3: what solids leave of the bulk for water; solid (mineral, cell) mol m-3 of bulk."""
+    grown = solid - problem.initial.solid
+    return problem.porosity - problem.system.molar_volume @ grown
+
+
+def conductivity(problem: Problem, water: np.ndarray) -> np.ndarray:
+    """(cell,) m s-1: saturated hydraulic conductivity of the bed as it now is."""
+    left = conductivity_left(problem.clogging, problem.grid.layer, water, problem.porosity)
+    return problem.conductivity * left
+
+
+def flow(problem: Problem, state: State, dt: float) -> tuple[np.ndarray, np.ndarray]:
+    """Darcy flux and head at every face for the coming step: (face,) m s-1, (face,) m.
+
+    What the solids pushed out in the last step they are taken to push out in this one, and what is now in
+    excess of the pores leaves within dt: so water and pores agree to second order in dt and never drift.
+    """
+    excess = (state.water - pore_space(problem, state.solid)) / dt + state.swelling
+    made_up = np.concatenate([[0.0], np.cumsum(excess * problem.grid.width)])
+    conductivities = conductivity(problem, state.water)
+    if problem.head_drop is not None:
+        return flow_of_head(problem.head_drop, conductivities, problem.grid.width, made_up)
+    assert problem.inlet_flux is not None
+    return flow_of_flux(problem.inlet_flux, conductivities, problem.grid.width, made_up)
