@@ -204,3 +204,10 @@ def test_reading_needs_neither_pint_nor_numba():
         f"case_from_text({SMALL!r}); assert not {{'pint', 'numba', 'h5py', 'scipy'}} & set(sys.modules)"
     )
     subprocess.run([sys.executable, "-c", code], check=True)
+
+
+def test_keys_have_lines():
+    case = case_from_text(SMALL)
+    assert case.line_of("waters", "mine") == 1
+    assert case.line_of("layers", 0, "porosity") == 6
+    assert case.line_of("layers", 0, "tortuosity") == 0
