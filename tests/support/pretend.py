@@ -1,7 +1,7 @@
 """A march that is no physics but as strict: every number follows from the state.
 
 As a program it writes a result file in a process of its own, to be killed or watched:
-`python -m tests.support.pretend FILE [--resume] [--steps N] [--pause S]` prints how many frames are committed.
+`python -m tests.support.pretend FILE [--resume] [--steps N] [--pause S]` prints the count of frames.
 """
 
 from __future__ import annotations

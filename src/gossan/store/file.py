@@ -115,61 +115,63 @@ def create_packed(path: Path, axes: Axes, attributes: Mapping[str, str], source:
 
 def _lay_out(file: h5py.File, axes: Axes, attributes: Mapping[str, str],
              rows: Mapping[str, tuple[int, int, dict]]) -> None:
+    """Make all groups and variables; rows is each group's length, room to grow (0: none) and filters."""
     file.attrs.update(attributes)
     for name in axes.groups:
         group = file.create_group(name)
-        length, room, filters = rows[name]
-        for row in variables(name):
-            if row.kind == "axis" and row.name != growing_axis(name):
-                _write_axis(group, row, axes)
+        grown = growing_axis(name)
+        made = {row: _axis(group, row, axes) for row in variables(name)
+                if row.kind == "axis" and row.name != grown and not _empty(row, axes)}
         # the growing axis last, so that HDF5 too writes its header last
-        for row in (*axes.written(name), variable(name, growing_axis(name))):
-            dtype = np.int64 if row.name == "step" else np.float64
-            shape = axes.shape(row)
-            size = 8 * int(np.prod(shape, dtype=np.int64))
-            if room:
-                chunk = min(room, max(1, _LARGEST_CHUNK // size))
-            else:
-                chunk = max(1, min(length, max(_PACKED_ROWS, _PACKED_CHUNK // size)))
-            group.create_dataset(row.name, (length, *shape), dtype, maxshape=(None, *shape),
-                                 chunks=(chunk, *shape), fill_time="never" if room else "ifset",
-                                 fillvalue=np.nan if dtype is np.float64 else None, **filters)
-        _describe(group, name, axes)
+        for row in (*axes.written(name), variable(name, grown)):
+            made[row] = _growing(group, row, axes.shape(row), *rows[name])
+        _describe(made)
 
 
-def _write_axis(group: h5py.Group, row: Variable, axes: Axes) -> None:
+def _empty(row: Variable, axes: Axes) -> bool:
+    return row.dims != () and len(getattr(axes, row.name)) == 0
+
+
+def _axis(group: h5py.Group, row: Variable, axes: Axes) -> h5py.Dataset:
     if row.dims == ():
-        group.create_dataset(row.name, data=axes.ports[group.name.removeprefix("/ports/")])
-        return
+        return group.create_dataset(row.name, data=axes.ports[group.name.removeprefix("/ports/")])
     values = getattr(axes, row.name)
-    if len(values) == 0:
-        return
     if isinstance(values, np.ndarray):
-        group.create_dataset(row.name, data=values.astype(np.float64))
+        return group.create_dataset(row.name, data=values.astype(np.float64))
+    return group.create_dataset(row.name, data=np.array(values, object), dtype=_TEXT)
+
+
+def _growing(group: h5py.Group, row: Variable, shape: tuple[int, ...], length: int, room: int,
+             filters: dict) -> h5py.Dataset:
+    size = 8 * int(np.prod(shape, dtype=np.int64))
+    if room:
+        chunk = min(room, max(1, _LARGEST_CHUNK // size))
     else:
-        group.create_dataset(row.name, data=np.array(values, object), dtype=_TEXT)
+        chunk = max(1, min(length, max(_PACKED_ROWS, _PACKED_CHUNK // size)))
+    whole = row.name == "step"
+    return group.create_dataset(row.name, (length, *shape), np.int64 if whole else np.float64,
+                                maxshape=(None, *shape), chunks=(chunk, *shape),
+                                fillvalue=None if whole else np.nan, fill_time="never" if room else "ifset",
+                                **filters)
 
 
-def _describe(group: h5py.Group, name: str, axes: Axes) -> None:
-    """Give every variable its unit and names, and tie the axes to it."""
-    rows = [row for row in variables(name) if row.name in group]
-    for row in rows:
-        if row.dims == (row.name,):
-            group[row.name].make_scale(row.name)
-    others = [row for row in rows if row.kind == "axis" and row.dims != (row.name,)]
-    for row in rows:
-        dataset = group[row.name]
+def _describe(made: Mapping[Variable, h5py.Dataset]) -> None:
+    """Give every variable of a group its unit and long name, and tie the axes to it."""
+    scales = {row.name: dataset for row, dataset in made.items() if row.dims == (row.name,)}
+    for name, dataset in scales.items():
+        dataset.make_scale(name)
+    others = [row for row in made if row.kind == "axis" and row.name not in scales]
+    for row, dataset in made.items():
         dataset.attrs["units"] = row.unit
         dataset.attrs["long_name"] = row.long_name
         if row.kind != "axis":
-            if dataset.dtype == np.float64:
-                dataset.attrs["_FillValue"] = np.nan
+            dataset.attrs["_FillValue"] = np.nan
             also = [other.name for other in others if set(other.dims) <= set(row.dims)]
             if also:
                 dataset.attrs["coordinates"] = " ".join(also)
-        if row.dims != (row.name,):
+        if row.name not in scales:
             for i, dim in enumerate(row.dims):
-                dataset.dims[i].attach_scale(group[dim])
+                dataset.dims[i].attach_scale(scales[dim])
 
 
 def datasets(file: h5py.File, axes: Axes) -> Datasets:

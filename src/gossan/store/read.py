@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import time
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, TypeVar
 
@@ -13,7 +13,7 @@ import numpy as np
 from gossan.base.errors import ResultError
 from gossan.store import file
 from gossan.store.field import Field
-from gossan.store.layout import Variable, growing_axis, variables
+from gossan.store.layout import growing_axis, variable, variables
 
 if TYPE_CHECKING:
     import xarray
@@ -49,7 +49,7 @@ class Group:
         self.name = name
         self.count = count  # committed records
         self._path, self._started, self._axes = path, started, axes
-        self._fields: dict[str, Field] = {}
+        self._arrays: dict[str, np.ndarray] = {}
 
     def __getattr__(self, name: str) -> Field:
         if name.startswith("_"):
@@ -60,16 +60,9 @@ class Group:
             raise AttributeError(f"{self.name} has no {name!r}; it has {', '.join(self)}") from None
 
     def __getitem__(self, name: str) -> Field:
-        if name not in self._fields:
-            row = next((row for row in variables(self.name) if row.name == name), None)
-            if row is None:
-                raise KeyError(name)
-            coords = {dim: self._values(dim) for dim in row.dims if dim != name}
-            values = self._values(name)
-            if row.dims == (name,):
-                coords[name] = values
-            self._fields[name] = Field(name, values, row.dims, coords, row.unit, row.long_name)
-        return self._fields[name]
+        row = variable(self.name, name)
+        coords = {dim: self._values(dim) for dim in row.dims}
+        return Field(name, self._values(name), row.dims, coords, row.unit, row.long_name)
 
     def __iter__(self) -> Iterator[str]:
         return (row.name for row in variables(self.name))
@@ -81,22 +74,27 @@ class Group:
         return f"<{self.name}: {self.count} records of {', '.join(self)}>"
 
     def _values(self, name: str) -> np.ndarray:
-        if name in self._fields:
-            return self._fields[name].values
-        row = next(row for row in variables(self.name) if row.name == name)
-        if row.kind == "axis" and name != growing_axis(self.name):
-            return np.asarray(self._axes.ports[self.name.removeprefix("ports/")] if row.dims == ()
-                              else getattr(self._axes, name))
-        shape = self._axes.shape(row)
-        if 0 in shape:  # nothing stands along one of its axes, so the file leaves it out
-            return np.empty((self.count, *shape))
-        return _read(self._path, lambda opened: self._rows(opened, row))
+        if name not in self._arrays:
+            _read(self._path, lambda opened: self._take(opened, (name,)))
+        return self._arrays[name]
 
-    def _rows(self, opened: h5py.File, row: Variable) -> np.ndarray:
-        dataset = opened[self.name][row.name]
-        if opened.attrs["started"] != self._started or len(dataset) < self.count:
-            raise ResultError(f"{self._path} has been written anew since it was opened: open it again")
-        return dataset[: self.count]
+    def _take(self, opened: h5py.File, names: Iterable[str]) -> None:
+        """Read variables of this group from its open file, those not yet read."""
+        for name in names:
+            if name in self._arrays:
+                continue
+            row = variable(self.name, name)
+            shape = self._axes.shape(row)
+            if row.kind == "axis" and name != growing_axis(self.name):
+                values = getattr(self._axes, name) if row.dims else self._axes.ports[self.name[len("ports/"):]]
+                self._arrays[name] = np.asarray(values)
+            elif 0 in shape:  # nothing stands along one of its axes, so the file leaves it out
+                self._arrays[name] = np.empty((self.count, *shape))
+            else:
+                dataset = opened[self.name][name]
+                if opened.attrs["started"] != self._started or len(dataset) < self.count:
+                    raise ResultError(f"{self._path} has been written anew meanwhile: open it again")
+                self._arrays[name] = dataset[: self.count]
 
 
 class Result:
@@ -152,9 +150,11 @@ class Result:
 
     def loaded(self) -> Result:
         """Read everything now, so that the file may go; returns the result itself."""
-        for group in self._groups.values():
-            for name in group:
-                group[name]
+        def take_all(opened: h5py.File) -> None:
+            for group in self._groups.values():
+                group._take(opened, group)
+
+        _read(self.path, take_all)
         return self
 
     def to_xarray(self, group: str = "profiles") -> xarray.Dataset:

@@ -17,7 +17,7 @@ from gossan.base.errors import ResultError
 from gossan.store import disk, file
 from gossan.store.checkpoint import Checkpoint, decode, digest, encode, save, saved, state_files
 from gossan.store.file import Axes
-from gossan.store.layout import CONVENTIONS, growing_axis
+from gossan.store.layout import ATTRIBUTES, CONVENTIONS, growing_axis
 from gossan.store.lock import Lock
 
 _Rows = list[Mapping[str, Any]]
@@ -251,7 +251,7 @@ def _last_seen(path: Path, old: h5py.File) -> tuple[Axes, dict[str, str], Checkp
     """A file's axes and attributes, and its own newest checkpoint, from beside it or within."""
     found = saved(path)
     try:
-        attributes = {name: str(value) for name, value in old.attrs.items()}
+        attributes = {name: str(old.attrs[name]) for name in ATTRIBUTES}
         axes = file.read_axes(old)
         rows = file.committed(old, axes.groups)
         if "checkpoint" in old:
