@@ -3,44 +3,49 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 
 import mpmath as mp
+import numpy as np
+from numpy.typing import ArrayLike
 
 LnGamma = Callable[[mp.mpf], list]  # ionic strength, mol/kg -> ln gamma of every species
 
 
-def davies(charge: Sequence[float], a: float) -> LnGamma:
+def davies(charge: ArrayLike, a: float) -> LnGamma:
     """Davies (1962), held from its minimum on; neutral species log10 gamma = 0.1 I, held there too.
 
     charge  (species,), 1
     a       log10 Debye-Hueckel slope, (kg/mol)^0.5: 0.5085 at 25 degC
     """
 
+    charges = np.asarray(charge, dtype=float).tolist()
+
     def ln_gamma(ionic_strength):
         held = min(ionic_strength, _davies_minimum(ionic_strength))
         root = _root(held)
         slope = a * (root / (1 + root) - held * 3 / 10)
-        return [_ln10(held) * (-slope * z**2 if z else held / 10) for z in charge]
+        return [_ln10(held) * (-slope * z**2 if z else held / 10) for z in charges]
 
     return ln_gamma
 
 
 def extended_debye_hueckel(
-    charge: Sequence[float], ion_size: Sequence[float], a: float, b: float, held_from: float = math.inf
+    charge: ArrayLike, ion_size: ArrayLike, a: float, b: float
 ) -> LnGamma:
-    """log10 gamma = -a z^2 sqrt(I) / (1 + b size sqrt(I)); neutral species log10 gamma = 0.1 I.
+    """log10 gamma = -a z^2 sqrt(I) / (1 + b size sqrt(I)); neutral species as with Davies.
 
     ion_size (species,), m
     b        m^-1 (kg/mol)^0.5: 3.281e9 at 25 degC
-    held_from mol/kg: the neutral species stay constant beyond
     """
 
+    charges, sizes = np.asarray(charge, dtype=float).tolist(), np.asarray(ion_size, dtype=float).tolist()
+
     def ln_gamma(ionic_strength):
-        root, neutral = _root(ionic_strength), min(ionic_strength, held_from)
+        root, neutral = _root(ionic_strength), min(ionic_strength, _davies_minimum(ionic_strength))
         return [
             _ln10(ionic_strength) * (-a * z**2 * root / (1 + b * size * root) if z else neutral / 10)
-            for z, size in zip(charge, ion_size, strict=True)
+            for z, size in zip(charges, sizes, strict=True)
         ]
 
     return ln_gamma

@@ -15,6 +15,7 @@ from dataclasses import dataclass
 
 import cvxpy as cp
 import numpy as np
+from numpy.typing import ArrayLike
 from tests.support.small_systems import PlainSystem
 
 ACCURACY = 1e-6  # an answer is refused unless it is exact for totals and ln constants moved by less than this
@@ -44,7 +45,7 @@ class Least:
     error: float  # exact for totals (over the largest) and ln constants moved by no more than this
 
 
-def least_gibbs_energy(system: PlainSystem, totals: np.ndarray, upper: np.ndarray | None = None) -> Least:
+def least_gibbs_energy(system: PlainSystem, totals: ArrayLike, upper: ArrayLike | None = None) -> Least:
     """The water's ideal equilibrium.
 
     totals   (component,), mol per kg of water; none of them zero but H^+
@@ -102,8 +103,8 @@ def _solved(system, totals, upper, multipliers, ln_scale):
         return None
     amounts = np.zeros(len(upper))
     if n is not None:
-        amounts[there] = np.clip(n.value, 0.0, upper[there])
-    return np.maximum(c.value, 0.0), amounts, multipliers - mass.dual_value
+        amounts[there] = np.clip(np.asarray(n.value), 0.0, upper[there])
+    return np.maximum(c.value, 0.0), amounts, multipliers - np.asarray(mass.dual_value)
 
 
 def _perturbation(system, totals, upper, c, n, multipliers, ln_scale):

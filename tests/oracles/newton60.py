@@ -12,6 +12,7 @@ from dataclasses import dataclass
 
 import mpmath as mp
 import numpy as np
+from numpy.typing import ArrayLike
 from tests.oracles.activity_laws import LnGamma
 from tests.oracles.algebra60 import column, dot, solve
 from tests.oracles.plane60 import ABSENT, FULL, PRESENT, Plane, hessian
@@ -43,11 +44,11 @@ class Settled:
 
 def settle(
     system: PlainSystem,
-    totals: np.ndarray,
-    ln_activity: np.ndarray,
-    amount: np.ndarray,
-    presence: np.ndarray,
-    upper: np.ndarray | None = None,
+    totals: ArrayLike,
+    ln_activity: ArrayLike,
+    amount: ArrayLike,
+    presence: ArrayLike,
+    upper: ArrayLike | None = None,
     ln_gamma: LnGamma | None = None,
     digits: int = 60,
 ) -> Settled:
@@ -63,7 +64,8 @@ def settle(
     """
     with mp.workdps(digits + SPARE_DIGITS):
         water = _Water(system, totals, upper, ln_gamma, digits)
-        x, n, molality, strength, held, changes = _right_set(water, list(map(mp.mpf, ln_activity)), presence)
+        given, given_n = _exactly(ln_activity), _exactly(amount)
+        x, n, molality, strength, held, changes = _right_set(water, given, presence)
         scale = max(abs(t) for t in water.totals) or mp.mpf(1)
         return Settled(
             ln_activity=x,
@@ -72,25 +74,24 @@ def settle(
             ionic_strength=strength,
             presence=held,
             changes=tuple(changes),
-            error=float(max(abs(a - mp.mpf(b)) for a, b in zip(x, ln_activity, strict=True))),
+            error=float(max(abs(a - b) for a, b in zip(x, given, strict=True))),
             amount_error=float(
-                max((abs(a - mp.mpf(b)) for a, b in zip(n, amount, strict=True)), default=mp.mpf(0)) / scale
+                max((abs(a - b) for a, b in zip(n, given_n, strict=True)), default=mp.mpf(0)) / scale
             ),
         )
 
 
 class _Water:
-    """The given numbers, exactly: a double is the fraction that it holds, not the decimal it was read from."""
+    """The given numbers, exactly: a double is the fraction it holds, not the decimal it was read from."""
 
     def __init__(self, system, totals, upper, ln_gamma, digits):
-        exactly = lambda row: [mp.mpf(float(v)) for v in row]  # noqa: E731
-        self.formation = [exactly(row) for row in system.formation]
-        self.ln_k = exactly(system.ln_k)
-        self.charge = exactly(system.charge)
-        self.dissolution = [exactly(row) for row in system.dissolution]
-        self.mineral_ln_k = exactly(system.mineral_ln_k)
-        self.totals = exactly(totals)
-        self.upper = exactly(np.full(len(self.mineral_ln_k), np.inf) if upper is None else upper)
+        self.formation = [_exactly(row) for row in system.formation]
+        self.ln_k = _exactly(system.ln_k)
+        self.charge = _exactly(system.charge)
+        self.dissolution = [_exactly(row) for row in system.dissolution]
+        self.mineral_ln_k = _exactly(system.mineral_ln_k)
+        self.totals = _exactly(totals)
+        self.upper = _exactly(np.full(len(self.mineral_ln_k), np.inf) if upper is None else upper)
         self.names = system.minerals
         self.ideal = ln_gamma is None
         self.ln_gamma = ln_gamma or (lambda _: [mp.mpf(0)] * len(self.ln_k))
@@ -108,6 +109,10 @@ class _Water:
 
     def ln_saturation(self, x):
         return [dot(row, x) - k for row, k in zip(self.dissolution, self.mineral_ln_k, strict=True)]
+
+
+def _exactly(values: ArrayLike) -> list:
+    return [mp.mpf(v) for v in np.asarray(values, dtype=float).tolist()]
 
 
 def _right_set(water, x, presence):

@@ -11,6 +11,7 @@ from dataclasses import dataclass
 from itertools import product
 
 import numpy as np
+from numpy.typing import ArrayLike
 from tests.oracles.activity_laws import LnGamma
 from tests.support.small_systems import PlainSystem
 
@@ -40,8 +41,8 @@ class Speciation:
 
 def speciate(
     system: PlainSystem,
-    totals: np.ndarray,
-    upper: np.ndarray | None = None,
+    totals: ArrayLike,
+    upper: ArrayLike | None = None,
     ln_gamma: LnGamma | None = None,
 ) -> Speciation:
     """The first set of minerals, fewest first, whose equilibrium breaks no condition.
@@ -56,8 +57,8 @@ def speciate(
 
 def all_speciations(
     system: PlainSystem,
-    totals: np.ndarray,
-    upper: np.ndarray | None = None,
+    totals: ArrayLike,
+    upper: ArrayLike | None = None,
     ln_gamma: LnGamma | None = None,
 ) -> Iterator[Speciation]:
     """Every set of minerals that works: a second one means that the equilibrium is not unique.

@@ -1,4 +1,4 @@
-"""The plane on which the present minerals are saturated exactly: its free ln activities, its Newton matrix."""
+"""The plane on which the present minerals are saturated: its free ln activities, its Newton matrix."""
 
 from __future__ import annotations
 
@@ -40,7 +40,10 @@ class Plane:
 
     def _eliminate(self, abundance):
         """Gauss-Jordan; made keeps how each row was combined from the minerals' own."""
-        self.pivots, self.rows, self.right, self.made = [], [], [], []
+        self.pivots: list[int] = []
+        self.rows: list[list] = []
+        self.right: list = []
+        self.made: list[list] = []
         for place, m in enumerate(self.present):
             row = list(self.water.dissolution[m])
             right = self.water.mineral_ln_k[m]

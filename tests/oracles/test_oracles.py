@@ -132,7 +132,7 @@ def test_ionic_strength_and_solubility_find_each_other():
     [(math.inf, PRESENT, 0.04), (0.05, PRESENT, 0.04), (0.03, FULL, 0.03), (0.0, ABSENT, 0.0)],
 )
 def test_a_solid_that_may_only_dissolve_stops_at_its_bound(upper, presence, solid):
-    """0.05 of each ion over a salt that keeps 0.01 dissolved: 0.04 would be solid, the bound may forbid it."""
+    """0.05 of each ion over a salt that keeps 0.01 dissolved: 0.04 would be solid, if the bound lets it."""
     system, totals, bound = salt(2 * math.log(0.01)), np.array([0.05, 0.05]), np.array([upper])
     plain, exact = speciate(system, totals, bound), settled(system, totals, bound)
     assert (plain.presence[0], exact.presence[0]) == (presence, presence)
@@ -169,6 +169,10 @@ def test_davies_holds_beyond_its_minimum():
     lowest = law(0.394979338)  # 2 q (1 + q)^2 = 1 / 0.3
     assert law(5.0) == pytest.approx(lowest, abs=1e-8)
     assert law(0.30)[0] > lowest[0]
+    # neutral species are held with either law, ions only with Davies
+    ion, neutral = extended_debye_hueckel([1.0, 0.0], [4e-10, np.nan], A, B)(5.0)
+    assert neutral == pytest.approx(lowest[2], abs=1e-8)
+    assert ion == pytest.approx(-LN10 * A * math.sqrt(5) / (1 + B * 4e-10 * math.sqrt(5)), rel=1e-12)
 
 
 @pytest.mark.parametrize(

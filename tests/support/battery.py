@@ -7,7 +7,7 @@ battery". The order of the draws is part of the definition; tests/oracles/test_o
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 import numpy as np
 from tests.support.small_systems import MINE_COMPONENTS
@@ -148,6 +148,6 @@ def _nearly(amount: float, rng: np.random.Generator) -> float:
     return amount * (1 + off if rng.random() < 0.5 else 1 - off)
 
 
-def _add(t: np.ndarray, amount: float, reagent: dict[int, float]) -> None:
+def _add(t: np.ndarray, amount: float, reagent: Mapping[int, float]) -> None:
     for k, coefficient in reagent.items():
         t[k] += amount * coefficient

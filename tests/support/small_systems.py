@@ -8,6 +8,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from gossan.constants.entries import Component, Mineral, Species
 from gossan.constants.load import load_table
 
 MINE_COMPONENTS = (
@@ -24,6 +25,11 @@ MINE_COMPLEXES = (
 MINE_MINERALS = (
     "sphalerite", "covellite", "mackinawite", "calcite", "smithsonite", "gypsum",
     "iron(II) hydroxide", "spertiniite",
+)  # fmt: skip
+# everything that the first batch of constants covers, each valence held
+WIDE_COMPONENTS = (
+    "H^+", "Na^+", "K^+", "Mg^2+", "Ca^2+", "Mn^2+", "Fe^2+", "Fe^3+", "Co^2+", "Ni^2+", "Cu^2+", "Zn^2+",
+    "Cd^2+", "Pb^2+", "Al^3+", "Cl^-", "SO4^2-", "HS^-", "CO3^2-", "NO3^-", "H4SiO4", "C2O4^2-",
 )  # fmt: skip
 
 
@@ -54,8 +60,8 @@ class PlainSystem:
 
         kept    (component,) bool
         """
-        dissolved = ~self.formation[:, ~kept].any(axis=1)
-        solid = ~self.dissolution[:, ~kept].any(axis=1)
+        dissolved = np.all(self.formation[:, ~kept] == 0, axis=1)
+        solid = np.all(self.dissolution[:, ~kept] == 0, axis=1)
         return PlainSystem(
             components=_chosen(self.components, kept),
             species=_chosen(self.species, dissolved),
@@ -86,15 +92,15 @@ def plain_system(
     records = [table.species[name] for name in complexes]
     solids = [table.minerals[name] for name in minerals]
     own = [table.components[name] for name in components]
-    sizes = [record.ion_size.value if record.ion_size else math.nan for record in (*own, *records)]
+    dissolved: list[Component | Species] = [*own, *records]
     return PlainSystem(
         components=tuple(components),
         species=(*components, *complexes),
         minerals=tuple(minerals),
         formation=np.vstack([np.eye(len(components)), _coefficients(records, components)]),
         ln_k=np.array([0.0] * len(own) + [record.log10_k.value for record in records]) * math.log(10),
-        charge=np.array([float(record.charge) for record in (*own, *records)]),
-        ion_size=np.array(sizes),
+        charge=np.array([float(record.charge) for record in dissolved]),
+        ion_size=np.array([record.ion_size.value if record.ion_size else math.nan for record in dissolved]),
         dissolution=_coefficients(solids, components),
         mineral_ln_k=np.array([record.log10_k.value for record in solids]) * math.log(10),
     )
@@ -109,7 +115,7 @@ def _chosen(names: tuple[str, ...], kept: np.ndarray) -> tuple[str, ...]:
     return tuple(name for name, keep in zip(names, kept, strict=True) if keep)
 
 
-def _coefficients(records: Sequence, components: Sequence[str]) -> np.ndarray:
+def _coefficients(records: Sequence[Species | Mineral], components: Sequence[str]) -> np.ndarray:
     """Rows of reaction coefficients; a component outside the list is a mistake of the caller."""
     for record in records:
         strange = set(record.reaction.components) - set(components)
