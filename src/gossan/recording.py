@@ -1,0 +1,248 @@
+"""Where the march meets a file: the only place that knows both."""
+
+from __future__ import annotations
+
+import time as wall
+from collections.abc import Callable
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+
+from gossan.base.errors import SolveError
+from gossan.case.build import build, first_pace
+from gossan.case.model import Case
+from gossan.case.read import case_from_text
+from gossan.chemistry.equilibrium import LN10, log10_activity, saturation
+from gossan.coupling.ledger import Books
+from gossan.coupling.march import Clogged, Stride, march, pore_volumes
+from gossan.coupling.pace import Pace
+from gossan.coupling.pores import conductivity, flow
+from gossan.coupling.problem import Port, Problem
+from gossan.coupling.state import State
+from gossan.store.file import Axes
+from gossan.store.read import Result, open_result
+from gossan.store.write import ResultWriter
+from gossan.transport.step import passages
+
+CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
+CAUTION = (
+    "A one-dimensional aid for screening and design; not a substitute for licensed practice, local codes and "
+    "permits. Sulfide-bearing beds give off hydrogen sulfide, which dulls the sense of smell and kills: wells, "
+    "vaults and trenches over them are confined spaces. Acid drainage returns when alkali is spent or bypassed, "
+    "and sulfides that dry out or meet air release the metals they held."
+)
+
+Progress = Callable[[float, State], None]
+
+
+@dataclass(frozen=True)
+class Ending:
+    """How a run ended."""
+
+    status: str  # "finished", "stopped" or "failed"
+    reason: str
+    error: SolveError | None = None
+
+
+def run_case(case: Case, path: Path, *, overwrite: bool = False, progress: Progress | None = None) -> Ending:
+    """Run a case into a new result file.
+
+    progress is called after every step with the share of the run done and the state.
+    Raises   InputError before anything is written; ResultError where the file exists or cannot be written
+    """
+    problem = build(case)
+    state, pace = problem.initial, first_pace(problem)
+    writer = ResultWriter(path, axes_of(problem), case.title, case.text, CAUTION, overwrite)
+    with writer:
+        run = _Run(problem, writer, progress)
+        run.frame(state)
+        run.records(state)
+        writer.checkpoint({"state": state, "pace": pace})
+        return run.walk(state, pace)
+
+
+def resume(path: Path, *, progress: Progress | None = None) -> Ending:
+    """Go on with a result file from its last checkpoint, to the same bits as a run never stopped.
+
+    Raises   ResultError where there is nothing to go on with
+    """
+    case = case_from_text(open_result(path).case, str(path), path.parent)
+    problem = build(case)
+    writer, parts = ResultWriter.resume(path)
+    with writer:
+        return _Run(problem, writer, progress).walk(State(**parts["state"]), Pace(**parts["pace"]))
+
+
+def run(case: Case, out: str | Path | None = None, progress: bool = False, overwrite: bool = False) -> Result:
+    """Run a column and open its result.
+
+    case     from `load_case`
+    out      the result file; default the case's stem + ".h5" in the current folder
+    progress print the share done to standard error
+    Raises   InputError, ResultError; SolveError where the numerics gave up (the file is kept and resumable)
+    """
+    path = Path(out) if out is not None else Path(Path(case.file).stem + ".h5")
+    shown = _print_share if progress else None
+    ending = run_case(case, path, overwrite=overwrite, progress=shown)
+    if ending.error is not None:
+        raise ending.error
+    return open_result(path)
+
+
+def _print_share(share: float, state: State) -> None:
+    import sys
+
+    end = "\n" if share >= 1.0 else ""
+    print(f"\r{100.0 * share:5.1f} %  day {state.time / 86400.0:.6g}", end=end, file=sys.stderr)
+
+
+def axes_of(problem: Problem) -> Axes:
+    """What stands along the axes of a result file of this problem."""
+    grid = problem.grid
+    names = [layer.name for layer in grid.layers]
+    return Axes(
+        component=problem.solutes,
+        mineral=problem.system.minerals,
+        species=problem.system.species,
+        x=grid.centres,
+        face=grid.edges,
+        layer=tuple(names[i] for i in grid.layer),
+        ports={port.name: port.x for port in problem.ports},
+    )
+
+
+class _Run:
+    """One run into one file."""
+
+    def __init__(self, problem: Problem, writer: ResultWriter, progress: Progress | None):
+        self.problem, self.writer, self.progress = problem, writer, progress
+        self.books = Books(problem)
+        self.steps: list[dict[str, float]] = []
+
+    def walk(self, state: State, pace: Pace) -> Ending:
+        began = kept = wall.monotonic()
+        last = began
+        ending = Ending("finished", "")
+        try:
+            for stride in march(self.problem, state, pace):
+                now = wall.monotonic()
+                self.step(stride, now - last)
+                last = now
+                if stride.frame_due:
+                    self.frame(stride.state)
+                if stride.record_due:
+                    self.records(stride.state)
+                state, pace = stride.state, stride.pace
+                if self.progress:
+                    self.progress(self.share(state), state)
+                if now - kept > CHECKPOINT_EVERY:
+                    self.keep(state, pace)
+                    kept = now
+        except Clogged as clogged:
+            where = float(self.problem.grid.centres[clogged.cell])
+            ending = Ending("stopped", f"clogged at x = {where:.4g} m after {clogged.time / 86400:.6g} d")
+        except SolveError as error:
+            error.kept = str(self.writer.path)
+            ending = Ending("failed", str(error), error)
+        except KeyboardInterrupt:
+            ending = Ending("stopped", "interrupted")
+        if ending.status != "finished" and state.time > self.recorded:
+            self.frame(state)
+            self.records(state)
+        self.writer.steps(self.steps)
+        figures = {"wall_clock_seconds": wall.monotonic() - began}
+        self.writer.finish(ending.status, {"state": state, "pace": pace}, ending.reason, figures)
+        return ending
+
+    def share(self, state: State) -> float:
+        """The share of the run that is done."""
+        end = self.problem.end
+        return min(1.0, end.clock(state.time, pore_volumes(self.problem, state)) / float(end.marks[-1]))
+
+    def keep(self, state: State, pace: Pace) -> None:
+        self.writer.steps(self.steps)
+        self.steps = []
+        self.writer.checkpoint({"state": state, "pace": pace})
+
+    def step(self, stride: Stride, seconds: float) -> None:
+        self.steps.append(
+            {
+                "time": stride.state.time,
+                "dt": stride.trial.dt,
+                "courant": stride.trial.courant,
+                "iterations": 2.0 if self.problem.coupling == "two-stage" else 1.0,
+                "splitting_error": stride.trial.error,
+                "seconds": seconds,
+            }
+        )
+
+    def frame(self, state: State) -> None:
+        self.recorded = state.time
+        self.writer.frame(state.time, frame_of(self.problem, state))
+
+    def records(self, state: State) -> None:
+        inflow = inflow_at(self.problem, state)
+        darcy_flux, _ = flow(self.problem, state, settled_dt(state))
+        through = passages(
+            self.problem.transport, state.dissolved, state.water, darcy_flux, inflow, 1.0
+        ).passed
+        for index, port in enumerate(self.problem.ports):
+            values = port_of(self.problem, state, port, index, darcy_flux, through)
+            self.writer.port(port.name, state.time, values)
+        ledger = self.books.closed(state)
+        self.writer.ledger(state.time, {name: getattr(ledger, name) for name in
+                                        ("entered", "left", "stored", "made", "error", "water_error", "charge_error")})
+        self.writer.flush()
+
+
+def settled_dt(state: State) -> float:
+    """A time over which the last step's surplus of water counts as spread, for a flux to report, s."""
+    return state.time / state.step if state.step else 1.0
+
+
+def inflow_at(problem: Problem, state: State) -> np.ndarray:
+    """(solute,) mol m-3 of what enters at a state's time."""
+    clock = problem.feeds.clock(state.time, pore_volumes(problem, state))
+    return problem.inflow[max(problem.feeds.passed(clock) - 1, 0)]
+
+
+def frame_of(problem: Problem, state: State) -> dict[str, Any]:
+    """The profiles of a state."""
+    system = problem.system
+    darcy_flux, head = flow(problem, state, settled_dt(state))
+    activity = log10_activity(system, state.ln_activity)
+    return {
+        "dissolved": state.dissolved,
+        "solid": state.solid,
+        "saturation": saturation(system.mineral_stoichiometry, system.matrices.solid_ln_k, state.ln_activity),
+        "activity": activity,
+        "porosity": state.water,
+        "conductivity": conductivity(problem, state.water),
+        "pH": -state.ln_activity[0] / LN10,
+        "pe": np.full(len(state.water), np.nan),
+        "ionic_strength": state.ionic_strength,
+        "darcy_flux": darcy_flux,
+        "head": head,
+    }
+
+
+def port_of(
+    problem: Problem, state: State, port: Port, index: int, darcy_flux: np.ndarray, through: np.ndarray
+) -> dict[str, Any]:
+    """What a port shows; through (solute, face) mol m-2 s-1 is what passes every face at this instant."""
+    flux = darcy_flux[port.face]
+    grid = problem.grid
+    before, after = max(port.face - 1, 0), min(port.face, len(grid.width) - 1)
+    share = grid.width[before] / (grid.width[before] + grid.width[after])
+    resident = (1.0 - share) * state.dissolved[:, before] + share * state.dissolved[:, after]
+    return {
+        "pore_volumes": pore_volumes(problem, state),
+        "darcy_flux": flux,
+        "pH": -state.ln_activity[0, before] / LN10,
+        "pe": np.nan,
+        "dissolved": through[:, port.face] / flux if flux != 0.0 else np.full(len(through), np.nan),
+        "resident": resident,
+        "passed": state.passed[index].sum(axis=-1),
+    }
