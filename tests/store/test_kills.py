@@ -91,7 +91,7 @@ def test_no_instant_between_two_writes_of_hdf5_is_fatal(tmp_path, monkeypatch):
 
 @pytest.mark.parametrize("old", ["none", "killed"])
 def test_no_instant_between_two_changes_of_the_folder_is_fatal(tmp_path, old):
-    """Ends the process before the first, second, third ... opening, renaming and deleting of a file."""
+    """Ends the process before the first, second, third ... opening to write, renaming and deleting."""
     whole = tmp_path / "whole.h5"
     pretend.march(whole, steps=8)
     expected = contents(whole)
@@ -154,7 +154,8 @@ def end_before(last: int, path: Path) -> None:
 
     def watch(event: str, arguments: tuple) -> None:
         nonlocal seen
-        if event in ("open", "os.rename", "os.remove") and path.name in str(arguments[0]):
+        opens = event == "open" and arguments[2] & (os.O_WRONLY | os.O_RDWR)
+        if (opens or event in ("os.rename", "os.remove")) and path.name in str(arguments[0]):
             seen += 1
             if seen == last:
                 os._exit(9)

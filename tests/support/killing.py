@@ -22,7 +22,7 @@ Work = Callable[[Callable[[int], None]], None]
 
 
 def in_a_child(work: Work, kill_after: float | None = None) -> tuple[int, int]:
-    """Run work(tell) in a process of its own, killed after so many seconds; returns its last word and its end.
+    """Run work(tell) in a process of its own, killed after so many seconds; returns its last word and end.
 
     The end is the exit code, or minus the signal. A fork: a fresh interpreter takes longer than the run.
     """

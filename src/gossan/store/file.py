@@ -54,6 +54,10 @@ class Axes:
         """The groups of a file with these axes, the checkpoint's left out."""
         return ("profiles", *(f"ports/{name}" for name in self.ports), "ledger", "steps")
 
+    def along(self, row: Variable, group: str) -> np.ndarray | tuple[str, ...] | float:
+        """What an axis holds in a group, the growing ones left out."""
+        return getattr(self, row.name) if row.dims else self.ports[group.removeprefix("ports/")]
+
     def shape(self, row: Variable) -> tuple[int, ...]:
         """The shape of one record of a variable: its dimensions without the growing axis."""
         return tuple(len(getattr(self, dim)) for dim in row.dims if dim != growing_axis(row.group))
@@ -120,25 +124,19 @@ def _lay_out(file: h5py.File, axes: Axes, attributes: Mapping[str, str],
     for name in axes.groups:
         group = file.create_group(name)
         grown = growing_axis(name)
-        made = {row: _axis(group, row, axes) for row in variables(name)
-                if row.kind == "axis" and row.name != grown and not _empty(row, axes)}
+        held = {row: axes.along(row, name) for row in variables(name)
+                if row.kind == "axis" and row.name != grown}
+        made = {row: _axis(group, row, values) for row, values in held.items() if np.size(values)}
         # the growing axis last, so that HDF5 too writes its header last
         for row in (*axes.written(name), variable(name, grown)):
             made[row] = _growing(group, row, axes.shape(row), *rows[name])
         _describe(made)
 
 
-def _empty(row: Variable, axes: Axes) -> bool:
-    return row.dims != () and len(getattr(axes, row.name)) == 0
-
-
-def _axis(group: h5py.Group, row: Variable, axes: Axes) -> h5py.Dataset:
-    if row.dims == ():
-        return group.create_dataset(row.name, data=axes.ports[group.name.removeprefix("/ports/")])
-    values = getattr(axes, row.name)
-    if isinstance(values, np.ndarray):
-        return group.create_dataset(row.name, data=values.astype(np.float64))
-    return group.create_dataset(row.name, data=np.array(values, object), dtype=_TEXT)
+def _axis(group: h5py.Group, row: Variable, values: np.ndarray | tuple[str, ...] | float) -> h5py.Dataset:
+    if isinstance(values, tuple):
+        return group.create_dataset(row.name, data=np.array(values, object), dtype=_TEXT)
+    return group.create_dataset(row.name, data=np.asarray(values, np.float64))
 
 
 def _growing(group: h5py.Group, row: Variable, shape: tuple[int, ...], length: int, room: int,

@@ -86,8 +86,7 @@ class Group:
             row = variable(self.name, name)
             shape = self._axes.shape(row)
             if row.kind == "axis" and name != growing_axis(self.name):
-                values = getattr(self._axes, name) if row.dims else self._axes.ports[self.name[len("ports/"):]]
-                self._arrays[name] = np.asarray(values)
+                self._arrays[name] = np.asarray(self._axes.along(row, self.name))
             elif 0 in shape:  # nothing stands along one of its axes, so the file leaves it out
                 self._arrays[name] = np.empty((self.count, *shape))
             else:
