@@ -36,11 +36,11 @@ says where each array stands behind it (type, shape, order, offset); SHA-256 of 
 ## While a run goes on, and after a kill
 
 - The file appears with its first checkpoint. Beside it stand `FILE.state-1` and `FILE.state-2`, the two
-  newest checkpoints in the form above, and `FILE.lock`, which says who writes. Keep the state files with the file:
-  from them `gossan run --resume FILE` goes on. When the run ends they go, and the file is compressed.
+  newest checkpoints in the form above, and `FILE.lock`, which says who writes. Keep the state files with the
+  file: from them `gossan run --resume FILE` goes on. When the run ends they go, and the file is compressed.
 - Any other process may read the file. A record is committed when the axis along which its group grows
-  (`time`, in `steps` `step`) reaches it; that axis is extended last. In the instant between, xarray shows one more
-  record whose time is NaN.
+  (`time`, in `steps` `step`) reaches it; that axis is extended last. In the instant between, xarray shows
+  one more record whose time is NaN.
 - A kill at any instant leaves every committed record readable. A power cut may not: only checkpoints are
   waited for until they are on the disk itself.
 - A file whose run was killed still says `running`.
