@@ -20,7 +20,7 @@ sys.path.insert(0, str(Path(__file__).resolve().parents[1]))
 
 from tests.oracles.activity_laws import LnGamma, davies, extended_debye_hueckel
 from tests.oracles.newton60 import NoAnswer, settle
-from tests.support.battery import battery, scaled, stirred, wide_battery
+from tests.support.battery import battery, random_bounds, scaled, stirred, wide_battery
 from tests.support.small_systems import (
     MINE_COMPLEXES,
     MINE_COMPONENTS,
@@ -30,7 +30,7 @@ from tests.support.small_systems import (
 )
 
 from gossan.base.errors import SolveError
-from gossan.chemistry.equilibrium import equilibrate
+from gossan.chemistry.equilibrium import Solver
 from gossan.chemistry.system import System, build_system
 from gossan.constants.load import load_table
 
@@ -62,6 +62,7 @@ def main() -> int:
     parser.add_argument("--activity", default="davies", choices=("davies", "debye-hueckel", "ideal"))
     parser.add_argument("--change", default="none", choices=("none", "scaled", "stirred"))
     parser.add_argument("--wide", action="store_true", help="22 components, the default minerals")
+    parser.add_argument("--bounded", action="store_true", help="minerals may only dissolve, random amounts")
     asked = parser.parse_args()
 
     system = wide_system(asked.activity) if asked.wide else mine_system(asked.activity)
@@ -77,16 +78,20 @@ def main() -> int:
     if asked.change != "none":
         totals = {"scaled": scaled, "stirred": stirred}[asked.change](totals, asked.seed)
 
-    solve(system, totals[:1])  # compiles, or loads what was compiled
+    upper = np.full((asked.waters, len(system.minerals)), np.inf)
+    if asked.bounded:
+        upper = random_bounds(totals, len(system.minerals), asked.seed)
+    solve(system, totals[:1], upper[:1])  # compiles, or loads what was compiled
     started = time.perf_counter()
-    answers = solve(system, totals)
+    answers = solve(system, totals, upper)
     seconds = time.perf_counter() - started
     print(f"{len(plain.components)} components, {len(plain.species)} species, {len(plain.minerals)} minerals")
     found = np.isfinite(answers.ionic_strength)
     print(f"{found.sum()} of {len(totals)} waters converged, {1e6 * seconds / len(totals):.0f} us each")
     law = LAWS[asked.activity](plain)
-    good = report_conditions(plain, law, totals, answers, found)
-    report_hardest(plain, law, totals, answers, hardest(plain, law, totals, answers, found)[: asked.hard])
+    good = report_conditions(plain, law, totals, upper, answers, found)
+    chosen = hardest(plain, law, totals, answers, found)[: asked.hard]
+    report_hardest(plain, law, totals, upper, answers, chosen)
     return 0 if good and found.all() else 1
 
 
@@ -102,8 +107,11 @@ def wide_system(activity: str) -> System:
     return build_system(load_table(), WIDE_COMPONENTS, activity=activity)
 
 
-def solve(system: System, totals: np.ndarray) -> Answers:
-    """Ask the program: totals (water, component) in the system's order, mol per kg of water, nothing else."""
+def solve(system: System, totals: np.ndarray, upper: np.ndarray) -> Answers:
+    """Ask the program, from nothing but the amounts.
+
+    totals  (water, component) in the system's order, upper (water, mineral): mol per kg of water
+    """
     shape = (len(system.components), len(system.minerals), len(totals))
     answers = Answers(
         ln_activity=np.full((shape[0], shape[2]), np.nan),
@@ -112,20 +120,24 @@ def solve(system: System, totals: np.ndarray) -> Answers:
         ionic_strength=np.full(shape[2], np.nan),
         steps=np.zeros(shape[2], dtype=int),
     )
+    solver = Solver(system)
     for start in range(0, len(totals), BLOCK):
-        _solve_block(system, totals, np.arange(start, min(start + BLOCK, len(totals))), answers)
+        _solve_block(solver, totals, upper, np.arange(start, min(start + BLOCK, len(totals))), answers)
     return answers
 
 
-def _solve_block(system: System, totals: np.ndarray, waters: np.ndarray, answers: Answers) -> None:
+def _solve_block(
+    solver: Solver, totals: np.ndarray, upper: np.ndarray, waters: np.ndarray, answers: Answers
+) -> None:
+    amount, bound = np.ascontiguousarray(totals[waters].T), np.ascontiguousarray(upper[waters].T)
     try:
-        found = equilibrate(system, np.ascontiguousarray(totals[waters].T))
+        found = solver.cold(np.ones(len(waters)), amount, np.zeros_like(bound), bound)
     except SolveError as error:
         if len(waters) == 1:
             print(f"water {waters[0]}: {error.reason}")
             return
         for water in waters:
-            _solve_block(system, totals, np.array([water]), answers)
+            _solve_block(solver, totals, upper, np.array([water]), answers)
         return
     answers.ln_activity[:, waters] = found.ln_activity
     answers.solid[:, waters] = found.solid
@@ -141,7 +153,7 @@ def as_plain(system: System) -> PlainSystem:
         species=system.species,
         minerals=system.minerals,
         formation=np.asarray(system.stoichiometry, dtype=float),
-        ln_k=np.asarray(system.matrices.ln_k, dtype=float),
+        ln_k=np.asarray(system.matrices.ln_k, dtype=float)[: len(system.species)],  # padded beyond
         charge=np.asarray(system.species_charge, dtype=float),
         ion_size=_ion_sizes(system.species),
         dissolution=np.asarray(system.mineral_stoichiometry, dtype=float),
@@ -169,7 +181,12 @@ def molalities(plain: PlainSystem, law: LnGamma, answers: Answers) -> np.ndarray
 
 
 def report_conditions(
-    plain: PlainSystem, law: LnGamma, totals: np.ndarray, answers: Answers, found: np.ndarray
+    plain: PlainSystem,
+    law: LnGamma,
+    totals: np.ndarray,
+    upper: np.ndarray,
+    answers: Answers,
+    found: np.ndarray,
 ) -> bool:
     """Print how well every water meets the equations; whether all do."""
     molality = molalities(plain, law, answers)
@@ -178,12 +195,18 @@ def report_conditions(
     size = np.abs(plain.formation).T @ molality + np.abs(plain.dissolution).T @ np.abs(answers.solid)
     balance = np.abs(left) / (size + np.abs(totals.T))
     strength = 0.5 * plain.charge**2 @ molality / answers.ionic_strength - 1
-    there = answers.solid > 0
+    there, most = answers.solid > 0, upper.T
+    full = there & (answers.solid >= most)
+    wrong = {
+        "absent, yet supersaturated (ln)": np.where(~there & (most > 0), saturation, 0),
+        "full, yet undersaturated (ln)": np.where(full, -saturation, 0),
+        "present, yet not saturated (ln)": np.where(there & ~full, np.abs(saturation), 0),
+    }
     checks = {
         "mass balance": (balance.max(axis=0), WITHIN),
-        "absent, yet supersaturated (ln)": (np.where(there, 0, saturation.clip(0)).max(axis=0), LN_SLACK),
-        "present, yet not saturated (ln)": (np.where(there, np.abs(saturation), 0).max(axis=0), LN_SLACK),
+        **{name: (value.clip(0).max(axis=0), LN_SLACK) for name, value in wrong.items()},
         "negative amount": (np.maximum(-answers.solid, 0).max(axis=0), 0.0),
+        "above its bound": (np.maximum(answers.solid - most, 0).max(axis=0), 0.0),
         "ionic strength": (np.abs(strength), STRENGTH_SLACK),
     }
     good = True
@@ -212,7 +235,12 @@ def hardest(
 
 
 def report_hardest(
-    plain: PlainSystem, law: LnGamma, totals: np.ndarray, answers: Answers, waters: np.ndarray
+    plain: PlainSystem,
+    law: LnGamma,
+    totals: np.ndarray,
+    upper: np.ndarray,
+    answers: Answers,
+    waters: np.ndarray,
 ) -> None:
     """Print how far these answers are from 60 digits."""
     errors, amounts = [], []
@@ -224,6 +252,7 @@ def report_hardest(
                 answers.ln_activity[:, water],
                 answers.solid[:, water],
                 answers.presence[:, water],
+                upper[water],
                 ln_gamma=law,
             )
         except NoAnswer as failure:

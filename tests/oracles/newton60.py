@@ -20,7 +20,7 @@ from tests.support.small_systems import PlainSystem
 
 SPARE_DIGITS = 40
 LONGEST_STEP = 20  # in ln activity: far from the answer the exponentials know only the direction
-PATIENCE = 400  # damped steps: thirty decades of excess shrink by one factor e at a time
+PATIENCE = 150  # damped steps: thirty decades of excess shrink by one factor e at a time
 MOST_CHANGES = 60  # of the set of present minerals
 
 
@@ -53,6 +53,8 @@ def settle(
     digits: int = 60,
 ) -> Settled:
     """The equilibrium of a water, started from a given answer; a wrong set of minerals is named and repaired.
+
+    One mineral is repaired at a time: where nothing is known, begin with `least_gibbs_energy`.
 
     totals      (component,), mol per kg of water, none of them zero but H^+
     ln_activity (component,), the answer to judge; finite
@@ -122,6 +124,7 @@ def _right_set(water, x, presence):
     changes: list[str] = []
     strength = water.strength(water.molality(x, mp.mpf("0.1")))
     strength = min(max(strength, mp.mpf("1e-7")), mp.mpf(10))
+    last = None  # the last set with an equilibrium
     while len(changes) <= MOST_CHANGES:
         seen.add(held.tobytes())
         plane = Plane(water, held, x)
@@ -129,12 +132,21 @@ def _right_set(water, x, presence):
             held[plane.dependent] = ABSENT
             changes.append(f"{water.names[plane.dependent]} depends on the other present minerals")
             continue
-        x, strength = _on_plane(water, plane, x, strength)
-        molality = water.molality(x, strength)
-        n = plane.amounts(molality)
-        change = _wanted_change(water, plane, held, n, water.ln_saturation(x), seen)
+        try:
+            x, strength = _on_plane(water, plane, x, strength)
+        except NoAnswer:
+            if last is None and not held.any():
+                raise
+            changes.append("no water has just these minerals")
+            if last is None:
+                held = np.zeros_like(held)
+                continue
+        else:
+            molality = water.molality(x, strength)
+            last = plane, held, plane.amounts(molality), water.ln_saturation(x)
+        change = _wanted_change(water, *last, seen)
         if change is None:
-            return x, n, molality, strength, held, changes
+            return x, last[2], molality, strength, held, changes
         held, told = change
         changes.append(told)
     raise NoAnswer("the set of present minerals did not settle: " + ", ".join(changes[-6:]))

@@ -76,6 +76,19 @@ def stirred(totals: np.ndarray, seed: int) -> np.ndarray:
     return 0.99 * totals + 0.01 * totals[rng.integers(0, len(totals), len(totals))]
 
 
+def random_bounds(totals: np.ndarray, minerals: int, seed: int) -> np.ndarray:
+    """Upper bounds (count, mineral) in mol per kg of water for minerals that may only dissolve.
+
+    A fifth of them are 0; of the rest 30 % are inf, the others 1e-6 to 1 of the water's largest total.
+    """
+    rng = np.random.default_rng(seed)
+    shape = (len(totals), minerals)
+    upper = np.abs(totals).max(axis=1)[:, None] * 10.0 ** rng.uniform(-6, 0, shape)
+    upper[rng.random(shape) < 0.3] = np.inf
+    upper[rng.random(shape) < 0.2] = 0.0
+    return upper
+
+
 def wide_battery(seed: int, count: int, components: Sequence[str], dissolution: np.ndarray) -> np.ndarray:
     """Totals (count, component) of waters on any list of components, in mol per kg of water; none is zero.
 
