@@ -1,8 +1,8 @@
 """What the transport kernels cost, as ratios inside one process: python tools/bench/transport.py
 
-Explicit transport against a copy of the concentrations; implicit dispersion against scipy's banded solver with
-one right-hand side per solute. The least of many turns, each kernel next to its yardstick, so that a busy
-machine disturbs both alike. With --cold, also how long the kernels take to compile.
+Explicit transport against a copy of the concentrations; implicit dispersion against scipy's banded solver
+with one right-hand side per solute. The least of many turns, each kernel next to its yardstick, so that a
+busy machine disturbs both alike. With --cold, also how long the kernels take to compile.
 """
 
 from __future__ import annotations
@@ -19,7 +19,7 @@ import numpy as np
 from scipy.linalg import solve_banded
 
 from gossan.transport.grid import Layer, grid_of
-from gossan.transport.kernel.advect import carry
+from gossan.transport.kernel.advect import BLOCK, carry
 from gossan.transport.kernel.disperse import LANES, factor, spread, sweep
 from gossan.transport.step import Passages, Transport, passages, transport_of
 
@@ -52,15 +52,17 @@ def column(cells: int) -> tuple[Transport, np.ndarray, np.ndarray, np.ndarray, P
     dissolved = np.random.default_rng(1).random((SOLUTES, cells))
     water, darcy_flux, inflow = np.full(cells, 0.4), np.full(cells + 1, FLUX), np.ones(SOLUTES)
     dt = 0.5 * 0.4 / cells / FLUX
-    return transport, dissolved, water, darcy_flux, passages(transport, dissolved, water, darcy_flux, inflow, dt, 0.5)
+    first = passages(transport, dissolved, water, darcy_flux, inflow, dt, 0.5)
+    return transport, dissolved, water, darcy_flux, first
 
 
 def explicit_against_copy(cells: int) -> tuple[float, float]:
     """Seconds of one explicit evaluation, and of a copy."""
     transport, dissolved, _, darcy_flux, at = column(cells)
-    out, copy = np.empty_like(at.passed), np.empty_like(dissolved)
+    out, copy, scratch = np.empty_like(at.passed), np.empty_like(dissolved), np.empty((6, BLOCK + 1))
     kernel_time, copy_time = least(
-        lambda: carry(dissolved, at.inflow, transport.bounds, darcy_flux, at.conductance, at.bias, at.slopes, at.dt, out),
+        lambda: carry(dissolved, at.inflow, transport.bounds, darcy_flux, at.conductance, at.bias, at.slopes,
+                      at.dt, scratch, out),
         lambda: np.copyto(copy, dissolved),
     )
     return kernel_time, copy_time
@@ -78,7 +80,7 @@ def implicit_against_banded(cells: int) -> tuple[float, float, float, float]:
     right = np.ascontiguousarray((surplus[:, :-1] - surplus[:, 1:]).T)
     rows = np.zeros((LANES, cells))
     solve, alone, prepare, banded = least(
-        lambda: spread(dissolved, still, surplus, made.hold, made.inverse, made.lower, made.upper, out),
+        lambda: spread(dissolved, still, surplus, made.hold, made.inverse, made.lower, made.upper, rows, out),
         lambda: sweep(rows, made.lower, made.upper),
         lambda: factor(storage, at.conductance, at.dt, made.hold, made.inverse, made.lower, made.upper),
         lambda: solve_banded((1, 1), bands, right),
@@ -96,7 +98,7 @@ def cold() -> float:
     environment = {key: value for key, value in os.environ.items() if key != "NUMBA_CACHE_DIR"}
     with tempfile.TemporaryDirectory() as folder:
         done = subprocess.run([sys.executable, "-c", code], env=environment | {"XDG_CACHE_HOME": folder},
-                              capture_output=True, text=True, check=True)  # fmt: skip
+                              capture_output=True, text=True, check=True)
     return float(done.stdout)
 
 
@@ -112,7 +114,8 @@ def main() -> None:
         unit = 1e9 / (cells * SOLUTES)
         print(f"{cells:8} {here * unit:8.2f} {copy * unit:8.2f} {here / copy:11.2f}")
     print(f"\nimplicit, {SOLUTES} solutes   ns per cell and solute; factoring is done once for both stages")
-    print(f"{'cells':>8} {'solve':>8} {'sweeps':>8} {'factor':>8} {'banded':>8}   times faster: sweeps, solve, all")
+    head = f"{'cells':>8} {'solve':>8} {'sweeps':>8} {'factor':>8} {'banded':>8}"
+    print(head + "   times faster: sweeps, solve, all")
     for cells in (200, 1_000, 10_000, 100_000):
         solve, alone, prepare, banded = implicit_against_banded(cells)
         unit = 1e9 / (cells * SOLUTES)

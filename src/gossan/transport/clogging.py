@@ -36,9 +36,9 @@ def power(porosity: np.ndarray, initial: np.ndarray, exponent: float) -> np.ndar
     """The same by a power of the porosity (equations.md, 32).
 
     porosity, initial  (cell,), 1, as in `kozeny_carman`
-    exponent           1, > 0: about 2 to 3 where pores open or coats are even, to 8 where cement seals throats
+    exponent           1, > 0: 2 to 3 where pores open or coats are even, up to 8 where cement seals throats
     Returns            (cell,), 1
-    Source             form: Hommel, Coltman & Class (2018), Transp. Porous Med. 124, 589-629; range from memory
+    Source             Hommel, Coltman & Class (2018), Transp. Porous Med. 124, 589-629; range from memory
 
     >>> round(power(0.19, 0.38, 3.0), 3)
     0.125

@@ -13,7 +13,7 @@ def flow_of_flux(
     inlet_flux    m s-1, >= 0
     conductivity  (cell,) m s-1, > 0, or NaN where it is not known: the heads upstream are then NaN
     width         (cell,) m
-    made_up       (face,) m s-1, water added on the way to each face, 0 at the inlet: what growing solids push out
+    made_up       (face,) m s-1, water added on the way to each face, 0 at the inlet: solids push it out
     Returns       darcy_flux (face,) m s-1; head (face,) m, 0 at the outlet
     """
     darcy_flux = inlet_flux + made_up
@@ -28,8 +28,8 @@ def flow_of_head(
 ) -> tuple[np.ndarray, np.ndarray]:
     """Flux and head where the loss of head over the whole column is held (equations.md, 29 and 30).
 
-    head_drop m, >= 0; conductivity (cell,) m s-1, > 0; width, made_up and what is returned as in `flow_of_flux`.
-    Cells are resistances in series; the entering flux takes what the water made on the way leaves of the drop.
+    head_drop m, >= 0; conductivity (cell,) m s-1, > 0; width, made_up and the returned as in `flow_of_flux`.
+    Cells are resistances in series; the entering flux gets what the water made on the way leaves of the drop.
 
     >>> flux, head = flow_of_head(1.0, np.array([1e-4, 1e-6, 5e-5]), np.array([0.2, 0.5, 0.3]), np.zeros(4))
     >>> float(flux[0].round(12)), head.round(6).tolist()

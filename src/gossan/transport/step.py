@@ -5,6 +5,7 @@ A step has two stages (Heun), so that the caller can let chemistry act between t
     first = passages(transport, dissolved, water, darcy_flux, inflow, dt, theta)
     ... amounts plus the net of first.passed, equilibrium: predicted ...
     passed = corrected(transport, first, dissolved, predicted)
+    passed = kept_positive(transport, first, dissolved, water, amount, passed, positive)
     ... amounts of the start plus the net of passed, equilibrium ...
 
 One-step schemes stop at first.passed. Averaging two one-step results instead would leave a first-order error
@@ -18,8 +19,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from gossan.transport.grid import Grid
-from gossan.transport.kernel.advect import FIRST_ORDER, MINMOD, VAN_LEER, Slopes, carry
-from gossan.transport.kernel.disperse import conduct, factor, spread
+from gossan.transport.kernel.advect import BLOCK, FIRST_ORDER, MINMOD, VAN_LEER, Slopes, carry
+from gossan.transport.kernel.disperse import LANES, conduct, factor, spread
 
 LIMITERS = {"van-leer": VAN_LEER, "minmod": MINMOD, "none": FIRST_ORDER}
 
@@ -31,7 +32,8 @@ class Transport:
     grid: Grid
     bounds: np.ndarray  # (group + 1,) int: solutes bounds[g] to bounds[g + 1] share one limiter value
     first_type: bool  # the inlet holds the concentration (True) or takes a flux (third type)
-    slopes: Slopes
+    uneven: np.ndarray  # (n,) int: the first cell, and those at a boundary of layers
+    limiter: int
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,17 +67,14 @@ def transport_of(grid: Grid, group: np.ndarray, inlet: str = "flux", limiter: st
 
     group    (solute,) int: one number for all components of the chemistry, each tracer a number of its own;
              neighbours with the same number share one limiter value, or charge would break inside a front
-    inlet    "flux" (third type: water brings its solutes in) or "concentration" (first type: held at the face)
+    inlet    "flux" (third type: water brings its solutes in) or "concentration" (first type: held there)
     limiter  "van-leer", "minmod" or "none" (first order)
     """
-    half, reach = 0.5 * grid.width, 0.5 * (grid.width[:-1] + grid.width[1:])
-    lean_left, lean_right = np.full(half.size, 1.0), np.full(half.size, 0.5)
-    lean_left[1:], lean_right[:-1] = half[1:] / reach, half[:-1] / reach
-    uneven = np.flatnonzero((lean_left != 0.5) | (lean_right != 0.5))
-    slopes = Slopes(lean_left, lean_right, uneven, LIMITERS[limiter])
+    between = np.flatnonzero(np.diff(grid.layer))
+    uneven = np.unique(np.concatenate(([0], between, between + 1)))
     group = np.asarray(group)
     bounds = np.concatenate(([0], np.flatnonzero(np.diff(group)) + 1, [group.size]))
-    return Transport(grid, bounds, inlet == "concentration", slopes)
+    return Transport(grid, bounds, inlet == "concentration", uneven, LIMITERS[limiter])
 
 
 def passages(
@@ -98,13 +97,14 @@ def passages(
     conductance, slopes = _of_the_moment(transport, water, darcy_flux)
     explicit = np.empty((dissolved.shape[0], dissolved.shape[1] + 1))
     bias = _slope_bias(transport, water, darcy_flux, dt)
-    carry(dissolved, inflow, transport.bounds, darcy_flux, conductance, bias, slopes, dt, explicit)
+    carry(dissolved, inflow, transport.bounds, darcy_flux, conductance, bias, slopes, dt,
+          np.empty((6, BLOCK + 1)), explicit)
     if theta is None:
         return Passages(explicit, explicit, conductance, bias, slopes, darcy_flux, inflow, dt, 0.5, None)
     storage = water * transport.grid.width
     elimination = Elimination(np.empty_like(conductance), *np.empty((3, storage.size)))
     factor(storage, conductance, theta * dt, elimination.hold, elimination.inverse, elimination.lower,
-           elimination.upper)  # fmt: skip
+           elimination.upper)
     passed = explicit.copy()
     _disperse(elimination, dissolved, dt * (darcy_flux[:-1] - darcy_flux[1:]), explicit, passed)
     return Passages(passed, explicit, conductance, bias, slopes, darcy_flux, inflow, dt, theta, elimination)
@@ -117,12 +117,12 @@ def corrected(
 
     dissolved, predicted (solute, cell) mol m-3 of water; returns (solute, face) mol m-2.
 
-    Explicit: the mean of both ends' passages. Implicit: the same, plus what disperses of the change that is
-    still missing from the predicted state; no solute is taken to be as mobile as its dissolved part.
+    Explicit: the mean of both ends' passages. Implicit: the same, plus what disperses of the change that the
+    predicted state still lacks; without sorption that is Crank and Nicolson's dispersion.
     """
     passed = np.empty_like(first.explicit)
-    carry(predicted, first.inflow, transport.bounds, first.darcy_flux, first.conductance, first.bias, first.slopes,
-          first.dt, passed)  # fmt: skip
+    carry(predicted, first.inflow, transport.bounds, first.darcy_flux, first.conductance, first.bias,
+          first.slopes, first.dt, np.empty((6, BLOCK + 1)), passed)
     passed += first.explicit
     passed *= 0.5
     if first.elimination is not None:
@@ -133,6 +133,42 @@ def corrected(
             passed[:, 0] -= hold[0] * change[:, 0]
         _disperse(first.elimination, predicted, np.zeros(predicted.shape[1]), passed - first.passed, passed)
     return passed
+
+
+def kept_positive(
+    transport: Transport,
+    first: Passages,
+    dissolved: np.ndarray,
+    water: np.ndarray,
+    amount: np.ndarray,
+    passed: np.ndarray,
+    positive: np.ndarray,
+) -> np.ndarray:
+    """The same passages, held back where they would take more out of a cell than there is.
+
+    Explicit steps within their limits never do. Implicit ones can, beside a front of a solute that a solid
+    holds back: it is first spread as if nothing held it. Then as much of the second order is added to one
+    stage of backward Euler as every cell can give, the same share for a group (Zalesak 1979, J. Comput. Phys.
+    31, 335-362, from memory).
+
+    amount    (solute, cell) mol m-3 of bulk at the start of the step, solids included
+    positive  (solute,) bool, False for what may be negative (excess H+)
+    """
+    width = transport.grid.width
+    after = amount * width + passed[:, :-1] - passed[:, 1:]
+    if (after[positive] >= 0.0).all():
+        return passed
+    low = passages(transport, dissolved, water, first.darcy_flux, first.inflow, first.dt, 1.0).passed
+    spare = np.maximum(amount * width + low[:, :-1] - low[:, 1:], 0.0)
+    more = passed - low
+    taken = np.maximum(more[:, 1:], 0.0) + np.maximum(-more[:, :-1], 0.0)
+    share = np.ones_like(spare)
+    np.divide(spare, taken, out=share, where=(taken > spare) & positive[:, None])
+    held = np.ones_like(more)  # the share of the cell that gives: upstream where more > 0
+    held[:, 1:] = np.where(more[:, 1:] > 0.0, share, 1.0)
+    held[:, :-1] = np.where(more[:, :-1] < 0.0, share, held[:, :-1])
+    held = np.minimum.reduceat(held, transport.bounds[:-1], axis=0)
+    return low + np.repeat(held, np.diff(transport.bounds), axis=0) * more
 
 
 def courant(transport: Transport, water: np.ndarray, darcy_flux: np.ndarray, dt: float) -> float:
@@ -153,20 +189,15 @@ def explicit_limit(transport: Transport, water: np.ndarray, darcy_flux: np.ndarr
     return float(1.0 / rate) if rate > 0.0 else float("inf")
 
 
-def _of_the_moment(transport: Transport, water: np.ndarray, darcy_flux: np.ndarray) -> tuple[np.ndarray, Slopes]:
-    """Conductances, and slopes that know how far upstream of the first cell the inflow's own value is met.
-
-    At a third-type inlet the profile is c_in + (D/v) dc/dx there: as if the inflow stood D/v before the face.
-    """
+def _of_the_moment(
+    transport: Transport, water: np.ndarray, darcy_flux: np.ndarray
+) -> tuple[np.ndarray, Slopes]:
+    """Conductances of the faces, and slopes that follow from them where materials meet."""
     grid = transport.grid
-    conductance = np.empty_like(darcy_flux)
-    inlet = conduct(darcy_flux, water, grid.width, grid.dispersivity, grid.tortuosity, grid.diffusion, conductance)
-    if transport.first_type:
-        conductance[0] = inlet
-        return conductance, transport.slopes
-    lean_left = transport.slopes.lean_left.copy()
-    lean_left[0] = darcy_flux[0] / (darcy_flux[0] + inlet) if darcy_flux[0] > 0.0 else 0.0
-    return conductance, transport.slopes._replace(lean_left=lean_left)
+    conductance, lean_left, lean_right = np.empty_like(darcy_flux), np.empty_like(water), np.empty_like(water)
+    conduct(darcy_flux, water, grid.width, grid.dispersivity, grid.tortuosity, grid.diffusion,
+            transport.first_type, conductance, lean_left, lean_right)
+    return conductance, Slopes(lean_left, lean_right, transport.uneven, transport.limiter)
 
 
 def _slope_bias(transport: Transport, water: np.ndarray, darcy_flux: np.ndarray, dt: float) -> np.ndarray:
@@ -179,7 +210,7 @@ def _slope_bias(transport: Transport, water: np.ndarray, darcy_flux: np.ndarray,
 
 
 def _disperse(
-    elimination: Elimination, dissolved: np.ndarray, swelling: np.ndarray, surplus: np.ndarray, passed: np.ndarray
+    made: Elimination, dissolved: np.ndarray, swelling: np.ndarray, surplus: np.ndarray, passed: np.ndarray
 ) -> None:
-    spread(dissolved, swelling, surplus, elimination.hold, elimination.inverse, elimination.lower,
-           elimination.upper, passed)  # fmt: skip
+    change = np.empty((LANES, swelling.size))
+    spread(dissolved, swelling, surplus, made.hold, made.inverse, made.lower, made.upper, change, passed)

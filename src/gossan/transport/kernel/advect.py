@@ -1,8 +1,8 @@
-"""Passages through every face with the moving water and by dispersion: second order, limited, conservative.
+"""Passages through every face with the moving water and by dispersion: limited, conservative.
 
-Monotonic upwind with linear reconstruction (van Leer 1979, J. Comput. Phys. 32, 101-136). The loops that count
-run over contiguous slices, one block at a time: that is what lets them use vector registers and the
-fastest cache. The few cells that differ from a neighbour in width, and the first, go one by one.
+Monotonic upwind with linear reconstruction (van Leer 1979, J. Comput. Phys. 32, 101-136). The loops that
+count run over contiguous slices, one block at a time: that is what lets them use vector registers and the
+fastest cache. The few cells with a neighbour of another size or material, and the first, go one by one.
 """
 
 from __future__ import annotations
@@ -16,15 +16,15 @@ from gossan.base.jit import kernel
 BLOCK = 1024  # cells; the scratch rows of one block stay in the first-level cache
 FLAT = 1e-10  # variation below this share of the value is rounding (equilibria are solved to about 1e-12)
 
-FIRST_ORDER, MINMOD, VAN_LEER = 0, 1, 2  # the limiters, numbered by the power of the kink in 1 - kink^power
+FIRST_ORDER, MINMOD, VAN_LEER = 0, 1, 2  # the limiters
 
 
 class Slopes(NamedTuple):
     """What slope limiting needs of the grid.
 
-    lean_left, lean_right  (cell,) 1: the cell's half width over the distance to its neighbour's centre,
-                           1/2 between equal cells; a linear profile's rise to the face over its difference
-    uneven                 (n,) int, rising: the cells that lean otherwise than 1/2, the first one always
+    lean_left, lean_right  (cell,) 1: how much of the difference to a neighbour lies on this side of the face,
+                           1/2 between equal cells
+    uneven                 (n,) int, rising: the cells to take one by one, at the ends of every layer
     limiter                int, FIRST_ORDER, MINMOD or VAN_LEER
     """
 
@@ -35,48 +35,51 @@ class Slopes(NamedTuple):
 
 
 @kernel
-def kink(fall, rise, value):
-    """How far a profile bends in a cell: 0 straight, 1 level on one side, above 1 at an extremum.
+def evenness(fall, rise, value):
+    """The lesser of two changes over their sum: 1/2 straight, 0 level on one side, below 0 at an extremum.
 
-    fall and rise are the changes from the left and to the right, taken to the cell's own faces.
+    fall and rise are the changes from the left and to the right, taken to the cell's own faces. Written so
+    that it keeps its digits near 0: a trace beside a high neighbour must not be cut below zero.
     """
-    bend = abs((fall - rise) / (fall + rise))
-    return bend if abs(fall) + abs(rise) > FLAT * abs(value) else 0.0
+    inverse = 1.0 / (fall + rise)
+    left, right = fall * inverse, rise * inverse
+    lesser = left if left < right else right
+    return lesser if abs(fall) + abs(rise) > FLAT * abs(value) else 0.5
 
 
 @kernel
-def share_of(bend, bias, limiter):
-    """The share of its slope that a limiter leaves a cell whose profile bends so much (equations.md, 23).
+def share_of(even, bias, limiter):
+    """The share of its slope that a limiter leaves a cell whose profile is so even (equations.md, 23).
 
-    Van Leer's harmonic mean of two slopes is 1 - kink^2 of their plain mean, the lesser one is 1 - kink. A
-    biased mean is cut further where it would put the value at the face beyond the neighbour's.
+    Van Leer's harmonic mean of two slopes is 4 e (1 - e) of their plain mean, the lesser slope is 2 e of it.
+    A biased mean is cut further where it would put the value at the face beyond the neighbour's.
     """
-    share = 1.0 - bend * bend if limiter == VAN_LEER else 1.0 - bend
-    cut = 2.0 * (1.0 - bend) / (1.0 + bias * bend)
+    share = 4.0 * even * (1.0 - even) if limiter == VAN_LEER else 2.0 * even
+    cut = 4.0 * even / (1.0 + bias * (1.0 - 2.0 * even))
     share = cut if cut < share else share
-    return share if share > 0.0 and limiter != FIRST_ORDER else 0.0
+    return share if even > 0.0 and limiter != FIRST_ORDER else 0.0
 
 
 @kernel
-def find_kinks(row, most):
-    """Raise `most` to this solute's kink, in cells between neighbours of equal width; row (cell + 2,)."""
-    for i in range(most.shape[0]):
-        bend = kink(row[i + 1] - row[i], row[i + 2] - row[i + 1], row[i + 1])
-        most[i] = bend if bend > most[i] else most[i]
+def find_least(row, least):
+    """Lower `least` to this solute's evenness, in cells between equal neighbours; row (cell + 2,)."""
+    for i in range(least.shape[0]):
+        even = evenness(row[i + 1] - row[i], row[i + 2] - row[i + 1], row[i + 1])
+        least[i] = even if even < least[i] else least[i]
 
 
 @kernel
-def weigh(most, bias, limiter, weight_left, weight_right):
-    """From kinks to the weights of the two differences in the rise from a cell's centre to its face."""
-    for i in range(most.shape[0]):
-        share = 0.25 * share_of(most[i], bias[i], limiter)
+def weigh(least, bias, limiter, weight_left, weight_right):
+    """From evenness to the weights of the two differences in the rise from a cell's centre to its face."""
+    for i in range(least.shape[0]):
+        share = 0.25 * share_of(least[i], bias[i], limiter)
         weight_left[i] = share * (1.0 - bias[i])
         weight_right[i] = share * (1.0 + bias[i])
 
 
 @kernel
 def uneven_share(dissolved, inflow, start, end, i, slopes):
-    """The share of the central slope in a cell whose neighbours are not its size, over a group of solutes.
+    """The share of the central slope in a cell whose neighbours are not its equals, over a group of solutes.
 
     Besides the limiter, the value at each face stays between the cell's own and that neighbour's.
     """
@@ -85,10 +88,10 @@ def uneven_share(dissolved, inflow, start, end, i, slopes):
         left = inflow[k] if i == 0 else dissolved[k, i - 1]
         drop, climb = dissolved[k, i] - left, dissolved[k, i + 1] - dissolved[k, i]
         fall, rise = slopes.lean_left[i] * drop, slopes.lean_right[i] * climb
-        share = min(share, share_of(kink(fall, rise, dissolved[k, i]), 0.0, slopes.limiter))
+        share = min(share, share_of(evenness(fall, rise, dissolved[k, i]), 0.0, slopes.limiter))
         room, middle = min(abs(drop), abs(climb)), 0.5 * abs(fall + rise)
         if share * middle > room > 0.0:
-            share = room / middle
+            share = (1.0 - FLAT) * room / middle  # just short of it: rounding must not pass it
     return share
 
 
@@ -107,24 +110,24 @@ def cross(row, weight_left, weight_right, forth, hold, passed):
 
 @kernel
 def cross_back(row, flux_dt, passed):
-    """Add what backward flow takes along, first order: pores that open under little flow make only a trickle."""
+    """Add what backward flow takes along, first order: where pores open under little flow, a trickle."""
     for f in range(passed.shape[0]):
         if flux_dt[f] < 0.0:
             passed[f] += flux_dt[f] * row[f]
 
 
 @kernel
-def set_weights(dissolved, inflow, start, end, first, bias, slopes, most, weight_left, weight_right):
+def set_weights(dissolved, inflow, start, end, first, bias, slopes, least, weight_left, weight_right):
     """The weights for one group, solutes start to end, in the cells from `first` on."""
     cells = dissolved.shape[1]
-    last = first + most.shape[0]
-    most[:] = 0.0
+    last = first + least.shape[0]
+    least[:] = 0.5
     low, high = max(first, 1), min(last, cells - 1)
     for k in range(start, end):
-        find_kinks(dissolved[k, low - 1 : high + 1], most[low - first : high - first])
+        find_least(dissolved[k, low - 1 : high + 1], least[low - first : high - first])
     if last == cells:
-        most[last - first - 1] = np.inf  # no gradient at the outlet: no slope
-    weigh(most, bias[first:last], slopes.limiter, weight_left, weight_right)
+        least[last - first - 1] = 0.0  # no gradient at the outlet: no slope
+    weigh(least, bias[first:last], slopes.limiter, weight_left, weight_right)
     for i in slopes.uneven:
         if first <= i < min(last, cells - 1):
             share = uneven_share(dissolved, inflow, start, end, i, slopes)
@@ -133,7 +136,7 @@ def set_weights(dissolved, inflow, start, end, first, bias, slopes, most, weight
 
 
 @kernel
-def carry(dissolved, inflow, bounds, darcy_flux, conductance, bias, slopes, dt, passed):
+def carry(dissolved, inflow, bounds, darcy_flux, conductance, bias, slopes, dt, scratch, passed):
     """Carry every solute through every face for dt (equations.md, 21 to 23).
 
     dissolved    (solute, cell) mol m-3 of water
@@ -142,12 +145,12 @@ def carry(dissolved, inflow, bounds, darcy_flux, conductance, bias, slopes, dt, 
     darcy_flux   (face,) m s-1, positive downstream; the upstream side of each face is taken by its sign
     conductance  (face,) m s-1, of dispersion; 0 at a closed face and at the outlet
     bias         (cell,) 1, in [0, 1): the weight of the downstream over the upstream difference in a slope
-    slopes       Slopes; dt s
+    slopes       Slopes; dt s; scratch (6, BLOCK + 1)
     passed       (solute, face) mol m-2, positive downstream, overwritten
     """
     solutes, cells = dissolved.shape
-    most, weight_left, weight_right = np.empty(BLOCK + 1), np.empty(BLOCK + 1), np.empty(BLOCK + 1)
-    flux_dt, forth, hold = np.empty(BLOCK), np.empty(BLOCK), np.empty(BLOCK)
+    least, weight_left, weight_right = scratch[0], scratch[1], scratch[2]
+    flux_dt, forth, hold = scratch[3], scratch[4], scratch[5]
     for k in range(solutes):
         entering = inflow[k] if darcy_flux[0] > 0.0 else dissolved[k, 0]
         passed[k, 0] = dt * (darcy_flux[0] * entering + conductance[0] * (inflow[k] - dissolved[k, 0]))
@@ -164,13 +167,13 @@ def carry(dissolved, inflow, bounds, darcy_flux, conductance, bias, slopes, dt, 
         for g in range(bounds.shape[0] - 1):
             start, end = bounds[g], bounds[g + 1]
             set_weights(dissolved, inflow, start, end, face - 1, bias, slopes,
-                        most[: count + 1], weight_left[: count + 1], weight_right[: count + 1])  # fmt: skip
+                        least[: count + 1], weight_left[: count + 1], weight_right[: count + 1])
             inner_left, inner_right, inner_forth, inner_hold = (
-                weight_left[skip:], weight_right[skip:], forth[skip:], hold[skip:])  # fmt: skip
+                weight_left[skip:], weight_right[skip:], forth[skip:], hold[skip:])
             for k in range(start, end):
                 row, out = dissolved[k], passed[k, face : face + count]
                 cross(row[face - 2 + skip : face + count], inner_left, inner_right, inner_forth, inner_hold,
-                      out[skip:])  # fmt: skip
+                      out[skip:])
                 if skip:
                     fall = row[0] - row[1]
                     rise = weight_left[0] * (row[0] - inflow[k]) - weight_right[0] * fall

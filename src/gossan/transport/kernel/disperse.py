@@ -1,8 +1,6 @@
-"""Mechanical dispersion and diffusion: how well each face conducts, and a step that is stable at any length."""
+"""Dispersion and diffusion: how well each face conducts, and a step that is stable at any length."""
 
 from __future__ import annotations
-
-import numpy as np
 
 from gossan.base.jit import kernel
 
@@ -10,29 +8,37 @@ LANES = 12  # solutes swept together: their chains of dependent operations hide 
 
 
 @kernel
-def conduct(darcy_flux, water, width, dispersivity, tortuosity, diffusion, out):
+def conduct(darcy_flux, water, width, dispersivity, tortuosity, diffusion, first_type,
+            out, lean_left, lean_right):
     """How well each face conducts dispersion: flux over difference of concentration (equations.md, 24).
 
     darcy_flux (face,) m s-1; water (cell,) m3 m-3; width, dispersivity (cell,) m
     tortuosity (cell,) 1, NaN for the cube root of the water content; diffusion (cell,) m2 s-1, in free water
-    out        (face,) m s-1: both half cells in series; 0 at inlet and outlet
-    Returns    m s-1: what an inlet that holds its concentration conducts
+    first_type bool, whether the inlet holds the concentration
+    out        (face,) m s-1: both half cells in series; 0 at the outlet, and at an inlet that takes a flux
+    leans      (cell,) 1, see `Slopes`: the share of a face's difference that falls to this side of it
 
     The coefficient is dispersivity times pore velocity plus tortuosity times diffusion; times water content.
+    The profile at a third-type inlet is c_in + (D/v) dc/dx: as if the inflow stood D/v before the face.
     """
     cells = width.shape[0]
     out[0] = out[cells] = 0.0
-    before = inlet = 0.0
+    lean_right[cells - 1] = 0.5
+    before = 0.0
     for i in range(cells):
         winding = tortuosity[i] if tortuosity[i] == tortuosity[i] else water[i] ** (1.0 / 3.0)
         speed = 0.5 * abs(darcy_flux[i] + darcy_flux[i + 1])
         here = 2.0 * (dispersivity[i] * speed + water[i] * winding * diffusion[i]) / width[i]
         if i > 0:
-            out[i] = before * here / (before + here) if before + here > 0.0 else 0.0
+            both = before + here
+            share = before / both if both > 0.0 else width[i] / (width[i - 1] + width[i])
+            out[i] = here * share if both > 0.0 else 0.0
+            lean_left[i], lean_right[i - 1] = share, 1.0 - share
+        elif first_type:
+            out[0], lean_left[0] = here, 1.0
         else:
-            inlet = here
+            lean_left[0] = darcy_flux[0] / (darcy_flux[0] + here) if darcy_flux[0] > 0.0 else 0.0
         before = here
-    return inlet
 
 
 @kernel
@@ -93,18 +99,17 @@ def pass_change(change, hold, passed):
 
 
 @kernel
-def spread(dissolved, swelling, surplus, hold, inverse, lower, upper, passed):
+def spread(dissolved, swelling, surplus, hold, inverse, lower, upper, change, passed):
     """Let what a surplus of passages changes disperse implicitly, and add the passages that this makes.
 
     Solves  storage x = surplus in - surplus out - swelling dissolved + dt div(conductance grad x)  for the
     change x of the concentrations, mol m-3, and adds dt conductance grad x to passed (equations.md, 25).
 
-    dissolved (solute, cell) mol m-3; swelling (cell,) m of water, what a cell keeps of the water's own passages
+    dissolved (solute, cell) mol m-3; swelling (cell,) m, what a cell keeps of the water passing through it
     surplus   (solute, face) mol m-2; hold, inverse, lower, upper as `factor` left them
-    passed    (solute, face) mol m-2, added to; may be the same array as surplus
+    change    (LANES, cell) scratch; passed (solute, face) mol m-2, added to; may be the same array as surplus
     """
     solutes, cells = dissolved.shape
-    change = np.zeros((LANES, cells))
     for first in range(0, solutes, LANES):
         lanes = min(LANES, solutes - first)
         change[lanes:] = 0.0
