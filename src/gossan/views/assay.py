@@ -1,0 +1,212 @@
+"""What a laboratory report says once its water is worked out: balance, species, minerals, gases."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
+
+from gossan.base.errors import Fault, InputError
+from gossan.base.wrong import did_you_mean
+from gossan.case.model import Case
+from gossan.case.read import case_from_data, read_case
+from gossan.case.waters import constants_of, detection_notes, excluded_by, read_waters
+from gossan.chemistry.water import REFUSE_PERCENT, WARN_PERCENT, Water
+from gossan.constants.entries import Table
+from gossan.constants.find import find_mineral
+
+BAR_PER_ATMOSPHERE = 1.01325  # exact
+# ppm of H2S in air.  Source: NIOSH ceiling (10 minutes) and concentration immediately dangerous to life, as
+# tabulated in PMC5777517, table T3
+H2S_CEILING, H2S_DANGEROUS = 10.0, 100.0
+
+
+@dataclass(frozen=True, slots=True)
+class Part:
+    """A dissolved species, and its share of one component."""
+
+    component: str
+    species: str
+    molality: float  # mol per kg of water
+    share: float  # of the component's total
+
+
+@dataclass(frozen=True, eq=False)
+class WaterAssay:
+    """One water worked out; amounts in mol per kg of water, gases in bar."""
+
+    water: Water
+    balanced_on: str  # the ion that took up the charge imbalance, "pH", or ""
+    forms: frozenset[str]  # minerals that the case lets form
+    warnings: tuple[str, ...]
+
+    @property
+    def name(self) -> str:
+        """As the case calls it."""
+        return self.water.name
+
+    @property
+    def pH(self) -> float:
+        """-log10 of the activity of H^+."""
+        return self.water.pH
+
+    @property
+    def temperature(self) -> float:
+        """In K."""
+        return self.water.system.temperature
+
+    @property
+    def ionic_strength(self) -> float:
+        """In mol per kg of water."""
+        return self.water.ionic_strength
+
+    @property
+    def charge_error_percent(self) -> float:
+        """Of the report, before anything was balanced."""
+        return self.water.charge_error_percent
+
+    @property
+    def acceptance(self) -> str:
+        """What the trade's limits of a charge error say of the report."""
+        error = abs(self.charge_error_percent)
+        if error <= WARN_PERCENT:
+            return f"within the usual limit of {WARN_PERCENT:g} %"
+        if error <= REFUSE_PERCENT:
+            return f"above the usual limit of {WARN_PERCENT:g} %, within {REFUSE_PERCENT:g} %"
+        return f"above {REFUSE_PERCENT:g} %: not acceptable as it stands"
+
+    @property
+    def dissolved(self) -> dict[str, float]:
+        """Totals by component."""
+        return self.water.totals
+
+    @property
+    def species(self) -> dict[str, tuple[float, float]]:
+        """Molality and log10 of the activity by species."""
+        found = self.water.equilibrium
+        molality, activity = found.molality()[:, 0].tolist(), found.log10_activity()[:, 0].tolist()
+        return dict(zip(found.system.species, zip(molality, activity, strict=True), strict=True))
+
+    @property
+    def saturation(self) -> dict[str, float]:
+        """Saturation index by mineral, the largest first; NaN, last, where a component is absent."""
+        system = self.water.system
+        indices = dict(zip(system.minerals, self.water.equilibrium.saturation()[:, 0].tolist(), strict=True))
+        return dict(sorted(indices.items(), key=lambda item: math.inf if math.isnan(item[1]) else -item[1]))
+
+    @property
+    def gases(self) -> dict[str, float]:
+        """Partial pressure by gas, bar; NaN where a component is absent."""
+        system = self.water.system
+        pressures = BAR_PER_ATMOSPHERE * self.water.equilibrium.gas_pressure()[:, 0]
+        return dict(zip(system.gases, pressures.tolist(), strict=True))
+
+    def parts(self, least: float = 0.001) -> list[Part]:
+        """The species that hold at least this share of a component, the largest of each first."""
+        found = self.water.equilibrium
+        system, molality = found.system, found.molality()[:, 0]
+        parts = []
+        for k, component in enumerate(system.components):
+            total = float(found.amount[k, 0])
+            if k == 0 or total <= 0.0:
+                continue
+            held = system.stoichiometry[:, k] * molality
+            for s in sorted(range(len(held)), key=lambda s: -held[s]):
+                share = float(held[s]) / total
+                if share >= least:
+                    parts.append(Part(component, system.species[s], float(molality[s]), share))
+        return parts
+
+
+@dataclass(frozen=True, eq=False)
+class Assay:
+    """The waters of a case, worked out, by name."""
+
+    waters: dict[str, WaterAssay]
+
+    def __getitem__(self, name: str) -> WaterAssay:
+        return self.waters[name]
+
+    def __repr__(self) -> str:
+        lines = [f"  {name}: pH {one.pH:.2f}, ionic strength {one.ionic_strength:.3g} mol/kg, charge error "
+                 f"{one.charge_error_percent:+.1f} %" for name, one in self.waters.items()]
+        return "\n".join(["<Assay", *lines]) + ">"
+
+    def to_json(self) -> dict[str, Any]:
+        """The machine-readable result of `gossan assay` (contract, section 3)."""
+        return {"waters": {name: _json(one) for name, one in self.waters.items()}}
+
+
+def assay(water: Case | str | Path | Mapping[str, Any], name: str | None = None, **settings: Any) -> Assay:
+    """Work out the waters of a case, or one water given as the keys of its table.
+
+    water     a Case, the path of its file, or {"pH": 6.5, "analysis": {"Zn": "24 mg/L"}}
+    name      of one water of the case; default all of them
+    settings  other tables of a case beside a water given as keys: temperature="12 degC", chemistry={...}
+    Raises    InputError
+    """
+    if isinstance(water, Mapping):
+        case = case_from_data({**settings, "waters": {name or "water": dict(water)}}, "assay")
+    else:
+        case = water if isinstance(water, Case) else read_case(water)
+    names = None if name is None else [known_water(case, name)]
+    forms = _forms(case, constants_of(case))
+    found = read_waters(case, names)
+    return Assay({each: _worked_out(case, each, read, forms) for each, read in found.items()})
+
+
+def _worked_out(case: Case, name: str, water: Water, forms: frozenset[str]) -> WaterAssay:
+    warnings = (*water.warnings, *detection_notes(case, name), *_cautions(water))
+    return WaterAssay(water, case.waters[name].balance_on, forms, warnings)
+
+
+def known_water(case: Case, name: str) -> str:
+    """The name of a water of a case; raises InputError where the case has none of that name."""
+    if name not in case.waters:
+        cure = did_you_mean(name, case.waters)
+        raise InputError([Fault(case.file, 0, "", f'no water is called "{name}"', cure)])
+    return name
+
+
+def _forms(case: Case, table: Table) -> frozenset[str]:
+    """The minerals that a case lets form."""
+    chemistry = case.chemistry
+    if chemistry.minerals is not None:
+        listed = {find_mineral(table, name).name for name in chemistry.minerals}
+    else:
+        listed = {name for name, mineral in table.minerals.items() if mineral.forms}
+        listed |= {find_mineral(table, name).name for name in chemistry.also}
+    return frozenset(listed - excluded_by(case, table))
+
+
+def _cautions(water: Water) -> list[str]:
+    system = water.system
+    if "H2S" not in system.gases:
+        return []
+    ppm = 1e6 * float(water.equilibrium.gas_pressure()[system.gases.index("H2S"), 0])
+    if not ppm > H2S_CEILING:
+        return []
+    return [
+        f"hydrogen sulfide: air over this water can hold {ppm:.3g} ppm; the ceiling for people is "
+        f"{H2S_CEILING:g} ppm and {H2S_DANGEROUS:g} ppm is immediately dangerous (NIOSH); smell is no warning"
+    ]
+
+
+def _json(one: WaterAssay) -> dict[str, Any]:
+    return {
+        "pH": one.pH,
+        "pe": None,
+        "temperature_K": one.temperature,
+        "ionic_strength": one.ionic_strength,
+        "charge_error_percent": one.charge_error_percent,
+        "dissolved": one.dissolved,
+        "species": {
+            name: {"molality": molality, "log10_activity": activity}
+            for name, (molality, activity) in one.species.items()
+        },
+        "saturation": one.saturation,
+        "gases": one.gases,
+        "warnings": list(one.warnings),
+    }

@@ -1,0 +1,138 @@
+"""What a case would run, found without running it."""
+
+from __future__ import annotations
+
+import math
+import time as wall
+from dataclasses import dataclass
+from itertools import islice
+from typing import Any
+
+from gossan.base.errors import SolveError
+from gossan.case.build import build, first_pace
+from gossan.case.model import Case
+from gossan.case.waters import read_waters
+from gossan.coupling.march import march
+from gossan.coupling.pores import flow
+from gossan.coupling.problem import Problem
+from gossan.transport.step import courant, explicit_limit
+from gossan.views.assay import assay
+
+TRIED = 6  # first steps that are timed, and forgotten
+WARMING = 2  # of them that are not counted: compiled code is being loaded
+
+
+@dataclass(frozen=True)
+class Plan:
+    """A column that would be run."""
+
+    case: Case
+    problem: Problem
+    darcy_flux: float  # m s-1 at the start
+    residence: float  # s, of one pore volume at that flux
+    duration: float  # s, at that flux where the case counts pore volumes
+    pore_volumes: float
+    records: int
+    steps: int
+    seconds: float | None  # of wall clock; None where the first steps found no solution
+    warnings: dict[str, tuple[str, ...]]  # by water
+
+    @property
+    def may_form(self) -> list[str]:
+        """The minerals that may form and dissolve."""
+        system = self.problem.system
+        return [name for name, may in zip(system.minerals, system.may_form, strict=True) if may]
+
+    @property
+    def may_dissolve(self) -> list[str]:
+        """The minerals of the start that may only dissolve."""
+        system = self.problem.system
+        return [name for name, may in zip(system.minerals, system.may_form, strict=True) if not may]
+
+
+def has_column(case: Case) -> bool:
+    """Whether a case says anything of a column, or is one of waters alone."""
+    return bool(case.layers or case.flow or case.run)
+
+
+def water_warnings(case: Case) -> dict[str, tuple[str, ...]]:
+    """What is to be said of every water of a case, by water; raises InputError."""
+    return {name: one.warnings for name, one in assay(case).waters.items() if one.warnings}
+
+
+def plan_of(case: Case) -> Plan:
+    """Work out what a case would run; raises InputError with all that is wrong."""
+    case.require_column()
+    read_waters(case)  # all faults of all waters at once, before the column meets the first
+    problem = build(case)
+    assert case.run is not None
+    flux = float(flow(problem, problem.initial, 1.0)[0][0])
+    residence = problem.pore_volume / flux if flux > 0.0 else math.inf
+    by_volume = case.run.duration.unit == "PV"
+    duration = case.run.duration.si * residence if by_volume else case.run.duration.si
+    records = len(problem.records.marks)
+    steps = max(math.ceil(duration / _step(problem)), records)
+    each = _seconds_per_step(problem)
+    return Plan(
+        case=case,
+        problem=problem,
+        darcy_flux=flux,
+        residence=residence,
+        duration=duration,
+        pore_volumes=duration / residence,
+        records=records,
+        steps=steps,
+        seconds=None if each is None else steps * each,
+        warnings=water_warnings(case),
+    )
+
+
+def _step(problem: Problem) -> float:
+    """The length of step that Courant's number and the spread by dispersion allow at the start, s."""
+    state = problem.initial
+    darcy_flux, _ = flow(problem, state, 1.0)
+    unit = courant(problem.transport, state.water, darcy_flux, 1.0)
+    by_courant = problem.max_courant / unit if unit > 0.0 else math.inf
+    by_dispersion = explicit_limit(problem.transport, state.water, darcy_flux)
+    return min(by_courant, by_dispersion) if by_dispersion > by_courant / 3.0 else by_courant
+
+
+def _seconds_per_step(problem: Problem) -> float | None:
+    """Wall-clock time of a step, from the first few, which nobody keeps."""
+    ends = []
+    try:
+        for _ in islice(march(problem, problem.initial, first_pace(problem)), TRIED):
+            ends.append(wall.perf_counter())
+    except SolveError:
+        return None
+    counted = ends[WARMING - 1 :]
+    return (counted[-1] - counted[0]) / (len(counted) - 1) if len(counted) > 1 else 0.0
+
+
+def plan_json(plan: Plan) -> dict[str, Any]:
+    """The machine-readable result of `gossan check` of a column, SI inside."""
+    problem, grid = plan.problem, plan.problem.grid
+    return {
+        "file": plan.case.file,
+        "title": plan.case.title,
+        "cells": len(grid.width),
+        "length_m": grid.length,
+        "layers": [
+            {"name": layer.name, "from_m": layer.start, "length_m": layer.length, "cells": layer.cells,
+             "porosity": said.porosity,
+             "conductivity_m_s": said.conductivity.si if said.conductivity else None}
+            for layer, said in zip(grid.layers, plan.case.layers, strict=True)
+        ],
+        "pore_volume_m": problem.pore_volume,
+        "darcy_flux_m_s": plan.darcy_flux,
+        "residence_s": plan.residence,
+        "duration_s": plan.duration,
+        "pore_volumes": plan.pore_volumes,
+        "steps": plan.steps,
+        "seconds": plan.seconds,
+        "components": list(problem.solutes),
+        "may_form": plan.may_form,
+        "may_dissolve": plan.may_dissolve,
+        "ports": {port.name: port.x for port in problem.ports},
+        "warnings": {name: list(said) for name, said in plan.warnings.items()},
+    }  # fmt: skip
