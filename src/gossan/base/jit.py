@@ -48,5 +48,5 @@ def kernel(function=None, **options):
 
     The global lock is released, division follows IEEE, and no fast-math is used: same input, same bits.
     """
-    settings = {"cache": True, "nogil": True, "error_model": "numpy"} | options
+    settings = {"cache": True, "nogil": True, "error_model": "numpy", "_nrt": False} | options
     return numba.njit(**settings)(function) if function else numba.njit(**settings)

@@ -20,17 +20,14 @@ LN10 = np.log(10.0)
 
 @dataclass(frozen=True, eq=False)
 class Activity:
-    """A law of activity coefficients for a list of species, as the kernels read it.
-
-    Species of one charge (and for the extended Debye-Hueckel law of one ion size) share a kind.
-    """
+    """A law of activity coefficients for a list of species, as the kernels read it; arrays (species,)."""
 
     name: str
     model: int
     debye_hueckel: float  # A on the natural scale, (kg/mol)^0.5
-    kind: np.ndarray  # (species,) int64
-    kind_charge_squared: np.ndarray  # (kind,)
-    kind_size: np.ndarray  # (kind,) B times ion size, (kg/mol)^0.5
+    charge_squared: np.ndarray
+    neutral: np.ndarray  # 1 for a dissolved molecule without charge, else 0
+    size: np.ndarray  # B times ion size, (kg/mol)^0.5
 
     @property
     def valid_to(self) -> float:
@@ -42,20 +39,19 @@ class Activity:
         from gossan.chemistry.kernel.activity import activity_coefficients
 
         strengths = np.atleast_1d(np.asarray(ionic_strength, float))
-        out = np.empty((len(self.kind_size), strengths.size))
-        value, slope = np.empty(len(self.kind_size)), np.empty(len(self.kind_size))
-        for i, strength in enumerate(strengths.flat):
+        out = np.empty((strengths.size, len(self.size)))
+        slope = np.empty(len(self.size))
+        for strength, row in zip(strengths.flat, out, strict=True):
             activity_coefficients(
-                self.model, self.debye_hueckel, self.kind_charge_squared, self.kind_size, strength, value, slope
+                self.model, self.debye_hueckel, self.charge_squared, self.neutral, self.size, strength, row, slope
             )
-            out[:, i] = value
-        return out[self.kind].reshape(len(self.kind), *np.shape(ionic_strength))
+        return out.T.reshape(len(self.size), *np.shape(ionic_strength))
 
 
 def activity_model(
     name: str, a_log10: float, b_per_m: float, charge: np.ndarray, sizes: Sequence[Constant | None]
 ) -> Activity:
-    """Sort species into kinds for a law.
+    """Prepare a law for a list of species.
 
     name  "ideal", "davies" or "debye-hueckel"; a_log10, b_per_m: Debye-Hueckel parameters at T
     charge (species,); sizes (species,) m, None for neutral ones
@@ -68,12 +64,4 @@ def activity_model(
                 if constant is None:
                     raise ValueError("the extended Debye-Hueckel law needs an ion size for every ion")
                 size[s] = b_per_m * constant.value
-    kinds, kind = np.unique(np.column_stack([charge**2, size]), axis=0, return_inverse=True)
-    return Activity(
-        name=name,
-        model=MODELS[name],
-        debye_hueckel=a_log10 * LN10,
-        kind=kind.reshape(-1).astype(np.int64),
-        kind_charge_squared=np.ascontiguousarray(kinds[:, 0]),
-        kind_size=np.ascontiguousarray(kinds[:, 1]),
-    )
+    return Activity(name, MODELS[name], a_log10 * LN10, charge**2, (charge == 0.0).astype(float), size)

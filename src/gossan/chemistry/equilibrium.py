@@ -52,7 +52,7 @@ class Equilibrium:
 
 def log10_activity(system: System, ln_activity: np.ndarray) -> np.ndarray:
     """(species, cell): log10 of the activity of every species from those of the components."""
-    ln = system.stoichiometry @ ln_activity + system.matrices.ln_k[:, None]
+    ln = system.stoichiometry @ ln_activity + system.matrices.ln_k[: len(system.species), None]
     return np.where(ln < -1e4, -np.inf, ln / LN10)
 
 
@@ -69,10 +69,7 @@ class Solver:
         from gossan.chemistry.kernel.matrices import bench
 
         self.system = system
-        matrices = system.matrices
-        self._bench = bench(
-            len(system.components), len(system.species), len(system.minerals), len(matrices.kind_size)
-        )
+        self._bench = bench(len(system.components), len(system.matrices.ln_k), len(system.minerals))
 
     def cold(self, kilograms, amount, solid, upper=None) -> Equilibrium:
         """Equilibrate from nothing but the amounts; arguments as for `settled`."""

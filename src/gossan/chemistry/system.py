@@ -8,13 +8,14 @@ from dataclasses import dataclass
 import numpy as np
 
 from gossan.chemistry.activity import DAVIES, Activity, activity_model
-from gossan.chemistry.kernel.matrices import Matrices
+from gossan.chemistry.kernel.matrices import Matrices, padded
 from gossan.constants.entries import Gas, Mineral, Reaction, Species, Table
 from gossan.constants.temperature import log10_k_at
 from gossan.constants.water import debye_huckel, density
 
 LN10 = np.log(10.0)
 PROTON = "H^+"
+NONE = -1e6  # ln K of a species that does not exist: its molality vanishes
 
 
 @dataclass(frozen=True, eq=False)
@@ -96,16 +97,12 @@ def build_system(
     stoichiometry = np.vstack([np.eye(len(names)), _rows((entry.reaction for entry in complexes), place)])
     ln_k = np.array([0.0] * len(names) + [log10_k_at(entry, temperature) for entry in complexes]) * LN10
     law = activity_model(activity, *debye_huckel(temperature), charge, sizes)
-    start, member, coefficient = _by_rows(stoichiometry)
     matrices = Matrices(
-        start=start,
-        member=member,
-        coefficient=coefficient,
-        ln_k=ln_k,
-        charge_squared=charge**2,
-        kind=law.kind,
-        kind_charge_squared=law.kind_charge_squared,
-        kind_size=law.kind_size,
+        stoichiometry=_filled(stoichiometry).T.copy(),
+        ln_k=_filled(ln_k, NONE),
+        charge_squared=_filled(law.charge_squared),
+        neutral=_filled(law.neutral),
+        size=_filled(law.size),
         model=law.model,
         debye_hueckel=law.debye_hueckel,
         solid=_rows((mineral.reaction for mineral in solids), place),
@@ -148,8 +145,9 @@ def _rows(reactions: Iterable[Reaction], place: dict[str, int]) -> np.ndarray:
     return np.array(rows).reshape(-1, len(place))
 
 
-def _by_rows(matrix: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
-    """The non-zero entries of a matrix row after row: where each row starts, column, value."""
-    row, column = np.nonzero(matrix)
-    start = np.concatenate([[0], np.cumsum(np.bincount(row, minlength=len(matrix)))])
-    return start.astype(np.int64), column.astype(np.int64), matrix[row, column]
+def _filled(values: np.ndarray, filling: float = 0.0) -> np.ndarray:
+    """(species, ...) made longer by species that do not exist, so that they fill vector registers."""
+    count = padded(len(values))
+    out = np.full((count, *values.shape[1:]), filling)
+    out[: len(values)] = values
+    return out

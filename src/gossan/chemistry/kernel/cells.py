@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from gossan.base.jit import kernel
 from gossan.base.outcome import SOLVED
-from gossan.chemistry.kernel.complement import NOWHERE, settle
+from gossan.chemistry.kernel.complement import settle
+from gossan.chemistry.kernel.nullspace import NOWHERE
 
 
 @kernel

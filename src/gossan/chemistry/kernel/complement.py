@@ -15,14 +15,15 @@ from gossan.chemistry.kernel.activity import activity_coefficients
 from gossan.chemistry.kernel.newton import balances, convex_step, dual_energy, far_merit, far_step, molalities, near_step
 from gossan.chemistry.kernel.nullspace import (
     GONE,
+    NOWHERE,
     eliminate,
     pivots_follow,
     reduce_species,
     reduce_totals,
 )
+from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponentials
 
 ABSENT = 1e-40  # mol/kg: less than one molecule in a lake; below, a component is left out of the solve
-NOWHERE = -1e6  # ln activity of an absent component
 SETTLED = 1e-7  # a last step below this leaves an error of its square
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
 NEAR = 0.3  # mismatch below which the balances' own Newton step converges
@@ -37,27 +38,30 @@ FAR, CONVEX = 0, 1  # the two ways from afar
 
 @kernel
 def survey(matrices, bench, ionic_strength):
-    """Fill bench.sums and bench.abundance from all ln activities; returns the ionic strength made."""
+    """Fill bench.molality, sums and abundance from all ln activities; returns the ionic strength made."""
     activity_coefficients(
-        matrices.model, matrices.debye_hueckel, matrices.kind_charge_squared, matrices.kind_size,
+        matrices.model, matrices.debye_hueckel, matrices.charge_squared, matrices.neutral, matrices.size,
         ionic_strength, bench.ln_gamma, bench.slope,
-    )
+    )  # fmt: skip
+    exponent, ln_k, ln_gamma = bench.exponent, matrices.ln_k, bench.ln_gamma
+    for s in range(exponent.shape[0]):
+        exponent[s] = ln_k[s] - ln_gamma[s]
     for k in range(bench.sums.shape[0]):
-        bench.sums[k] = 0.0
-        bench.abundance[k] = 0.0
-    made = 0.0
-    for s in range(matrices.ln_k.shape[0]):
-        exponent = matrices.ln_k[s] - bench.ln_gamma[matrices.kind[s]]
-        for e in range(matrices.start[s], matrices.start[s + 1]):
-            exponent += matrices.coefficient[e] * bench.ln_activity[matrices.member[e]]
-        molality = math.exp(exponent) if exponent < 60.0 else math.exp(60.0)
-        bench.molality[s] = molality
-        made += matrices.charge_squared[s] * molality
-        for e in range(matrices.start[s], matrices.start[s + 1]):
-            amount = matrices.coefficient[e] * molality
-            bench.sums[matrices.member[e]] += amount
-            bench.abundance[matrices.member[e]] += abs(amount)
-    return 0.5 * made
+        add_row(exponent, bench.ln_activity[k], matrices.stoichiometry, k)
+    exponentials(exponent, bench.bits, bench.molality)
+    add_up(matrices, bench)
+    return 0.5 * dot(matrices.charge_squared, bench.molality)
+
+
+@kernel
+def add_up(matrices, bench):
+    """Fill bench.sums, abundance, positive and negative (by component) from bench.molality."""
+    for k in range(bench.sums.shape[0]):
+        made, unmade = both_sums(matrices.stoichiometry, k, bench.molality)
+        bench.sums[k] = made - unmade
+        bench.abundance[k] = made + unmade
+        bench.positive[k] = made
+        bench.negative[k] = unmade
 
 
 @kernel
@@ -78,20 +82,24 @@ def approach(matrices, bench, dissolved):
     made = 0.0
     for _ in range(PASSES):
         made = survey(matrices, bench, 0.0)
+        # a component of crowded species moves less: all components of a species move at once
+        share = bench.share
+        for s in range(share.shape[0]):
+            share[s] = 0.0
         for k in range(components):
-            bench.weight[k] = 0.0
-        for s in range(matrices.ln_k.shape[0]):
-            size = 0.0
-            for e in range(matrices.start[s], matrices.start[s + 1]):
-                size += abs(matrices.coefficient[e])
-            for e in range(matrices.start[s], matrices.start[s + 1]):
-                bench.weight[matrices.member[e]] += size * abs(matrices.coefficient[e]) * bench.molality[s]
+            for s in range(share.shape[0]):
+                share[s] += abs(matrices.stoichiometry[k, s]) * bench.molality[s]
+        for k in range(components):
+            crowd = 0.0
+            for s in range(share.shape[0]):
+                crowd += abs(matrices.stoichiometry[k, s]) * share[s]
+            bench.weight[k] = crowd
         for k in range(components):
             if bench.ln_activity[k] == NOWHERE:
                 continue
             total = dissolved[k] if dissolved[k] > 1e-12 or k == matrices.signed else 1e-12
-            positive = 0.5 * (bench.abundance[k] + bench.sums[k]) - (total if total < 0.0 else 0.0)
-            negative = 0.5 * (bench.abundance[k] - bench.sums[k]) + (total if total > 0.0 else 0.0)
+            positive = bench.positive[k] - (total if total < 0.0 else 0.0)
+            negative = bench.negative[k] + (total if total > 0.0 else 0.0)
             ratio = math.log((negative + 1e-300) / (positive + 1e-300))
             crowd = bench.weight[k] / bench.abundance[k] if bench.abundance[k] > 0.0 else 1.0
             bench.ln_activity[k] += ratio / crowd
@@ -145,7 +153,7 @@ def weigh(matrices, bench, active, solid, upper, presence):
     Returns (mineral to drop or fill, mineral to add or loosen): the largest negative amount or excess,
     and the largest contradiction of a saturation ratio.
     """
-    survey_sums(matrices, bench)
+    add_up(matrices, bench)
     drop, add = -1, -1
     worst_amount, worst_ratio = 0.0, SLACK
     for mineral in range(solid.shape[0]):
@@ -179,19 +187,6 @@ def weigh(matrices, bench, active, solid, upper, presence):
 
 
 @kernel
-def survey_sums(matrices, bench):
-    """Fill bench.sums and bench.abundance from the molalities of the last evaluation."""
-    for k in range(bench.sums.shape[0]):
-        bench.sums[k] = 0.0
-        bench.abundance[k] = 0.0
-    for s in range(matrices.ln_k.shape[0]):
-        for e in range(matrices.start[s], matrices.start[s + 1]):
-            amount = matrices.coefficient[e] * bench.molality[s]
-            bench.sums[matrices.member[e]] += amount
-            bench.abundance[matrices.member[e]] += abs(amount)
-
-
-@kernel
 def mark(drop, add, solid, upper, presence, bench):
     """Change the marks that weigh found at fault."""
     if drop >= 0:
@@ -202,23 +197,9 @@ def mark(drop, add, solid, upper, presence, bench):
 
 @kernel
 def reduce_all(matrices, bench, presence):
-    """Eliminate the present minerals and reduce totals and, where the set is new, species."""
-    active = eliminate(matrices, bench, presence, presence.shape[0])
-    free = 0
-    same = bench.active_before[-1] == active
-    for k in range(bench.place.shape[0]):
-        if bench.place[k] >= 0:
-            free += 1
-        same = same and bench.place[k] == bench.place_before[k]
-    for m in range(active):
-        same = same and bench.active_before[m] == bench.active[m]
-    if not same:
-        reduce_species(matrices, bench, active, free)
-        bench.active_before[-1] = active
-        for m in range(active):
-            bench.active_before[m] = bench.active[m]
-        for k in range(bench.place.shape[0]):
-            bench.place_before[k] = bench.place[k]
+    """Eliminate the present minerals and reduce totals and species; returns (minerals, free components)."""
+    active, free = eliminate(matrices, bench, presence)
+    reduce_species(matrices, bench, active, free)
     reduce_totals(bench, active, free)
     return active, free
 
@@ -252,8 +233,8 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
         mode, near, worse = FAR, NEAR, math.inf
         code = ITERATIONS
         for newton in range(NEWTON_LIMIT):
-            made = molalities(matrices, bench, ionic_strength)
-            mismatch = balances(matrices, bench, free)
+            made = molalities(matrices, bench, free, ionic_strength)
+            mismatch = balances(bench, free)
             if last < SETTLED or (mismatch < EXACT and abs(made - ionic_strength) < 1e-13 * made + 1e-30):
                 code = SOLVED
                 break
@@ -274,7 +255,7 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
                 found, rise = near_step(matrices, bench, free, rise)
                 mode, worse = FAR, mismatch
             if not found:
-                merit = far_merit(bench, free) if mode == FAR else dual_energy(matrices, bench, free)
+                merit = far_merit(bench, free) if mode == FAR else dual_energy(bench, free)
                 if merit > best:
                     # the step went too far: back by half of it, or over to the way that always descends
                     shrink = 0.5 if factor > LEAST_SHARE else 1.0
@@ -288,7 +269,7 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
                         mode = CONVEX if mode == FAR else FAR
                     continue
                 best, factor = merit, 1.0
-                going = far_step(matrices, bench, free) if mode == FAR else convex_step(matrices, bench, free)
+                going = far_step(bench, free) if mode == FAR else convex_step(bench, free)
                 if not going:
                     code = SINGULAR
                     break

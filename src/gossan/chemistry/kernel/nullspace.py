@@ -9,49 +9,49 @@ in every residual: that is what keeps free sulfide right where zinc and sulfide 
 from __future__ import annotations
 
 from gossan.base.jit import kernel
+from gossan.chemistry.kernel.vectors import add_row
 
 GONE = -99  # place of a component that is absent
-SIGNED_LAST = 1e6  # H^+ is scarce in neutral water, yet what a new precipitate will leave scarce is its metal
+NOWHERE = -1e6  # ln activity of an absent component: whatever is made of it vanishes
+SIGNED_LAST = 1e6  # H^+ is scarce in neutral water, yet what a new precipitate leaves scarce is its metal
 NOTHING = 1e-11  # stoichiometry below this is a rounding remainder
 
 
 @kernel
-def eliminate(matrices, bench, presence, count):
+def eliminate(matrices, bench, presence):
     """Choose a pivot for every mineral marked present and reduce their rows; returns how many stay.
 
     presence (mineral,) int8 is read (1 = present); one whose ties follow from the others' is set to 0.
     bench.place must hold GONE for absent components; free and place are set for all others.
+    Returns (minerals that stay, free components).
     """
-    solid = matrices.solid
+    solid, turns, rows, place, pivot = matrices.solid, bench.turns, bench.rows, bench.place, bench.pivot
+    abundance = bench.abundance
     components = solid.shape[1]
-    turns, rows = bench.turns, bench.rows
     for k in range(components):
-        if bench.place[k] != GONE:
-            bench.place[k] = 0
+        if place[k] != GONE:
+            place[k] = 0
     n = 0
     for mineral in range(presence.shape[0]):
         if presence[mineral] != 1:
             continue
         for k in range(components):
             rows[n, k] = solid[mineral, k]
-        for m in range(count):
+        for m in range(n):
             turns[n, m] = 0.0
         turns[n, n] = 1.0
         for r in range(n):
-            share = rows[n, bench.pivot[r]]
+            share = rows[n, pivot[r]]
             if share != 0.0:
                 for k in range(components):
                     rows[n, k] -= share * rows[r, k]
                 for m in range(n):
                     turns[n, m] -= share * turns[r, m]
-                rows[n, bench.pivot[r]] = 0.0
+                rows[n, pivot[r]] = 0.0
         best, scarcest = -1, 0.0
         for k in range(components):
-            if (
-                abs(rows[n, k]) > NOTHING
-                and bench.place[k] == 0
-            ):
-                scarcity = bench.abundance[k] * (SIGNED_LAST if k == matrices.signed else 1.0)
+            if abs(rows[n, k]) > NOTHING and place[k] == 0:
+                scarcity = abundance[k] * (SIGNED_LAST if k == matrices.signed else 1.0)
                 if best < 0 or scarcity < scarcest:
                     best, scarcest = k, scarcity
         if best < 0:
@@ -73,58 +73,63 @@ def eliminate(matrices, bench, presence, count):
                 for m in range(n + 1):
                     turns[r, m] -= share * turns[n, m]
         bench.active[n] = mineral
-        bench.pivot[n] = best
-        bench.place[best] = -1 - n
+        pivot[n] = best
+        place[best] = -1 - n
         n += 1
     f = 0
     for k in range(components):
-        if bench.place[k] == 0:
-            bench.place[k] = f
+        if place[k] == 0:
+            place[k] = f
             bench.free[f] = k
             f += 1
-    return n
+    return n, f
 
 
 @kernel
 def reduce_species(matrices, bench, active, free):
     """Write every species in the free components alone: its stoichiometry and its constant."""
-    entry = 0
-    row = bench.weight
-    for s in range(matrices.ln_k.shape[0]):
-        bench.reduced_start[s] = entry
-        ln_k = matrices.ln_k[s]
-        for j in range(free):
-            row[j] = 0.0
-        for e in range(matrices.start[s], matrices.start[s + 1]):
-            value = matrices.coefficient[e]
-            place = bench.place[matrices.member[e]]
-            if place >= 0:
-                row[place] += value
-            elif place == GONE:
-                ln_k = -1e6  # a species of an absent component: its molality underflows to zero
-            else:
-                r = -1 - place
-                for m in range(active):
-                    ln_k += value * bench.turns[r, m] * matrices.solid_ln_k[bench.active[m]]
-                for j in range(free):
-                    row[j] -= value * bench.rows[r, bench.free[j]]
-        bench.reduced_ln_k[s] = ln_k
-        for j in range(free):
-            if abs(row[j]) > NOTHING:
-                bench.reduced_member[entry] = j
-                bench.reduced_coefficient[entry] = row[j]
-                entry += 1
-    bench.reduced_start[matrices.ln_k.shape[0]] = entry
+    stoichiometry, ln_k = matrices.stoichiometry, matrices.ln_k
+    reduced, reduced_ln_k, rows = bench.reduced, bench.reduced_ln_k, bench.rows
+    species = ln_k.shape[0]
+    for s in range(species):
+        reduced_ln_k[s] = ln_k[s]
+    for k in range(stoichiometry.shape[0]):
+        if bench.place[k] == GONE:
+            add_row(reduced_ln_k, NOWHERE, stoichiometry, k)
+    for r in range(active):
+        add_row(reduced_ln_k, pivot_constant(matrices, bench, active, r), stoichiometry, bench.pivot[r])
+    for j in range(free):
+        k = bench.free[j]
+        for s in range(species):
+            reduced[j, s] = stoichiometry[k, s]
+        for r in range(active):
+            share = rows[r, k]
+            if share != 0.0:
+                p = bench.pivot[r]
+                for s in range(species):
+                    value = reduced[j, s] - share * stoichiometry[p, s]
+                    reduced[j, s] = value if abs(value) > NOTHING else 0.0
+
+
+@kernel
+def pivot_constant(matrices, bench, active, row):
+    """The ln activity of a pivot where all free components have ln activity 0."""
+    value = 0.0
+    for m in range(active):
+        value += bench.turns[row, m] * matrices.solid_ln_k[bench.active[m]]
+    return value
 
 
 @kernel
 def reduce_totals(bench, active, free):
     """Subtract the pivots' totals from the free ones', keeping what rounding would lose (two-sum)."""
+    rows, total = bench.rows, bench.total
     for j in range(free):
-        value = bench.total[bench.free[j]]
+        k = bench.free[j]
+        value = total[k]
         lost = 0.0
         for r in range(active):
-            term = -bench.rows[r, bench.free[j]] * bench.total[bench.pivot[r]]
+            term = -rows[r, k] * total[bench.pivot[r]]
             both = value + term
             part = both - value
             lost += (value - (both - part)) + (term - part)
@@ -136,9 +141,7 @@ def reduce_totals(bench, active, free):
 def pivots_follow(matrices, bench, active, free):
     """Set the ln activities of the pivots from those of the free components."""
     for r in range(active):
-        value = 0.0
-        for m in range(active):
-            value += bench.turns[r, m] * matrices.solid_ln_k[bench.active[m]]
+        value = pivot_constant(matrices, bench, active, r)
         for j in range(free):
             value -= bench.rows[r, bench.free[j]] * bench.ln_activity[bench.free[j]]
         bench.ln_activity[bench.pivot[r]] = value

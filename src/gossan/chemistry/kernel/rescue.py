@@ -6,8 +6,8 @@ import math
 
 from gossan.base.jit import kernel
 from gossan.chemistry.kernel.complement import approach, set_totals, survey
-from gossan.chemistry.kernel.complement import NOWHERE
-from gossan.chemistry.kernel.nullspace import GONE
+from gossan.chemistry.kernel.nullspace import GONE, NOWHERE
+from gossan.chemistry.kernel.vectors import row_dot
 from gossan.chemistry.kernel.dense import solve_general
 
 LIMIT = 300  # steps
@@ -60,8 +60,8 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
                 matrix[i, j] = 0.0
         for k in range(components):
             total = bench.total[k]
-            bench.positive[k] = 0.5 * (bench.abundance[k] + bench.sums[k]) - (total if total < 0.0 else 0.0)
-            bench.negative[k] = 0.5 * (bench.abundance[k] - bench.sums[k]) + (total if total > 0.0 else 0.0)
+            bench.positive[k] -= total if total < 0.0 else 0.0
+            bench.negative[k] += total if total > 0.0 else 0.0
             for m in range(minerals):
                 part = matrices.solid[m, k] * amount[m]
                 if part > 0.0:
@@ -74,27 +74,22 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
                 matrix[k, k] = 1.0
                 continue
             # far: logarithms reach further; their slope is the balances' own, row by row
-            right[k] = math.log((bench.negative[k] + 1e-300) / (bench.positive[k] + 1e-300))
+            right[k] = math.log((bench.negative[k] + 1e-290) / (bench.positive[k] + 1e-290))
             worst = max(worst, abs(right[k]))
             for m in range(minerals):
                 value = matrices.solid[m, k]
                 if value != 0.0:
                     side = bench.positive[k] if value * amount[m] > 0.0 else bench.negative[k]
-                    matrix[k, components + m] = value * reach[m] / (side + 1e-300)
-        for s in range(matrices.ln_k.shape[0]):
-            exponent = matrices.ln_k[s] - bench.ln_gamma[matrices.kind[s]]
-            for e in range(matrices.start[s], matrices.start[s + 1]):
-                exponent += matrices.coefficient[e] * bench.ln_activity[matrices.member[e]]
-            molality = math.exp(min(exponent, 60.0))
-            for e in range(matrices.start[s], matrices.start[s + 1]):
-                k = matrices.member[e]
-                if bench.place[k] == GONE:
-                    continue
-                value = matrices.coefficient[e]
-                side = bench.positive[k] if value > 0.0 else bench.negative[k]
-                share = value * molality / (side + 1e-300)
-                for d in range(matrices.start[s], matrices.start[s + 1]):
-                    matrix[k, matrices.member[d]] += share * matrices.coefficient[d]
+                    matrix[k, components + m] = value * reach[m] / (side + 1e-290)
+        for k in range(components):
+            if bench.place[k] == GONE:
+                continue
+            positive, negative = bench.positive[k] + 1e-290, bench.negative[k] + 1e-290
+            for s in range(matrices.ln_k.shape[0]):
+                value = matrices.stoichiometry[k, s] * bench.molality[s]
+                bench.share[s] = value / (positive if value > 0.0 else negative)
+            for j in range(components):
+                matrix[k, j] += row_dot(matrices.stoichiometry, j, bench.share)
         for m in range(minerals):
             row = components + m
             under = matrices.solid_ln_k[m]
