@@ -26,20 +26,21 @@ def run(args: argparse.Namespace) -> int:
     """Draw all figures; returns the exit code."""
     from gossan.store.read import open_result
     from gossan.views.figures import all_figures
-    from gossan.views.limits import bounds_of
+    from gossan.views.limits import bounds_of, tracer_masses
     from gossan.views.style import PIXELS_PER_INCH
     from gossan.views.summary import case_of
 
     result = open_result(args.file).loaded()
     try:
-        bounds = bounds_of(case_of(result))
+        case = case_of(result)
+        bounds, masses = bounds_of(case), tracer_masses(case)
     except InputError as error:
         shell.say(f"limits are left out, the case in {args.file} can no longer be read:\n{error}")
-        bounds = []
+        bounds, masses = [], {}
     folder = Path(args.output)
     try:
         folder.mkdir(parents=True, exist_ok=True)
-        for name, figure in all_figures(result, bounds):
+        for name, figure in all_figures(result, bounds, masses):
             path = folder / f"{Path(args.file).stem}-{name}.{args.format}"
             figure.savefig(path, dpi=PIXELS_PER_INCH)
             shell.write([f"{path}\n"])

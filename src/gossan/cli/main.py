@@ -12,6 +12,7 @@ from gossan import __version__
 from gossan.base.errors import BAD_INPUT, GAVE_UP, GossanError
 from gossan.cli import shell
 
+PURPOSE = "How long a bed of sediment or reactive mix holds back the metals of mine water, and why."
 COMMANDS = {
     "check": "validate a case and say what would run; runs nothing",
     "assay": "work out the waters of a case: balance, species, saturation",
@@ -56,7 +57,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
             raise
         shell.say(
             f"this is a bug in gossan {__version__}, not a fault of your input: "
-            f"{type(error).__name__}: {error}\nplease report it with the case; {DEBUG}=1 shows where it happened"
+            f"{type(error).__name__}: {error}\n"
+            f"please report it with the case; {DEBUG}=1 shows where it happened"
         )
         return GAVE_UP
 
@@ -100,7 +102,7 @@ def _parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
         prog="gossan",
         usage="gossan COMMAND ...",
-        description="How long a bed of sediment or reactive mix holds back the metals of mine water, and why.",
+        description=PURPOSE,
         epilog=f"commands:\n{commands}\n\n`gossan COMMAND --help` says more.\n{EXIT_CODES}",
         formatter_class=argparse.RawDescriptionHelpFormatter,
     )  # fmt: skip

@@ -84,7 +84,7 @@ def _per_volume(said: Amount, water_density: float) -> float:
 def verdicts(result: Result, bounds: list[Bound]) -> list[Verdict]:
     """Every solute and the pH at every port, those with a limit first within each port."""
     steps = result.steps
-    estimates = np.cumsum(steps.splitting_error.values), steps.time.values
+    estimates = np.sqrt(np.cumsum(steps.splitting_error.values**2)), steps.time.values
     found = []
     for name, port in result.ports.items():
         own = [bound for bound in bounds if bound.port == name]
@@ -150,14 +150,16 @@ def first_outside(
     return float(time[i - 1] + share * interval), 0.5 * interval
 
 
-def _splitting_time(when: float, pore_volumes: float, summed: np.ndarray, ends: np.ndarray) -> float:
+def _splitting_time(when: float, pore_volumes: float, together: np.ndarray, ends: np.ndarray) -> float:
     """The time that the error of stepping stands for, s.
 
-    A step's estimate is relative to at least the feed of one pore volume, so the estimates summed up to then
-    stand for that many pore volumes of feed misplaced; each takes when / pore_volumes. A bound from above:
-    the estimates are those of a scheme one order lower, and errors at a sharp front do not add up.
+    A step's estimate is relative to at least the feed of one pore volume; those of all steps up to then are
+    added as squares, errors of different steps being independent, and stand for that many pore volumes of
+    feed misplaced, each of which takes when / pore_volumes. Measured on the fronts of two metals in 25 cells:
+    20 times and more what the crossing really moves when steps become finer, since the estimates are those
+    of a scheme one order lower and the closed ledger holds a front in place.
     """
     if not len(ends) or pore_volumes <= 0.0:
         return 0.0
     index = min(int(np.searchsorted(ends, when)), len(ends) - 1)
-    return float(summed[index]) * when / pore_volumes
+    return float(together[index]) * when / pore_volumes

@@ -98,7 +98,7 @@ def _effort(summary: Summary) -> Sheet:
     rows = (
         ("simulated", time_text(summary.time)),
         ("steps", f"{summary.steps}"),
-        ("error of the steps", f"{summary.splitting_error:.2g} summed, in pore volumes of feed at most"),
+        ("error of the steps", f"{summary.splitting_error:.2g} of a pore volume of feed, as squares add"),
         ("wall clock", f"{summary.seconds:.3g} s"),
         ("file", str(result.path)),
     )

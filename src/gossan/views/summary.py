@@ -51,7 +51,7 @@ class Summary:
     least_porosity: tuple[float, float]  # and where, m
     stocks: list[Stock]
     ledger: dict[str, float]  # largest error by solute, "water" and "charge"
-    splitting_error: float  # summed
+    splitting_error: float  # of all steps together, as squares add
     steps: int
     seconds: float  # of all its steps, those before a stop too
     time: float  # s, reached
@@ -96,7 +96,7 @@ def summary_of(result: Result, case: Case | None = None) -> Summary:
         least_porosity=(float(porosity.min()), float(result.axes.x[cell])),
         stocks=_stocks(result, width),
         ledger=errors,
-        splitting_error=float(steps.splitting_error.values.sum()),
+        splitting_error=float(np.sqrt(np.sum(steps.splitting_error.values**2))),
         steps=steps.count,
         seconds=float(steps.seconds.values.sum()),
         time=float(profiles.time.values[-1]),

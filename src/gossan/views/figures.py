@@ -1,0 +1,34 @@
+"""All figures of a result: functions from a Result to a Figure, neither shown nor saved."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from typing import TYPE_CHECKING
+
+from gossan.store.read import Result
+from gossan.views import chosen
+from gossan.views.bed_figures import books, pores
+from gossan.views.breakthrough import breakthrough
+from gossan.views.limits import Bound
+from gossan.views.profile_figures import dissolved_profiles, solid_profiles
+
+if TYPE_CHECKING:
+    from matplotlib.figure import Figure
+
+__all__ = ["all_figures", "books", "breakthrough", "dissolved_profiles", "pores", "solid_profiles"]
+
+
+def all_figures(
+    result: Result, bounds: list[Bound] | None = None, masses: dict[str, float] | None = None
+) -> Iterator[tuple[str, Figure]]:
+    """Every figure that a result has something for, with a name for its file.
+
+    bounds  limits to draw (`limits.bounds_of`); masses  kg/mol by tracer
+    """
+    for port in result.ports:
+        yield f"breakthrough-{port}", breakthrough(result, port, bounds, masses)
+    yield "dissolved", dissolved_profiles(result, masses)
+    if chosen.minerals(result):
+        yield "minerals", solid_profiles(result)
+    yield "pores", pores(result)
+    yield "ledger", books(result)
