@@ -179,7 +179,8 @@ def test_where_hydroxide_and_sulfide_cross():
 
 def test_fresh_nickel_sulfide_needs_more_sulfide():
     """What first falls of NiS is so soluble that the aged hydroxide undercuts it at 1 umol/kg, pH 9."""
-    fresh, ripe = (gap("Ni^2+", "theophrastite", sulfide) for sulfide in ("fresh nickel sulfide", "millerite"))
+    sulfides = ("fresh nickel sulfide", "millerite")
+    fresh, ripe = (gap("Ni^2+", "theophrastite", sulfide) for sulfide in sulfides)
     assert fresh < 0.0 < ripe
 
 
