@@ -129,14 +129,14 @@ def set_totals(matrices, bench, dissolved, solid, upper, presence):
             continue
         held = False
         for mineral in range(solid.shape[0]):
-            if matrices.solid[mineral, k] != 0.0 and presence[mineral] != 0:
-                if presence[mineral] == 2:
-                    presence[mineral] = 1  # without this component in the water it cannot but dissolve
-                held = True
+            held = held or (presence[mineral] == 1 and matrices.solid[mineral, k] != 0.0)
         if held:
-            # minerals that were full are present now, and give their share back through the reduction
-            bench.total[k] = bench.total[k] if bench.total[k] > 0.0 else 0.0
-        else:
+            continue
+        for mineral in range(solid.shape[0]):
+            if presence[mineral] == 2 and matrices.solid[mineral, k] != 0.0:
+                presence[mineral] = 1  # nothing else brings this component into the water: it must dissolve
+                held = True
+        if not held:
             bench.place[k] = GONE
     for k in range(dissolved.shape[0]):
         if bench.place[k] == GONE:
@@ -150,11 +150,11 @@ def set_totals(matrices, bench, dissolved, solid, upper, presence):
 def weigh(matrices, bench, active, solid, upper, presence):
     """Fill the amounts gained and ln saturation ratios; returns the marks most at fault, -1 for none.
 
-    Returns (mineral to drop or fill, mineral to add or loosen): the largest negative amount or excess,
-    and the largest contradiction of a saturation ratio.
+    Returns (mineral to drop or fill, mineral to add or loosen, the first at fault): the largest negative
+    amount or excess, the largest contradiction of a saturation ratio, and the least index of all.
     """
     add_up(matrices, bench)
-    drop, add = -1, -1
+    drop, add, first = -1, -1, presence.shape[0]
     worst_amount, worst_ratio = 0.0, SLACK
     for mineral in range(solid.shape[0]):
         ratio = -matrices.solid_ln_k[mineral]
@@ -163,14 +163,17 @@ def weigh(matrices, bench, active, solid, upper, presence):
                 ratio += matrices.solid[mineral, k] * bench.ln_activity[k]
         bench.saturation[mineral] = ratio
         bench.gained[mineral] = 0.0
+        wrong = SLACK
         if presence[mineral] == 0:
             bench.gained[mineral] = -solid[mineral]
-            if ratio > worst_ratio and upper[mineral] > 0.0:
-                worst_ratio, add = ratio, mineral
+            wrong = ratio if upper[mineral] > 0.0 else SLACK
         elif presence[mineral] == 2:
             bench.gained[mineral] = upper[mineral] - solid[mineral]
-            if -ratio > worst_ratio:
-                worst_ratio, add = -ratio, mineral
+            wrong = -ratio
+        if wrong > SLACK and mineral < first:
+            first = mineral
+        if wrong > worst_ratio:
+            worst_ratio, add = wrong, mineral
     for m in range(active):
         mineral = bench.active[m]
         gained = 0.0
@@ -179,26 +182,28 @@ def weigh(matrices, bench, active, solid, upper, presence):
             gained += bench.turns[r, m] * (bench.total[p] - bench.sums[p])
         bench.gained[mineral] = gained
         amount = solid[mineral] + gained
-        if amount < worst_amount:
-            worst_amount, drop = amount, mineral
-        if upper[mineral] - amount < worst_amount:
-            worst_amount, drop = upper[mineral] - amount, mineral
-    return drop, add
+        wrong = amount if amount < upper[mineral] - amount else upper[mineral] - amount
+        if wrong < 0.0 and mineral < first:
+            first = mineral
+        if wrong < worst_amount:
+            worst_amount, drop = wrong, mineral
+    return drop, add, first
 
 
 @kernel
-def mark(drop, add, solid, upper, presence, bench):
-    """Change the marks that weigh found at fault."""
+def mark(drop, add, solid, presence, bench):
+    """Change the marks that weigh found at fault; returns the mineral that enters, -1 for none."""
     if drop >= 0:
         presence[drop] = 0 if solid[drop] + bench.gained[drop] < 0.0 else 2
     if add >= 0:
         presence[add] = 1
+    return add
 
 
 @kernel
-def reduce_all(matrices, bench, presence):
+def reduce_all(matrices, bench, presence, entering):
     """Eliminate the present minerals and reduce totals and species; returns (minerals, free components)."""
-    active, free = eliminate(matrices, bench, presence)
+    active, free = eliminate(matrices, bench, presence, entering)
     reduce_species(matrices, bench, active, free)
     reduce_totals(bench, active, free)
     return active, free
@@ -224,11 +229,14 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
         ionic_strength = approach(matrices, bench, dissolved)
         set_totals(matrices, bench, dissolved, solid, upper, presence)
     survey(matrices, bench, ionic_strength)
-    steps, changes = 0, 0
-    most = 6 * (minerals + 4)
-    while changes < most:
-        active, free = reduce_all(matrices, bench, presence)
-        looked = changes > 2 * (minerals + 2)  # going round: from now on judge settled waters only
+    steps, changes, entering = 0, 0, -1
+    patience = 2 * (minerals + 2)
+    while changes < 40 * patience:
+        active, free = reduce_all(matrices, bench, presence, entering)
+        # Going round: from now on one change at a time, of the first mark at fault, once all is settled.
+        # For linear problems of this kind that ends (Murty 1974).
+        one_by_one = changes > patience
+        looked = one_by_one
         last, best, factor, before = 1.0, math.inf, 1.0, ionic_strength
         mode, near, worse = FAR, NEAR, math.inf
         code = ITERATIONS
@@ -241,7 +249,7 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
             if mismatch < LOOK and not looked:
                 looked = True
                 pivots_follow(matrices, bench, active, free)
-                drop, add = weigh(matrices, bench, active, solid, upper, presence)
+                drop, add, first = weigh(matrices, bench, active, solid, upper, presence)
                 if drop >= 0 or (add >= 0 and abs(bench.saturation[add]) > 0.1):
                     code = CYCLING
                     break
@@ -255,8 +263,10 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
                 found, rise = near_step(matrices, bench, free, rise)
                 mode, worse = FAR, mismatch
             if not found:
-                merit = far_merit(bench, free) if mode == FAR else dual_energy(bench, free)
-                if merit > best:
+                merit, lost = far_merit(bench, free), 0.0
+                if mode == CONVEX:
+                    merit, lost = dual_energy(bench, free)
+                if merit > best + lost:
                     # the step went too far: back by half of it, or over to the way that always descends
                     shrink = 0.5 if factor > LEAST_SHARE else 1.0
                     for j in range(free):
@@ -303,14 +313,14 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
                 best = math.inf
         if code == SOLVED:
             pivots_follow(matrices, bench, active, free)
-            drop, add = weigh(matrices, bench, active, solid, upper, presence)
+            drop, add, first = weigh(matrices, bench, active, solid, upper, presence)
             if drop < 0 and add < 0:
                 return SOLVED, ionic_strength, steps
-            if drop >= 0 and changes > 2 * (minerals + 2):
-                add = -1  # one change at a time once it goes round
+            if one_by_one:
+                drop, add = (first, -1) if presence[first] == 1 else (-1, first)
         elif code != CYCLING:
             return code, ionic_strength, steps
-        mark(drop, add, solid, upper, presence, bench)
+        entering = mark(drop, add, solid, presence, bench)
         set_totals(matrices, bench, dissolved, solid, upper, presence)
         changes += 1
     return CYCLING, ionic_strength, steps

@@ -48,11 +48,12 @@ class Bench(NamedTuple):
     sums: np.ndarray  # (component,) sum of stoichiometry times molality
     abundance: np.ndarray  # (component,) the same of absolute values
     # null space of the minerals present
-    rows: np.ndarray  # (mineral, component) reduced stoichiometry of the minerals present
-    turns: np.ndarray  # (mineral, mineral) the row operations that led there
+    rows: np.ndarray  # (mineral + 1, component) reduced stoichiometry of the minerals present
+    turns: np.ndarray  # (mineral + 1, mineral + 1) the row operations that led there
     active: np.ndarray  # (mineral,) int64
     pivot: np.ndarray  # (mineral,) int64
     free: np.ndarray  # (component,) int64
+    exit: np.ndarray  # (1,) int64: the mark of a mineral that had to make room
     place: np.ndarray  # (component,) int64: where a component stands in free; -1 - row for a pivot; GONE
     reduced: np.ndarray  # (component, species) stoichiometry in the free components
     reduced_ln_k: np.ndarray  # (species,)
@@ -103,11 +104,12 @@ def bench(components: int, species: int, minerals: int) -> Bench:
         share=real(species),
         sums=real(components),
         abundance=real(components),
-        rows=real(some, components),
-        turns=real(some, some),
+        rows=real(some + 1, components),
+        turns=real(some + 1, some + 1),
         active=whole(some),
         pivot=whole(some),
         free=whole(components),
+        exit=whole(1),
         place=whole(components),
         reduced=real(components, species),
         reduced_ln_k=real(species),

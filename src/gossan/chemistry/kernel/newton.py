@@ -125,13 +125,19 @@ def convex_step(bench, free):
 
 @kernel
 def dual_energy(bench, free):
-    """The convex function whose lowest point is the equilibrium: sum of molalities - totals . x."""
-    value = 0.0
+    """The convex function whose lowest point is the equilibrium: sum of molalities - totals . x.
+
+    Returns (value, what of it is lost in rounding): a trace component can hide below that.
+    """
+    value, size = 0.0, 0.0
     for s in range(bench.molality.shape[0]):
         value += bench.molality[s]
+    size = value
     for j in range(free):
-        value -= bench.reduced_total[j] * bench.ln_activity[bench.free[j]]
-    return value
+        term = bench.reduced_total[j] * bench.ln_activity[bench.free[j]]
+        value -= term
+        size += abs(term)
+    return value, 1e-14 * size
 
 
 @kernel

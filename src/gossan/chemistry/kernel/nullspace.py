@@ -18,71 +18,120 @@ NOTHING = 1e-11  # stoichiometry below this is a rounding remainder
 
 
 @kernel
-def eliminate(matrices, bench, presence):
-    """Choose a pivot for every mineral marked present and reduce their rows; returns how many stay.
+def eliminate(matrices, bench, presence, entering):
+    """Choose a pivot for every mineral marked present and reduce their rows.
 
-    presence (mineral,) int8 is read (1 = present); one whose ties follow from the others' is set to 0.
-    bench.place must hold GONE for absent components; free and place are set for all others.
+    presence (mineral,) int8 is read (1 = present); bench.place must hold GONE for absent components; free
+    and place are set for all others.  entering: the mineral that was marked last, -1 for none.  Where the
+    phase rule leaves no room for it, one of those it can replace goes (see `leaving`); any other mineral
+    whose ties follow from the rest is marked absent.
     Returns (minerals that stay, free components).
     """
-    solid, turns, rows, place, pivot = matrices.solid, bench.turns, bench.rows, bench.place, bench.pivot
-    abundance = bench.abundance
-    components = solid.shape[1]
-    for k in range(components):
+    place = bench.place
+    for k in range(place.shape[0]):
         if place[k] != GONE:
             place[k] = 0
     n = 0
     for mineral in range(presence.shape[0]):
-        if presence[mineral] != 1:
-            continue
-        for k in range(components):
-            rows[n, k] = solid[mineral, k]
-        for m in range(n):
-            turns[n, m] = 0.0
-        turns[n, n] = 1.0
-        for r in range(n):
-            share = rows[n, pivot[r]]
-            if share != 0.0:
-                for k in range(components):
-                    rows[n, k] -= share * rows[r, k]
-                for m in range(n):
-                    turns[n, m] -= share * turns[r, m]
-                rows[n, pivot[r]] = 0.0
-        best, scarcest = -1, 0.0
-        for k in range(components):
-            if abs(rows[n, k]) > NOTHING and place[k] == 0:
-                scarcity = abundance[k] * (SIGNED_LAST if k == matrices.signed else 1.0)
-                if best < 0 or scarcity < scarcest:
-                    best, scarcest = k, scarcity
-        if best < 0:
-            presence[mineral] = 0
-            continue
-        scale = 1.0 / rows[n, best]
-        for k in range(components):
-            value = rows[n, k] * scale
-            rows[n, k] = value if abs(value) > NOTHING else 0.0
-        for m in range(n + 1):
-            turns[n, m] *= scale
-        for r in range(n):
-            share = rows[r, best]
-            turns[r, n] = 0.0
-            if share != 0.0:
-                for k in range(components):
-                    value = rows[r, k] - share * rows[n, k]
-                    rows[r, k] = value if abs(value) > NOTHING else 0.0
-                for m in range(n + 1):
-                    turns[r, m] -= share * turns[n, m]
-        bench.active[n] = mineral
-        pivot[n] = best
-        place[best] = -1 - n
-        n += 1
+        if presence[mineral] == 1 and mineral != entering:
+            if tie(matrices, bench, mineral, n):
+                n += 1
+            else:
+                presence[mineral] = 0
+    if entering >= 0 and presence[entering] == 1:
+        if tie(matrices, bench, entering, n):
+            n += 1
+        else:
+            out = leaving(bench, n)
+            if out < 0:
+                presence[entering] = 0
+            else:
+                presence[bench.active[out]] = bench.exit[0]
+                return eliminate(matrices, bench, presence, entering)
     f = 0
-    for k in range(components):
+    for k in range(place.shape[0]):
         if place[k] == 0:
             place[k] = f
             bench.free[f] = k
             f += 1
     return n, f
+
+
+@kernel
+def tie(matrices, bench, mineral, n):
+    """Add one mineral to the n that are eliminated; False where its ties follow from theirs.
+
+    Then turns[n] holds what combination of the minerals before it undoes it.
+    """
+    solid, turns, rows, place, pivot = matrices.solid, bench.turns, bench.rows, bench.place, bench.pivot
+    components = solid.shape[1]
+    for k in range(components):
+        rows[n, k] = solid[mineral, k]
+    for m in range(n):
+        turns[n, m] = 0.0
+    turns[n, n] = 1.0
+    for r in range(n):
+        share = rows[n, pivot[r]]
+        if share != 0.0:
+            for k in range(components):
+                rows[n, k] -= share * rows[r, k]
+            for m in range(n):
+                turns[n, m] -= share * turns[r, m]
+            rows[n, pivot[r]] = 0.0
+    best, scarcest = -1, 0.0
+    for k in range(components):
+        if abs(rows[n, k]) > NOTHING and place[k] == 0:
+            # what runs out first as the mineral forms
+            scarcity = bench.abundance[k] / abs(rows[n, k])
+            if k == matrices.signed:
+                scarcity *= SIGNED_LAST
+            if best < 0 or scarcity < scarcest:
+                best, scarcest = k, scarcity
+    if best < 0:
+        return False
+    scale = 1.0 / rows[n, best]
+    for k in range(components):
+        value = rows[n, k] * scale
+        rows[n, k] = value if abs(value) > NOTHING else 0.0
+    for m in range(n + 1):
+        turns[n, m] *= scale
+    for r in range(n):
+        share = rows[r, best]
+        turns[r, n] = 0.0
+        if share != 0.0:
+            for k in range(components):
+                value = rows[r, k] - share * rows[n, k]
+                rows[r, k] = value if abs(value) > NOTHING else 0.0
+            for m in range(n + 1):
+                turns[r, m] -= share * turns[n, m]
+    bench.active[n] = mineral
+    pivot[n] = best
+    place[best] = -1 - n
+    return True
+
+
+@kernel
+def leaving(bench, n):
+    """Which of n minerals runs out (or fills up) first as a mineral made of them grows; -1 for none.
+
+    turns[n] holds the combination that undoes the growing one; the answer is a row, and bench.exit[0] the
+    mark that its mineral gets: 0 absent, 2 full.
+    """
+    out, least = -1, 0.0
+    for m in range(n):
+        spent = -bench.turns[n, m]
+        mineral = bench.active[m]
+        amount = bench.solid[mineral] + bench.gained[mineral]
+        if spent > NOTHING:
+            reach, mark = amount / spent, 0
+        elif spent < -NOTHING and bench.upper[mineral] < 1e300:
+            reach, mark = (bench.upper[mineral] - amount) / -spent, 2
+        else:
+            continue
+        if out < 0 or reach < least:
+            out, least = m, reach
+            bench.exit[0] = mark
+    return out
 
 
 @kernel
