@@ -33,6 +33,7 @@ PASSES = 12  # of the continued fraction in a cold start
 NEWTON_LIMIT = 300  # steps for one set of marks
 BRIM = 100.0  # mol/kg: no water holds more; far from the answer the sums may claim it
 LEAST_SHARE = 0.1  # of a step: less is not worth trying
+STALLED = 0.9  # a far step that leaves more of its merit than this was hardly worth it
 FAR, CONVEX = 0, 1  # the two ways from afar
 
 
@@ -238,7 +239,7 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
         one_by_one = changes > patience
         looked = one_by_one
         last, best, factor, before = 1.0, math.inf, 1.0, ionic_strength
-        mode, near, worse = FAR, NEAR, math.inf
+        mode, near, worse, slow = FAR, NEAR, math.inf, 0
         code = ITERATIONS
         for newton in range(NEWTON_LIMIT):
             made = molalities(matrices, bench, free, ionic_strength)
@@ -278,6 +279,11 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
                         best, factor = math.inf, 1.0
                         mode = CONVEX if mode == FAR else FAR
                     continue
+                if mode == FAR:
+                    slow = slow + 1 if merit > STALLED * best else 0
+                    if slow >= 3:
+                        mode, slow = CONVEX, 0
+                        merit, lost = dual_energy(bench, free)
                 best, factor = merit, 1.0
                 going = far_step(bench, free) if mode == FAR else convex_step(bench, free)
                 if not going:
