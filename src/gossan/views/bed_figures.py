@@ -9,7 +9,7 @@ import numpy as np
 from gossan.store.layout import variable
 from gossan.store.read import Result
 from gossan.views import chosen, style
-from gossan.views.profile_figures import along_column, times_legend
+from gossan.views.profile_figures import along_column
 from gossan.views.scales import axis_label, length_scale, time_scale
 from gossan.views.summary import HALF, fractions_left
 
@@ -30,17 +30,17 @@ def pores(result: Result) -> Figure:
     left = fractions_left(result)
     known = bool(np.isfinite(left).any())
     figure, grid = style.sheet_of_paper(2 if known else 1, 2, 5.2 if known else 3.1, sharex="col")
-    quantities = [(profiles.porosity.values, "porosity", "least porosity")]
+    quantities = [(profiles.porosity.values, "porosity")]
     if known:
-        quantities.append((left, "conductivity\nover that of the start", "least of it"))
-    for row, (values, name, least) in enumerate(quantities):
+        quantities.append((left, "conductivity\nover that of the start"))
+    for row, (values, name) in enumerate(quantities):
         along, through = grid[row]
         along_column(along, result, values, named=row == 0)
         along.set_ylabel(name)
         style.line(through, times, np.nanmin(values, axis=1), 0, "least of all cells")
         style.line(through, times, values[:, 0], 1, "cell at the inlet")
         through.set_xlim(0.0, times[-1] or 1.0)
-        through.set_ylabel(least)
+        through.set_ylabel(name)
         for ax in (along, through):
             style.at_least_spanning(ax, LEAST_SPAN)
     if known:
@@ -48,9 +48,8 @@ def pores(result: Result) -> Figure:
     grid[-1, 0].set_xlabel(f"distance from the inlet ({x.unit})")
     grid[-1, 1].set_xlabel(axis_label("profiles", "time", time))
     grid[0, 1].legend(loc="best")
-    times_legend(figure, grid[0, 0])
     says = "porosity and conductivity" if known else "porosity; no conductivity is given in the case"
-    style.headed(figure, result.title, says, result.caution)
+    style.headed(figure, result.title, says, result.caution, legend_of=grid[0, 0])
     return figure
 
 

@@ -27,7 +27,7 @@ def all_figures(
     """
     for port in result.ports:
         yield f"breakthrough-{port}", breakthrough(result, port, bounds, masses)
-    yield "dissolved", dissolved_profiles(result, masses)
+    yield "dissolved", dissolved_profiles(result, bounds, masses)
     if chosen.minerals(result):
         yield "minerals", solid_profiles(result)
     yield "pores", pores(result)

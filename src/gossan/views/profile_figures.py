@@ -9,6 +9,7 @@ import numpy as np
 
 from gossan.store.read import Result
 from gossan.views import chosen, style
+from gossan.views.limits import PH, Bound
 from gossan.views.scales import Scale, axis_label, length_scale, printed_ion, solute_scale, time_scale
 
 if TYPE_CHECKING:
@@ -17,19 +18,25 @@ if TYPE_CHECKING:
 
 PANEL_HEIGHT = 1.75  # inches
 HEAD_HEIGHT = 1.1
+PH_SPAN = 0.1  # of its mean, about 0.7: hundredths of a pH do not fill an axis
 
 
 @style.in_style
-def dissolved_profiles(result: Result, masses: dict[str, float] | None = None) -> Figure:
-    """Watched solutes and pH along the column; masses is kg/mol by tracer."""
+def dissolved_profiles(
+    result: Result, bounds: list[Bound] | None = None, masses: dict[str, float] | None = None
+) -> Figure:
+    """Watched solutes and pH along the column.
+
+    bounds  limits, whose solutes are watched too; masses  kg/mol by tracer
+    """
     panels: list[tuple[str, np.ndarray]] = []
     components = list(result.axes.component)
     dissolved = result.profiles.dissolved.values
-    for name in chosen.metals(result):
+    for name in chosen.metals(result, bounds):
         scale = solute_scale(name, masses)
         values = dissolved[:, components.index(name)] * scale.factor
         panels.append((f"{printed_ion(name)} ({scale.unit})", values))
-    panels.append(("pH", result.profiles.pH.values))
+    panels.append((PH, result.profiles.pH.values))
     says = "profiles of " + axis_label("profiles", "dissolved", Scale("", 1.0)).removeprefix("total ")
     return _panels(result, panels, says)
 
@@ -51,14 +58,15 @@ def _panels(result: Result, panels: list[tuple[str, np.ndarray]], says: str) -> 
     for number, (ax, (name, values)) in enumerate(zip(grid.flat, panels, strict=False)):
         along_column(ax, result, values, named=number < columns)
         ax.set_ylabel(name)
+        if name == PH:
+            style.at_least_spanning(ax, PH_SPAN)
     scale = length_scale(float(result.axes.face[-1]))
     for ax in grid[-1]:
         ax.set_xlabel(f"distance from the inlet ({scale.unit})")
     if len(panels) < rows * columns:  # rows > 1
         grid[-1, -1].set_visible(False)
         grid[-2, -1].tick_params(labelbottom=True)
-    times_legend(figure, grid.flat[0])
-    style.headed(figure, result.title, says, result.caution)
+    style.headed(figure, result.title, says, result.caution, legend_of=grid.flat[0])
     return figure
 
 
@@ -74,10 +82,3 @@ def along_column(ax: Axes, result: Result, values: np.ndarray, named: bool) -> N
     edges, names = chosen.layer_edges(result)
     style.layers_marked(ax, [edge * scale.factor for edge in edges], names, named)
     ax.set_xlim(0.0, edges[-1] * scale.factor)
-
-
-def times_legend(figure: Figure, ax: Axes) -> None:
-    """One legend of times for all charts of a figure."""
-    handles, labels = ax.get_legend_handles_labels()
-    if handles:
-        figure.legend(handles, labels, loc="outside upper left", ncols=len(labels), columnspacing=1.6)

@@ -51,6 +51,8 @@ def _port_row(verdict: Verdict, time: Scale, masses: dict[str, float]) -> tuple[
         when, volumes = "not in this case", "-"
     elif verdict.first_exceeded is None or verdict.pore_volumes is None:
         when, volumes = "not in this run", "-"
+    elif verdict.first_exceeded == 0.0:
+        when, volumes = "from the start", "0"
     else:
         when = f"{verdict.first_exceeded * time.factor:.4g}"
         if verdict.error:
@@ -98,7 +100,7 @@ def _effort(summary: Summary) -> Sheet:
     rows = (
         ("simulated", time_text(summary.time)),
         ("steps", f"{summary.steps}"),
-        ("error of the steps", f"{summary.splitting_error:.2g} of a pore volume of feed, as squares add"),
+        ("error of steps", f"{summary.splitting_error:.2g} pore volumes of feed, root of summed squares"),
         ("wall clock", f"{summary.seconds:.3g} s"),
         ("file", str(result.path)),
     )

@@ -22,6 +22,7 @@ PIXELS_PER_INCH = 160
 PAGE_WIDTH = 7.2  # inches: the text width of an A4 page
 INK, FAINT = "#1b1b22", "#8d8d99"
 MARKS_PER_LINE = 9
+HEAD_HEIGHT = 0.34  # inches that a title of two lines takes
 
 # colour, lightness falling and rising in turn so that neighbours differ; line; mark
 SERIES: tuple[tuple[str, Any, str], ...] = (
@@ -101,9 +102,18 @@ def _marks(mark: str, points: int, number: int) -> dict[str, Any]:
     return {"marker": mark, "markevery": (shift, apart), "markerfacecolor": "white", "markeredgewidth": 0.9}
 
 
-def headed(figure: Figure, title: str, says: str, caution: str) -> None:
-    """Title and what is shown at the top left, the caution in small print below the axes."""
-    text = f"{title}\n{says}" if title else says
+def headed(figure: Figure, title: str, says: str, caution: str, legend_of: Axes | None = None) -> None:
+    """Title and what is shown at the top left, the caution in small print below the axes.
+
+    legend_of  axes whose lines are named in one row below the title, for all axes of the figure
+    """
+    text = f"{title}\n{says}"
+    if legend_of:
+        handles, labels = legend_of.get_legend_handles_labels()
+        below = 1.0 - HEAD_HEIGHT / float(figure.get_size_inches()[1])
+        place: dict[str, Any] = {"loc": "upper left", "bbox_to_anchor": (0.0, below)}
+        figure.legend(handles, labels, ncols=len(labels), columnspacing=1.2, **place)
+        text += "\n "  # room for that row
     figure.suptitle(text, x=0.01, ha="left", fontsize=9.5, color=INK)
     first = caution.partition(";")[0].strip()
     if first:

@@ -1,0 +1,45 @@
+"""What a run comes to, against the arrays it is taken from."""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+
+from gossan.views.scales import solute_scale, time_scale
+from gossan.views.summary import _first_below, run_json, summary_of
+
+
+def test_capacity_counts_the_minerals_of_the_start(result):
+    (gypsum,) = summary_of(result).stocks
+    # 0.1 wt% of 2650 kg/m3 of grains at porosity 0.4, over 0.17217 kg/mol and 0.2 m
+    assert gypsum.first == pytest.approx(0.001 * 2650 * 0.6 / 0.17217 * 0.2, rel=1e-3)
+    assert gypsum.used_percent == pytest.approx(100.0)
+
+
+def test_head_loss_is_darcys(result):
+    first, last = summary_of(result).head_loss
+    assert first == pytest.approx(0.4 / 10 * 0.2, rel=1e-3)  # flux over conductivity times length
+    assert last < first  # gypsum made room
+
+
+def test_the_ledger_has_every_solute_and_charge_and_water(result):
+    ledger = summary_of(result).ledger
+    assert set(ledger) == {*result.axes.component, "water", "charge"}
+    assert 0.0 < max(ledger.values()) < 1e-12
+
+
+def test_half_is_reached_between_frames():
+    assert _first_below(np.array([0.0, 10.0]), np.array([1.0, 0.2]), 0.5) == pytest.approx(6.25)
+    assert _first_below(np.array([0.0, 10.0]), np.array([1.0, 0.6]), 0.5) is None
+
+
+def test_json_keeps_the_steps_errors_together(result):
+    errors = result.steps.splitting_error.values
+    assert run_json(summary_of(result))["splitting_error"] == pytest.approx(np.sqrt((errors**2).sum()))
+
+
+def test_scales_are_those_people_read():
+    assert time_scale(3600.0 * 5).unit == "h"
+    assert solute_scale("bromide").unit == "mmol/L"
+    assert solute_scale("bromide", {"bromide": 0.0799}).factor == pytest.approx(79.9)
+    assert solute_scale("SO4^2-").factor == pytest.approx(96.06, abs=0.01)
