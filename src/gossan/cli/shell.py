@@ -76,7 +76,8 @@ def console_of(stream: TextIO) -> Console:
     from rich.console import Console
 
     width = None if stream.isatty() else ENDLESS
-    return Console(file=stream, width=width, highlight=False, emoji=False, markup=False)
+    colours: Literal["auto"] | None = None if os.environ.get("NO_COLOR") else "auto"
+    return Console(file=stream, width=width, color_system=colours, highlight=False, emoji=False, markup=False)
 
 
 def _print(console: Console, sheet: Sheet) -> None:

@@ -118,7 +118,8 @@ def _pore_volumes(ax: Axes, group: Group, time: Scale) -> None:
     upper.spines["top"].set_visible(True)
     if volumes[-1] > 0.0:
         most = float(volumes[-1])
-        marks = [mark for mark in MaxNLocator(MARKED, steps=[1, 2, 5, 10]).tick_values(0.0, most) if mark <= most]
+        even = MaxNLocator(MARKED, steps=[1, 2, 5, 10]).tick_values(0.0, most)
+        marks = [mark for mark in even if mark <= most]
         upper.set_xticks(np.interp(marks, volumes, times), [f"{mark:g}" for mark in marks])
     upper.set_xlabel("pore volumes")
     upper.grid(False)

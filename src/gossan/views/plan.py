@@ -12,7 +12,7 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.waters import read_waters
-from gossan.coupling.march import march
+from gossan.coupling.march import IMPLICIT_GAIN, march
 from gossan.coupling.pores import flow
 from gossan.coupling.problem import Problem
 from gossan.transport.step import courant, explicit_limit
@@ -94,7 +94,7 @@ def _step(problem: Problem) -> float:
     unit = courant(problem.transport, state.water, darcy_flux, 1.0)
     by_courant = problem.max_courant / unit if unit > 0.0 else math.inf
     by_dispersion = explicit_limit(problem.transport, state.water, darcy_flux)
-    return min(by_courant, by_dispersion) if by_dispersion > by_courant / 3.0 else by_courant
+    return min(by_courant, by_dispersion) if by_dispersion * IMPLICIT_GAIN >= by_courant else by_courant
 
 
 def _seconds_per_step(problem: Problem) -> float | None:
