@@ -1,11 +1,13 @@
 """Write docs/verification.md from the files of tests/verification: `python tools/verify.py`.
 
-A file of tests/verification begins with a docstring: what it compares, and its citations (`  key  citation`).
-One that names a list CHECKS (tests/support/agreement.py) has every number printed here beside the program's.
+A file there begins with a docstring: what it compares, and its citations (`  key  citation`). One that names
+a list CHECKS (tests/support/agreement.py) has every number printed beside the program's; of the others the
+page gives the first line.
 """
 
 from __future__ import annotations
 
+import ast
 import importlib.util
 import re
 import sys
@@ -33,47 +35,63 @@ for, so that 0.01 of pH is 1.6 digits. *Read* says whether the value was read in
 quotes it; what was recalled from the source is marked *from memory*, and so is what was calculated from
 recalled constants.
 """
+FURTHER = """\
+## Further comparisons
+
+These files hold exact solutions and whole tables, compared as such.
+"""
 
 
-def page(files: list[Path] | None = None) -> str:
+def page() -> str:
     """The whole page as Markdown."""
-    modules = [load(path) for path in files or sorted(FILES.glob("test_*.py"))]
-    return "\n".join([HEAD, *(section(module) for module in modules if module.__doc__)])
+    paths = sorted(FILES.glob("test_*.py"))
+    listed = [path for path in paths if has_checks(path)]
+    others = [path for path in paths if path not in listed and path.stem != "test_page"]
+    titles = [f"- `{path.relative_to(ROOT).as_posix()}`: {title(path)}" for path in others]
+    return "\n".join([HEAD, *(section(path) for path in listed), FURTHER, *titles]) + "\n"
+
+
+def has_checks(path: Path) -> bool:
+    """Whether a file names CHECKS, without running it."""
+    tree = ast.parse(path.read_text(encoding="utf-8"))
+    targets = [target for node in tree.body if isinstance(node, ast.Assign) for target in node.targets]
+    return any(isinstance(target, ast.Name) and target.id == "CHECKS" for target in targets)
+
+
+def title(path: Path) -> str:
+    """The first line of a file's docstring."""
+    words = ast.get_docstring(ast.parse(path.read_text(encoding="utf-8"))) or path.stem
+    return words.splitlines()[0].rstrip(".")
 
 
 def load(path: Path) -> ModuleType:
     """A file of tests as a module."""
-    spec = importlib.util.spec_from_file_location(path.stem, path)
+    spec = importlib.util.spec_from_file_location(f"verification_{path.stem}", path)
     assert spec is not None
     assert spec.loader is not None
     module = importlib.util.module_from_spec(spec)
-    sys.modules.setdefault(path.stem, module)  # dataclasses look their module up
+    sys.modules[spec.name] = module  # dataclasses look their module up there
     spec.loader.exec_module(module)
     return module
 
 
-def citations(module: ModuleType) -> dict[str, str]:
+def citations(words: str) -> dict[str, str]:
     """Key and text of the citations in a docstring."""
-    _, _, listed = (module.__doc__ or "").partition("\nCitations\n")
-    entries = re.findall(r"^  (\S+) +(.+(?:\n {4,}.+)*)", listed, re.M)
+    entries = re.findall(r"^  (\S+) +(.+(?:\n {4,}.+)*)", words.partition("\nCitations\n")[2], re.M)
     return {key: " ".join(text.split()) for key, text in entries}
 
 
-def section(module: ModuleType) -> str:
+def section(path: Path) -> str:
     """One file: its words, its numbers, its citations."""
-    words = (module.__doc__ or "").partition("\nCitations\n")[0].strip()
-    title, _, rest = words.partition("\n\n")
-    parts = [f"## {' '.join(title.split()).rstrip('.')}", f"`tests/verification/{module.__name__}.py`"]
-    if rest:
-        parts.append(rest)
-    checks: list[Check] = getattr(module, "CHECKS", [])
-    if checks:
-        rows = ["| what | published | found | digits | source | read | reason of the tolerance |",
-                "|---|---|---|---|---|---|---|"]  # fmt: skip
-        parts.append("\n".join(rows + [row(check) for check in checks]))
-    cited = citations(module)
-    if cited:
-        parts.append("\n".join(f"- {key}: {text}" for key, text in cited.items()))
+    module = load(path)
+    words = module.__doc__ or ""
+    rest = words.partition("\nCitations\n")[0].partition("\n\n")[2].strip()
+    head = ["| what | published | found | digits | source | read | reason of the tolerance |",
+            "|---|---|---|---|---|---|---|"]  # fmt: skip
+    parts = [f"## {title(path)}", f"`{path.relative_to(ROOT).as_posix()}`"]
+    parts += [rest] if rest else []
+    parts.append("\n".join(head + [row(check) for check in module.CHECKS]))
+    parts.append("\n".join(f"- {key}: {text}" for key, text in citations(words).items()))
     return "\n\n".join(parts) + "\n"
 
 
@@ -83,8 +101,8 @@ def row(check: Check) -> str:
     agreement = ""
     if not isinstance(check.published, Between):
         agreement = f"{digits(found, check.published, check.logarithmic):.1f}"
-    read = "read" if check.seen else "from memory"
     shown = f"{found:.3f}" if check.logarithmic else f"{found:.4g}"
+    read = "read" if check.seen else "from memory"
     cells = (check.name, check.published, shown, agreement, check.source, read, check.why)
     return f"| {' | '.join(str(cell).replace('|', '/') for cell in cells)} |"
 

@@ -7,10 +7,9 @@ came without its alkalinity and is the trap: its imbalance is 87 %, and it is re
 
 Citations
   usgs_ditch     U.S. Geological Survey, station 05079250, County Ditch 65 near Maple Bay, Minnesota,
-                 retrieved 2012; the data file IonBalance of the agency's smwrData package, with its published
-                 differences
-  hem1985        Hem (1985), U.S. Geol. Surv. Water-Supply Paper 2254, through the agency's data file MiscGW;
-                 the balance worked out apart from this program
+                 retrieved 2012; a data file of the agency, with its published differences
+  hem1985        Hem (1985), U.S. Geol. Surv. Water-Supply Paper 2254, through a data file of the agency; the
+                 balance worked out apart from this program
   usgs_coal      U.S. Geological Survey, Water-Resources Investigations Report 02-4045, table 4: ground water
                  of a coal basin; hardness and bicarbonate as printed there
   computed       solved apart from this program: pairs of sulfate alone, log10 K 2.30 to 2.37, gypsum -4.58,
