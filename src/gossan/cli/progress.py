@@ -51,7 +51,7 @@ class Progress:
         if not self.shown or (now - self._last < (REFRESH if self._bar else LINE_EVERY) and share < 1.0):
             return
         self._last = now
-        day, volumes = state.time / DAY, float(state.water_entered.sum()) / self.pore_volume
+        day, volumes = state.time / DAY, float(state.water_passed[0].sum()) / self.pore_volume
         if self._bar:
             self._bar.update(self._task, completed=share, day=f"{day:.4g}", volumes=f"{volumes:.3g}")
         elif now - self._start >= LINE_EVERY:
