@@ -72,8 +72,11 @@ class Solution:
         table = load_table()
         species, minerals = dict(table.species), dict(table.minerals)
         for name, value in self.log10_k.items():
-            group = species if name in species else minerals
-            group[name] = replace(group[name], fit=van_t_hoff(value, 0.0))
+            fit = van_t_hoff(value, 0.0)
+            if name in species:
+                species[name] = replace(species[name], fit=fit)
+            else:
+                minerals[name] = replace(minerals[name], fit=fit)
         components = table.components
         if self.activity == BATES_GUGGENHEIM:
             size = Constant(1.5 / debye_huckel(273.15 + self.celsius)[1], None, "m", "")
