@@ -2,8 +2,12 @@
 
 from __future__ import annotations
 
+import signal
+import sys
+import threading
 import time as wall
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
@@ -92,8 +96,6 @@ def run(case: Case, out: str | Path | None = None, progress: bool = False, overw
 
 
 def _print_share(share: float, state: State) -> None:
-    import sys
-
     end = "\n" if share >= 1.0 else ""
     print(f"\r{100.0 * share:5.1f} %  day {state.time / 86400.0:.6g}", end=end, file=sys.stderr)
 
@@ -120,10 +122,20 @@ class _Run:
         self.problem, self.writer, self.progress = problem, writer, progress
         self.books = Books(problem)
         self.steps: list[dict[str, float]] = []
+        self.recorded = -1.0
+        self.asked_to_stop = False
 
     def walk(self, state: State, pace: Pace) -> Ending:
-        began = kept = wall.monotonic()
-        last = began
+        """March to the end, recording; an interrupt is heard between two steps, never within one."""
+        with _interrupts(self.stop):
+            return self._walk(state, pace)
+
+    def stop(self, *_: Any) -> None:
+        """Ask the run to stop after the step it is in."""
+        self.asked_to_stop = True
+
+    def _walk(self, state: State, pace: Pace) -> Ending:
+        began = kept = last = wall.monotonic()
         ending = Ending("finished", "")
         try:
             for stride in march(self.problem, state, pace):
@@ -140,14 +152,15 @@ class _Run:
                 if now - kept > CHECKPOINT_EVERY:
                     self.keep(state, pace)
                     kept = now
+                if self.asked_to_stop:
+                    ending = Ending("stopped", "interrupted")
+                    break
         except Clogged as clogged:
             where = float(self.problem.grid.centres[clogged.cell])
             ending = Ending("stopped", f"clogged at x = {where:.4g} m after {clogged.time / 86400:.6g} d")
         except SolveError as error:
             error.kept = str(self.writer.path)
             ending = Ending("failed", str(error), error)
-        except KeyboardInterrupt:
-            ending = Ending("stopped", "interrupted")
         if ending.status != "finished" and state.time > self.recorded:
             self.frame(state)
             self.records(state)
@@ -197,6 +210,19 @@ class _Run:
         self.writer.flush()
 
 
+@contextmanager
+def _interrupts(handler: Callable[..., None]) -> Iterator[None]:
+    """Hand Ctrl-C to a handler for a while; elsewhere than in the main thread it cannot come."""
+    if threading.current_thread() is not threading.main_thread():
+        yield
+        return
+    before = signal.signal(signal.SIGINT, handler)
+    try:
+        yield
+    finally:
+        signal.signal(signal.SIGINT, before)
+
+
 def settled_dt(state: State) -> float:
     """A time over which the last step's surplus of water counts as spread, for a flux to report, s."""
     return state.time / state.step if state.step else 1.0
@@ -244,5 +270,5 @@ def port_of(
         "pe": np.nan,
         "dissolved": through[:, port.face] / flux if flux != 0.0 else np.full(len(through), np.nan),
         "resident": resident,
-        "passed": state.passed[index].sum(axis=-1),
+        "passed": state.passed[2 + index].sum(axis=-1),
     }

@@ -213,12 +213,8 @@ def _initial(
         ionic_strength=spread("ionic_strength"),
         presence=spread("presence"),
         solved=spread("solved"),
-        entered=np.zeros((solutes, 2)),
-        left=np.zeros((solutes, 2)),
-        water_entered=np.zeros(2),
-        water_left=np.zeros(2),
-        water_freed=np.zeros(2),
-        passed=np.zeros((ports, solutes, 2)),
+        passed=np.zeros((2 + ports, solutes, 2)),
+        water_passed=np.zeros((3, 2)),
         splitting_error=0.0,
     )
 

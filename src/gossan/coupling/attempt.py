@@ -11,7 +11,7 @@ from gossan.chemistry.equilibrium import UNBOUNDED, Equilibrium, Solver
 from gossan.coupling.pores import pore_space
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State
-from gossan.transport.step import corrected, courant, passages
+from gossan.transport.step import Passages, corrected, courant, kept_positive, passages
 
 # A cell is left alone while its dissolved amounts stand within this of its last solve: far below any
 # accuracy that a case may ask for, far above rounding.
@@ -47,7 +47,7 @@ def attempt(
     before = _equilibrium(problem, state)
 
     first = passages(transport, state.dissolved, state.water, darcy_flux, inflow, dt, theta)
-    passed = first.passed
+    passed = _held_back(problem, state, first, amount, first.passed)
     moved = amount + (passed[:, :-1] - passed[:, 1:]) / width
     found = _react(problem, solver, before, moved, state.solid, water)
     solves = int(np.count_nonzero(found.steps))
@@ -57,6 +57,7 @@ def attempt(
         predicted[: problem.chemical] = found.amount
         held = water + _freed(problem, found.solid - state.solid)
         passed = corrected(transport, first, state.dissolved, predicted / held)
+        passed = _held_back(problem, state, first, amount, passed)
         better = amount + (passed[:, :-1] - passed[:, 1:]) / width
         error = _relative(better - moved, width, scale)
         moved = better
@@ -73,7 +74,6 @@ def attempt(
     freed = _freed(problem, gained)
     filled = water + freed
     lost = pore_space(problem, state.solid) - pore_space(problem, found.solid)
-    entering, leaving = dt * darcy_flux[0], dt * darcy_flux[-1]
     after = replace(
         state,
         time=state.time + dt,
@@ -86,16 +86,26 @@ def attempt(
         ionic_strength=found.ionic_strength,
         presence=found.presence,
         solved=found.solved,
-        entered=added(state.entered, passed[:, 0]),
-        left=added(state.left, passed[:, -1]),
-        water_entered=added(state.water_entered, entering),
-        water_left=added(state.water_left, leaving),
-        water_freed=added(state.water_freed, float(np.sum(freed * width))),
-        passed=added(state.passed, passed[:, [port.face for port in problem.ports]].T),
+        passed=added(state.passed, passed[:, problem.gates].T),
+        water_passed=added(
+            state.water_passed, dt * np.array([darcy_flux[0], darcy_flux[-1], float(freed @ width) / dt])
+        ),
         splitting_error=state.splitting_error + error,
     )
     change = float(np.max(np.abs(lost) / state.water)) if len(lost) else 0.0
     return Trial(after, dt, error, change, courant(transport, state.water, darcy_flux, dt), solves)
+
+
+def _held_back(
+    problem: Problem, state: State, first: Passages, amount: np.ndarray, passed: np.ndarray
+) -> np.ndarray:
+    """Passages that take no more from a cell than it holds; explicit ones never do."""
+    if first.elimination is None:
+        return passed
+    total = amount.copy()
+    total[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
+    positive = np.arange(len(amount)) != problem.system.matrices.signed
+    return kept_positive(problem.transport, first, state.dissolved, state.water, total, passed, positive)
 
 
 def _equilibrium(problem: Problem, state: State) -> Equilibrium:

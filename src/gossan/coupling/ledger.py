@@ -37,7 +37,7 @@ class Books:
         """The ledger of a state."""
         problem = self.problem
         now = stored(problem, state)
-        entered, left = state.entered.sum(axis=-1), state.left.sum(axis=-1)
+        entered, left = state.passed[:2].sum(axis=-1)
         made = np.zeros_like(entered)
         change = now - self.first
         open_ = entered - left - change + made
@@ -46,9 +46,7 @@ class Books:
         charge = problem.system.component_charge
         chemical = problem.chemical
         charges = float(np.abs(charge) @ most[:chemical])
-        water_in, water_out, freed = (
-            float(pair.sum()) for pair in (state.water_entered, state.water_left, state.water_freed)
-        )
+        water_in, water_out, freed = state.water_passed.sum(axis=-1).tolist()
         water_now = float(np.sum(state.water * problem.grid.width))
         water_open = water_in - water_out + freed - (water_now - self.first_water)
         return Ledger(

@@ -20,8 +20,7 @@ from gossan.transport.step import courant, explicit_limit
 CLOGGED = 1e-3  # porosity at which a cell counts as closed and the run stops
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
 IMPLICIT_GAIN = 3.0  # explicit dispersion may cost so many times the steps; beyond, it is solved implicitly
-DAMPED_STEPS = 4  # fully implicit steps after a switch of feed (Rannacher 1984)
-SWITCH_SHARE = 0.05  # the first step after a switch, as a share of the longest
+DAMPED_STEPS = 2  # half steps of backward Euler after a switch of feed (Rannacher 1984, from memory)
 
 
 @dataclass(frozen=True, eq=False)
@@ -47,7 +46,7 @@ class Clogged(Exception):
 
 def pore_volumes(problem: Problem, state: State) -> float:
     """Water that has entered over the water there was at the start."""
-    return float(state.water_entered.sum()) / problem.pore_volume
+    return float(state.water_passed[0].sum()) / problem.pore_volume
 
 
 def march(problem: Problem, state: State, pace: Pace, solver: Solver | None = None) -> Iterator[Stride]:
@@ -98,7 +97,7 @@ def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: f
     now = pore_volumes(problem, trial.state)
     switched = problem.feeds.passed(problem.feeds.clock(trial.state.time, now)) - 1 > feed
     if switched:
-        following = Pace(min(following.dt, SWITCH_SHARE * longest) if implicit else following.dt, 0)
+        following = Pace(0.5 * following.dt if implicit else following.dt)
     else:
         following = replace(following, afresh=pace.afresh + 1)
     return Stride(

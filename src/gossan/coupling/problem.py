@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
@@ -63,12 +64,17 @@ class Problem:
         """How many of the solutes are components of the chemistry."""
         return len(self.system.components)
 
-    @property
+    @cached_property
+    def gates(self) -> np.ndarray:
+        """Faces whose passages are summed: inlet, outlet, then each port."""
+        return np.array([0, len(self.grid.width), *(port.face for port in self.ports)])
+
+    @cached_property
     def pore_volume(self) -> float:
         """Water in the column at the start, m3 per m2 of cross-section."""
         return float(np.sum(self.porosity * self.grid.width))
 
-    @property
+    @cached_property
     def volume_of_water(self) -> float:
         """m3 per mol of H2O."""
         return MOLAR_MASS_OF_WATER / self.system.water_density

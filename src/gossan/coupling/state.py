@@ -28,10 +28,6 @@ class State:
     presence: np.ndarray  # (mineral, cell) int8: 0 absent, 1 present, 2 full (may dissolve only, none lost)
     solved: np.ndarray  # (component, cell) mol per kg of water, dissolved after the last solve: the skip rule
     # since time 0
-    entered: np.ndarray  # (solute, 2) mol m-2
-    left: np.ndarray  # (solute, 2) mol m-2
-    water_entered: np.ndarray  # (2,) m
-    water_left: np.ndarray  # (2,) m
-    water_freed: np.ndarray  # (2,) m, by solids that dissolved, less what solids bound
-    passed: np.ndarray  # (port, solute, 2) mol m-2 through the port's face
+    passed: np.ndarray  # (gate, solute, 2) mol m-2 through the inlet, the outlet, then each port
+    water_passed: np.ndarray  # (3, 2) m: entered, left, and freed by solids that dissolved less what they bound
     splitting_error: float  # running sum of the steps' error estimates, relative

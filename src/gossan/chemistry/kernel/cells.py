@@ -35,6 +35,10 @@ def settle_cells(
             bench.dissolved[k] = now
             if not abs(now - solved[k, i]) <= skip * abs(solved[k, i]):
                 same = False
+        for m in range(minerals):
+            # a mineral that an earlier stage used up is back: its cell has something to settle
+            if (presence[m, i] == 0 and solid[m, i] > 0.0) or (presence[m, i] == 1 and solid[m, i] <= 0.0):
+                same = False
         if same:
             continue
         for m in range(minerals):
@@ -45,6 +49,7 @@ def settle_cells(
                 bench.presence[m] = 1
         for k in range(components):
             bench.ln_activity[k] = ln_activity[k, i]
+            bench.abundance[k] = abs(solved[k, i])
         outcome[i], strength, steps[i] = settle(
             matrices, bench, bench.dissolved, bench.solid, bench.upper, bench.presence,
             ionic_strength[i], cold,

@@ -24,7 +24,7 @@ from gossan.chemistry.kernel.nullspace import (
 from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponentials
 
 ABSENT = 1e-40  # mol/kg: less than one molecule in a lake; below, a component is left out of the solve
-SETTLED = 1e-7  # a last step below this leaves an error of its square
+SETTLED = 1e-6  # a last step below this leaves an error of about its square
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
 NEAR = 0.3  # mismatch below which the balances' own Newton step converges
 LOOK = 1e-2  # mismatch below which wrong marks already show
@@ -229,7 +229,7 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
                 bench.total[k] = 1e-12
         ionic_strength = approach(matrices, bench, dissolved)
         set_totals(matrices, bench, dissolved, solid, upper, presence)
-    survey(matrices, bench, ionic_strength)
+        survey(matrices, bench, ionic_strength)
     steps, changes, entering = 0, 0, -1
     patience = 2 * (minerals + 2)
     while changes < 40 * patience:
