@@ -49,6 +49,7 @@ def pores(result: Result) -> Figure:
     grid[-1, 1].set_xlabel(axis_label("profiles", "time", time))
     grid[0, 1].legend(loc="best")
     says = "porosity and conductivity" if known else "porosity; no conductivity is given in the case"
+    says += style.layer_key(*chosen.layer_edges(result))
     style.headed(figure, result.title, says, result.caution, legend_of=grid[0, 0])
     return figure
 

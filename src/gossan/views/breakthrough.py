@@ -37,7 +37,7 @@ def breakthrough(
     time = time_scale(float(group.time.values[-1]))
     _solutes(linear, group, watched, time, masses)
     _solutes(log, group, watched, time, masses)
-    _on_log_axis(log, own)
+    _on_log_axis(log)
     for bound in own:
         if bound.quantity in watched:
             colour = style.colour_of(watched.index(bound.quantity))
@@ -45,13 +45,14 @@ def breakthrough(
             _limit(log, bound, colour, scale)
             _crossing(log, group, bound, colour, scale, time)
     _solutes(major, group, others, time, masses)
-    _on_log_axis(major, [])
+    _on_log_axis(major)
     style.line(ph, group.time.values * time.factor, group.pH.values, 5, "pH", marked=False)
     for bound in own:
         if bound.quantity == PH:
             ph.axhspan(bound.low, bound.high, color="#e9e4d6", zorder=0, label="limits")
     for ax in (linear, major, ph):
         ax.legend(loc="center left", bbox_to_anchor=(1.01, 0.5))
+    style.at_least_spanning(ph, style.PH_SPAN)
     ph.set_ylabel(axis_label("ports/NAME", "pH"))
     ph.set_xlabel(axis_label("ports/NAME", "time", time))
     ph.set_xlim(0.0, max(float(group.time.values[-1]) * time.factor, 1e-30))
@@ -77,12 +78,13 @@ def _solutes(ax: Axes, group: Group, names: list[str], time: Scale, masses: dict
     ax.set_ylabel(f"concentration\n({' or '.join(sorted(units)) or 'mg/L'})")
 
 
-def _on_log_axis(ax: Axes, bounds: list[Bound]) -> None:
-    """A log axis that ends some decades below the largest value: nothing real is read off below."""
-    tops = [np.nanmax(line.get_ydata(), initial=0.0) for line in ax.get_lines()]
-    top = max(tops, default=1.0) or 1.0
+def _on_log_axis(ax: Axes) -> None:
+    """A log axis of some decades below the largest value: nothing real is read off below."""
+    drawn = np.concatenate([np.asarray(line.get_ydata(), float) for line in ax.get_lines()] or [np.ones(1)])
+    drawn = drawn[np.isfinite(drawn) & (drawn > 0.0)]
+    least, top = (drawn.min(), drawn.max()) if len(drawn) else (1.0, 1.0)
     ax.set_yscale("log", nonpositive="mask")
-    ax.set_ylim(max(top * 10.0**-DECADES, TRACE), top * 3.0)
+    ax.set_ylim(max(top * 10.0**-DECADES, least / 3.0, TRACE), top * 3.0)
 
 
 def _limit(ax: Axes, bound: Bound, colour: str, scale: Scale) -> None:

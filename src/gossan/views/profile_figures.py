@@ -18,7 +18,6 @@ if TYPE_CHECKING:
 
 PANEL_HEIGHT = 1.75  # inches
 HEAD_HEIGHT = 1.1
-PH_SPAN = 0.1  # of its mean, about 0.7: hundredths of a pH do not fill an axis
 
 
 @style.in_style
@@ -59,13 +58,14 @@ def _panels(result: Result, panels: list[tuple[str, np.ndarray]], says: str) -> 
         along_column(ax, result, values, named=number < columns)
         ax.set_ylabel(name)
         if name == PH:
-            style.at_least_spanning(ax, PH_SPAN)
+            style.at_least_spanning(ax, style.PH_SPAN)
     scale = length_scale(float(result.axes.face[-1]))
     for ax in grid[-1]:
         ax.set_xlabel(f"distance from the inlet ({scale.unit})")
     if len(panels) < rows * columns:  # rows > 1
         grid[-1, -1].set_visible(False)
         grid[-2, -1].tick_params(labelbottom=True)
+    says += style.layer_key(*chosen.layer_edges(result))
     style.headed(figure, result.title, says, result.caution, legend_of=grid.flat[0])
     return figure
 

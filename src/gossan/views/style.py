@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from functools import wraps
+from itertools import pairwise
 from typing import TYPE_CHECKING, Any, ParamSpec
 
 import numpy as np
@@ -22,6 +23,8 @@ PIXELS_PER_INCH = 160
 PAGE_WIDTH = 7.2  # inches: the text width of an A4 page
 INK, FAINT = "#1b1b22", "#8d8d99"
 MARKS_PER_LINE = 9
+PH_SPAN = 0.1  # of its mean, about 0.7: hundredths of a pH do not fill an axis
+LETTERS_ACROSS = 44  # of a layer's name, along the axes of a figure with two columns
 HEAD_HEIGHT = 0.34  # inches that a title of two lines takes
 
 # colour, lightness falling and rising in turn so that neighbours differ; line; mark
@@ -121,22 +124,40 @@ def headed(figure: Figure, title: str, says: str, caution: str, legend_of: Axes 
 
 
 def layers_marked(ax: Axes, edges: list[float], names: list[str], named: bool) -> None:
-    """Boundaries between layers, and their names above the axes."""
+    """Boundaries between layers, and their names (or numbers, `layer_key`) above the axes."""
     for edge in edges[1:-1]:
         ax.axvline(edge, color=FAINT, linewidth=0.8, linestyle=(0, (1, 2)), zorder=0.5)
     if named and len(names) > 1:
-        for name, left, right in zip(names, edges[:-1], edges[1:], strict=True):
+        heads = _layer_heads(edges, names)
+        for head, left, right in zip(heads, edges[:-1], edges[1:], strict=True):
             ax.text(
-                0.5 * (left + right), 1.015, _fitted(name, (right - left) / (edges[-1] - edges[0])),
-                transform=ax.get_xaxis_transform(), ha="center", va="bottom", fontsize=7, color=FAINT,
+                0.5 * (left + right), 1.015, head, transform=ax.get_xaxis_transform(),
+                ha="center", va="bottom", fontsize=7, color=FAINT,
             )  # fmt: skip
 
 
-def _fitted(name: str, share: float) -> str:
-    """A layer's name, broken over lines where the layer is short."""
+def layer_key(edges: list[float], names: list[str]) -> str:
+    """What the numbers above the axes stand for; "" where the names themselves stand there."""
+    heads = _layer_heads(edges, names)
+    if len(names) < 2 or heads[0] != "1":
+        return ""
+    return "; layers: " + ", ".join(f"{head} {name}" for head, name in zip(heads, names, strict=True))
+
+
+def _layer_heads(edges: list[float], names: list[str]) -> list[str]:
+    """Names broken over two lines at the most, or numbers where a layer is too short for its name."""
     import textwrap
 
-    return "\n".join(textwrap.wrap(name, max(6, int(44 * share)), break_long_words=False))
+    whole = edges[-1] - edges[0]
+    shares = [(right - left) / whole for left, right in pairwise(edges)]
+    lines = [
+        textwrap.wrap(name, max(1, int(LETTERS_ACROSS * share)))
+        for name, share in zip(names, shares, strict=True)
+    ]
+    broken = any(" ".join(each) != name for each, name in zip(lines, names, strict=True))
+    if broken or max(map(len, lines)) > 2:
+        return [str(number) for number in range(1, len(names) + 1)]
+    return ["\n".join(each) for each in lines]
 
 
 def at_least_spanning(ax: Axes, share: float) -> None:
