@@ -8,14 +8,19 @@ from __future__ import annotations
 
 import hashlib
 import os
+from collections.abc import Callable
 from pathlib import Path
+from typing import Any
+
+import numba
 
 PACKAGE = Path(__file__).resolve().parents[1]
 
 
 def cache_home() -> Path:
-    """The folder below which compiled kernels are kept (XDG_CACHE_HOME, or the user's cache)."""
-    return Path(os.environ.get("XDG_CACHE_HOME") or Path.home() / ".cache") / "gossan"
+    """The folder below which compiled kernels are kept: NUMBA_CACHE_DIR, or `gossan` in the user's cache."""
+    chosen = os.environ.get("NUMBA_CACHE_DIR")
+    return Path(chosen or Path(os.environ.get("XDG_CACHE_HOME") or Path.home() / ".cache") / "gossan")
 
 
 def sources_digest() -> str:
@@ -38,15 +43,14 @@ def is_compiled() -> bool:
     return any(cache_folder().rglob("*.nbc"))
 
 
-os.environ.setdefault("NUMBA_CACHE_DIR", str(cache_folder()))
+# not through the environment: a child process may check bounds where this one does not
+numba.config.CACHE_DIR = str(cache_folder())  # type: ignore[attr-defined]
 
-import numba  # noqa: E402  (numba reads NUMBA_CACHE_DIR when it is imported)
 
-
-def kernel(function=None, **options):
+def kernel(function: Callable | None = None, **options: Any) -> Any:
     """Compile a function on plain arrays at its first call, and keep the code on disk.
 
     The global lock is released, division follows IEEE, and no fast-math is used: same input, same bits.
     """
-    settings = {"cache": True, "nogil": True, "error_model": "numpy", "_nrt": False} | options
+    settings: dict[str, Any] = {"cache": True, "nogil": True, "error_model": "numpy", "_nrt": False} | options
     return numba.njit(**settings)(function) if function else numba.njit(**settings)

@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 
-def added(running: np.ndarray, more) -> np.ndarray:
+def added(running: np.ndarray, more: np.ndarray | float) -> np.ndarray:
     """A running sum with more added to it: pairs (..., 2) of the sum and what rounding has lost.
 
     Source: the error-free transformation of a sum, Knuth (1969), The Art of Computer Programming 2, 4.2.2.

@@ -10,7 +10,7 @@ from gossan.base.wrong import did_you_mean
 from gossan.case.check_waters import mineral_named
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
-from gossan.case.model import MOST_CELLS
+from gossan.case.model import MOST_CELLS, Layer
 from gossan.constants.entries import Table
 
 ROUND_OFF = 1e-9  # lengths and shares that differ by less than this are the same
@@ -36,7 +36,7 @@ def _check_conductivity(draft: Draft, path: Path) -> None:
         draft.fault((*path, "conductivity"), wrong, 'write conductivity = "25 m/d"')
 
 
-def _check_clogging(draft: Draft, layer, path: Path) -> None:
+def _check_clogging(draft: Draft, layer: Layer, path: Path) -> None:
     """The numbers that a law needs; those that it does not use are let be."""
     if layer.clogging is None or layer.clogging.law not in ("power", "threshold"):
         return
@@ -67,7 +67,7 @@ def _check_water_name(draft: Draft, name: str | None, at: Path) -> None:
         draft.fault(at, f'is "{name}", but there is no [waters.{name}]', did_you_mean(name, waters))
 
 
-def _check_cells(draft: Draft, layer, path: Path) -> None:
+def _check_cells(draft: Draft, layer: Layer, path: Path) -> None:
     given = [key for key in ("cells", "cell") if key in draft.at(path)]
     if not given:
         draft.fault((*path, "cells"), "is missing", 'write cells = 60, or cell = "2 cm"')
@@ -82,7 +82,7 @@ def _check_cells(draft: Draft, layer, path: Path) -> None:
             draft.fault((*path, "cell"), wrong, f"at most {MOST_CELLS} cells are possible")
 
 
-def _check_solids(draft: Draft, table: Table, layer, path: Path) -> None:
+def _check_solids(draft: Draft, table: Table, layer: Layer, path: Path) -> None:
     """Minerals of a layer: known, once each, no more than the solid that is there."""
     names: dict[str, str] = {}
     for key in layer.minerals or {}:

@@ -58,7 +58,7 @@ class Draft:
         here: Any = self.data
         for part in path:
             if isinstance(here, dict):
-                here = here.get(part)  # type: ignore[call-overload]
+                here = here.get(part)
             else:
                 here = here[part] if isinstance(here, list) and isinstance(part, int) else None
         return here if isinstance(here, dict) else {}

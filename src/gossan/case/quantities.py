@@ -72,7 +72,7 @@ class InWater(Quantity):
     what: str = "an amount in water"
     example: str = '"24 mg/L"'
     least: float = 0.0
-    unit = "mg/L, mmol/L, meq/L, mg/kg, mmol/kg; mg/L as N; <0.5 ug/L"  # type: ignore[assignment]
+    unit = "mg/L, mmol/L, meq/L, mg/kg, mmol/kg; mg/L as N; <0.5 ug/L"
 
     def parse(self, text: str, line: int) -> Amount:
         return in_water(text, line)
@@ -85,7 +85,7 @@ class Alkalinity(Quantity):
     units: tuple[str, ...] = ("eq/m3", "kg/m3")
     what: str = "an alkalinity"
     example: str = '"6 mg/L as CaCO3"'
-    unit = "mg/L as CaCO3, mg/L as HCO3, meq/L"  # type: ignore[assignment]
+    unit = "mg/L as CaCO3, mg/L as HCO3, meq/L"
 
     def parse(self, text: str, line: int) -> Amount:
         return alkalinity(text, line)

@@ -43,8 +43,9 @@ class Activity:
         slope = np.empty(len(self.size))
         for strength, row in zip(strengths.flat, out, strict=True):
             activity_coefficients(
-                self.model, self.debye_hueckel, self.charge_squared, self.neutral, self.size, strength, row, slope
-            )
+                self.model, self.debye_hueckel, self.charge_squared, self.neutral, self.size,
+                strength, row, slope,
+            )  # fmt: skip
         return out.T.reshape(len(self.size), *np.shape(ionic_strength))
 
 

@@ -71,7 +71,9 @@ class Solver:
         self.system = system
         self._bench = bench(len(system.components), len(system.matrices.ln_k), len(system.minerals))
 
-    def cold(self, kilograms, amount, solid, upper=None) -> Equilibrium:
+    def cold(
+        self, kilograms: np.ndarray, amount: np.ndarray, solid: np.ndarray, upper: np.ndarray | None = None
+    ) -> Equilibrium:
         """Equilibrate from nothing but the amounts; arguments as for `settled`."""
         cells = amount.shape[1]
         system = self.system
@@ -88,7 +90,15 @@ class Solver:
         return self.settled(start, kilograms, amount, solid, upper, cold=True)
 
     def settled(
-        self, start: Equilibrium, kilograms, amount, solid, upper=None, *, skip=-1.0, cold=False
+        self,
+        start: Equilibrium,
+        kilograms: np.ndarray,
+        amount: np.ndarray,
+        solid: np.ndarray,
+        upper: np.ndarray | None = None,
+        *,
+        skip: float = -1.0,
+        cold: bool = False,
     ) -> Equilibrium:
         """Equilibrate these amounts, starting from an earlier equilibrium.
 
@@ -115,22 +125,18 @@ class Solver:
             ionic_strength, solved, skip, cold, outcome, steps, 0, cells,
         )  # fmt: skip
         if failed:
-            self._rescue(
-                kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, outcome, steps
-            )
+            arrays = (kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved)
+            self._rescue(arrays, outcome, steps)
         return replace(
             start, amount=amount, solid=solid, presence=presence, ln_activity=ln_activity,
             ionic_strength=ionic_strength, solved=solved, steps=steps,
         )  # fmt: skip
 
-    def _rescue(
-        self, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, outcome, steps
-    ) -> None:
+    def _rescue(self, arrays: tuple[np.ndarray, ...], outcome: np.ndarray, steps: np.ndarray) -> None:
         """Find the minerals of failed cells another way, then settle them again; in place."""
         from gossan.chemistry.kernel.cells import settle_cells
         from gossan.chemistry.kernel.rescue import find_minerals_in
 
-        arrays = (kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved)
         for i in np.flatnonzero(outcome != SOLVED):
             one = [np.ascontiguousarray(a[..., i : i + 1]) for a in arrays]
             result, count = outcome[i : i + 1].copy(), steps[i : i + 1].copy()

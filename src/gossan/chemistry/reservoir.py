@@ -76,6 +76,7 @@ def held_to(system: System, dissolved: np.ndarray, conditions: list[Condition]) 
         raise Wrong(f"cannot be brought to {named or 'equilibrium'} ({error.reason})",
                     "check the amounts and what the water is held to") from error
     if (found.presence != 1).any():
-        named = ", ".join(c.name for c, mark in zip(conditions, found.presence[:, 0], strict=True) if mark != 1)
+        marks = zip(conditions, found.presence[:, 0], strict=True)
+        named = ", ".join(c.name for c, mark in marks if mark != 1)
         raise Wrong(f"would take more than {PLENTY:g} mol/kg to reach {named}", "check the amounts")
     return replace(found, system=system)

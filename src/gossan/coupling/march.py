@@ -14,6 +14,7 @@ from gossan.coupling.attempt import Trial, attempt
 from gossan.coupling.pace import Pace, acceptable
 from gossan.coupling.pores import flow, pore_space
 from gossan.coupling.problem import Problem
+from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
 from gossan.transport.step import courant, explicit_limit
 
@@ -111,7 +112,7 @@ def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: f
     )
 
 
-def _due(schedule, before: State, after: State, entered: float, now: float) -> bool:
+def _due(schedule: Schedule, before: State, after: State, entered: float, now: float) -> bool:
     return schedule.passed(schedule.clock(after.time, now)) > schedule.passed(
         schedule.clock(before.time, entered)
     )
@@ -129,7 +130,9 @@ def _longest(problem: Problem, state: State, darcy_flux: np.ndarray) -> tuple[fl
     return by_courant, True
 
 
-def _fitted(problem: Problem, state: State, entered: float, inlet_flux: float, dt: float) -> tuple[float, bool]:
+def _fitted(
+    problem: Problem, state: State, entered: float, inlet_flux: float, dt: float
+) -> tuple[float, bool]:
     """A step no longer than dt that ends on the next event, or leaves a decent step before it."""
     nearest = math.inf
     for schedule in (problem.frames, problem.records, problem.feeds, problem.end):

@@ -1,4 +1,4 @@
-"""Solids to pores: porosity, the conductivity it leaves, and the water that is pushed about (equations.md, 31-34)."""
+"""Solids to pores: porosity, the conductivity it leaves, the water pushed about (equations.md, 31-34)."""
 
 from __future__ import annotations
 

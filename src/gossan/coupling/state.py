@@ -29,5 +29,5 @@ class State:
     solved: np.ndarray  # (component, cell) mol per kg of water, dissolved after the last solve: the skip rule
     # since time 0
     passed: np.ndarray  # (gate, solute, 2) mol m-2 through the inlet, the outlet, then each port
-    water_passed: np.ndarray  # (3, 2) m: entered, left, and freed by solids that dissolved less what they bound
+    water_passed: np.ndarray  # (3, 2) m: entered, left, freed by solids that dissolved less what they bound
     splitting_error: float  # running sum of the steps' error estimates, relative

@@ -9,7 +9,6 @@ import numpy as np
 from gossan.base.amounts import Amount
 from gossan.case.model import Case
 from gossan.case.quantities import Range
-from gossan.case.waters import constants_of
 from gossan.constants.names import component_named, moles
 from gossan.constants.water import density
 from gossan.store.read import Group, Result
@@ -59,7 +58,7 @@ def tracer_masses(case: Case) -> dict[str, float]:
 
 def bounds_of(case: Case) -> list[Bound]:
     """The limits of a case, in the order in which it gives them."""
-    components = constants_of(case).components
+    components = case.table.components
     masses, tracers = tracer_masses(case), case.tracer_names
     water = density(case.temperature.si)
     found = []
@@ -95,7 +94,13 @@ def verdicts(result: Result, bounds: list[Bound]) -> list[Verdict]:
     return found
 
 
-def _verdict(name: str, port: Group, quantity: str, bound: Bound | None, estimates) -> Verdict:
+def _verdict(
+    name: str,
+    port: Group,
+    quantity: str,
+    bound: Bound | None,
+    estimates: tuple[np.ndarray, np.ndarray],
+) -> Verdict:
     values = _values(port, quantity)
     known = np.isfinite(values)
     if not known.any():

@@ -16,7 +16,9 @@ SALTING = 0.1 * math.log(10.0)  # kg/mol, of neutral species
 
 
 @kernel
-def activity_coefficients(model, debye_hueckel, charge_squared, neutral, size, ionic_strength, ln_gamma, slope):
+def activity_coefficients(
+    model, debye_hueckel, charge_squared, neutral, size, ionic_strength, ln_gamma, slope
+):
     """Fill ln gamma of every species, and its slope against ionic strength (equations.md, 4-6).
 
     charge_squared, neutral, size (species,); size is B times the ion size, (kg/mol)^0.5

@@ -12,7 +12,15 @@ import math
 from gossan.base.jit import kernel
 from gossan.base.outcome import CYCLING, DIVERGED, ITERATIONS, SINGULAR, SOLVED
 from gossan.chemistry.kernel.activity import activity_coefficients
-from gossan.chemistry.kernel.newton import balances, convex_step, dual_energy, far_merit, far_step, molalities, near_step
+from gossan.chemistry.kernel.newton import (
+    balances,
+    convex_step,
+    dual_energy,
+    far_merit,
+    far_step,
+    molalities,
+    near_step,
+)
 from gossan.chemistry.kernel.nullspace import (
     GONE,
     NOWHERE,

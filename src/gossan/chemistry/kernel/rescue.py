@@ -6,9 +6,9 @@ import math
 
 from gossan.base.jit import kernel
 from gossan.chemistry.kernel.complement import approach, set_totals, survey
+from gossan.chemistry.kernel.dense import solve_general
 from gossan.chemistry.kernel.nullspace import GONE, NOWHERE
 from gossan.chemistry.kernel.vectors import row_dot
-from gossan.chemistry.kernel.dense import solve_general
 
 LIMIT = 300  # steps
 GOOD = 1e-8  # scaled residual at which the marks are certain
