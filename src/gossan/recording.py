@@ -32,10 +32,10 @@ from gossan.transport.step import passages
 
 CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
 CAUTION = (
-    "A one-dimensional aid for screening and design; not a substitute for licensed practice, local codes and "
+    "A one-dimensional aid for screening and design; no substitute for licensed practice, local codes and "
     "permits. Sulfide-bearing beds give off hydrogen sulfide, which dulls the sense of smell and kills: wells, "
-    "vaults and trenches over them are confined spaces. Acid drainage returns when alkali is spent or bypassed, "
-    "and sulfides that dry out or meet air release the metals they held."
+    "vaults and trenches over them are confined spaces. Acid drainage returns when alkali is spent or "
+    "bypassed, and sulfides that dry out or meet air release the metals they held."
 )
 
 Progress = Callable[[float, State], None]
@@ -47,6 +47,7 @@ class Ending:
 
     status: str  # "finished", "stopped" or "failed"
     reason: str
+    detail: str = ""  # the reason in a sentence
     error: SolveError | None = None
 
 
@@ -58,7 +59,9 @@ def run_case(case: Case, path: Path, *, overwrite: bool = False, progress: Progr
     """
     problem = build(case)
     state, pace = problem.initial, first_pace(problem)
-    writer = ResultWriter(path, axes_of(problem), case.title, case.text, CAUTION, overwrite)
+    writer = ResultWriter(
+        path, axes_of(problem), case.title, case.text, CAUTION, overwrite, case.constants_text
+    )
     with writer:
         run = _Run(problem, writer, progress)
         run.frame(state)
@@ -72,11 +75,15 @@ def resume(path: Path, *, progress: Progress | None = None) -> Ending:
 
     Raises   ResultError where there is nothing to go on with
     """
-    case = case_from_text(open_result(path).case, str(path), path.parent)
-    problem = build(case)
+    problem = build(case_of(open_result(path)))
     writer, parts = ResultWriter.resume(path)
     with writer:
         return _Run(problem, writer, progress).walk(State(**parts["state"]), Pace(**parts["pace"]))
+
+
+def case_of(result: Result) -> Case:
+    """The case that a result file holds, with the user's constants it was run with."""
+    return case_from_text(result.case, str(result.path), constants=result.constants or None)
 
 
 def run(case: Case, out: str | Path | None = None, progress: bool = False, overwrite: bool = False) -> Result:
@@ -157,10 +164,11 @@ class _Run:
                     break
         except Clogged as clogged:
             where = float(self.problem.grid.centres[clogged.cell])
-            ending = Ending("stopped", f"clogged at x = {where:.4g} m after {clogged.time / 86400:.6g} d")
+            detail = f"clogged at x = {where:.4g} m after {clogged.time / 86400:.6g} d"
+            ending = Ending("stopped", "clogged", detail)
         except SolveError as error:
             error.kept = str(self.writer.path)
-            ending = Ending("failed", str(error), error)
+            ending = Ending("failed", str(error), str(error), error)
         if ending.status != "finished" and state.time > self.recorded:
             self.frame(state)
             self.records(state)
@@ -205,8 +213,8 @@ class _Run:
             values = port_of(self.problem, state, port, index, darcy_flux, through)
             self.writer.port(port.name, state.time, values)
         ledger = self.books.closed(state)
-        self.writer.ledger(state.time, {name: getattr(ledger, name) for name in
-                                        ("entered", "left", "stored", "made", "error", "water_error", "charge_error")})
+        names = ("entered", "left", "stored", "made", "error", "water_error", "charge_error")
+        self.writer.ledger(state.time, {name: getattr(ledger, name) for name in names})
         self.writer.flush()
 
 

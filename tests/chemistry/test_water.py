@@ -128,14 +128,12 @@ WEAK = pytest.mark.xfail(strict=True, reason="a weak ion that cannot take up the
         ({"Na^+": 0.001, "Cl^-": 0.01}, {"pH": 5.0, "alkalinity": 1e-3}),
     ],
 )
-@WEAK
 def test_a_weak_ion_that_cannot_take_up_the_charge_is_refused(analysis, more):
     """Carbon at pH 5 is CO2 and carries nothing; with an alkalinity it is not free to move at all."""
     with pytest.raises(Wrong, match=r"CO3\^2-"):
         read(analysis, balance_on="CO3^2-", **more)
 
 
-@WEAK
 def test_an_ion_that_the_ph_has_taken_the_charge_from_is_not_named_as_a_cure():
     with pytest.raises(Wrong) as wrong:
         read({"Na^+": 1e-3, "Cl^-": 2e-3, "CO3^2-": 0.05, "SO4^2-": 0.01}, pH=5.0, balance_on="Cl^-")

@@ -51,6 +51,7 @@ def kernel(function: Callable | None = None, **options: Any) -> Any:
     """Compile a function on plain arrays at its first call, and keep the code on disk.
 
     The global lock is released, division follows IEEE, and no fast-math is used: same input, same bits.
+    Without numba's runtime (`_nrt`) a kernel cannot allocate, and no array is counted as it is passed on.
     """
     settings: dict[str, Any] = {"cache": True, "nogil": True, "error_model": "numpy", "_nrt": False} | options
     return numba.njit(**settings)(function) if function else numba.njit(**settings)

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import numpy as np
 
-from gossan.base.notation import molar_mass
+from gossan.base.amounts import Amount
 from gossan.case.model import Case, Layer
 from gossan.case.quantities import Solid
-from gossan.case.waters import constants_of, excluded_by, read_waters
+from gossan.case.waters import excluded_by, read_waters
 from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.chemistry.system import System, build_system
 from gossan.chemistry.water import Water
@@ -29,8 +29,9 @@ def build(case: Case) -> Problem:
     Raises   InputError where the case lacks what a run needs, or a water cannot be what it says; SolveError
     """
     case.require_column()
-    assert case.flow is not None and case.run is not None
-    table = constants_of(case)
+    assert case.flow is not None
+    assert case.run is not None
+    table = case.table
     used = dict.fromkeys([layer.water for layer in case.layers] + [feed.water for feed in case.flow.feed])
     waters = read_waters(case, list(used))
     solids = [_starting_solids(layer, table) for layer in case.layers]
@@ -91,7 +92,7 @@ def _clogging(layer: Layer) -> clogging.Clogging:
     said = layer.clogging
     return clogging.Clogging(
         law=said.law,
-        exponent=said.exponent if said.exponent is not None else 3.0,
+        exponent=said.exponent or 0.0,
         critical_porosity=said.critical_porosity or 0.0,
     )
 
@@ -150,18 +151,21 @@ def _composition(case: Case, name: str, water: Water, system: System) -> np.ndar
     totals = water.totals
     chemical = [totals.get(component, 0.0) * water.system.water_density for component in system.components]
     said = case.waters[name].tracers
-    return np.array(chemical + [_tracer(case, tracer, said) for tracer in case.tracer_names])
+    density = water.system.water_density
+    return np.array(chemical + [_tracer(case, tracer, said, density) for tracer in case.tracer_names])
 
 
-def _tracer(case: Case, name: str, said: dict) -> float:
+def _tracer(case: Case, name: str, said: dict[str, Amount], water_density: float) -> float:
+    """mol per m3 of water of a tracer; a mass is given only for one whose molar mass is declared."""
     amount = said.get(name)
     if amount is None:
         return 0.0
+    per_volume = amount.si * (water_density if amount.unit.endswith("/kg") else 1.0)
     if amount.unit.startswith("mol"):
-        return amount.si
-    declared = case.tracers.get(name)
-    mass = declared.molar_mass.si if declared and declared.molar_mass else molar_mass(name)
-    return amount.si / mass
+        return per_volume
+    molar_mass = case.tracers[name].molar_mass
+    assert molar_mass is not None
+    return per_volume / molar_mass.si
 
 
 def _feeds(case: Case) -> Schedule:
@@ -198,7 +202,8 @@ def _initial(
     tracers = np.array([composition[layer.water][chemical:] for layer in case.layers])
 
     def spread(field: str) -> np.ndarray:
-        return np.ascontiguousarray(np.concatenate([getattr(one, field) for one in settled], -1)[..., cells.layer])
+        layers = np.concatenate([getattr(one, field) for one in settled], -1)
+        return np.ascontiguousarray(layers[..., cells.layer])
 
     porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
     solutes = chemical + tracers.shape[1]

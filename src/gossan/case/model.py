@@ -25,6 +25,8 @@ from gossan.case.quantities import (
     Solid,
     SolidAmount,
 )
+from gossan.constants.entries import Table
+from gossan.constants.load import load_table
 
 MOST_CELLS = 1_000_000  # of a layer; more is a slip of the unit of `cell`
 
@@ -280,6 +282,8 @@ class Case(TableOfCase):
 
     _file: str = PrivateAttr("")
     _text: str = PrivateAttr("")
+    _table: Table | None = PrivateAttr(default=None)
+    _constants_text: str = PrivateAttr("")
     _lines: dict[tuple[str | int, ...], int] = PrivateAttr(default={})
 
     @property
@@ -291,6 +295,16 @@ class Case(TableOfCase):
     def text(self) -> str:
         """The whole TOML text, as read."""
         return self._text
+
+    @property
+    def table(self) -> Table:
+        """The constants in force: the program's own, with the case's file over them."""
+        return self._table or load_table()
+
+    @property
+    def constants_text(self) -> str:
+        """The text of the user's own constants; empty without."""
+        return self._constants_text
 
     def line_of(self, *path: str | int) -> int:
         """The line of a key or table in the text, 0 where it is not known."""

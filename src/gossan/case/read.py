@@ -37,8 +37,12 @@ def read_case(path: str | Path) -> Case:
     return case_from_text(text, str(path), path.parent)
 
 
-def case_from_text(text: str, name: str = "case.toml", folder: str | Path = ".") -> Case:
+def case_from_text(
+    text: str, name: str = "case.toml", folder: str | Path = ".", constants: str | None = None
+) -> Case:
     """Read and check a case given as text; `name` stands in messages, `folder` is where its files are.
+
+    constants  the text of the user's own constants, where their file is not in the folder any more
 
     Raises  InputError
     """
@@ -46,7 +50,7 @@ def case_from_text(text: str, name: str = "case.toml", folder: str | Path = ".")
     data, mended, faults = parse(plain, name)
     if data is None:
         raise InputError(faults)
-    return _checked(data, key_lines(mended), name, text, Path(folder), faults)
+    return _checked(data, key_lines(mended), name, text, Path(folder), faults, constants)
 
 
 def case_from_data(data: dict[str, Any], name: str = "case", folder: str | Path = ".") -> Case:
@@ -58,25 +62,28 @@ def case_from_data(data: dict[str, Any], name: str = "case", folder: str | Path 
 
 
 def _checked(data: dict[str, Any], lines: dict[KeyPath, int], name: str, text: str, folder: Path,
-             faults: list[Fault]) -> Case:
+             faults: list[Fault], constants: str | None = None) -> Case:
     draft = Draft(data, lines, name)
     draft.faults[:0] = faults
-    check_case(draft, _table(draft, folder))
+    table = _table(draft, folder, constants)
+    check_case(draft, table)
     if draft.faults:
         # the case's own faults in the order of lines, then those of other files
         raise InputError(sorted(draft.faults, key=lambda fault: (fault.file != name, fault.line)))
     case: Case = draft.case
-    case._file, case._text, case._lines = name, text, lines
+    case._file, case._text, case._lines, case._table = name, text, lines, table
+    if case.chemistry.constants:
+        case._constants_text = constants or (folder / case.chemistry.constants).read_text(encoding="utf-8")
     return case
 
 
-def _table(draft: Draft, folder: Path) -> Table:
+def _table(draft: Draft, folder: Path, text: str | None) -> Table:
     """The constants of the case; the program's own alone where the user's file is faulty."""
     extra = draft.case.chemistry.constants if draft.case.chemistry else ""
     if not extra:
         return load_table()
     try:
-        return load_table(folder / extra)
+        return load_table(folder / extra, text)
     except InputError as error:
         draft.fault(("chemistry", "constants"), f'is "{extra}", which has faults', "they are listed here too")
         draft.faults += error.faults

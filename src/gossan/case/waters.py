@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from pathlib import Path
-
 from gossan.base.amounts import Amount
 from gossan.base.errors import Fault, InputError
 from gossan.base.notation import molar_mass, split_ion
@@ -12,17 +10,10 @@ from gossan.case.model import Case
 from gossan.chemistry.water import LabReport, Water, read_water
 from gossan.constants.entries import Table
 from gossan.constants.find import find_mineral
-from gossan.constants.load import load_table
 from gossan.constants.names import Named, component_named, equivalents, moles
 from gossan.constants.water import density
 
 ATMOSPHERE = 101325.0  # Pa, exact
-
-
-def constants_of(case: Case) -> Table:
-    """The constants in force: the program's own, with the case's file over them."""
-    extra = case.chemistry.constants
-    return load_table(Path(case.file).parent / extra) if extra else load_table()
 
 
 def excluded_by(case: Case, table: Table) -> frozenset[str]:
@@ -37,7 +28,7 @@ def read_waters(case: Case, names: list[str] | None = None) -> dict[str, Water]:
 
     Raises   InputError with the faults of all of them that cannot be what they say
     """
-    table = constants_of(case)
+    table = case.table
     excluded = excluded_by(case, table)
     found: dict[str, Water] = {}
     faults: list[Fault] = []
@@ -65,7 +56,8 @@ def lab_report(case: Case, name: str, table: Table) -> LabReport:
     }
     alkalinity = None
     if water.alkalinity is not None:
-        alkalinity = equivalents(water.alkalinity) / (1.0 if water.alkalinity.unit.endswith("/kg") else volume)
+        per_kg = water.alkalinity.unit.endswith("/kg")
+        alkalinity = equivalents(water.alkalinity) / (1.0 if per_kg else volume)
     minerals, gases = {}, {}
     for key, wanted in water.saturated_with.items():
         if key in table.gases:

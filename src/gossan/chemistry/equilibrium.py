@@ -125,7 +125,9 @@ class Solver:
             ionic_strength, solved, skip, cold, outcome, steps, 0, cells,
         )  # fmt: skip
         if failed:
-            arrays = (kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved)
+            arrays = (
+                kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved
+            )  # fmt: skip
             self._rescue(arrays, outcome, steps)
         return replace(
             start, amount=amount, solid=solid, presence=presence, ln_activity=ln_activity,

@@ -11,7 +11,7 @@ from gossan.base.wrong import Wrong
 from gossan.chemistry.activity import DAVIES
 from gossan.chemistry.charge import charge_error_percent, net_charge
 from gossan.chemistry.equilibrium import Equilibrium
-from gossan.chemistry.reservoir import Condition, fixed_ph, held_to, saturated, under_gas
+from gossan.chemistry.reservoir import fixed_ph, held_to, saturated, under_gas
 from gossan.chemistry.system import PROTON, System, build_system
 from gossan.constants.entries import Table
 
@@ -147,7 +147,8 @@ def _system_of(report: LabReport, table: Table, activity: str, excluded: Collect
     for name in report.gases:
         components |= set(table.gases[name].reaction.components)
     return build_system(
-        table, components, table.minerals, temperature=report.temperature, activity=activity, excluded=excluded
+        table, components, table.minerals,
+        temperature=report.temperature, activity=activity, excluded=excluded,
     )
 
 
@@ -205,18 +206,24 @@ def _balanced(system: System, report: LabReport, found: Equilibrium) -> Equilibr
         )
     tolerance = BALANCED * float(np.abs(system.species_charge) @ found.molality()[:, 0])
     balanced = _secant(with_ion, net_charge, before, off, needed, tolerance, f'balance on "{ion}"')
-    if balanced.amount[k, 0] < 0.0:
-        raise Wrong(f'is balanced on "{ion}", which would have to fall below zero', _who_could_serve(found, off))
+    if abs(net_charge(balanced)) > 1e3 * tolerance:
+        wrong = f'is balanced on "{ion}", which cannot take up the charge at that pH, even at zero'
+        if ion == "CO3^2-" and report.alkalinity is not None:
+            wrong = f'is balanced on "{ion}", which its alkalinity fixes'
+        raise Wrong(wrong, _who_could_serve(found, off))
     return balanced
 
 
 def _who_could_serve(found: Equilibrium, off: float) -> str:
     """Name the most abundant ion that can take up a charge error, or one that can be added."""
     system = found.system
+    # what the pH has put on or taken off an ion moves with it, and is lost to the balance
+    protons = system.stoichiometry.T @ (system.stoichiometry[:, 0] * found.molality()[:, 0])
+    carried = found.amount[:, 0] * system.component_charge + protons
     room = [
-        (found.amount[k, 0] * abs(charge), name)
-        for k, (name, charge) in enumerate(zip(system.components, system.component_charge, strict=True))
-        if name != PROTON and charge * off > 0 and found.amount[k, 0] * abs(charge) > abs(off)
+        (abs(held), name)
+        for name, held, charge in zip(system.components, carried, system.component_charge, strict=True)
+        if name not in (PROTON, "CO3^2-") and charge * off > 0 and held * off > off**2
     ]
     adding = "Cl" if off > 0 else "Na"
     return f'"{max(room)[1] if room else adding}" could serve'

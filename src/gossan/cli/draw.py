@@ -24,11 +24,11 @@ def parser() -> argparse.ArgumentParser:
 
 def run(args: argparse.Namespace) -> int:
     """Draw all figures; returns the exit code."""
+    from gossan.recording import case_of
     from gossan.store.read import open_result
     from gossan.views.figures import all_figures
     from gossan.views.limits import bounds_of, tracer_masses
     from gossan.views.style import PIXELS_PER_INCH
-    from gossan.views.summary import case_of
 
     result = open_result(args.file).loaded()
     try:

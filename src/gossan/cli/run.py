@@ -58,8 +58,8 @@ def _resumed(args: argparse.Namespace) -> int:
     if args.case is not None or args.output or args.overwrite:
         wrong = "takes its case from the file: give nothing else but --enforce-limits, --json, --quiet"
         raise InputError([Fault("gossan run --resume", 0, "", wrong)])
+    from gossan.recording import case_of
     from gossan.store.read import open_result
-    from gossan.views.summary import case_of
 
     path = Path(args.resume)
     result = open_result(path)
@@ -116,7 +116,7 @@ def _told(args: argparse.Namespace, case: Case, path: Path, ending: Ending | Non
 
 def _stopped(path: Path, ending: Ending) -> int:
     if ending.status == "failed":
-        shell.say(f"the numerics gave up: {ending.reason}\ngo on with: gossan run --resume {path}")
+        shell.say(f"the numerics gave up: {ending.detail}\ngo on with: gossan run --resume {path}")
         return GAVE_UP
-    shell.say(f"stopped: {ending.reason}; go on with: gossan run --resume {path}")
+    shell.say(f"stopped: {ending.detail or ending.reason}; go on with: gossan run --resume {path}")
     return STOPPED

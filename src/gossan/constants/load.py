@@ -20,9 +20,10 @@ __all__ = ["UnknownName", "find", "find_mineral", "load_table"]
 BUILT_IN = ("sources", "components", "species", "minerals", "gases")
 
 
-def load_table(extra: Path | None = None) -> Table:
+def load_table(extra: Path | None = None, text: str | None = None) -> Table:
     """Read the program's constants, and a user's own file of the same form over them.
 
+    text     the content of that file, where it is at hand already
     extra    a TOML file whose entries are added, or replace whole entries of the same name
     Returns  the table; without extra always the same one
     Raises   InputError that lists every fault: a reaction that does not balance in charge and elements, a
@@ -31,7 +32,7 @@ def load_table(extra: Path | None = None) -> Table:
     >>> load_table().minerals["gypsum"].reaction.water
     2.0
     """
-    return _built_in() if extra is None else _assembled((*_own_documents(), _user_document(extra)))
+    return _built_in() if extra is None else _assembled((*_own_documents(), _user_document(extra, text)))
 
 
 @lru_cache(maxsize=1)
@@ -45,9 +46,9 @@ def _own_documents() -> tuple[Document, ...]:
     return tuple(_document(folder / f"{name}.toml", f"{name}.toml") for name in BUILT_IN)
 
 
-def _user_document(path: Path) -> Document:
+def _user_document(path: Path, text: str | None) -> Document:
     try:
-        return _document(path, str(path))
+        return _document(path, str(path), text)
     except OSError as error:
         reason = error.strerror or "cannot be read"
         raise InputError([Fault(str(path), 0, "", f"cannot be read ({reason})")]) from None
@@ -60,8 +61,9 @@ def _user_document(path: Path) -> Document:
         raise InputError([fault]) from None
 
 
-def _document(path: Path, shown: str) -> Document:
-    text = path.read_text(encoding="utf-8")
+def _document(path: Path, shown: str, text: str | None = None) -> Document:
+    if text is None:
+        text = path.read_text(encoding="utf-8")
     return Document(shown, text, tomllib.loads(text))
 
 
@@ -87,7 +89,8 @@ def _merge_sources(document: Document, sources: dict[str, str], faults: list[Fau
 
     found = document.tables.get("sources", {})
     if not isinstance(found, dict):
-        return fault("", "is no section", "write [sources] and a line for each key")
+        fault("", "is no section", "write [sources] and a line for each key")
+        return
     for key, text in found.items():
         if not isinstance(text, str) or not text.strip():
             fault(key, "is no text", "write author, year and journal in quotes")

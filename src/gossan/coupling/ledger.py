@@ -6,7 +6,6 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from gossan.coupling.attempt import stored
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State
 
@@ -30,13 +29,13 @@ class Books:
 
     def __init__(self, problem: Problem):
         self.problem = problem
-        self.first = stored(problem, problem.initial)
+        self.first = problem.stored(problem.initial)
         self.first_water = float(np.sum(problem.initial.water * problem.grid.width))
 
     def closed(self, state: State) -> Ledger:
         """The ledger of a state."""
         problem = self.problem
-        now = stored(problem, state)
+        now = problem.stored(state)
         entered, left = state.passed[:2].sum(axis=-1)
         made = np.zeros_like(entered)
         change = now - self.first

@@ -69,6 +69,17 @@ class Problem:
         """Faces whose passages are summed: inlet, outlet, then each port."""
         return np.array([0, len(self.grid.width), *(port.face for port in self.ports)])
 
+    def stored(self, state: State) -> np.ndarray:
+        """(solute,) mol m-2 of cross-section: dissolved and solid in the whole column."""
+        held = state.dissolved * state.water
+        held[: self.chemical] += self.system.mineral_stoichiometry.T @ state.solid
+        return held @ self.grid.width
+
+    @cached_property
+    def stock(self) -> np.ndarray:
+        """(solute,) mol m-2: what the column held at the start, without regard to sign."""
+        return np.abs(self.stored(self.initial))
+
     @cached_property
     def pore_volume(self) -> float:
         """Water in the column at the start, m3 per m2 of cross-section."""

@@ -114,6 +114,7 @@ ATTRIBUTES: dict[str, str] = {
     "reason": "why it stopped or failed; empty otherwise",
     "gossan_version": "the program that wrote the file",
     "case": "the whole TOML text of the case",
+    "constants": "the whole text of the user's own constants; empty without",
     "caution": "what the numbers must not be used for",
     "started": "when the run began, UTC; it also marks the run's own state files",
 }

@@ -127,6 +127,11 @@ class Result:
         return self.attributes["case"]
 
     @property
+    def constants(self) -> str:
+        """The text of the user's own constants; empty without."""
+        return str(self.attributes.get("constants", ""))
+
+    @property
     def caution(self) -> str:
         return self.attributes["caution"]
 

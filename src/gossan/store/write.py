@@ -32,7 +32,7 @@ class ResultWriter:
     """
 
     def __init__(self, path: str | Path, axes: Axes, title: str, case: str, caution: str = "",
-                 overwrite: bool = False):
+                 overwrite: bool = False, constants: str = ""):
         """Take the lock and begin a file; ResultError where it exists, unless overwrite."""
         self.path = Path(path)
         if self.path.exists() and not overwrite:
@@ -42,7 +42,8 @@ class ResultWriter:
                 raise ResultError(f"a port cannot be named {port!r}: use a name without '/', not only dots")
         started = datetime.now(UTC).isoformat()
         attributes = {"Conventions": CONVENTIONS, "title": title, "status": "running", "reason": "",
-                      "gossan_version": __version__, "case": case, "caution": caution, "started": started}
+                      "gossan_version": __version__, "case": case, "constants": constants, "caution": caution,
+                      "started": started}
         with _told(self.path):
             lock = Lock(self.path)
         with _released_on_error(lock), _told(self.path):

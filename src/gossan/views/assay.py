@@ -12,7 +12,7 @@ from gossan.base.errors import Fault, InputError
 from gossan.base.wrong import did_you_mean
 from gossan.case.model import Case
 from gossan.case.read import case_from_data, read_case
-from gossan.case.waters import constants_of, detection_notes, excluded_by, read_waters
+from gossan.case.waters import detection_notes, excluded_by, read_waters
 from gossan.chemistry.water import REFUSE_PERCENT, WARN_PERCENT, Water
 from gossan.constants.entries import Table
 from gossan.constants.find import find_mineral
@@ -152,7 +152,7 @@ def assay(water: Case | str | Path | Mapping[str, Any], name: str | None = None,
     else:
         case = water if isinstance(water, Case) else read_case(water)
     names = None if name is None else [known_water(case, name)]
-    forms = _forms(case, constants_of(case))
+    forms = _forms(case, case.table)
     found = read_waters(case, names)
     return Assay({each: _worked_out(case, each, read, forms) for each, read in found.items()})
 

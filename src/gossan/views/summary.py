@@ -8,7 +8,7 @@ from typing import Any
 import numpy as np
 
 from gossan.case.model import Case
-from gossan.case.read import case_from_text
+from gossan.recording import case_of
 from gossan.store.read import Result
 from gossan.views.limits import Verdict, bounds_of, tracer_masses, verdicts
 
@@ -65,11 +65,6 @@ class Summary:
     def ledger_error(self) -> float:
         """The largest of all errors."""
         return max(self.ledger.values(), default=0.0)
-
-
-def case_of(result: Result) -> Case:
-    """The case that a result file holds; InputError where the user's constants are no longer beside it."""
-    return case_from_text(result.case, str(result.path), result.path.parent)
 
 
 def summary_of(result: Result, case: Case | None = None) -> Summary:
@@ -156,7 +151,7 @@ def run_json(summary: Summary) -> dict[str, Any]:
     found = summary.conductivity
     return {
         "status": result.status,
-        "reason": short_reason(result) or None,
+        "reason": result.reason or None,
         "ports": ports,
         "conductivity": {
             "least_fraction": found.least_fraction, "at_m": found.at, "half_at_s": found.half_at
@@ -167,9 +162,3 @@ def run_json(summary: Summary) -> dict[str, Any]:
         "seconds": summary.seconds,
         "file": str(result.path),
     }  # fmt: skip
-
-
-def short_reason(result: Result) -> str:
-    """Why a run ended early: one word where it is one of the known ends, else the whole sentence."""
-    known = [word for word in ("clogged", "interrupted") if result.reason.startswith(word)]
-    return known[0] if known else result.reason

@@ -15,6 +15,7 @@ from gossan.base.jit import kernel
 
 BLOCK = 1024  # cells; the scratch rows of one block stay in the first-level cache
 FLAT = 1e-10  # variation below this share of the value is rounding (equilibria are solved to about 1e-12)
+FAINT = 1e-280  # mol m-3: the reciprocal of a fainter variation is no number any more
 
 FIRST_ORDER, MINMOD, VAN_LEER = 0, 1, 2  # the limiters
 
@@ -44,7 +45,7 @@ def evenness(fall, rise, value):
     inverse = 1.0 / (fall + rise)
     left, right = fall * inverse, rise * inverse
     lesser = left if left < right else right
-    return lesser if abs(fall) + abs(rise) > FLAT * abs(value) else 0.5
+    return lesser if abs(fall) + abs(rise) > FLAT * abs(value) + FAINT else 0.5
 
 
 @kernel
