@@ -265,7 +265,10 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
 def port_of(
     problem: Problem, state: State, port: Port, index: int, darcy_flux: np.ndarray, through: np.ndarray
 ) -> dict[str, Any]:
-    """What a port shows; through (solute, face) mol m-2 s-1 is what passes every face at this instant."""
+    """What a port shows (equations.md, 45).
+
+    through (solute, face) mol m-2 s-1 is what passes every face at this instant
+    """
     flux = darcy_flux[port.face]
     grid = problem.grid
     before, after = max(port.face - 1, 0), min(port.face, len(grid.width) - 1)

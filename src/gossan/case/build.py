@@ -111,6 +111,7 @@ def _starting_solids(layer: Layer, table: Table) -> dict[str, float]:
 
 
 def _moles_of_solid(solid: Solid, mineral: Mineral, layer: Layer) -> float:
+    """Moles per m3 of bulk that water reaches (equations.md, 44)."""
     dry = layer.grain_density.si * (1.0 - layer.porosity)  # kg of dry solid per m3 of bulk
     amount = solid.amount
     per_bulk = {

@@ -45,7 +45,10 @@ def read_waters(case: Case, names: list[str] | None = None) -> dict[str, Water]:
 
 
 def lab_report(case: Case, name: str, table: Table) -> LabReport:
-    """A water of a case in moles per kg of water; raises Wrong for an amount that has no moles."""
+    """A water of a case in moles per kg of water (equations.md, 40).
+
+    Raises   Wrong for an amount that has no moles
+    """
     water = case.waters[name]
     temperature = case.temperature_of(name)
     solutes = [(component_named(key, table.components), amount) for key, amount in water.analysis.items()]

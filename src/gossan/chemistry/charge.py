@@ -35,7 +35,7 @@ def equivalents(found: Equilibrium) -> tuple[float, float]:
 
 
 def charge_error_percent(found: Equilibrium) -> float:
-    """100 (cations - anions) / (cations + anions); 0 for a water without ions.
+    """100 (cations - anions) / (cations + anions), 0 without ions (equations.md, 42).
 
     Source: the definition in common use; some laboratories divide by the mean, which doubles it.
     """

@@ -1,8 +1,8 @@
 """Conditions that a water is held to, as solids without end.
 
 A solid of which there is always enough gives or takes its formula until its ion activity product is what it
-should be.  With the formula of a mineral that is "saturated with", with that of a gas it is a partial
-pressure, and with a bare proton it is a pH: all in the same solve.
+should be (equations.md, 43).  With the formula of a mineral that is "saturated with", with that of a gas it
+is a partial pressure, and with a bare proton it is a pH: all in the same solve.
 """
 
 from __future__ import annotations

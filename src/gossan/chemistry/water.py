@@ -153,7 +153,7 @@ def _system_of(report: LabReport, table: Table, activity: str, excluded: Collect
 
 
 def _at_ph(system: System, report: LabReport, totals: np.ndarray) -> Equilibrium:
-    """The water at its pH, the carbon from the alkalinity where that is given."""
+    """The water at its pH, the carbon from the alkalinity where that is given (equations.md, 41)."""
     condition = fixed_ph(system, PURE_PH if report.pH is None else report.pH)
     if report.alkalinity is None:
         return held_to(system, totals, [condition])

@@ -12,7 +12,7 @@ REFERENCE = 298.15  # K, the temperature of every log10_k
 
 
 def log10_k_at(entry: Component | Species | Mineral | Gas, temperature_k: float) -> float:
-    """log10 of an entry's constant: a species forming from components, a mineral or gas dissolving to them.
+    """log10 of an entry's constant, of forming from or dissolving to components (equations.md, 2).
 
     temperature_k  K, > 0
     Returns  1; by the temperature fit if there is one, else by van 't Hoff's law with the enthalpy at

@@ -33,7 +33,7 @@ class Books:
         self.first_water = float(np.sum(problem.initial.water * problem.grid.width))
 
     def closed(self, state: State) -> Ledger:
-        """The ledger of a state."""
+        """The ledger of a state (equations.md, 39)."""
         problem = self.problem
         now = problem.stored(state)
         entered, left = state.passed[:2].sum(axis=-1)

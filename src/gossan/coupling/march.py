@@ -46,7 +46,7 @@ class Clogged(Exception):
 
 
 def pore_volumes(problem: Problem, state: State) -> float:
-    """Water that has entered over the water there was at the start."""
+    """Water that has entered over the water there was at the start (equations.md, 45)."""
     return float(state.water_passed[0].sum()) / problem.pore_volume
 
 

@@ -17,7 +17,7 @@ class Pace:
     afresh: int = 0
 
     def after(self, dt: float, error: float, pore_change: float, accuracy: float, longest: float) -> Pace:
-        """The pace after a trial of length dt, its error estimated.
+        """The pace after a trial of length dt, its error estimated (equations.md, 38).
 
         longest  the stability limit, s
         The estimate is that of a first-order scheme, whose error in one step grows with dt^2.

@@ -86,7 +86,7 @@ def passages(
     dt: float,
     theta: float | None = None,
 ) -> Passages:
-    """The first stage of a step, or the whole of a one-step scheme (equations.md, 21 to 26).
+    """The first stage of a step, or the whole of a one-step scheme (equations.md, 21 to 25).
 
     dissolved   (solute, cell) mol m-3 of water; water (cell,) m3 m-3, > 0
     darcy_flux  (face,) m s-1; inflow (solute,) mol m-3, in the entering water, or held at the inlet
@@ -113,7 +113,7 @@ def passages(
 def corrected(
     transport: Transport, first: Passages, dissolved: np.ndarray, predicted: np.ndarray
 ) -> np.ndarray:
-    """What passes over the whole step, from its start and the state that the first stage led to.
+    """What passes over the whole step, from its start and what the first stage led to (equations.md, 26).
 
     dissolved, predicted (solute, cell) mol m-3 of water; returns (solute, face) mol m-2.
 
@@ -144,7 +144,7 @@ def kept_positive(
     passed: np.ndarray,
     positive: np.ndarray,
 ) -> np.ndarray:
-    """The same passages, held back where they would take more out of a cell than there is.
+    """The passages, held back where they would take more from a cell than there is (equations.md, 27).
 
     Explicit steps within their limits never do. Implicit ones can, beside a front of a solute that a solid
     holds back: it is first spread as if nothing held it. Then as much of the second order is added to one

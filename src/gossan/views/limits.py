@@ -135,7 +135,7 @@ def _farthest(values: np.ndarray, bound: Bound) -> float:
 def first_outside(
     time: np.ndarray, values: np.ndarray, low: float, high: float
 ) -> tuple[float, float] | None:
-    """When values first leave [low, high], on straight lines between records, and half the interval there.
+    """When values first leave [low, high], and half the interval between records there (equations.md, 46).
 
     time    (record,) s, rising
     Returns None where they never do; (time of the first record, 0) where they start outside

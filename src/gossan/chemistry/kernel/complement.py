@@ -1,4 +1,4 @@
-"""Which minerals are present, and how much of each: the complementarity problem of one water.
+"""Which minerals are present, and how much of each: complementarity in one water (equations.md, 9).
 
 Every mineral is absent (0, and then undersaturated), present (1, and then saturated) or full (2: it may
 only dissolve, has lost nothing, and may be supersaturated).  An active set of these marks is guessed, the
@@ -75,10 +75,11 @@ def add_up(matrices, bench):
 
 @kernel
 def approach(matrices, bench, dissolved):
-    """Bring a cold water near its balances by damped continued fractions; returns the ionic strength.
+    """Bring a cold water near its balances (equations.md, 19); returns the ionic strength.
 
-    Source: Carrayrou, Mose & Behra (2002), AIChE J. 48, 894-904: every component in turn multiplied by
-    the ratio of the two sides of its balance, damped by 0.9 - 0.8 (smaller / larger side).
+    Damped continued fractions: every component is multiplied by the ratio of the two sides of its balance,
+    all at once, the logarithm divided by how crowded its species are.
+    Source: after Carrayrou, Mose & Behra (2002), AIChE J. 48, 894-904, who damp the ratio otherwise.
     """
     components = bench.ln_activity.shape[0]
     for k in range(components):

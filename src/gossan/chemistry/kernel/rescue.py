@@ -27,7 +27,7 @@ def fischer_burmeister(a, b):
 
 @kernel
 def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, reach):
-    """Mark the minerals present by a semismooth Newton iteration on everything at once.
+    """Mark the minerals present by a semismooth Newton iteration on everything (equations.md, 20).
 
     Balances of all components and, for each mineral, Fischer-Burmeister functions of its amount and its
     saturation (two of them nested where the amount has an upper bound).  bench.ln_activity and presence
