@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import math
+from bisect import bisect_right
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
@@ -18,19 +20,22 @@ class Schedule:
     marks: np.ndarray
     by_volume: bool = False
 
+    @cached_property
+    def _listed(self) -> list[float]:
+        return self.marks.tolist()
+
     def clock(self, time: float, pore_volumes: float) -> float:
         """What this schedule's clock shows."""
         return pore_volumes if self.by_volume else time
 
     def passed(self, now: float) -> int:
         """How many marks have been reached when the clock shows now."""
-        slack = SAME * max(1.0, abs(now))
-        return int(np.searchsorted(self.marks, now + slack, side="right"))
+        return bisect_right(self._listed, now + SAME * max(1.0, abs(now)))
 
     def ahead(self, now: float) -> float:
         """How far the next mark is, infinite after the last."""
         index = self.passed(now)
-        return float(self.marks[index] - now) if index < len(self.marks) else math.inf
+        return self._listed[index] - now if index < len(self._listed) else math.inf
 
 
 def every(interval: float, end: float, by_volume: bool = False) -> Schedule:
