@@ -133,9 +133,10 @@ def watched(problem: Problem) -> Iterator[Stride]:
         yield stride
 
 
-def walk(text: str, folder: str | Path = ".") -> Walk:
-    """March a case to its end in memory, the books closed after every step."""
-    problem, state = started(text, folder)
+def walk(column: str | Problem, folder: str | Path = ".") -> Walk:
+    """March a case, or what was built from it, to its end in memory, the books closed after every step."""
+    problem = started(column, folder)[0] if isinstance(column, str) else column
+    state = problem.initial
     assert_at_equilibrium(problem, state)
     records, frames, count, largest, rejected = [state], [state], 0, 0.0, 0
     for stride in watched(problem):

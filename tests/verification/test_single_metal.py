@@ -80,8 +80,8 @@ saturated_with = {{mackinawite = 0.0}}
     by_mass = at[-1] - run.left(ion)[-1] / (c * run.problem.pore_volume)
     assert by_mass == pytest.approx(expected, rel=WITHIN)
     half = 0.5 * (at[1:] + at[:-1])[np.argmax(left[1:] >= 0.5 * c)]
-    assert half == pytest.approx(expected, abs=0.5 * expected / CELLS + rough / 100), "half a cell, and a record"
+    assert half == pytest.approx(expected, abs=0.5 * expected / CELLS + rough / 100)  # half a cell, a record
     assert left[-1] == pytest.approx(c, rel=1e-6)
     if by_the_trade:
-        assert by_mass == pytest.approx(by_the_trade, abs=0.15), "rules of the trade, to their printed digits and s"
+        assert by_mass == pytest.approx(by_the_trade, abs=0.15), "their digits, and no s"
 

@@ -90,7 +90,7 @@ def test_zinc_breaks_through_first(outlet, feed, dissolved_sulfide):
     metals = sum(feed.values())
     expected = 1.0 + SULFIDE / (metals + dissolved_sulfide)
     assert crossing(outlet, "Zn^2+", 0.5 * metals) == pytest.approx(expected, rel=WITHIN)
-    assert expected == pytest.approx(9.63, rel=0.015), "the rule of the trade, which leaves out dissolved sulfide"
+    assert expected == pytest.approx(9.63, rel=0.015), "by the trade, without s"
 
 
 def test_copper_breaks_through_last(outlet, feed, dissolved_sulfide):
@@ -110,7 +110,8 @@ def test_zinc_leaves_above_its_inflow_between_the_fronts(outlet, feed, pore_volu
 @pytest.mark.parametrize("pore_volumes", [2.0, 5.0, 9.0])
 def test_iron_leaves_from_the_first_pore_volume(outlet, feed, dissolved_sulfide, pore_volumes):
     iron = outlet.dissolved.sel(component="Fe^2+").values[after(outlet, pore_volumes)]
-    assert iron == pytest.approx(sum(feed.values()) + dissolved_sulfide, rel=1e-4)  # at 2, a trace of the pore water
+    expected = sum(feed.values()) + dissolved_sulfide
+    assert iron == pytest.approx(expected, rel=1e-4)  # at 2, a trace of the first pore water
     assert iron * IRON == pytest.approx(12.9, rel=0.015)
 
 
@@ -122,7 +123,7 @@ def test_every_mole_of_sulfide_is_worth_one_of_metal(outlet, feed, dissolved_sul
     names = list(outlet.passed.coords["component"])
     held = 1.0 + SULFIDE * metals / ((metals + dissolved_sulfide) * copper)
     assert passed[names.index("Cu^2+")] == pytest.approx((end - held) * copper, rel=WITHIN)
-    assert passed[names.index("Zn^2+")] == pytest.approx((end - 1.0) * zinc, rel=WITHIN), "one is in the water"
+    assert passed[names.index("Zn^2+")] == pytest.approx((end - 1.0) * zinc, rel=WITHIN), "one stays"
 
 
 def test_the_feed_leaves_at_last(outlet, feed):
