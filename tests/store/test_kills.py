@@ -74,6 +74,7 @@ def test_no_instant_between_two_writes_of_hdf5_is_fatal(tmp_path, monkeypatch):
     instants = 0
     copy = tmp_path / "copy.h5"
     for record, told in sessions:
+        record.close()
         data = bytearray(record.before)
         for n, (where, what) in enumerate(record.done, 1):
             if what is None:

@@ -38,7 +38,9 @@ def in_a_child(work: Work, kill_after: float | None = None) -> tuple[int, int]:
             os._exit(code)
     os.close(into)
     if kill_after is not None:
-        ended, _, _ = select.select([os.pidfd_open(child)], [], [], kill_after)
+        handle = os.pidfd_open(child)
+        ended, _, _ = select.select([handle], [], [], kill_after)
+        os.close(handle)
         if not ended:
             os.kill(child, signal.SIGKILL)
     _, status = os.waitpid(child, 0)
