@@ -26,7 +26,7 @@ class Equilibrium:
     solid: np.ndarray  # (mineral, cell)
     presence: np.ndarray  # (mineral, cell) int8: 0 absent, 1 present, 2 full
     ln_activity: np.ndarray  # (component, cell)
-    ionic_strength: np.ndarray  # (cell,) mol/kg
+    ionic_strength: np.ndarray  # (cell,) mol/kg (equations.md, 3)
     solved: np.ndarray  # (component, cell) mol/kg: dissolved after the last solve
     steps: np.ndarray  # (cell,) Newton steps; 0 where the last answer still held
 
@@ -51,7 +51,7 @@ class Equilibrium:
 
 
 def log10_activity(system: System, ln_activity: np.ndarray) -> np.ndarray:
-    """(species, cell): log10 of the activity of every species from those of the components."""
+    """(species, cell): log10 of the activity of every species from the components' (equations.md, 1)."""
     ln = system.stoichiometry @ ln_activity + system.matrices.ln_k[: len(system.species), None]
     return np.where(ln < -1e4, -np.inf, ln / LN10)
 
