@@ -169,12 +169,14 @@ class _Run:
         except SolveError as error:
             error.kept = str(self.writer.path)
             ending = Ending("failed", str(error), str(error), error)
-        if ending.status != "finished" and state.time > self.recorded:
-            self.frame(state)
-            self.records(state)
         self.writer.steps(self.steps)
+        self.writer.flush()
+        counts = dict(self.writer.counts)
+        if ending.status != "finished" and state.time > self.recorded:
+            self.frame(state)  # to be seen, but a run never stopped has none here: who goes on drops it
+            self.records(state)
         figures = {"wall_clock_seconds": wall.monotonic() - began}
-        self.writer.finish(ending.status, {"state": state, "pace": pace}, ending.reason, figures)
+        self.writer.finish(ending.status, {"state": state, "pace": pace}, ending.reason, figures, counts)
         return ending
 
     def share(self, state: State) -> float:

@@ -16,34 +16,19 @@ cell: two grids show that it is, and what they extrapolate to.
 from __future__ import annotations
 
 from dataclasses import dataclass
-from math import log10
 from pathlib import Path
 
 import numpy as np
 import pytest
 from scipy.integrate import solve_ivp
 from tests.support.columns import Walk, column, walk
+from tests.support.salts import Salt, water, write_salts
 
 from gossan.constants.water import density
 
 WATER = 0.018015 / density(298.15)  # m3 per mol
 HEAD, LENGTH, CLEAN = 0.5, 1.0, 1e-4  # m, m, m/s
 COARSE, FINE = 20, 40
-MINERAL = """
-[minerals."{name}"]
-reaction = "{ion}Cl{crystal}(s) = {ion}^+ + Cl^-{freed}"
-log10_k = {{value = {log10_k!r}, sd = 0.1, source = "invented"}}
-molar_volume = {{value = {volume!r}, source = "invented"}}
-forms = false
-"""
-
-
-def mineral(name: str, ion: str, solubility: float, volume: float, water: int) -> str:
-    """A salt as a user's file of constants states it; solubility mol m-3 in pure water, volume cm3/mol."""
-    return MINERAL.format(
-        name=name, ion=ion, crystal=f"·{water}H2O" if water else "", freed=f" + {water} H2O" if water else "",
-        log10_k=2.0 * log10(solubility / density(298.15)), volume=float(volume),
-    )  # fmt: skip
 
 
 def power(porosity: float, initial: float) -> float:
@@ -81,12 +66,12 @@ class Front:
         return found.y[0]
 
 
-def dissolving(volume: float, water: int, content: float, saturated: float, inflow: float, law: str) -> Front:
-    """A salt that is gone behind the front: content m3 per m3 of bulk, concentrations mol m-3 of water."""
+def dissolving(volume: float, crystal: int, content: float, full: float, inflow: float, law: str) -> Front:
+    """A salt that is gone behind the front: content m3 per m3 of bulk; full, inflow mol m-3 of water."""
     ahead, behind = 0.3, 0.3 + content
     m = content / volume
-    swelling = volume - water * WATER
-    g = (saturated - inflow) / (m * (1.0 + swelling * saturated) + ahead * saturated - behind * inflow)
+    swelling = volume - crystal * WATER
+    g = (full - inflow) / (m * (1.0 + swelling * full) + ahead * full - behind * inflow)
     return Front(ahead, behind, law, g, 1.0 - g * m * swelling)
 
 
@@ -97,22 +82,14 @@ DISSOLVING = {
 }
 
 
-def opening(folder: Path, cells: int, volume: float, water: int, inflow: float, law: str) -> Walk:
-    (folder / "site.toml").write_text(
-        '[sources]\ninvented = "for a test"\n' + mineral("large salt", "Na", 1000.0, 1e6 * volume, water)
-    )
+def opening(folder: Path, cells: int, volume: float, crystal: int, inflow: float, law: str) -> Walk:
+    chemistry = write_salts(folder, Salt("large salt", "Na", 1000.0**2, 1e6 * volume, crystal))
     return walk(
         column(
-            f"""
-[waters.feed]
-analysis = {{Na = "{inflow} mmol/L", Cl = "{inflow} mmol/L"}}
-[waters.pore]
-analysis = {{Na = "1 mol/L", Cl = "1 mol/L"}}
-""",
+            water("feed", Na=inflow, Cl=inflow) + water("pore", Na=1000.0, Cl=1000.0),
             minerals='"large salt" = "20 vol%"', porosity=0.3, cells=cells,
             layer=f'conductivity = "{CLEAN} m/s"\n{law}', flow=f'head_drop = "{HEAD} m"', duration="7 h",
-            chemistry='constants = "site.toml"\nactivity = "ideal"\nminerals = ["large salt"]',
-            run='ports_every = "1 h"\nprofiles_every = "7 h"',
+            chemistry=chemistry, run='ports_every = "1 h"\nprofiles_every = "7 h"',
         ),
         folder,
     )  # fmt: skip
@@ -145,30 +122,22 @@ def assert_as_exact(coarse: Walk, fine: Walk, exact: Front, gone: str, m: float)
 
 @pytest.mark.parametrize("name", DISSOLVING)
 def test_a_bed_opens_as_its_salt_dissolves(tmp_path, name):
-    volume, water, inflow, law = DISSOLVING[name]
-    exact = dissolving(volume, water, 0.2, 1000.0, inflow, law)
-    runs = [opening(tmp_path, cells, volume, water, inflow, law) for cells in (COARSE, FINE)]
+    volume, crystal, inflow, law = DISSOLVING[name]
+    exact = dissolving(volume, crystal, 0.2, 1000.0, inflow, law)
+    runs = [opening(tmp_path, cells, volume, crystal, inflow, law) for cells in (COARSE, FINE)]
     assert_as_exact(*runs, exact, "large salt", 0.2 / volume)
 
 
 def closing(folder: Path, cells: int) -> Walk:
-    (folder / "site.toml").write_text(
-        '[sources]\ninvented = "for a test"\n'
-        + mineral("small salt", "Na", 1.0, 50.0, 0)
-        + mineral("large salt", "K", 1e-3, 120.0, 1)
+    chemistry = write_salts(
+        folder, Salt("small salt", "Na", 1.0, 50.0), Salt("large salt", "K", 1e-6, 120.0, 1)
     )
     return walk(
         column(
-            """
-[waters.feed]
-analysis = {K = "500 mmol/L", NO3 = "500 mmol/L"}
-[waters.pore]
-analysis = {Na = "1 mmol/L", Cl = "1 mmol/L"}
-""",
+            water("feed", K=500.0, NO3=500.0) + water("pore", Na=1.0, Cl=1.0),
             minerals='"small salt" = "10 vol%"', porosity=0.4, cells=cells,
             layer=f'conductivity = "{CLEAN} m/s"', flow=f'head_drop = "{HEAD} m"', duration="40 h",
-            chemistry='constants = "site.toml"\nactivity = "ideal"\nminerals = ["small salt", "large salt"]',
-            run='ports_every = "4 h"\nprofiles_every = "40 h"',
+            chemistry=chemistry, run='ports_every = "4 h"\nprofiles_every = "40 h"',
         ),
         folder,
     )  # fmt: skip

@@ -18,7 +18,7 @@ are what such a front allows: it is at least one cell thick, and stands within h
 from __future__ import annotations
 
 from dataclasses import replace
-from math import log10, pi, sqrt
+from math import pi, sqrt
 from pathlib import Path
 
 import numpy as np
@@ -26,34 +26,14 @@ import pytest
 from scipy.integrate import quad
 from scipy.special import erfc
 from tests.support.columns import Walk, column, started, walk
-
-from gossan.constants.water import density
+from tests.support.salts import Salt, water, write_salts
 
 ONCE = 'ports_every = "1000 d"\nprofiles_every = "1000 d"'
-SALT = """
-[minerals."salt of {name}"]
-reaction = "{formula}(s) = {ion} + Cl^-"
-log10_k = {{value = {log10_k!r}, sd = 0.1, source = "invented"}}
-molar_volume = {{value = 1e-6, source = "invented"}}
-forms = false
-"""
 
 
 def salts(folder: Path, **products: float) -> str:
-    """Write a file of constants with the salts of Na and K, solubility products in (mol m-3)^2."""
-    text = '[sources]\ninvented = "Invented for a test"\n'
-    for name, product in products.items():
-        log10_k = log10(product / density(298.15) ** 2)
-        text += SALT.format(name=name, formula=f"{name}Cl", ion=f"{name}^+", log10_k=log10_k)
-    (folder / "site.toml").write_text(text)
-    names = ", ".join(f'"salt of {name}"' for name in products)
-    return f'constants = "site.toml"\nactivity = "ideal"\nminerals = [{names}]'
-
-
-def water(name: str, **ions: float) -> str:
-    """A water of so many mol m-3 of each ion, neutral."""
-    amounts = ", ".join(f'{ion} = "{amount!r} mmol/L"' for ion, amount in ions.items())
-    return f"[waters.{name}]\nanalysis = {{{amounts}}}\n"
+    """Salts of Na and K by their solubility products, (mol m-3)^2, without a volume."""
+    return write_salts(folder, *(Salt(f"salt of {ion}", ion, product) for ion, product in products.items()))
 
 
 def bed(**moles: float) -> str:

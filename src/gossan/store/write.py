@@ -152,19 +152,20 @@ class ResultWriter:
         self._serial = checkpoint.serial
 
     def finish(self, status: str, parts: Mapping[str, Any], reason: str = "",
-               figures: Mapping[str, Any] | None = None) -> None:
+               figures: Mapping[str, Any] | None = None, counts: Mapping[str, int] | None = None) -> None:
         """End the file: compress it, put the last checkpoint in, remove the state files, give back the lock.
 
         status  `finished`, `stopped` or `failed`; reason in a few words
         parts   as in checkpoint: the state behind the last row, or the last good one
         figures root attributes that depend on the wall clock
+        counts  rows of every group that a run keeps which goes on from here; default all
         """
         self.flush()
         attributes = self._attributes | {"status": status, "reason": reason} | dict(figures or {})
         packed = disk.beside(self.path, "packed")
         with _told(self.path):
             file.create_packed(packed, self.axes, attributes, self._file, self.counts,
-                               encode(self._checkpoint(parts)))
+                               encode(self._checkpoint(parts, counts)))
             disk.sync(packed)
             self._file.close()
             if self._at != self.path:
@@ -194,9 +195,9 @@ class ResultWriter:
                  trace: TracebackType | None) -> None:
         self.close()
 
-    def _checkpoint(self, parts: Mapping[str, Any]) -> Checkpoint:
+    def _checkpoint(self, parts: Mapping[str, Any], counts: Mapping[str, int] | None = None) -> Checkpoint:
         return Checkpoint(self._serial + 1, self._attributes["started"], __version__,
-                          digest(self._attributes["case"]), dict(self.counts), dict(parts))
+                          digest(self._attributes["case"]), dict(counts or self.counts), dict(parts))
 
     def _clear_the_way(self) -> None:
         """Remove the run that is overwritten: its file first, so that no file is ever without its states."""
