@@ -7,6 +7,7 @@ ITERATIONS = 1
 CYCLING = 2
 DIVERGED = 3
 SINGULAR = 4
+LACKING = 5
 
 SENTENCES = {
     SOLVED: "solved",
@@ -14,4 +15,5 @@ SENTENCES = {
     CYCLING: "the set of minerals present went round in circles",
     DIVERGED: "an activity left the range of real numbers",
     SINGULAR: "the mass balances do not determine the water (singular matrix)",
+    LACKING: "the amount of a component is negative or no number",
 }

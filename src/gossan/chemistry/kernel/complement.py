@@ -10,7 +10,7 @@ from __future__ import annotations
 import math
 
 from gossan.base.jit import kernel
-from gossan.base.outcome import CYCLING, DIVERGED, ITERATIONS, SINGULAR, SOLVED
+from gossan.base.outcome import CYCLING, DIVERGED, ITERATIONS, LACKING, SINGULAR, SOLVED
 from gossan.chemistry.kernel.activity import activity_coefficients
 from gossan.chemistry.kernel.newton import (
     balances,
@@ -32,6 +32,7 @@ from gossan.chemistry.kernel.nullspace import (
 from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponentials
 
 ABSENT = 1e-40  # mol/kg: less than one molecule in a lake; below, a component is left out of the solve
+OWED = 1e-12  # mol/kg: an absent component may be negative by what rounding leaves of 100 mol/kg, no more
 SETTLED = 1e-6  # a last step below this leaves an error of about its square
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
 NEAR = 0.3  # mismatch below which the balances' own Newton step converges
@@ -117,8 +118,8 @@ def approach(matrices, bench, dissolved):
 
 
 @kernel
-def set_totals(matrices, bench, dissolved, solid, upper, presence):
-    """Fill bench.total with what is dissolved or must dissolve under these marks; mark absent components.
+def fill_totals(matrices, bench, dissolved, solid, upper, presence):
+    """Fill bench.total with what is dissolved or must dissolve under these marks.
 
     A mineral that is present adds nothing: its own formula drops out of the reduced totals exactly.
     """
@@ -133,6 +134,12 @@ def set_totals(matrices, bench, dissolved, solid, upper, presence):
         if given != 0.0:
             for k in range(dissolved.shape[0]):
                 bench.total[k] += matrices.solid[mineral, k] * given
+
+
+@kernel
+def set_totals(matrices, bench, dissolved, solid, upper, presence):
+    """Fill bench.total and mark the components that are absent under these marks."""
+    fill_totals(matrices, bench, dissolved, solid, upper, presence)
     for k in range(dissolved.shape[0]):
         bench.place[k] = 0
         if k == matrices.signed or bench.total[k] > ABSENT:
@@ -154,6 +161,15 @@ def set_totals(matrices, bench, dissolved, solid, upper, presence):
         elif not bench.ln_activity[k] > -1e5:
             total = bench.total[k]
             bench.ln_activity[k] = math.log(total if total > 1e-12 else 1e-12)
+
+
+@kernel
+def lacking(bench):
+    """Whether a component that counts as absent is in truth owed, or no number at all."""
+    for k in range(bench.total.shape[0]):
+        if bench.place[k] == GONE and not bench.total[k] >= -OWED:
+            return True
+    return False
 
 
 @kernel
@@ -211,9 +227,11 @@ def mark(drop, add, solid, presence, bench):
 
 
 @kernel
-def reduce_all(matrices, bench, presence, entering):
+def reduce_all(matrices, bench, dissolved, solid, upper, presence, entering):
     """Eliminate the present minerals and reduce totals and species; returns (minerals, free components)."""
     active, free = eliminate(matrices, bench, presence, entering)
+    # minerals that found no room were marked absent or full: what they hold belongs to the totals now
+    fill_totals(matrices, bench, dissolved, solid, upper, presence)
     reduce_species(matrices, bench, active, free)
     reduce_totals(bench, active, free)
     return active, free
@@ -242,7 +260,9 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
     steps, changes, entering = 0, 0, -1
     patience = 2 * (minerals + 2)
     while changes < 40 * patience:
-        active, free = reduce_all(matrices, bench, presence, entering)
+        if lacking(bench):
+            return LACKING, ionic_strength, steps
+        active, free = reduce_all(matrices, bench, dissolved, solid, upper, presence, entering)
         # Going round: from now on one change at a time, of the first mark at fault, once all is settled.
         # For linear problems of this kind that ends (Murty 1974).
         one_by_one = changes > patience
