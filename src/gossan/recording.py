@@ -33,9 +33,9 @@ from gossan.transport.step import passages
 CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
 CAUTION = (
     "A one-dimensional aid for screening and design; no substitute for licensed practice, local codes and "
-    "permits. Sulfide-bearing beds give off hydrogen sulfide, which dulls the sense of smell and kills: wells, "
-    "vaults and trenches over them are confined spaces. Acid drainage returns when alkali is spent or "
-    "bypassed, and sulfides that dry out or meet air release the metals they held."
+    "permits. Sulfide-bearing beds give off hydrogen sulfide, which dulls the sense of smell and kills: "
+    "wells, vaults and trenches over them are confined spaces. Acid drainage returns when alkali is spent "
+    "or bypassed, and sulfides that dry out or meet air release the metals they held."
 )
 
 Progress = Callable[[float, State], None]

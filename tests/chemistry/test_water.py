@@ -1,5 +1,7 @@
 """A laboratory report becomes a water by the rules: totals, then charge, then saturation."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from hypothesis import given, settings
@@ -317,3 +319,12 @@ def test_excluded_species_are_not_there():
     assert "CaSO4" not in without.system.species
     assert without.ionic_strength == pytest.approx(0.04, rel=1e-3)
     assert with_pair.ionic_strength < 0.03
+
+
+def test_an_alkalinity_that_an_acid_water_cannot_have_is_refused():
+    """Common practice, no source: below pH 4.5 a titration finds no alkalinity."""
+    report = LabReport("adit", dissolved={"Ca^2+": 1e-3, "Cl^-": 2e-3}, pH=3.1, alkalinity=4e-4)
+    with pytest.raises(Wrong, match=r"needs carbon dioxide at 6\d\.\d atm"):
+        read_water(report, load_table())
+    fizzing = read_water(replace(report, pH=4.6, dissolved={"Ca^2+": 1.2e-3, "Cl^-": 2e-3}), load_table())
+    assert any("fizz" in warning for warning in fizzing.warnings)

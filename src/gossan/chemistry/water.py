@@ -18,6 +18,7 @@ from gossan.constants.entries import Table
 WARN_PERCENT, REFUSE_PERCENT = 5.0, 10.0  # charge error; acceptance limits of the trade (common practice)
 BALANCED = 1e-13  # of the charges: what is left after balance_on
 PURE_PH = 7.0
+WARN_CO2, REFUSE_CO2 = 1.0, 10.0  # atm; no well or adit is under the second (common practice, no source)
 
 # Protons that a component's main form at the end of an alkalinity titration (pH about 4.5) holds more than
 # the component itself.  Source: the proton condition, Stumm & Morgan (1996), ch. 4; from memory.
@@ -88,6 +89,8 @@ def read_water(
     totals = np.array([report.dissolved.get(name, 0.0) for name in system.components])
     pure = not any(report.dissolved.values()) and report.alkalinity is None
     warnings: list[str] = []
+    if report.balance_on == "pH" and report.alkalinity is not None:
+        raise Wrong("has an alkalinity and is balanced on the pH: the same fact twice", "leave one out")
     if pure or report.balance_on == "pH":
         balanced = totals.copy()
         balanced[0] = -float(totals[1:] @ system.component_charge[1:])
@@ -101,6 +104,8 @@ def read_water(
     else:
         found = _at_ph(system, report, totals)
         percent = charge_error_percent(found)
+        if report.alkalinity is not None:
+            warnings += _fizz(found, report)
         if report.balance_on is not None:
             found = _balanced(system, report, found)
         elif abs(percent) > REFUSE_PERCENT and not report.accept_imbalance:
@@ -126,6 +131,19 @@ def read_water(
             f"to {system.activity.valid_to:g}"
         )
     return Water(report.name, found, percent, tuple(warnings))
+
+
+def _fizz(found: Equilibrium, report: LabReport) -> list[str]:
+    """Warn of, or refuse, carbon dioxide that an alkalinity at a low pH would need."""
+    pressure = float(found.gas_pressure()[found.system.gases.index("CO2"), 0])
+    if pressure > REFUSE_CO2:
+        raise Wrong(
+            f"has an alkalinity at pH {_ph(found):.2f} that needs carbon dioxide at {pressure:.3g} atm",
+            "an acid water has no alkalinity: leave it out and give CO3 or CO2, or check the pH",
+        )
+    if pressure > WARN_CO2:
+        return [f"alkalinity and pH need carbon dioxide at {pressure:.3g} atm: the sample would fizz"]
+    return []
 
 
 def _conditions(report: LabReport) -> bool:

@@ -18,7 +18,6 @@ from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
 from gossan.transport.step import courant, explicit_limit
 
-CLOGGED = 1e-3  # porosity at which a cell counts as closed and the run stops
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
 IMPLICIT_GAIN = 3.0  # explicit dispersion may cost so many times the steps; beyond, it is solved implicitly
 DAMPED_STEPS = 2  # half steps of backward Euler after a switch of feed (Rannacher 1984, from memory)
@@ -68,9 +67,9 @@ def march(problem: Problem, state: State, pace: Pace, solver: Solver | None = No
 def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: float) -> Stride:
     feed = max(problem.feeds.passed(problem.feeds.clock(state.time, entered)) - 1, 0)
     inflow = problem.inflow[feed]
-    closed = pore_space(problem, state.solid)
-    if closed.min() < CLOGGED:
-        raise Clogged(int(closed.argmin()), state.time)
+    room = pore_space(problem, state.solid) - problem.closing
+    if room.min() < 0.0:
+        raise Clogged(int(room.argmin()), state.time)
     shortest = SHORTEST * max(state.time, pace.dt)
     failure: SolveError | None = None
     rejected = 0

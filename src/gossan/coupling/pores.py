@@ -9,6 +9,8 @@ from gossan.coupling.state import State
 from gossan.transport.clogging import conductivity_left
 from gossan.transport.flow import flow_of_flux, flow_of_head
 
+NEARLY_CLOSED = 1e-30  # m/s: so that a closed cell still has a head
+
 
 def pore_space(problem: Problem, solid: np.ndarray) -> np.ndarray:
     """(cell,) m3 m-3: what solids leave of the bulk for water; solid (mineral, cell) mol m-3 of bulk."""
@@ -30,7 +32,7 @@ def flow(problem: Problem, state: State, dt: float) -> tuple[np.ndarray, np.ndar
     """
     excess = (state.water - pore_space(problem, state.solid)) / dt + state.swelling
     made_up = np.concatenate([[0.0], np.cumsum(excess * problem.grid.width)])
-    conductivities = conductivity(problem, state.water)
+    conductivities = np.maximum(conductivity(problem, state.water), NEARLY_CLOSED)
     if problem.head_drop is not None:
         return flow_of_head(problem.head_drop, conductivities, problem.grid.width, made_up)
     assert problem.inlet_flux is not None

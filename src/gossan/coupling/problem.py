@@ -14,6 +14,7 @@ from gossan.transport.clogging import Clogging
 from gossan.transport.grid import Grid
 from gossan.transport.step import Transport
 
+CLOGGED = 1e-3  # porosity at which any cell counts as closed
 MOLAR_MASS_OF_WATER = 0.018015  # kg/mol; IUPAC standard atomic weights (2021)
 
 
@@ -79,6 +80,12 @@ class Problem:
     def stock(self) -> np.ndarray:
         """(solute,) mol m-2: what the column held at the start, without regard to sign."""
         return np.abs(self.stored(self.initial))
+
+    @cached_property
+    def closing(self) -> np.ndarray:
+        """(cell,) porosity at which a cell counts as closed: next to none, or its law's critical one."""
+        critical = np.array([c.critical_porosity if c.law == "threshold" else 0.0 for c in self.clogging])
+        return np.maximum(CLOGGED, critical[self.grid.layer] * (1.0 + 1e-9))
 
     @cached_property
     def pore_volume(self) -> float:
