@@ -9,6 +9,9 @@ import numpy as np
 import pytest
 from hypothesis import settings
 
+# kernels that only kernels call are tested one by one: read when gossan.base.jit is imported, after this file
+os.environ["GOSSAN_KERNEL_ENTRIES"] = "1"
+
 # A trace may be so small that it vanishes: underflow is an answer, all else is a mistake.
 np.seterr(divide="raise", over="raise", invalid="raise", under="ignore")
 

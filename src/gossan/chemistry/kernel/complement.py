@@ -9,6 +9,8 @@ from __future__ import annotations
 
 import math
 
+import numpy as np
+
 from gossan.base.jit import kernel
 from gossan.base.outcome import CYCLING, DIVERGED, ITERATIONS, LACKING, SINGULAR, SOLVED
 from gossan.chemistry.kernel.activity import activity_coefficients
@@ -46,7 +48,7 @@ STALLED = 0.9  # a far step that leaves more of its merit than this was hardly w
 FAR, CONVEX = 0, 1  # the two ways from afar
 
 
-@kernel
+@kernel(inner=True)
 def survey(matrices, bench, ionic_strength):
     """Fill bench.molality, sums and abundance from all ln activities; returns the ionic strength made."""
     activity_coefficients(
@@ -63,7 +65,7 @@ def survey(matrices, bench, ionic_strength):
     return 0.5 * dot(matrices.charge_squared, bench.molality)
 
 
-@kernel
+@kernel(inner=True)
 def add_up(matrices, bench):
     """Fill bench.sums, abundance, positive and negative (by component) from bench.molality."""
     for k in range(bench.sums.shape[0]):
@@ -74,7 +76,7 @@ def add_up(matrices, bench):
         bench.negative[k] = unmade
 
 
-@kernel
+@kernel(inner=True)
 def approach(matrices, bench, dissolved):
     """Bring a cold water near its balances (equations.md, 19); returns the ionic strength.
 
@@ -117,7 +119,7 @@ def approach(matrices, bench, dissolved):
     return made if made < 1.0 else 1.0
 
 
-@kernel
+@kernel(inner=True)
 def fill_totals(matrices, bench, dissolved, solid, upper, presence):
     """Fill bench.total with what is dissolved or must dissolve under these marks.
 
@@ -136,7 +138,7 @@ def fill_totals(matrices, bench, dissolved, solid, upper, presence):
                 bench.total[k] += matrices.solid[mineral, k] * given
 
 
-@kernel
+@kernel(inner=True)
 def set_totals(matrices, bench, dissolved, solid, upper, presence):
     """Fill bench.total and mark the components that are absent under these marks."""
     fill_totals(matrices, bench, dissolved, solid, upper, presence)
@@ -163,7 +165,7 @@ def set_totals(matrices, bench, dissolved, solid, upper, presence):
             bench.ln_activity[k] = math.log(total if total > 1e-12 else 1e-12)
 
 
-@kernel
+@kernel(inner=True)
 def lacking(bench):
     """Whether a component that counts as absent is in truth owed, or no number at all."""
     for k in range(bench.total.shape[0]):
@@ -172,7 +174,7 @@ def lacking(bench):
     return False
 
 
-@kernel
+@kernel(inner=True)
 def weigh(matrices, bench, active, solid, upper, presence):
     """Fill the amounts gained and ln saturation ratios; returns the marks most at fault, -1 for none.
 
@@ -216,7 +218,7 @@ def weigh(matrices, bench, active, solid, upper, presence):
     return drop, add, first
 
 
-@kernel
+@kernel(inner=True)
 def mark(drop, add, solid, presence, bench):
     """Change the marks that weigh found at fault; returns the mineral that enters, -1 for none."""
     if drop >= 0:
@@ -226,7 +228,7 @@ def mark(drop, add, solid, presence, bench):
     return add
 
 
-@kernel
+@kernel(inner=True)
 def reduce_all(matrices, bench, dissolved, solid, upper, presence, entering):
     """Eliminate the present minerals and reduce totals and species; returns (minerals, free components)."""
     active, free = eliminate(matrices, bench, presence, entering)
@@ -237,7 +239,7 @@ def reduce_all(matrices, bench, dissolved, solid, upper, presence, entering):
     return active, free
 
 
-@kernel
+@kernel(inner=True)
 def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, cold):
     """Bring one water to equilibrium with its minerals; returns (outcome, ionic strength, steps).
 
@@ -257,7 +259,7 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
         ionic_strength = approach(matrices, bench, dissolved)
         set_totals(matrices, bench, dissolved, solid, upper, presence)
         survey(matrices, bench, ionic_strength)
-    steps, changes, entering = 0, 0, -1
+    steps, changes, entering = 0, 0, np.int64(-1)
     patience = 2 * (minerals + 2)
     while changes < 40 * patience:
         if lacking(bench):

@@ -10,7 +10,7 @@ from gossan.base.jit import kernel
 LOST = 1e-15
 
 
-@kernel
+@kernel(inner=True)
 def factor_cholesky(matrix, n):
     """Overwrite the lower triangle of a symmetric positive definite matrix by its Cholesky factor.
 
@@ -33,7 +33,7 @@ def factor_cholesky(matrix, n):
     return True
 
 
-@kernel
+@kernel(inner=True)
 def solve_cholesky(matrix, n, right):
     """Overwrite right by the solution of L L^T x = right."""
     for i in range(n):
@@ -48,7 +48,7 @@ def solve_cholesky(matrix, n, right):
         right[i] = value / matrix[i, i]
 
 
-@kernel
+@kernel(inner=True)
 def solve_general(matrix, n, right):
     """Overwrite right by the solution of matrix x = right: LU with rows scaled and exchanged.
 

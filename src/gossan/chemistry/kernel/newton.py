@@ -12,7 +12,7 @@ from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponential
 SLIGHT = 1e-290  # keeps a ratio of sums finite
 
 
-@kernel
+@kernel(inner=True)
 def molalities(matrices, bench, free, ionic_strength):
     """Fill bench.molality from the free ln activities; returns the ionic strength these species make."""
     activity_coefficients(
@@ -28,7 +28,7 @@ def molalities(matrices, bench, free, ionic_strength):
     return 0.5 * dot(matrices.charge_squared, bench.molality)
 
 
-@kernel
+@kernel(inner=True)
 def balances(bench, free):
     """Fill the positive and negative terms of every free mass balance; returns their largest mismatch.
 
@@ -51,7 +51,7 @@ def balances(bench, free):
     return worst
 
 
-@kernel
+@kernel(inner=True)
 def near_step(matrices, bench, free, short):
     """The Newton step of balances and ionic strength together; returns (found, step of I).
 
@@ -92,7 +92,7 @@ def near_step(matrices, bench, free, short):
     return True, rise / own
 
 
-@kernel(fastmath={"reassoc", "contract"})
+@kernel(inner=True, fastmath={"reassoc", "contract"})
 def charge_slope(charge_squared, molality, slope):
     """The sum over species of charge squared, molality and slope of ln gamma."""
     value = 0.0
@@ -101,7 +101,7 @@ def charge_slope(charge_squared, molality, slope):
     return value
 
 
-@kernel
+@kernel(inner=True)
 def convex_step(bench, free):
     """The Newton step of the convex dual of the Gibbs energy at a given ionic strength.
 
@@ -123,7 +123,7 @@ def convex_step(bench, free):
     return True
 
 
-@kernel
+@kernel(inner=True)
 def dual_energy(bench, free):
     """The convex function whose lowest point is the equilibrium: sum of molalities - totals . x.
 
@@ -140,7 +140,7 @@ def dual_energy(bench, free):
     return value, 1e-14 * size
 
 
-@kernel
+@kernel(inner=True)
 def far_merit(bench, free):
     """The sum of squares of ln(positive / negative), which a good far step makes smaller."""
     merit = 0.0
@@ -150,7 +150,7 @@ def far_merit(bench, free):
     return merit
 
 
-@kernel
+@kernel(inner=True)
 def far_step(bench, free):
     """The Newton step of ln(positive / negative) = 0, which reaches far; left in bench.right."""
     matrix, right, share = bench.matrix, bench.right, bench.share

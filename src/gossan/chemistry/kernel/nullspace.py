@@ -8,6 +8,8 @@ in every residual: that is what keeps free sulfide right where zinc and sulfide 
 
 from __future__ import annotations
 
+import numpy as np
+
 from gossan.base.jit import kernel
 from gossan.chemistry.kernel.vectors import add_row
 
@@ -17,7 +19,7 @@ SIGNED_LAST = 1e6  # H^+ is scarce in neutral water, yet what a new precipitate 
 NOTHING = 1e-11  # stoichiometry below this is a rounding remainder
 
 
-@kernel
+@kernel(inner=True)
 def eliminate(matrices, bench, presence, entering):
     """Choose a pivot for every mineral marked present and reduce their rows.
 
@@ -28,10 +30,26 @@ def eliminate(matrices, bench, presence, entering):
     Returns (minerals that stay, free components).
     """
     place = bench.place
+    n = np.int64(-1)  # a literal would have numba compile everything below once more for it
+    while n < 0:
+        n = tie_all(matrices, bench, presence, entering)
+    f = 0
+    for k in range(place.shape[0]):
+        if place[k] == 0:
+            place[k] = f
+            bench.free[f] = k
+            f += 1
+    return n, f
+
+
+@kernel(inner=True)
+def tie_all(matrices, bench, presence, entering):
+    """Tie every mineral marked present, the entering one last; the number tied, -1 where one had to leave."""
+    place = bench.place
     for k in range(place.shape[0]):
         if place[k] != GONE:
             place[k] = 0
-    n = 0
+    n = np.int64(0)
     for mineral in range(presence.shape[0]):
         if presence[mineral] == 1 and mineral != entering:
             if tie(matrices, bench, mineral, n):
@@ -47,17 +65,11 @@ def eliminate(matrices, bench, presence, entering):
                 presence[entering] = 0
             else:
                 presence[bench.active[out]] = bench.exit[0]
-                return eliminate(matrices, bench, presence, entering)
-    f = 0
-    for k in range(place.shape[0]):
-        if place[k] == 0:
-            place[k] = f
-            bench.free[f] = k
-            f += 1
-    return n, f
+                return -1
+    return n
 
 
-@kernel
+@kernel(inner=True)
 def tie(matrices, bench, mineral, n):
     """Add one mineral to the n that are eliminated; False where its ties follow from theirs.
 
@@ -110,7 +122,7 @@ def tie(matrices, bench, mineral, n):
     return True
 
 
-@kernel
+@kernel(inner=True)
 def leaving(bench, n):
     """Which of n minerals runs out (or fills up) first as a mineral made of them grows; -1 for none.
 
@@ -134,7 +146,7 @@ def leaving(bench, n):
     return out
 
 
-@kernel
+@kernel(inner=True)
 def reduce_species(matrices, bench, active, free):
     """Write every species in the free components alone: its stoichiometry and its constant."""
     stoichiometry, ln_k = matrices.stoichiometry, matrices.ln_k
@@ -160,7 +172,7 @@ def reduce_species(matrices, bench, active, free):
                     reduced[j, s] = value if abs(value) > NOTHING else 0.0
 
 
-@kernel
+@kernel(inner=True)
 def pivot_constant(matrices, bench, active, row):
     """The ln activity of a pivot where all free components have ln activity 0."""
     value = 0.0
@@ -169,7 +181,7 @@ def pivot_constant(matrices, bench, active, row):
     return value
 
 
-@kernel
+@kernel(inner=True)
 def reduce_totals(bench, active, free):
     """Subtract the pivots' totals from the free ones', keeping what rounding would lose (two-sum)."""
     rows, total = bench.rows, bench.total
@@ -186,7 +198,7 @@ def reduce_totals(bench, active, free):
         bench.reduced_total[j] = value + lost
 
 
-@kernel
+@kernel(inner=True)
 def pivots_follow(matrices, bench, active, free):
     """Set the ln activities of the pivots from those of the free components."""
     for r in range(active):

@@ -14,7 +14,7 @@ LIMIT = 300  # steps
 GOOD = 1e-8  # scaled residual at which the marks are certain
 
 
-@kernel
+@kernel(inner=True)
 def fischer_burmeister(a, b):
     """Value and both slopes of a + b - sqrt(a^2 + b^2), zero where a, b >= 0 and a b = 0."""
     size = math.sqrt(a * a + b * b)
@@ -25,7 +25,7 @@ def fischer_burmeister(a, b):
     return value, 1.0 - a / size, 1.0 - b / size
 
 
-@kernel
+@kernel(inner=True)
 def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, reach):
     """Mark the minerals present by a semismooth Newton iteration on everything (equations.md, 20).
 

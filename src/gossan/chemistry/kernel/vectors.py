@@ -21,7 +21,7 @@ LN2_LOW = 1.90821492927058770002e-10  # the rest of ln 2
 SHIFTER = 1.5 * 2.0**52  # a number so large that only whole numbers stand beside it
 
 
-@kernel(fastmath={"contract"})
+@kernel(inner=True, fastmath={"contract"})
 def exponentials(exponent, bits, out):
     """out = e^exponent, within two units in the last place (equations.md, 8).
 
@@ -59,7 +59,7 @@ def exponentials(exponent, bits, out):
         out[s] *= shifted[s]
 
 
-@kernel(fastmath=REGROUPED)
+@kernel(inner=True, fastmath=REGROUPED)
 def dot(a, b):
     """The sum of a times b over species."""
     value = 0.0
@@ -68,7 +68,7 @@ def dot(a, b):
     return value
 
 
-@kernel(fastmath=REGROUPED)
+@kernel(inner=True, fastmath=REGROUPED)
 def both_sums(coefficient, row, molality):
     """The sums of the positive and of the negative terms of coefficient[row] times molality, over species.
 
@@ -82,7 +82,7 @@ def both_sums(coefficient, row, molality):
     return positive, negative
 
 
-@kernel(fastmath=REGROUPED)
+@kernel(inner=True, fastmath=REGROUPED)
 def row_dot(coefficient, row, b):
     """The sum of coefficient[row] times b over species."""
     value = 0.0
@@ -91,7 +91,7 @@ def row_dot(coefficient, row, b):
     return value
 
 
-@kernel(fastmath={"contract"})
+@kernel(inner=True, fastmath={"contract"})
 def add_row(out, factor, coefficient, row):
     """Add factor times coefficient[row] to out, over species."""
     for s in range(out.shape[0]):
