@@ -16,7 +16,7 @@ from gossan.chemistry.system import PROTON, System, build_system
 from gossan.constants.entries import Table
 
 WARN_PERCENT, REFUSE_PERCENT = 5.0, 10.0  # charge error; acceptance limits of the trade (common practice)
-BALANCED = 1e-13  # of the charges: what is left after balance_on
+DOUBLINGS = 12  # of the first guess of a total, in search of one that is too much
 PURE_PH = 7.0
 WARN_CO2, REFUSE_CO2 = 1.0, 10.0  # atm; no well or adit is under the second (common practice, no source)
 
@@ -197,7 +197,10 @@ def _at_ph(system: System, report: LabReport, totals: np.ndarray) -> Equilibrium
         )
     if least >= 0.0:
         return bare
-    return _secant(with_carbon, excess, 0.0, least, max(given, 1e-9), 1e-12 * max(given, 1e-9), "alkalinity")
+    carbon_needed = _root(lambda amount: excess(with_carbon(amount)), 0.0, max(given, 1e-9))
+    if carbon_needed is None:
+        raise Wrong(f"has an alkalinity of {given:.3g} eq/kg that no carbon brings about", "check the pH")
+    return with_carbon(carbon_needed)
 
 
 def _balanced(system: System, report: LabReport, found: Equilibrium) -> Equilibrium:
@@ -222,14 +225,13 @@ def _balanced(system: System, report: LabReport, found: Equilibrium) -> Equilibr
             f'is balanced on "{ion}", which would have to fall below zero (from {before:.3g} by '
             f"{-(needed - before):.3g} mol/kg)", _who_could_serve(found, off)
         )
-    tolerance = BALANCED * float(np.abs(system.species_charge) @ found.molality()[:, 0])
-    balanced = _secant(with_ion, net_charge, before, off, needed, tolerance, f'balance on "{ion}"')
-    if abs(net_charge(balanced)) > 1e3 * tolerance:
+    amount = _root(lambda amount: net_charge(with_ion(amount)), before, needed)
+    if amount is None:
         wrong = f'is balanced on "{ion}", which cannot take up the charge at that pH, even at zero'
         if ion == "CO3^2-" and report.alkalinity is not None:
             wrong = f'is balanced on "{ion}", which its alkalinity fixes'
         raise Wrong(wrong, _who_could_serve(found, off))
-    return balanced
+    return with_ion(amount)
 
 
 def _who_could_serve(found: Equilibrium, off: float) -> str:
@@ -247,20 +249,22 @@ def _who_could_serve(found: Equilibrium, off: float) -> str:
     return f'"{max(room)[1] if room else adding}" could serve'
 
 
-def _secant(
-    solve: Callable[[float], Equilibrium],
-    residual: Callable[[Equilibrium], float],
-    x0: float,
-    r0: float,
-    x1: float,
-    tolerance: float,
-    what: str,
-) -> Equilibrium:
-    """The water at which a residual, nearly linear in one total, vanishes."""
-    for _ in range(60):
-        found = solve(x1)
-        r1 = residual(found)
-        if abs(r1) <= tolerance or x1 == x0 or r1 == r0:
-            return found
-        x0, r0, x1 = x1, r1, max(x1 - r1 * (x1 - x0) / (r1 - r0), 0.0)
-    raise Wrong(f"has no answer for its {what}", "check pH, alkalinity and amounts against each other")
+def _root(residual: Callable[[float], float], start: float, guess: float) -> float | None:
+    """Where a residual, nearly linear in one total (>= 0), vanishes; None where it keeps its sign.
+
+    The bracket runs from start over guess, and twice as far each time, until the sign has changed.
+    """
+    from scipy.optimize import brentq
+
+    first = residual(start)
+    if first == 0.0:
+        return start
+    reach = guess - start
+    for _ in range(DOUBLINGS):
+        end = max(start + reach, 0.0)
+        if residual(end) * first <= 0.0:
+            return float(brentq(residual, start, end, xtol=1e-30, rtol=4.0 * np.finfo(float).eps))
+        if end == 0.0:
+            return None
+        reach *= 2.0
+    return None
