@@ -16,7 +16,7 @@ from gossan.chemistry.system import PROTON, System, build_system
 from gossan.constants.entries import Table
 
 WARN_PERCENT, REFUSE_PERCENT = 5.0, 10.0  # charge error; acceptance limits of the trade (common practice)
-DOUBLINGS = 12  # of the first guess of a total, in search of one that is too much
+DOUBLINGS = 30  # of the first guess of a total, in search of one that is too much
 PURE_PH = 7.0
 WARN_CO2, REFUSE_CO2 = 1.0, 10.0  # atm; no well or adit is under the second (common practice, no source)
 
