@@ -36,7 +36,9 @@ from gossan.constants.load import load_table
 
 A_LOG10, B_PER_M = 0.5085, 3.281e9  # at 25 degC, Freeze & Cherry (1979)
 BLOCK = 500  # waters in one call; a failed block is asked again water by water
-WITHIN = 1e-10  # relative mass balance that counts as met; the sum of all terms' sizes is 1
+# relative mass balance that counts as met; the sum of all terms' sizes is 1. A component that is a billionth
+# of the totals beside it shows their rounding in its own balance
+WITHIN = 1e-9
 LN_SLACK = 1e-6  # of ln saturation: the sign of a mineral's condition
 STRENGTH_SLACK = 1e-7  # relative, of the ionic strength
 ABSENT, PRESENT, FULL = 0, 1, 2

@@ -95,7 +95,8 @@ def test_what_a_pivot_leaves_dissolved_is_no_remainder():
     molality = np.exp(MINE.ln_k[:, None] + MINE.formation @ block.ln_activity - gamma)
     copper = MINE.components.index("Cu^2+")
     expected = (MINE.formation[:, copper] @ molality) * block.kilograms
-    traces = (block.presence[MINE_MINERALS.index("covellite")] == 1) & (expected < 1e-9 * block.amount.max(axis=0))
+    present = block.presence[MINE_MINERALS.index("covellite")] == 1
+    traces = present & (expected < 1e-9 * block.amount.max(axis=0))
     assert traces.sum() > 20
     assert block.amount[copper, traces] == pytest.approx(expected[traces], rel=1e-12, abs=0)
 
