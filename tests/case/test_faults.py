@@ -4,87 +4,10 @@ import pickle
 import re
 
 import pytest
-from hypothesis import given
-from hypothesis import strategies as st
+from tests.support.good_case import GOOD, faults_of
 
 from gossan.base.errors import InputError
-from gossan.case.read import case_from_text, read_case
-
-GOOD = """\
-title = "a gate of sulfide-bearing sand"
-temperature = "12 degC"
-
-[waters.mine]
-pH = 5.9
-alkalinity = "6 mg/L as CaCO3"
-balance_on = "Mg"
-temperature = "11 degC"
-[waters.mine.analysis]
-Ca = "180 mg/L"
-Mg = "205 mg/L"
-SO4 = "1300 mg/L"
-Zn = "24 mg/L"
-Cd = "<0.0005 mg/L"
-[waters.mine.tracers]
-bromide = "40 mg/L"
-
-[waters.pore]
-pH = 7.2
-[waters.pore.analysis]
-Ca = "2 mmol/L"
-SO4 = "2 mmol/L"
-[waters.pore.saturated_with]
-calcite = 0.0
-CO2 = "0.003 atm"
-
-[tracers.bromide]
-molar_mass = "79.9 g/mol"
-
-[[layers]]
-name = "inlet sand"
-length = "20 cm"
-cell = "2 cm"
-porosity = 0.40
-dispersivity = "1 cm"
-water = "pore"
-
-[[layers]]
-name = "gate"
-length = "1.0 m"
-cells = 50
-porosity = 0.38
-dispersivity = "4 cm"
-water = "pore"
-[layers.minerals]
-mackinawite = "0.8 wt%"
-calcite = {amount = "3 wt%", reactive = 0.4}
-[layers.clogging]
-law = "kozeny-carman"
-
-[flow]
-darcy_flux = "0.12 m/d"
-[[flow.feed]]
-from = "0 d"
-water = "mine"
-[[flow.feed]]
-from = "2 yr"
-water = "pore"
-
-[chemistry]
-also = ["gypsum"]
-exclude = ["siderite"]
-
-[[ports]]
-name = "middle"
-at = "0.6 m"
-
-[limits.outlet]
-Zn = "0.12 mg/L"
-pH = [6.5, 9.0]
-
-[run]
-duration = "8 yr"
-"""
+from gossan.case.read import case_from_text
 
 # what stands in the good case, what stands there instead, the words of the fault;
 # the fault must name the last line of the new text, or the line that starts with a fourth entry
@@ -319,16 +242,6 @@ NOT_LANDED = [
 ]
 
 
-def faults_of(text):
-    """The faults of a text, in the order of the message."""
-    with pytest.raises(InputError) as caught:
-        case_from_text(text, "gate.toml")
-    error = caught.value
-    assert error.exit_code == 2
-    assert str(error) == "\n".join(map(str, error.faults))
-    return error.faults
-
-
 def test_the_good_case_is_good():
     case_from_text(GOOD).require_column()
 
@@ -390,73 +303,3 @@ def test_pore_volumes_are_no_time_under_a_held_head():
     text = GOOD.replace('darcy_flux = "0.12 m/d"', 'head_drop = "0.1 m"').replace('"2 yr"', '"2 PV"')
     text = text.replace("porosity", 'conductivity = "5 m/d"\nporosity')
     assert ["which is no time before the run" in str(fault) for fault in faults_of(text)] == [True]
-
-
-@pytest.mark.parametrize(
-    ("content", "words"),
-    [
-        (None, "cannot be read (no such file"),
-        (b"title = '\xff'", "case.toml:1: is not text in UTF-8: save it"),
-    ],
-)
-def test_a_file_that_cannot_be_read(tmp_path, content, words):
-    path = tmp_path / "case.toml"
-    if content is not None:
-        path.write_bytes(content)
-    with pytest.raises(InputError) as caught:
-        read_case(path)
-    assert words.removeprefix("case.toml:1: ") in str(caught.value)
-
-
-def test_a_folder_is_not_a_case(tmp_path):
-    (tmp_path / "case.toml").write_text(GOOD)
-    with pytest.raises(InputError, match="is a folder: did you mean"):
-        read_case(tmp_path)
-
-
-def test_faults_of_the_users_constants_are_listed_too(tmp_path):
-    (tmp_path / "site.toml").write_text("[mineral.x]\n")
-    (tmp_path / "case.toml").write_text(GOOD.replace('exclude = ["siderite"]', 'constants = "site.toml"'))
-    with pytest.raises(InputError) as caught:
-        read_case(tmp_path / "case.toml")
-    assert len(caught.value.faults) >= 2
-    assert any("site.toml" in fault.file for fault in caught.value.faults)
-
-
-@pytest.mark.parametrize(
-    "text", ["", "[waters]\n", "waters = 3\n", "layers = 3\n[waters.a]\n", "flow = []\n[waters.a]"]
-)
-def test_odd_shapes_are_refused_not_raised(text):
-    assert faults_of(text)
-
-
-LINES = GOOD.splitlines()
-
-
-def is_read_or_refused(text):
-    """Whether a text is a case with waters, or is refused with faults; any other error comes through."""
-    try:
-        return bool(case_from_text(text).waters)
-    except InputError as error:
-        return bool(error.faults and str(error))
-
-
-@given(st.data())
-def test_a_spoilt_case_never_raises_anything_else(data):
-    """Lines left out, doubled, swapped or with another value: a Case or an InputError, nothing besides."""
-    rows = list(LINES)
-    for _ in range(data.draw(st.integers(1, 4))):
-        index = data.draw(st.integers(0, len(rows) - 1))
-        other = data.draw(st.sampled_from(LINES))
-        value = data.draw(
-            st.sampled_from(["3", "-1.5", '"x"', "true", "[]", "{}", "[{}]", "nan", "1979-05-27", '""'])
-        )
-        key = rows[index].partition("=")[0]
-        change = data.draw(st.sampled_from(["drop", "double", "swap", "value"]))
-        rows[index : index + 1] = {
-            "drop": [],
-            "double": [rows[index], rows[index]],
-            "swap": [other],
-            "value": [f"{key} = {value}"],
-        }[change] or [""]
-    assert is_read_or_refused("\n".join(rows))
