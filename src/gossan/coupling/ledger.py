@@ -40,7 +40,7 @@ class Books:
         made = np.zeros_like(entered)
         change = now - self.first
         open_ = entered - left - change + made
-        most = np.abs(self.first) + np.abs(entered) + np.abs(made)
+        most = problem.stock + np.abs(entered) + np.abs(made)
         error = np.divide(open_, most, out=np.zeros_like(open_), where=most > 0.0)
         charge = problem.system.component_charge
         chemical = problem.chemical

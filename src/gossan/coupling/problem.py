@@ -78,8 +78,10 @@ class Problem:
 
     @cached_property
     def stock(self) -> np.ndarray:
-        """(solute,) mol m-2: what the column held at the start, without regard to sign."""
-        return np.abs(self.stored(self.initial))
+        """(solute,) mol m-2: what the column held at the start, every mole counted without its sign."""
+        held = np.abs(self.initial.dissolved) * self.initial.water
+        held[: self.chemical] += np.abs(self.system.mineral_stoichiometry).T @ self.initial.solid
+        return held @ self.grid.width
 
     @cached_property
     def closing(self) -> np.ndarray:
