@@ -195,12 +195,12 @@ def test_the_first_frame_is_at_equilibrium_with_its_minerals_and_what_is_absent_
 
 
 def failing(monkeypatch, calls: int, cell: int) -> None:
-    """From so many solves on, let chemistry find no equilibrium in a cell."""
+    """From so many solves of the march on, let chemistry find no equilibrium in a cell."""
     honest, count = Solver.settled, 0
 
     def settled(self, *arguments, **options):
         nonlocal count
-        count += 1
+        count += "skip" in options  # only the march skips what has not changed
         if count > calls:
             raise SolveError("no luck", cell=cell)
         return honest(self, *arguments, **options)

@@ -71,7 +71,8 @@ class SolveError(GossanError):
         if self.cell >= 0:
             where = f"cell {self.cell}"
             if self.layer:
-                where += f" (layer {self.layer}, x = {self.x:.4g} m)"
+                place = f", x = {self.x:.4g} m" if self.x == self.x else ""
+                where += f" (layer {self.layer}{place})"
             text = f"no equilibrium in {where}"
             if self.time == self.time:
                 text += f" at {self.time / 86400:.6g} d"

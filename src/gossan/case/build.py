@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from gossan.base.amounts import Amount
+from gossan.base.errors import SolveError
 from gossan.case.model import Case, Layer
 from gossan.case.quantities import Solid
 from gossan.case.waters import excluded_by, read_waters
@@ -229,4 +230,7 @@ def _settled_layer(layer: Layer, system: System, water: np.ndarray, solid: dict[
     amount = water[: len(system.components), None] * layer.porosity
     grains = np.array([[solid.get(name, 0.0)] for name in system.minerals]).reshape(len(system.minerals), 1)
     kilograms = np.array([layer.porosity * system.water_density])
-    return Solver(system).cold(kilograms, amount, grains)
+    try:
+        return Solver(system).cold(kilograms, amount, grains)
+    except SolveError as error:
+        raise SolveError(error.reason, 0, layer.name, time=0.0) from error
