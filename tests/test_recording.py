@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import shutil
 import signal
 from pathlib import Path
 
@@ -264,6 +265,10 @@ def test_a_column_that_closes_stops_and_says_so(tmp_path):
     assert conductivity[-1, 0] < 1e-6 * conductivity[0, 0]
     assert np.abs(result.ledger.error.values).max() < 1e-12
     assert np.abs(result.ledger.water_error.values).max() < 1e-12
+
+    before = shutil.copy(tmp_path / "run.h5", tmp_path / "before.h5")
+    assert recording.resume(tmp_path / "run.h5").reason == "clogged", "and it stays so"
+    assert_same_bits(tmp_path / "run.h5", before)
 
 
 def test_a_held_head_lets_the_flow_die_before_the_pores_close(tmp_path):
