@@ -78,7 +78,10 @@ def resume(path: Path, *, progress: Progress | None = None) -> Ending:
     problem = build(case_of(open_result(path)))
     writer, parts = ResultWriter.resume(path)
     with writer:
-        return _Run(problem, writer, progress).walk(State(**parts["state"]), Pace(**parts["pace"]))
+        run = _Run(problem, writer, progress)
+        state = State(**parts["state"])
+        run.recorded = state.time  # a run that fails again at once writes no frame twice
+        return run.walk(state, Pace(**parts["pace"]))
 
 
 def case_of(result: Result) -> Case:

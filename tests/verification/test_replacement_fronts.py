@@ -85,7 +85,7 @@ def test_a_salt_dissolves_by_diffusion_alone(tmp_path):
             water("feed") + water("pore", Na=1.0, Cl=1.0), minerals=bed(Na=0.9), porosity=0.3, cells=100,
             length="0.5 m", diffusion="1e-9 m2/s", layer="tortuosity = 1.0",
             flow='darcy_flux = "1 m/d"\ninlet = "concentration"', chemistry=salts(tmp_path, Na=1.0),
-            duration="1000 d", run='ports_every = "100 d"\nprofiles_every = "1000 d"\naccuracy = 1e-4',
+            duration="1000 d", run='ports_every = "100 d"\nprofiles_every = "1000 d"',
         ),
         tmp_path,
     )  # fmt: skip

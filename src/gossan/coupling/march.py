@@ -19,7 +19,9 @@ from gossan.coupling.state import State
 from gossan.transport.step import courant, explicit_limit
 
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
-IMPLICIT_GAIN = 3.0  # explicit dispersion may cost so many times the steps; beyond, it is solved implicitly
+# Explicit dispersion may cost so many times the steps; beyond, it is solved implicitly, which is as good for
+# tracers but only first order beside a mineral front.
+GAIN_OF_TRACERS, GAIN_OF_MINERALS = 3.0, 10.0
 DAMPED_STEPS = 2  # half steps of backward Euler after a switch of feed (Rannacher 1984, from memory)
 
 
@@ -75,7 +77,7 @@ def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: f
     rejected = 0
     while True:
         darcy_flux, head = flow(problem, state, pace.dt)
-        longest, implicit = _longest(problem, state, darcy_flux)
+        longest, implicit = longest_step(problem, state, darcy_flux)
         theta = (1.0 if pace.afresh < DAMPED_STEPS else 0.5) if implicit else None
         dt, lands = _fitted(problem, state, entered, darcy_flux[0], min(pace.dt, longest))
         try:
@@ -117,12 +119,13 @@ def _due(schedule: Schedule, before: State, after: State, entered: float, now: f
     )
 
 
-def _longest(problem: Problem, state: State, darcy_flux: np.ndarray) -> tuple[float, bool]:
+def longest_step(problem: Problem, state: State, darcy_flux: np.ndarray) -> tuple[float, bool]:
     """The longest step that Courant's number allows, and whether dispersion must be implicit in it."""
     unit = courant(problem.transport, state.water, darcy_flux, 1.0)
     by_courant = problem.max_courant / unit if unit > 0.0 else math.inf
     by_dispersion = explicit_limit(problem.transport, state.water, darcy_flux)
-    if by_dispersion * IMPLICIT_GAIN >= by_courant:
+    gain = GAIN_OF_MINERALS if problem.system.minerals else GAIN_OF_TRACERS
+    if by_dispersion * gain >= by_courant:
         return min(by_courant, by_dispersion), False
     if by_courant == math.inf:
         return 1e3 * by_dispersion, True

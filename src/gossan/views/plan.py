@@ -12,10 +12,9 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.waters import read_waters
-from gossan.coupling.march import IMPLICIT_GAIN, march
+from gossan.coupling.march import longest_step, march
 from gossan.coupling.pores import flow
 from gossan.coupling.problem import Problem
-from gossan.transport.step import courant, explicit_limit
 from gossan.views.assay import assay
 
 TRIED = 6  # first steps that are timed, and forgotten
@@ -91,10 +90,7 @@ def _step(problem: Problem) -> float:
     """The length of step that Courant's number and the spread by dispersion allow at the start, s."""
     state = problem.initial
     darcy_flux, _ = flow(problem, state, 1.0)
-    unit = courant(problem.transport, state.water, darcy_flux, 1.0)
-    by_courant = problem.max_courant / unit if unit > 0.0 else math.inf
-    by_dispersion = explicit_limit(problem.transport, state.water, darcy_flux)
-    return min(by_courant, by_dispersion) if by_dispersion * IMPLICIT_GAIN >= by_courant else by_courant
+    return longest_step(problem, state, darcy_flux)[0]
 
 
 def _seconds_per_step(problem: Problem) -> float | None:
