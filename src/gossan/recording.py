@@ -66,7 +66,7 @@ def run_case(case: Case, path: Path, *, overwrite: bool = False, progress: Progr
         run = _Run(problem, writer, progress)
         run.frame(state)
         run.records(state)
-        writer.checkpoint({"state": state, "pace": pace})
+        writer.checkpoint(run.parts(state, pace))
         return run.walk(state, pace)
 
 
@@ -80,7 +80,7 @@ def resume(path: Path, *, progress: Progress | None = None) -> Ending:
     with writer:
         run = _Run(problem, writer, progress)
         state = State(**parts["state"])
-        run.recorded = state.time  # a run that fails again at once writes no frame twice
+        run.seen = parts["seen"]
         return run.walk(state, Pace(**parts["pace"]))
 
 
@@ -132,7 +132,7 @@ class _Run:
         self.problem, self.writer, self.progress = problem, writer, progress
         self.books = Books(problem)
         self.steps: list[dict[str, float]] = []
-        self.recorded = -1.0
+        self.seen = {"frame": -1.0, "records": -1.0}  # times of the last ones, s
         self.asked_to_stop = False
 
     def walk(self, state: State, pace: Pace) -> Ending:
@@ -174,12 +174,15 @@ class _Run:
             ending = Ending("failed", str(error), str(error), error)
         self.writer.steps(self.steps)
         self.writer.flush()
-        counts = dict(self.writer.counts)
-        if ending.status != "finished" and state.time > self.recorded:
-            self.frame(state)  # to be seen, but a run never stopped has none here: who goes on drops it
-            self.records(state)
+        counts, parts = dict(self.writer.counts), self.parts(state, pace)
+        if ending.status != "finished":
+            # to be seen, but a run never stopped has none here: who goes on drops them
+            if state.time > self.seen["records"]:
+                self.records(state)
+            if state.time > self.seen["frame"]:
+                self.frame(state)
         figures = {"wall_clock_seconds": wall.monotonic() - began}
-        self.writer.finish(ending.status, {"state": state, "pace": pace}, ending.reason, figures, counts)
+        self.writer.finish(ending.status, parts, ending.reason, figures, counts)
         return ending
 
     def share(self, state: State) -> float:
@@ -190,7 +193,11 @@ class _Run:
     def keep(self, state: State, pace: Pace) -> None:
         self.writer.steps(self.steps)
         self.steps = []
-        self.writer.checkpoint({"state": state, "pace": pace})
+        self.writer.checkpoint(self.parts(state, pace))
+
+    def parts(self, state: State, pace: Pace) -> dict[str, Any]:
+        """All that the run needs to go on from here."""
+        return {"state": state, "pace": pace, "seen": dict(self.seen)}
 
     def step(self, stride: Stride, seconds: float) -> None:
         self.steps.append(
@@ -205,10 +212,11 @@ class _Run:
         )
 
     def frame(self, state: State) -> None:
-        self.recorded = state.time
+        self.seen["frame"] = state.time
         self.writer.frame(state.time, frame_of(self.problem, state))
 
     def records(self, state: State) -> None:
+        self.seen["records"] = state.time
         inflow = inflow_at(self.problem, state)
         darcy_flux, _ = flow(self.problem, state, settled_dt(state))
         through = passages(
