@@ -69,6 +69,8 @@ def kernel(function: Callable | None = None, *, inner: bool = False, **options: 
     """Compile a function on plain arrays at its first call, and keep the code on disk.
 
     inner: only other kernels call it; an entry from Python would take longer to compile than itself.
+    forceinline (numba's): for what is called in one place; the bench goes by value, which costs more than
+    many a call's work.
     The global lock is released, division follows IEEE, and no fast-math is used: same input, same bits.
     Without numba's runtime (`_nrt`) a kernel cannot allocate, and no array is counted as it is passed on.
     """

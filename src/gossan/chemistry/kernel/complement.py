@@ -165,7 +165,7 @@ def set_totals(matrices, bench, dissolved, solid, upper, presence):
             bench.ln_activity[k] = math.log(total if total > 1e-12 else 1e-12)
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def lacking(bench):
     """Whether a component that counts as absent is in truth owed, or no number at all."""
     for k in range(bench.total.shape[0]):
@@ -174,7 +174,7 @@ def lacking(bench):
     return False
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def weigh(matrices, bench, active, solid, upper, presence):
     """Fill the amounts gained and ln saturation ratios; returns the marks most at fault, -1 for none.
 
@@ -218,7 +218,7 @@ def weigh(matrices, bench, active, solid, upper, presence):
     return drop, add, first
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def mark(drop, add, solid, presence, bench):
     """Change the marks that weigh found at fault; returns the mineral that enters, -1 for none."""
     if drop >= 0:
@@ -228,7 +228,7 @@ def mark(drop, add, solid, presence, bench):
     return add
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def reduce_all(matrices, bench, dissolved, solid, upper, presence, entering):
     """Eliminate the present minerals and reduce totals and species; returns (minerals, free components)."""
     active, free = eliminate(matrices, bench, presence, entering)
@@ -240,6 +240,21 @@ def reduce_all(matrices, bench, dissolved, solid, upper, presence, entering):
 
 
 @kernel(inner=True)
+def begin(matrices, bench, dissolved, solid, upper, presence):
+    """Mark what is there, bring a cold water near its balances and survey it; returns the ionic strength."""
+    for mineral in range(solid.shape[0]):
+        presence[mineral] = 1 if solid[mineral] > 0.0 else 0
+    set_totals(matrices, bench, dissolved, solid, upper, presence)
+    for k in range(dissolved.shape[0]):
+        if bench.place[k] != GONE and bench.total[k] <= ABSENT:
+            bench.total[k] = 1e-12
+    ionic_strength = approach(matrices, bench, dissolved)
+    set_totals(matrices, bench, dissolved, solid, upper, presence)
+    survey(matrices, bench, ionic_strength)
+    return ionic_strength
+
+
+@kernel(inner=True)
 def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, cold):
     """Bring one water to equilibrium with its minerals; returns (outcome, ionic strength, steps).
 
@@ -247,21 +262,12 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
     bench.ln_activity are the start (unless cold) and the answer; bench.gained and bench.sums hold what
     each mineral gained and what is dissolved afterwards.
     """
-    minerals = solid.shape[0]
     if cold:
-        for mineral in range(minerals):
-            presence[mineral] = 1 if solid[mineral] > 0.0 else 0
-    set_totals(matrices, bench, dissolved, solid, upper, presence)
-    if cold:
-        for k in range(dissolved.shape[0]):
-            if bench.place[k] != GONE and bench.total[k] <= ABSENT:
-                bench.total[k] = 1e-12
-        ionic_strength = approach(matrices, bench, dissolved)
-        set_totals(matrices, bench, dissolved, solid, upper, presence)
-        survey(matrices, bench, ionic_strength)
+        ionic_strength = begin(matrices, bench, dissolved, solid, upper, presence)
     steps, changes, entering = 0, 0, np.int64(-1)
-    patience = 2 * (minerals + 2)
+    patience = 2 * (solid.shape[0] + 2)
     while changes < 40 * patience:
+        set_totals(matrices, bench, dissolved, solid, upper, presence)
         if lacking(bench):
             return LACKING, ionic_strength, steps
         active, free = reduce_all(matrices, bench, dissolved, solid, upper, presence, entering)
@@ -269,21 +275,23 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
         # For linear problems of this kind that ends (Murty 1974).
         one_by_one = changes > patience
         looked = one_by_one
+        drop, add, first = -1, -1, -1
         last, best, factor, before = 1.0, math.inf, 1.0, ionic_strength
         mode, near, worse, slow = FAR, NEAR, math.inf, 0
         code = ITERATIONS
         for newton in range(NEWTON_LIMIT):
             made = molalities(matrices, bench, free, ionic_strength)
             mismatch = balances(bench, free)
-            if last < SETTLED or (mismatch < EXACT and abs(made - ionic_strength) < 1e-13 * made + 1e-30):
-                code = SOLVED
-                break
-            if mismatch < LOOK and not looked:
+            done = last < SETTLED or (
+                mismatch < EXACT and abs(made - ionic_strength) < 1e-13 * made + 1e-30
+            )  # fmt: skip
+            if done or (mismatch < LOOK and not looked):
                 looked = True
                 pivots_follow(matrices, bench, active, free)
                 drop, add, first = weigh(matrices, bench, active, solid, upper, presence)
-                if drop >= 0 or (add >= 0 and abs(bench.saturation[add]) > 0.1):
-                    code = CYCLING
+                wrong = drop >= 0 or (add >= 0 and abs(bench.saturation[add]) > 0.1)
+                if done or wrong:
+                    code = SOLVED if done else CYCLING
                     break
             steps += 1
             rise = made - ionic_strength
@@ -349,8 +357,6 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
                 last = largest if largest > move else move
                 best = math.inf
         if code == SOLVED:
-            pivots_follow(matrices, bench, active, free)
-            drop, add, first = weigh(matrices, bench, active, solid, upper, presence)
             if drop < 0 and add < 0:
                 return SOLVED, ionic_strength, steps
             if one_by_one:
@@ -358,6 +364,5 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
         elif code != CYCLING:
             return code, ionic_strength, steps
         entering = mark(drop, add, solid, presence, bench)
-        set_totals(matrices, bench, dissolved, solid, upper, presence)
         changes += 1
     return CYCLING, ionic_strength, steps

@@ -7,7 +7,7 @@ import math
 from gossan.base.jit import kernel
 from gossan.chemistry.kernel.activity import activity_coefficients
 from gossan.chemistry.kernel.dense import factor_cholesky, solve_cholesky, solve_general
-from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponentials, row_dot
+from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponentials, four_row_dots, row_dot
 
 SLIGHT = 1e-290  # keeps a ratio of sums finite
 
@@ -52,6 +52,17 @@ def balances(bench, free):
 
 
 @kernel(inner=True)
+def products_up_to(reduced, j, share, matrix):
+    """Fill row j of a symmetric matrix, as far as its diagonal, by the sums of reduced times share."""
+    whole = (j + 1) // 4 * 4
+    for i in range(0, whole, 4):
+        one, two, three, four = four_row_dots(reduced, i, share)
+        matrix[j, i], matrix[j, i + 1], matrix[j, i + 2], matrix[j, i + 3] = one, two, three, four
+    for i in range(whole, j + 1):
+        matrix[j, i] = row_dot(reduced, i, share)
+
+
+@kernel(inner=True)
 def near_step(matrices, bench, free, short):
     """The Newton step of balances and ionic strength together; returns (found, step of I).
 
@@ -69,8 +80,7 @@ def near_step(matrices, bench, free, short):
     for j in range(free):
         for s in range(molality.shape[0]):
             share[s] = reduced[j, s] * molality[s]
-        for i in range(j + 1):
-            matrix[j, i] = row_dot(reduced, i, share)
+        products_up_to(reduced, j, share, matrix)
         side[j] = -dot(share, slope)
         weight[j] = 0.5 * dot(share, charge_squared)
         right[j] = bench.short[j] - side[j] * short / own
@@ -113,8 +123,7 @@ def convex_step(bench, free):
     for j in range(free):
         for s in range(molality.shape[0]):
             share[s] = reduced[j, s] * molality[s]
-        for i in range(j + 1):
-            matrix[j, i] = row_dot(reduced, i, share)
+        products_up_to(reduced, j, share, matrix)
         matrix[j, j] += 1e-12 * (bench.negative[j] + bench.positive[j]) + SLIGHT
         right[j] = bench.short[j]
     if not factor_cholesky(matrix, free):

@@ -19,7 +19,7 @@ SIGNED_LAST = 1e6  # H^+ is scarce in neutral water, yet what a new precipitate 
 NOTHING = 1e-11  # stoichiometry below this is a rounding remainder
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def eliminate(matrices, bench, presence, entering):
     """Choose a pivot for every mineral marked present and reduce their rows.
 
@@ -42,7 +42,7 @@ def eliminate(matrices, bench, presence, entering):
     return n, f
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def tie_all(matrices, bench, presence, entering):
     """Tie every mineral marked present, the entering one last; the number tied, -1 where one had to leave."""
     place = bench.place
@@ -69,7 +69,7 @@ def tie_all(matrices, bench, presence, entering):
     return n
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def tie(matrices, bench, mineral, n):
     """Add one mineral to the n that are eliminated; False where its ties follow from theirs.
 
@@ -122,7 +122,7 @@ def tie(matrices, bench, mineral, n):
     return True
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def leaving(bench, n):
     """Which of n minerals runs out (or fills up) first as a mineral made of them grows; -1 for none.
 
@@ -146,7 +146,7 @@ def leaving(bench, n):
     return out
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def reduce_species(matrices, bench, active, free):
     """Write every species in the free components alone: its stoichiometry and its constant."""
     stoichiometry, ln_k = matrices.stoichiometry, matrices.ln_k
@@ -172,7 +172,7 @@ def reduce_species(matrices, bench, active, free):
                     reduced[j, s] = value if abs(value) > NOTHING else 0.0
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def pivot_constant(matrices, bench, active, row):
     """The ln activity of a pivot where all free components have ln activity 0."""
     value = 0.0
@@ -181,7 +181,7 @@ def pivot_constant(matrices, bench, active, row):
     return value
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def reduce_totals(bench, active, free):
     """Subtract the pivots' totals from the free ones', keeping what rounding would lose (two-sum)."""
     rows, total = bench.rows, bench.total
@@ -198,7 +198,7 @@ def reduce_totals(bench, active, free):
         bench.reduced_total[j] = value + lost
 
 
-@kernel(inner=True)
+@kernel(inner=True, forceinline=True)
 def pivots_follow(matrices, bench, active, free):
     """Set the ln activities of the pivots from those of the free components."""
     for r in range(active):

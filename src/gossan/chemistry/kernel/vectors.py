@@ -91,6 +91,19 @@ def row_dot(coefficient, row, b):
     return value
 
 
+@kernel(inner=True, fastmath=REGROUPED)
+def four_row_dots(coefficient, row, b):
+    """The sums of coefficient[row] to coefficient[row + 3] times b over species, side by side."""
+    one, two, three, four = 0.0, 0.0, 0.0, 0.0
+    for s in range(b.shape[0]):
+        value = b[s]
+        one += coefficient[row, s] * value
+        two += coefficient[row + 1, s] * value
+        three += coefficient[row + 2, s] * value
+        four += coefficient[row + 3, s] * value
+    return one, two, three, four
+
+
 @kernel(inner=True, fastmath={"contract"})
 def add_row(out, factor, coefficient, row):
     """Add factor times coefficient[row] to out, over species."""
