@@ -30,7 +30,10 @@ def measure() -> list[tuple[float, str]]:
     us = [f"{1e6 * np.median(t):.3g} us" for t in (plain_cold, cold, plain_warm, warm)]
     many = f"{steps:.0f} steps, {TYPICAL} minerals"
     return [
-        (float(np.median(plain_cold) / np.median(cold)), f"{us[0]} against {us[1]}; root finds {right.mean():.0%} of them"),
+        (
+            float(np.median(plain_cold) / np.median(cold)),
+            f"{us[0]} against {us[1]}; root finds {right.mean():.0%} of them",
+        ),
         (float(np.median(plain_warm) / np.median(warm)), f"{us[2]} against {us[3]}"),
         (own / alone, f"{1e6 * own:.3g} us against {1e6 * alone:.3g} us, {many}"),
         (own / lanes, f"{1e6 * own:.3g} us against {1e6 * lanes:.3g} us, {many}"),
@@ -38,7 +41,7 @@ def measure() -> list[tuple[float, str]]:
 
 
 def _seconds(water: OneWater) -> tuple[float, float, float, float, bool]:
-    """Median seconds of one solve: cold, warm, the yardstick's cold and warm; whether its cold one is right."""
+    """Median seconds of a solve: cold, warm, the yardstick's cold and warm; whether its cold one is right."""
     system = water.solver.system
     before, after = PlainWater(system, water.total), PlainWater(system, water.changed)
     found, first = water.found, before.first_guess()

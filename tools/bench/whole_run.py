@@ -73,7 +73,8 @@ def _run(cells: int, coupling: str) -> tuple[float, str]:
     reacting, carrying, whole = [], [], []
     solved: list[int] = []
     for _ in range(TURNS):
-        react, carry = Stopwatch(lambda given: solved.append(int(np.count_nonzero(given[STEPS])))), Stopwatch()
+        react = Stopwatch(lambda given: solved.append(int(np.count_nonzero(given[STEPS]))))
+        carry = Stopwatch()
         with react.on(chemistry, "settle_cells"), carry.on(transport, "carry", "conduct", "factor", "spread"):
             begin = time.perf_counter()
             for _ in islice(strides, STRETCH[cells]):
