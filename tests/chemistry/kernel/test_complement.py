@@ -22,7 +22,8 @@ from tests.support.benches import (
 from tests.support.small_systems import MINE_MINERALS, PlainSystem, mine_water, plain_system
 
 from gossan.base.outcome import DIVERGED, LACKING, SOLVED
-from gossan.chemistry.kernel.complement import approach, mark, set_totals, survey
+from gossan.chemistry.kernel.cold import approach, survey
+from gossan.chemistry.kernel.marks import mark, set_totals
 from gossan.chemistry.kernel.newton import far_merit
 from gossan.chemistry.kernel.nullspace import GONE, NOWHERE
 

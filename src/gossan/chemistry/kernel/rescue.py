@@ -5,8 +5,9 @@ from __future__ import annotations
 import math
 
 from gossan.base.jit import kernel
-from gossan.chemistry.kernel.complement import approach, set_totals, survey
+from gossan.chemistry.kernel.cold import approach, survey
 from gossan.chemistry.kernel.dense import solve_general
+from gossan.chemistry.kernel.marks import set_totals
 from gossan.chemistry.kernel.nullspace import GONE, NOWHERE
 from gossan.chemistry.kernel.vectors import row_dot
 
