@@ -48,12 +48,12 @@ class Stopwatch:
                 setattr(module, name, function)
 
     def _timed(self, function):
-        def call(*arguments):
-            begin = time.perf_counter()
+        def call(*arguments, **named):
+            begin, within = time.perf_counter(), self.seconds
             try:
-                return function(*arguments)
+                return function(*arguments, **named)
             finally:
-                self.seconds += time.perf_counter() - begin
+                self.seconds = within + time.perf_counter() - begin  # what it called is in it, once
                 if self.look:
                     self.look(arguments)
 
