@@ -31,6 +31,7 @@ from gossan.store.write import ResultWriter
 from gossan.transport.step import passages
 
 CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
+COMMIT_EVERY = 0.2  # s of wall clock after which others see what was recorded; each time costs some ms
 CAUTION = (
     "A one-dimensional aid for screening and design; no substitute for licensed practice, local codes and "
     "permits. Sulfide-bearing beds give off hydrogen sulfide, which dulls the sense of smell and kills: "
@@ -145,7 +146,7 @@ class _Run:
         self.asked_to_stop = True
 
     def _walk(self, state: State, pace: Pace) -> Ending:
-        began = kept = last = wall.monotonic()
+        began = kept = committed = last = wall.monotonic()
         ending = Ending("finished", "")
         try:
             for stride in march(self.problem, state, pace):
@@ -161,7 +162,10 @@ class _Run:
                     self.progress(self.share(state), state)
                 if now - kept > CHECKPOINT_EVERY:
                     self.keep(state, pace)
-                    kept = now
+                    kept = committed = now
+                elif now - committed > COMMIT_EVERY:
+                    self.writer.flush()
+                    committed = now
                 if self.asked_to_stop:
                     ending = Ending("stopped", "interrupted")
                     break
@@ -213,7 +217,7 @@ class _Run:
 
     def frame(self, state: State) -> None:
         self.seen["frame"] = state.time
-        self.writer.frame(state.time, frame_of(self.problem, state))
+        self.writer.frame(state.time, frame_of(self.problem, state), commit=False)
 
     def records(self, state: State) -> None:
         self.seen["records"] = state.time
@@ -228,7 +232,6 @@ class _Run:
         ledger = self.books.closed(state)
         names = ("entered", "left", "stored", "made", "error", "water_error", "charge_error")
         self.writer.ledger(state.time, {name: getattr(ledger, name) for name in names})
-        self.writer.flush()
 
 
 @contextmanager

@@ -97,10 +97,14 @@ class ResultWriter:
             writer._begin(lock, path, axes, attributes, dict(checkpoint.counts), checkpoint.serial)
         return writer, checkpoint.parts
 
-    def frame(self, time: float, values: Mapping[str, np.ndarray]) -> None:
-        """Record the profiles at time (s): every variable of that group by name. Committed on return."""
+    def frame(self, time: float, values: Mapping[str, np.ndarray], commit: bool = True) -> None:
+        """Record the profiles at time (s): every variable of that group by name.
+
+        commit: on return others can see it; without, the arrays are kept as they are until the next flush.
+        """
         self._pending["profiles"].append({"time": time, **values})
-        self.flush()
+        if commit:
+            self.flush()
 
     def port(self, name: str, time: float, values: Mapping[str, Any]) -> None:
         """Record one port at time (s)."""
