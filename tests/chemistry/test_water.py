@@ -121,7 +121,6 @@ def test_who_could_serve_does_serve(analysis, ph, ion):
         assert abs(net_charge(water.equilibrium)) <= 10 * BALANCED * charges(water)
 
 
-WEAK = pytest.mark.xfail(strict=True, reason="a weak ion that cannot take up the charge is not refused yet")
 
 
 @pytest.mark.parametrize(
