@@ -121,8 +121,6 @@ def test_who_could_serve_does_serve(analysis, ph, ion):
         assert abs(net_charge(water.equilibrium)) <= 10 * BALANCED * charges(water)
 
 
-
-
 @pytest.mark.parametrize(
     ("analysis", "more"),
     [
