@@ -5,7 +5,9 @@ In units of RT, and with the components' standard potentials at zero, the energy
     sum c (ln c - 1 - ln_k) + sum n mineral_ln_k      subject to  formation' c + dissolution' n = totals,
 
 c >= 0, 0 <= n <= upper (van Zeggeren & Storey 1970, The Computation of Chemical Equilibria, from memory). The
-ln activities are the multipliers of the mass balances. Nothing here knows Newton's method or active sets.
+ln activities are the multipliers of the mass balances. Electrons are balanced like any component, and there is
+no species of them; what an open gas gives may have either sign. Nothing here knows Newton's method or active
+sets.
 """
 
 from __future__ import annotations
@@ -80,6 +82,7 @@ def _solved(system, totals, upper, multipliers, ln_scale):
     mineral_potential = system.mineral_ln_k - system.dissolution @ multipliers
     there = np.flatnonzero(upper > 0)
     bounded = np.flatnonzero(np.isfinite(upper[there]))
+    finite = np.flatnonzero(~system.held_open()[there])
     c = cp.Variable(len(potential))
     balance = system.formation.T @ c
     energy = -cp.sum(cp.entr(c)) + (potential - 1) @ c
@@ -88,7 +91,8 @@ def _solved(system, totals, upper, multipliers, ln_scale):
     if n is not None:
         balance = balance + system.dissolution[there].T @ n
         energy = energy + mineral_potential[there] @ n
-        limits.append(n >= 0)
+        if len(finite):
+            limits.append(n[finite] >= 0)
         if len(bounded):
             limits.append(n[bounded] <= upper[there][bounded])
     mass = balance == totals
@@ -103,7 +107,8 @@ def _solved(system, totals, upper, multipliers, ln_scale):
         return None
     amounts = np.zeros(len(upper))
     if n is not None:
-        amounts[there] = np.clip(np.asarray(n.value), 0.0, upper[there])
+        least = np.where(system.held_open()[there], -np.inf, 0.0)
+        amounts[there] = np.clip(np.asarray(n.value), least, upper[there])
     return np.maximum(c.value, 0.0), amounts, multipliers - np.asarray(mass.dual_value)
 
 
@@ -117,6 +122,8 @@ def _perturbation(system, totals, upper, c, n, multipliers, ln_scale):
     exponent = system.ln_k + system.formation @ multipliers - ln_scale
     law = np.exp(np.clip(exponent, -300.0, 50.0)) - c
     ln_saturation = system.dissolution @ multipliers - system.mineral_ln_k
-    idle_below = np.minimum(n, np.maximum(-ln_saturation, 0.0))
+    idle_below = np.where(
+        system.held_open(), np.abs(ln_saturation), np.minimum(n, np.maximum(-ln_saturation, 0.0))
+    )
     idle_above = np.minimum(upper - n, np.maximum(ln_saturation, 0.0))
     return float(max(np.abs(part).max(initial=0.0) for part in (balance, law, idle_below, idle_above)))

@@ -3,7 +3,8 @@
 With the activity coefficients frozen an equilibrium is the minimum of a convex function of x = ln activity,
 sum of molalities - totals . x, on the plane where the present minerals are saturated. Plain damped Newton
 finds it from anywhere; the ionic strength joins as one more unknown at the end. Forty spare digits carry the
-cancellation: a free sulfide of 1e-25 beside totals of 0.1 costs 25 of them.
+cancellation: a free sulfide of 1e-25 beside totals of 0.1 costs 25 of them. Electrons are one more component,
+of which nothing is free; where they balance exactly, traces of oxygen or hydrogen decide, and 120 digits do.
 """
 
 from __future__ import annotations
@@ -56,10 +57,10 @@ def settle(
 
     One mineral is repaired at a time: where nothing is known, begin with `least_gibbs_energy`.
 
-    totals      (component,), mol per kg of water, none of them zero but H^+
+    totals      (component,), mol per kg of water, none of them zero but those of H^+ and e^-
     ln_activity (component,), the answer to judge; finite
-    amount      (mineral,), mol per kg of water, the same
-    presence    (mineral,), the same: 0 absent, 1 present, 2 full (at its upper bound)
+    amount      (mineral,), mol per kg of water, the same; of an open gas what it gave less what it took
+    presence    (mineral,), the same: 0 absent, 1 present, 2 full (at its upper bound); open gases are present
     upper       (mineral,), mol per kg of water, the most there can be; default: no bound
     ln_gamma    ionic strength to (species,); default: ideal
     Raises      NoAnswer
@@ -88,10 +89,11 @@ class _Water:
 
     def __init__(self, system, totals, upper, ln_gamma, digits):
         self.formation = [_exactly(row) for row in system.formation]
-        self.ln_k = _exactly(system.ln_k)
+        self.ln_k = _both(system.ln_k, system.ln_k_rest)
         self.charge = _exactly(system.charge)
         self.dissolution = [_exactly(row) for row in system.dissolution]
-        self.mineral_ln_k = _exactly(system.mineral_ln_k)
+        self.mineral_ln_k = _both(system.mineral_ln_k, system.mineral_ln_k_rest)
+        self.open = system.held_open()
         self.totals = _exactly(totals)
         self.upper = _exactly(np.full(len(self.mineral_ln_k), np.inf) if upper is None else upper)
         self.names = system.minerals
@@ -117,9 +119,13 @@ def _exactly(values: ArrayLike) -> list:
     return [mp.mpf(v) for v in np.asarray(values, dtype=float).tolist()]
 
 
+def _both(values: ArrayLike, rest: ArrayLike | None) -> list:
+    return _exactly(values) if rest is None else [a + b for a, b in zip(_exactly(values), _exactly(rest))]
+
+
 def _right_set(water, x, presence):
     """Solve, look at the signs, change one mineral, solve again."""
-    held = np.array(presence, dtype=np.int8).copy()
+    held = np.where(water.open, PRESENT, np.array(presence, dtype=np.int8))
     seen: set[bytes] = set()
     changes: list[str] = []
     strength = water.strength(water.molality(x, mp.mpf("0.1")))
@@ -135,11 +141,11 @@ def _right_set(water, x, presence):
         try:
             x, strength = _on_plane(water, plane, x, strength)
         except NoAnswer:
-            if last is None and not held.any():
+            if last is None and not held[~water.open].any():
                 raise
             changes.append("no water has just these minerals")
             if last is None:
-                held = np.zeros_like(held)
+                held = np.where(water.open, PRESENT, ABSENT)
                 continue
         else:
             molality = water.molality(x, strength)
@@ -158,6 +164,8 @@ def _wanted_change(water, plane, held, n, ln_saturation, seen):
     wanted = []
     for m, state in enumerate(held):
         name = water.names[m]
+        if water.open[m]:
+            continue
         if state == PRESENT and n[m] < -water.tolerance * scale:
             wanted.append((1, -n[m], m, ABSENT, f"{name} has a negative amount"))
         elif state == PRESENT and n[m] > water.upper[m] + water.tolerance * scale:
@@ -186,6 +194,8 @@ def _make_room(water, plane, trial, n, entering, from_full):
     way = -1 if from_full else 1
     limits = [(water.upper[entering], entering, ABSENT if from_full else FULL)]
     for m, share in shares.items():
+        if water.open[m]:
+            continue
         if share * way > 0:
             limits.append((n[m] / (share * way), m, ABSENT))
         elif share * way < 0:

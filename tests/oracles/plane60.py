@@ -20,7 +20,8 @@ class Plane:
                 t - s * water.upper[m] for t, s in zip(self.totals, water.dissolution[m], strict=True)
             ]
         self.full = set(np.flatnonzero(held == FULL).tolist())
-        self.present = np.flatnonzero(held == PRESENT).tolist()
+        # open gases first: whatever else depends on them has to go
+        self.present = sorted(np.flatnonzero(held == PRESENT).tolist(), key=lambda m: not water.open[m])
         self.dependent = None
         self._eliminate(self._abundance(x))
         self.free = [k for k in range(len(self.totals)) if k not in self.pivots]

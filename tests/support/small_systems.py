@@ -43,6 +43,8 @@ class PlainSystem:
     ion_size    (species,), m; NaN where the table gives none
     dissolution (mineral, component), 1: components that one formula of the mineral dissolves to
     mineral_ln_k (mineral,), ln of the dissolution constant
+    endless     how many of the last minerals there is always enough of, to give or to take: open gases
+    ln_k_rest, mineral_ln_k_rest  what doubles lose of constants that are sums: the constant is both together
     """
 
     components: tuple[str, ...]
@@ -54,6 +56,13 @@ class PlainSystem:
     ion_size: np.ndarray
     dissolution: np.ndarray
     mineral_ln_k: np.ndarray
+    endless: int = 0
+    ln_k_rest: np.ndarray | None = None
+    mineral_ln_k_rest: np.ndarray | None = None
+
+    def held_open(self) -> np.ndarray:
+        """(mineral,) bool: those that there is always enough of."""
+        return np.arange(len(self.minerals)) >= len(self.minerals) - self.endless
 
     def with_only(self, kept: np.ndarray) -> PlainSystem:
         """The part of the system that is left where only these components are there.
@@ -72,6 +81,9 @@ class PlainSystem:
             ion_size=self.ion_size[dissolved],
             dissolution=self.dissolution[np.ix_(solid, kept)],
             mineral_ln_k=self.mineral_ln_k[solid],
+            endless=int(solid[self.held_open()].sum()),
+            ln_k_rest=None if self.ln_k_rest is None else self.ln_k_rest[dissolved],
+            mineral_ln_k_rest=None if self.mineral_ln_k_rest is None else self.mineral_ln_k_rest[solid],
         )
 
 
