@@ -1,0 +1,117 @@
+"""What an equilibrium is worth: its residuals in doubled precision, and how far its answer is from the truth."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from gossan.chemistry.equilibrium import Equilibrium
+from gossan.chemistry.system import System
+
+ABSENT, PRESENT, FULL = 0, 1, 2
+
+
+@dataclass(frozen=True, eq=False)
+class Certificate:
+    """How well each water meets its equations; all evaluated with 32 digits from the stored numbers alone.
+
+    The ln activities are off by what Newton's next step would change, which is known to a few percent while
+    it is below 0.01, and by what double precision leaves in the activity coefficients.
+    """
+
+    system: System
+    balance: np.ndarray  # (component, cell) mass balance off by, relative to its largest term
+    ionic_strength: np.ndarray  # (cell,) relative to what the species make
+    saturation: np.ndarray  # (mineral, cell) ln of saturation ratio; NaN where a component is absent
+    present: np.ndarray  # (cell,) largest |ln saturation ratio| of minerals present, couples and open gases
+    absent: np.ndarray  # (cell,) largest ln saturation ratio of an absent mineral that may form; 0 below 0
+    full: np.ndarray  # (cell,) largest undersaturation, in ln, of a mineral at its upper bound
+    ln_activity: np.ndarray  # (basis, cell) estimated error
+
+    @property
+    def worst(self) -> np.ndarray:
+        """(cell,) the largest estimated error of a ln activity."""
+        return self.ln_activity.max(axis=0)
+
+    def line(self, cell: int = 0) -> str:
+        """One cell's certificate, for people."""
+        k, b = int(self.balance[:, cell].argmax()), int(self.ln_activity[:, cell].argmax())
+        parts = [
+            f"balances within {self.balance[k, cell]:.1e} ({self.system.components[k]})",
+            f"ionic strength within {self.ionic_strength[cell]:.1e}",
+        ]
+        if not np.isnan(self.saturation[:, cell]).all():
+            wrong = max(self.present[cell], self.absent[cell], self.full[cell])
+            parts.append(f"minerals within {wrong:.1e}")
+        parts.append(f"ln activities within {self.ln_activity[b, cell]:.1e} ({self.system.species[b]})")
+        return ", ".join(parts)
+
+
+def certify(
+    found: Equilibrium,
+    kilograms: np.ndarray | None = None,
+    totals: np.ndarray | None = None,
+    upper: np.ndarray | None = None,
+) -> Certificate:
+    """Put an equilibrium back into its equations, in doubled precision (equations.md, 104 and 105).
+
+    kilograms (cell,) kg of water per unit that the amounts are per; default 1, for mol per kg of water
+    totals    (component, cell) what was to be shared out, solids included, in the unit of the amounts;
+              default: what the answer holds, so that a balance judges the dissolved amounts alone
+    upper     (mineral, cell) the most there could be; default: by what may form and what is full
+    """
+    from gossan.chemistry.kernel.certify import certify_cells, desk
+
+    system, matrices = found.system, found.system.matrices
+    cells = found.amount.shape[1]
+    rows, ln_k = matrices.solid, matrices.solid_ln_k
+    minerals = len(system.minerals)
+    tied = np.ones((len(rows), cells), np.int8)
+    tied[:minerals] = found.presence == PRESENT
+    total = found.amount if totals is None else totals
+    held, full = np.zeros((*total.shape, 2)), np.zeros((*total.shape, 2))
+    if totals is not None:
+        held = _doubled(system.mineral_stoichiometry, found.solid)
+        full = _doubled(system.mineral_stoichiometry, np.where(found.presence == FULL, found.solid, 0.0))
+    balance, strength = np.empty(total.shape), np.empty(cells)
+    saturation, error = np.empty((len(rows), cells)), np.empty(found.ln_activity.shape)
+    certify_cells(
+        matrices, desk(len(found.ln_activity), len(matrices.ln_k), len(rows)), _conserved(system), rows, ln_k,
+        tied, np.ones(cells) if kilograms is None else np.ascontiguousarray(kilograms, float),
+        np.ascontiguousarray(total, float), held, full, np.ascontiguousarray(found.ln_activity),
+        np.ascontiguousarray(found.ionic_strength), balance, strength, saturation, error,
+    )  # fmt: skip
+    may_form = system.may_form[:, None] if upper is None else upper > 0.0
+    there = np.nan_to_num(saturation, nan=0.0)
+    marks = found.presence
+
+    def most(values: np.ndarray) -> np.ndarray:
+        return np.maximum(values, 0.0).max(axis=0, initial=0.0)
+
+    return Certificate(
+        system=system,
+        balance=balance,
+        ionic_strength=strength,
+        saturation=saturation[:minerals],
+        present=most(np.where(tied == 1, np.abs(there), 0.0)),
+        absent=most(np.where((marks == ABSENT) & may_form, there[:minerals], 0.0)),
+        full=most(np.where(marks == FULL, -there[:minerals], 0.0)),
+        ln_activity=error,
+    )
+
+
+def _conserved(system: System) -> np.ndarray:
+    return system.matrices.stoichiometry
+
+
+def _doubled(stoichiometry: np.ndarray, amount: np.ndarray) -> np.ndarray:
+    """(component, cell, 2): what solids hold, each term and the sum in two parts."""
+    from gossan.chemistry.kernel.doubled import add, two_product
+
+    out = np.zeros((stoichiometry.shape[1], amount.shape[1], 2))
+    for m, k in zip(*np.nonzero(stoichiometry), strict=True):
+        for i in np.flatnonzero(amount[m]):
+            term = two_product(stoichiometry[m, k], amount[m, i])
+            out[k, i] = add(*out[k, i], *term)
+    return out

@@ -1,0 +1,385 @@
+"""An answer put back into its equations with twice the digits, and what it is off by (equations.md, 104 and 105).
+
+All that is asked of a cell is its ln activities, ionic strength, marks and amounts: how they were found
+plays no part, and nothing of the solve is used again.
+"""
+
+from __future__ import annotations
+
+import math
+from typing import NamedTuple
+
+import numpy as np
+
+from gossan.base.jit import kernel
+from gossan.chemistry.kernel.activity import activity_coefficients
+from gossan.chemistry.kernel.doubled import add, exponential, over, times
+
+NOTHING = 1e-20  # a coefficient that is left of ones which cancelled
+GONE = -1e5  # ln activity below which a component is not there
+LAW = 4e-16  # what a ln activity coefficient of size 1 is worth in double precision
+DOUBLED = 1e-30  # what a term is worth in doubled precision, over a sum of hundreds
+
+
+class Desk(NamedTuple):
+    """Working space for one cell; each pair (name, name_low) holds a doubled number."""
+
+    ln_gamma: np.ndarray  # (species,)
+    slope: np.ndarray  # (species,) d ln gamma / d ionic strength
+    molality: np.ndarray  # (species,)
+    molality_low: np.ndarray
+    x: np.ndarray  # (basis,) ln activity
+    x_low: np.ndarray
+    abundance: np.ndarray  # (basis,)
+    order: np.ndarray  # (basis,) int64, the scarcest first
+    pivot: np.ndarray  # (row,) int64: what a row has eliminated; -1 none yet, -2 not tied
+    free: np.ndarray  # (basis,) int64
+    rows: np.ndarray  # (row, basis)
+    rows_low: np.ndarray
+    right: np.ndarray  # (row,)
+    right_low: np.ndarray
+    total: np.ndarray  # (basis,)
+    total_low: np.ndarray
+    reduced: np.ndarray  # (basis, species)
+    short: np.ndarray  # (basis + 1,) what the balances of the free lack, then the ionic strength
+    doubt: np.ndarray  # (basis + 1,) how well that is known
+    scale: np.ndarray  # (basis + 1,)
+    matrix: np.ndarray  # (basis + 1, 2 basis + 2)
+    step: np.ndarray  # (basis + 1,) Newton's
+    blur: np.ndarray  # (basis + 1,) how well that is known
+
+
+def desk(basis: int, species: int, rows: int) -> Desk:
+    """Set out working space."""
+
+    def real(*shape):
+        return np.zeros(shape)
+
+    def whole(*shape):
+        return np.zeros(shape, np.int64)
+
+    return Desk(
+        ln_gamma=real(species), slope=real(species), molality=real(species), molality_low=real(species),
+        x=real(basis), x_low=real(basis), abundance=real(basis), order=whole(basis), pivot=whole(max(rows, 1)),
+        free=whole(basis), rows=real(max(rows, 1), basis), rows_low=real(max(rows, 1), basis),
+        right=real(max(rows, 1)), right_low=real(max(rows, 1)), total=real(basis), total_low=real(basis),
+        reduced=real(basis, species), short=real(basis + 1), doubt=real(basis + 1), scale=real(basis + 1),
+        matrix=real(basis + 1, 2 * basis + 2), step=real(basis + 1), blur=real(basis + 1),
+    )  # fmt: skip
+
+
+@kernel(inner=True)
+def speciate(matrices, desk):
+    """Fill the molalities that the ln activities of the desk stand for; returns (ionic strength, its low part)."""
+    strength, strength_low = 0.0, 0.0
+    for s in range(desk.molality.shape[0]):
+        exponent, exponent_low = matrices.ln_k[s], 0.0
+        for b in range(desk.x.shape[0]):
+            times_it = matrices.stoichiometry[b, s]
+            if times_it != 0.0:
+                term, term_low = times(desk.x[b], desk.x_low[b], times_it, 0.0)
+                exponent, exponent_low = add(exponent, exponent_low, term, term_low)
+        exponent, exponent_low = add(exponent, exponent_low, -desk.ln_gamma[s], 0.0)
+        high, low = exponential(exponent, exponent_low)
+        desk.molality[s], desk.molality_low[s] = high, low
+        squared = 0.5 * matrices.charge_squared[s]
+        if squared != 0.0:
+            strength, strength_low = add(strength, strength_low, squared * high, squared * low)
+    return strength, strength_low
+
+
+@kernel(inner=True)
+def sort_by_abundance(matrices, desk):
+    """Fill desk.order: the basis, the scarcest in solution first; what is not there is left out.
+
+    Returns how many there are.
+    """
+    count = 0
+    for b in range(desk.x.shape[0]):
+        if desk.x[b] < GONE:
+            continue
+        abundance = 0.0
+        for s in range(desk.molality.shape[0]):
+            abundance += abs(matrices.stoichiometry[b, s]) * desk.molality[s]
+        desk.abundance[b] = abundance
+        place = count
+        while place > 0 and desk.abundance[desk.order[place - 1]] > abundance:
+            desk.order[place] = desk.order[place - 1]
+            place -= 1
+        desk.order[place] = b
+        count += 1
+    return count
+
+
+@kernel(inner=True)
+def eliminate_tied(desk, count):
+    """Solve the tied rows for the scarcest of the basis (Gauss-Jordan); returns how many stay free."""
+    free = 0
+    for place in range(count):
+        b = desk.order[place]
+        best = -1
+        for r in range(desk.pivot.shape[0]):
+            if desk.pivot[r] == -1 and abs(desk.rows[r, b]) > NOTHING:
+                if best < 0 or abs(desk.rows[r, b]) > abs(desk.rows[best, b]):
+                    best = r
+        if best < 0:
+            desk.free[free] = b
+            free += 1
+            continue
+        desk.pivot[best] = b
+        head, head_low = desk.rows[best, b], desk.rows_low[best, b]
+        for c in range(desk.rows.shape[1]):
+            desk.rows[best, c], desk.rows_low[best, c] = over(
+                desk.rows[best, c], desk.rows_low[best, c], head, head_low
+            )
+        desk.right[best], desk.right_low[best] = over(desk.right[best], desk.right_low[best], head, head_low)
+        for r in range(desk.pivot.shape[0]):
+            share, share_low = -desk.rows[r, b], -desk.rows_low[r, b]
+            if r == best or desk.pivot[r] == -2 or share == 0.0:
+                continue
+            for c in range(desk.rows.shape[1]):
+                if desk.rows[best, c] != 0.0:
+                    term, term_low = times(desk.rows[best, c], desk.rows_low[best, c], share, share_low)
+                    value, value_low = add(desk.rows[r, c], desk.rows_low[r, c], term, term_low)
+                    there = abs(value) > NOTHING
+                    desk.rows[r, c] = value if there else 0.0
+                    desk.rows_low[r, c] = value_low if there else 0.0
+            term, term_low = times(desk.right[best], desk.right_low[best], share, share_low)
+            desk.right[r], desk.right_low[r] = add(desk.right[r], desk.right_low[r], term, term_low)
+    return free
+
+
+@kernel(inner=True)
+def follow(desk, free):
+    """Set what the tied rows eliminated exactly to what the free ones make of it."""
+    for r in range(desk.pivot.shape[0]):
+        if desk.pivot[r] < 0:
+            continue
+        value, value_low = desk.right[r], desk.right_low[r]
+        for j in range(free):
+            b = desk.free[j]
+            if desk.rows[r, b] != 0.0:
+                term, term_low = times(desk.rows[r, b], desk.rows_low[r, b], desk.x[b], 0.0)
+                value, value_low = add(value, value_low, -term, -term_low)
+        desk.x[desk.pivot[r]], desk.x_low[desk.pivot[r]] = value, value_low
+
+
+@kernel(inner=True)
+def reduced_balances(matrices, desk, free):
+    """Fill what the balances of the free lack (desk.short), how well that is known, and the reduced species."""
+    for j in range(free):
+        b = desk.free[j]
+        value, value_low = desk.total[b], desk.total_low[b]
+        for r in range(desk.pivot.shape[0]):
+            if desk.pivot[r] >= 0 and desk.rows[r, b] != 0.0:
+                p = desk.pivot[r]
+                term, term_low = times(desk.rows[r, b], desk.rows_low[r, b], desk.total[p], desk.total_low[p])
+                value, value_low = add(value, value_low, -term, -term_low)
+        size, blurred = abs(value), 0.0
+        for s in range(desk.molality.shape[0]):
+            part, part_low = matrices.stoichiometry[b, s], 0.0
+            for r in range(desk.pivot.shape[0]):
+                if desk.pivot[r] >= 0 and desk.rows[r, b] != 0.0:
+                    share = matrices.stoichiometry[desk.pivot[r], s]
+                    if share != 0.0:
+                        term, term_low = times(desk.rows[r, b], desk.rows_low[r, b], share, 0.0)
+                        part, part_low = add(part, part_low, -term, -term_low)
+            desk.reduced[j, s] = part if abs(part) > NOTHING else 0.0
+            if desk.reduced[j, s] != 0.0:
+                term, term_low = times(part, part_low, desk.molality[s], desk.molality_low[s])
+                value, value_low = add(value, value_low, -term, -term_low)
+                size += abs(term)
+                blurred += abs(term) * abs(desk.ln_gamma[s])
+        desk.short[j] = value
+        desk.doubt[j] = DOUBLED * size + LAW * blurred
+
+
+@kernel(inner=True)
+def newton_matrix(matrices, desk, free):
+    """Fill the matrix of the free balances and the ionic strength, scaled, and the unit matrix beside it."""
+    n = free + 1
+    for j in range(n):
+        for i in range(2 * n):
+            desk.matrix[j, i] = 1.0 if i == n + j else 0.0
+    own = 1.0
+    for s in range(desk.molality.shape[0]):
+        molality, slope = desk.molality[s], desk.slope[s]
+        charged = 0.5 * matrices.charge_squared[s] * molality
+        own += charged * slope
+        if molality == 0.0:
+            continue
+        for j in range(free):
+            share = desk.reduced[j, s] * molality
+            if share != 0.0:
+                for i in range(free):
+                    desk.matrix[j, i] += share * desk.reduced[i, s]
+                desk.matrix[j, free] -= share * slope
+                desk.matrix[free, j] -= desk.reduced[j, s] * charged
+    desk.matrix[free, free] = own
+    for j in range(free):
+        diagonal = desk.matrix[j, j]
+        desk.scale[j] = 1.0 / math.sqrt(diagonal) if diagonal > 0.0 else 1.0
+        if not diagonal > 0.0:
+            desk.matrix[j, j] = 1.0  # nothing in the water is made of it: any value will do
+    desk.scale[free] = 1.0
+    for j in range(n):
+        for i in range(n):
+            desk.matrix[j, i] *= desk.scale[j] * desk.scale[i]
+
+
+@kernel(inner=True)
+def invert(matrix, n):
+    """Turn (matrix | unit) into (unit | inverse), in place; False where it is singular."""
+    for j in range(n):
+        best = j
+        for i in range(j + 1, n):
+            if abs(matrix[i, j]) > abs(matrix[best, j]):
+                best = i
+        if not abs(matrix[best, j]) > 1e-300:
+            return False
+        if best != j:
+            for c in range(2 * n):
+                matrix[j, c], matrix[best, c] = matrix[best, c], matrix[j, c]
+        head = matrix[j, j]
+        for c in range(2 * n):
+            matrix[j, c] /= head
+        for i in range(n):
+            share = matrix[i, j]
+            if i != j and share != 0.0:
+                for c in range(2 * n):
+                    matrix[i, c] -= share * matrix[j, c]
+    return True
+
+
+@kernel(inner=True)
+def corrections(desk, free, error):
+    """Fill error (basis,): Newton's correction of every ln activity, and how well it is known.
+
+    desk.x holds exact values for the eliminated ones; on entry error holds by how much they were off.
+    Returns whether there is one.
+    """
+    n = free + 1
+    if not invert(desk.matrix, n):
+        return False
+    for j in range(n):
+        step, doubt = 0.0, 0.0
+        for i in range(n):
+            value = desk.scale[j] * desk.matrix[j, n + i] * desk.scale[i]
+            step += value * desk.short[i]
+            doubt += abs(value) * desk.doubt[i]
+        desk.step[j] = step
+        desk.blur[j] = doubt
+    for j in range(free):
+        error[desk.free[j]] = abs(desk.step[j])
+    for r in range(desk.pivot.shape[0]):
+        if desk.pivot[r] >= 0:
+            value = error[desk.pivot[r]]
+            for j in range(free):
+                value -= desk.rows[r, desk.free[j]] * desk.step[j]
+            error[desk.pivot[r]] = abs(value)
+    return True
+
+
+@kernel(inner=True)
+def add_doubt(desk, free, error):
+    """Add how well the corrections are known."""
+    for j in range(free):
+        error[desk.free[j]] += desk.blur[j]
+    for r in range(desk.pivot.shape[0]):
+        if desk.pivot[r] >= 0:
+            for j in range(free):
+                error[desk.pivot[r]] += abs(desk.rows[r, desk.free[j]]) * desk.blur[j]
+
+
+@kernel(inner=True)
+def put_back(matrices, desk, conserved, total, taken, weight, balance):
+    """Fill balance (component,): what each mass balance is off by, relative to its largest term.
+
+    total (component,) and taken (component, 2), what solids hold of it, per unit; weight kg of water per unit
+    """
+    for k in range(total.shape[0]):
+        left, left_low = add(total[k], 0.0, -taken[k, 0], -taken[k, 1])
+        left, left_low = over(left, left_low, weight, 0.0)
+        largest = abs(total[k]) / weight
+        for s in range(desk.molality.shape[0]):
+            count = conserved[k, s]
+            if count != 0.0:
+                high, low = times(desk.molality[s], desk.molality_low[s], count, 0.0)
+                left, left_low = add(left, left_low, -high, -low)
+                largest = max(largest, abs(high))
+        balance[k] = abs(left) / largest if largest > 0.0 else 0.0
+
+
+@kernel(inner=True)
+def saturations(desk, rows, rows_ln_k, saturation):
+    """Fill saturation (row,): ln of ion activity product over K, NaN where something is not there."""
+    for r in range(rows.shape[0]):
+        value, value_low = -rows_ln_k[r], 0.0
+        there = True
+        for b in range(rows.shape[1]):
+            if rows[r, b] != 0.0:
+                there = there and desk.x[b] > GONE
+                term, term_low = times(desk.x[b], desk.x_low[b], rows[r, b], 0.0)
+                value, value_low = add(value, value_low, term, term_low)
+        saturation[r] = value if there else math.nan
+
+
+@kernel(inner=True)
+def lay_out(desk, rows, rows_ln_k, tied, total, taken, weight):
+    """Copy the tied rows and the totals that are to be shared out, exactly."""
+    for r in range(desk.pivot.shape[0]):
+        desk.pivot[r] = -2
+    for r in range(rows.shape[0]):
+        if tied[r]:
+            desk.pivot[r] = -1
+            desk.right[r], desk.right_low[r] = rows_ln_k[r], 0.0
+            for b in range(rows.shape[1]):
+                desk.rows[r, b], desk.rows_low[r, b] = rows[r, b], 0.0
+    for b in range(desk.total.shape[0]):
+        desk.total[b], desk.total_low[b] = 0.0, 0.0
+    for k in range(total.shape[0]):
+        value, value_low = add(total[k], 0.0, -taken[k, 0], -taken[k, 1])
+        desk.total[k], desk.total_low[k] = over(value, value_low, weight, 0.0)
+
+
+@kernel
+def certify_cells(
+    matrices, desk, conserved, rows, rows_ln_k, tied, weight, total, held, full, ln_activity,
+    ionic_strength, balance, strength, saturation, error,
+):
+    """Judge every cell of an answer (equations.md, 104 and 105).
+
+    conserved (component, species); rows (row, basis), rows_ln_k (row,): minerals, couples, open gases
+    tied (row, cell) int8: 1 where the row is saturated; weight (cell,) kg of water per unit
+    total (component, cell), what is there, per unit; held, full (component, cell, 2) what all solids, and
+        those at their upper bound, hold of it, in doubled precision
+    ln_activity (basis, cell), ionic_strength (cell,)
+    Overwritten: balance (component, cell), strength (cell,), saturation (row, cell), error (basis, cell)
+    """
+    for i in range(ionic_strength.shape[0]):
+        activity_coefficients(
+            matrices.model, matrices.debye_hueckel, matrices.charge_squared, matrices.neutral, matrices.size,
+            ionic_strength[i], desk.ln_gamma, desk.slope,
+        )  # fmt: skip
+        for b in range(desk.x.shape[0]):
+            desk.x[b], desk.x_low[b] = ln_activity[b, i], 0.0
+        made, _ = speciate(matrices, desk)
+        strength[i] = abs(made - ionic_strength[i]) / made if made > 0.0 else 0.0
+        put_back(matrices, desk, conserved, total[:, i], held[:, i], weight[i], balance[:, i])
+        saturations(desk, rows, rows_ln_k, saturation[:, i])
+        count = sort_by_abundance(matrices, desk)
+        lay_out(desk, rows, rows_ln_k, tied[:, i], total[:, i], full[:, i], weight[i])
+        free = eliminate_tied(desk, count)
+        follow(desk, free)
+        for b in range(desk.x.shape[0]):
+            error[b, i] = desk.x[b] - ln_activity[b, i] + desk.x_low[b] if ln_activity[b, i] > GONE else 0.0
+        made, made_low = speciate(matrices, desk)
+        reduced_balances(matrices, desk, free)
+        desk.short[free], _ = add(made, made_low, -ionic_strength[i], 0.0)
+        desk.doubt[free] = LAW * made
+        newton_matrix(matrices, desk, free)
+        if corrections(desk, free, error[:, i]):
+            add_doubt(desk, free, error[:, i])
+        else:
+            for b in range(desk.x.shape[0]):
+                error[b, i] = math.inf
