@@ -10,6 +10,7 @@ from gossan.chemistry.equilibrium import Equilibrium
 from gossan.chemistry.system import System
 
 ABSENT, PRESENT, FULL = 0, 1, 2
+GONE = -1e5  # ln activity below which a component is not there
 
 
 @dataclass(frozen=True, eq=False)
@@ -69,15 +70,19 @@ def certify(
     minerals = len(system.minerals)
     tied = np.ones((len(rows), cells), np.int8)
     tied[:minerals] = found.presence == PRESENT
+    gone = found.ln_activity < GONE
+    tied[(rows != 0.0).astype(float) @ gone > 0.0] = 0  # a couple or gas of an element that is not there
     total = found.amount if totals is None else totals
     held, full = np.zeros((*total.shape, 2)), np.zeros((*total.shape, 2))
     if totals is not None:
-        held = _doubled(system.mineral_stoichiometry, found.solid)
+        held = _doubled(
+            np.vstack([system.mineral_stoichiometry, system.gas_supply]), np.vstack([found.solid, -found.given])
+        )
         full = _doubled(system.mineral_stoichiometry, np.where(found.presence == FULL, found.solid, 0.0))
     balance, strength = np.empty(total.shape), np.empty(cells)
     saturation, error = np.empty((len(rows), cells)), np.empty(found.ln_activity.shape)
     certify_cells(
-        matrices, desk(len(found.ln_activity), len(matrices.ln_k), len(rows)), _conserved(system), rows, ln_k,
+        matrices, desk(len(found.ln_activity), len(matrices.ln_k), len(rows)), matrices.conserved, rows, ln_k,
         tied, np.ones(cells) if kilograms is None else np.ascontiguousarray(kilograms, float),
         np.ascontiguousarray(total, float), held, full, np.ascontiguousarray(found.ln_activity),
         np.ascontiguousarray(found.ionic_strength), balance, strength, saturation, error,
@@ -99,10 +104,6 @@ def certify(
         full=most(np.where(marks == FULL, -there[:minerals], 0.0)),
         ln_activity=error,
     )
-
-
-def _conserved(system: System) -> np.ndarray:
-    return system.matrices.stoichiometry
 
 
 def _doubled(stoichiometry: np.ndarray, amount: np.ndarray) -> np.ndarray:

@@ -1,0 +1,1 @@
+"""Random waters by the thousand, every answer judged; `python -m tools.battery --help`."""
