@@ -64,28 +64,24 @@ def certify(
     """
     from gossan.chemistry.kernel.certify import certify_cells, desk
 
-    system, matrices = found.system, found.system.matrices
-    cells = found.amount.shape[1]
-    rows, ln_k = matrices.solid, matrices.solid_ln_k
-    minerals = len(system.minerals)
+    system, matrices, cells = found.system, found.system.matrices, found.amount.shape[1]
+    rows, minerals = matrices.solid, len(system.minerals)
     tied = np.ones((len(rows), cells), np.int8)
     tied[:minerals] = found.presence == PRESENT
     gone = found.ln_activity < GONE
     tied[(rows != 0.0).astype(float) @ gone > 0.0] = 0  # a couple or gas of an element that is not there
-    total = found.amount if totals is None else totals
-    held, full = np.zeros((*total.shape, 2)), np.zeros((*total.shape, 2))
+    held = np.zeros((len(rows), cells))
     if totals is not None:
-        held = _doubled(
-            np.vstack([system.mineral_stoichiometry, system.gas_supply]), np.vstack([found.solid, -found.given])
-        )
-        full = _doubled(system.mineral_stoichiometry, np.where(found.presence == FULL, found.solid, 0.0))
+        held[:minerals] = found.solid
+        held[len(rows) - len(found.given) :] = -found.given
+    total = np.ascontiguousarray(found.amount if totals is None else totals, float)
+    weight = np.ones(cells) if kilograms is None else np.ascontiguousarray(kilograms, float)
     balance, strength = np.empty(total.shape), np.empty(cells)
     saturation, error = np.empty((len(rows), cells)), np.empty(found.ln_activity.shape)
     certify_cells(
-        matrices, desk(len(found.ln_activity), len(matrices.ln_k), len(rows)), matrices.conserved, rows, ln_k,
-        tied, np.ones(cells) if kilograms is None else np.ascontiguousarray(kilograms, float),
-        np.ascontiguousarray(total, float), held, full, np.ascontiguousarray(found.ln_activity),
-        np.ascontiguousarray(found.ionic_strength), balance, strength, saturation, error,
+        matrices, desk(len(found.ln_activity), len(matrices.ln_k), len(rows)), tied, weight, total, held,
+        np.ascontiguousarray(found.ln_activity), np.ascontiguousarray(found.ionic_strength),
+        balance, strength, saturation, error,
     )  # fmt: skip
     may_form = system.may_form[:, None] if upper is None else upper > 0.0
     there = np.nan_to_num(saturation, nan=0.0)
@@ -105,14 +101,3 @@ def certify(
         ln_activity=error,
     )
 
-
-def _doubled(stoichiometry: np.ndarray, amount: np.ndarray) -> np.ndarray:
-    """(component, cell, 2): what solids hold, each term and the sum in two parts."""
-    from gossan.chemistry.kernel.doubled import add, two_product
-
-    out = np.zeros((stoichiometry.shape[1], amount.shape[1], 2))
-    for m, k in zip(*np.nonzero(stoichiometry), strict=True):
-        for i in np.flatnonzero(amount[m]):
-            term = two_product(stoichiometry[m, k], amount[m, i])
-            out[k, i] = add(*out[k, i], *term)
-    return out

@@ -13,7 +13,7 @@ import numpy as np
 
 from gossan.base.jit import kernel
 from gossan.chemistry.kernel.activity import activity_coefficients
-from gossan.chemistry.kernel.doubled import add, exponential, over, times
+from gossan.chemistry.kernel.doubled import add, exponential, over, times, two_product
 
 NOTHING = 1e-20  # a coefficient that is left of ones which cancelled
 GONE = -1e5  # ln activity below which a component is not there
@@ -292,17 +292,23 @@ def add_doubt(desk, free, error):
 
 
 @kernel(inner=True)
-def put_back(matrices, desk, conserved, total, taken, weight, balance):
+def put_back(matrices, desk, total, held, weight, balance):
     """Fill balance (component,): what each mass balance is off by, relative to its largest term.
 
-    total (component,) and taken (component, 2), what solids hold of it, per unit; weight kg of water per unit
+    total (component,), held (row,) per unit; weight kg of water per unit
     """
     for k in range(total.shape[0]):
-        left, left_low = add(total[k], 0.0, -taken[k, 0], -taken[k, 1])
+        left, left_low = total[k], 0.0
+        largest = abs(total[k])
+        for r in range(held.shape[0]):
+            if held[r] != 0.0 and matrices.supplied[r, k] != 0.0:
+                term, term_low = two_product(matrices.supplied[r, k], held[r])
+                left, left_low = add(left, left_low, -term, -term_low)
+                largest = max(largest, abs(term))
         left, left_low = over(left, left_low, weight, 0.0)
-        largest = abs(total[k]) / weight
+        largest /= weight
         for s in range(desk.molality.shape[0]):
-            count = conserved[k, s]
+            count = matrices.conserved[k, s]
             if count != 0.0:
                 high, low = times(desk.molality[s], desk.molality_low[s], count, 0.0)
                 left, left_low = add(left, left_low, -high, -low)
@@ -311,8 +317,9 @@ def put_back(matrices, desk, conserved, total, taken, weight, balance):
 
 
 @kernel(inner=True)
-def saturations(desk, rows, rows_ln_k, saturation):
+def saturations(matrices, desk, saturation):
     """Fill saturation (row,): ln of ion activity product over K, NaN where something is not there."""
+    rows, rows_ln_k = matrices.solid, matrices.solid_ln_k
     for r in range(rows.shape[0]):
         value, value_low = -rows_ln_k[r], 0.0
         there = True
@@ -325,37 +332,44 @@ def saturations(desk, rows, rows_ln_k, saturation):
 
 
 @kernel(inner=True)
-def lay_out(desk, rows, rows_ln_k, tied, total, taken, weight):
-    """Copy the tied rows and the totals that are to be shared out, exactly."""
-    for r in range(desk.pivot.shape[0]):
-        desk.pivot[r] = -2
+def lay_out(matrices, desk, tied, total, held, weight):
+    """Copy the tied rows and the totals that are to be shared out, exactly.
+
+    What a tied row holds is part of what is shared out; what others hold is not.
+    """
+    rows = matrices.solid
     for r in range(rows.shape[0]):
-        if tied[r]:
-            desk.pivot[r] = -1
-            desk.right[r], desk.right_low[r] = rows_ln_k[r], 0.0
-            for b in range(rows.shape[1]):
-                desk.rows[r, b], desk.rows_low[r, b] = rows[r, b], 0.0
+        desk.pivot[r] = -1 if tied[r] else -2
+        desk.right[r], desk.right_low[r] = matrices.solid_ln_k[r], 0.0
+        for b in range(rows.shape[1]):
+            desk.rows[r, b], desk.rows_low[r, b] = rows[r, b], 0.0
     for b in range(desk.total.shape[0]):
-        desk.total[b], desk.total_low[b] = 0.0, 0.0
-    for k in range(total.shape[0]):
-        value, value_low = add(total[k], 0.0, -taken[k, 0], -taken[k, 1])
-        desk.total[k], desk.total_low[k] = over(value, value_low, weight, 0.0)
+        value, value_low = 0.0, 0.0
+        if b < total.shape[0]:
+            value = total[b]
+            for r in range(held.shape[0]):
+                if not tied[r] and held[r] != 0.0:
+                    term, term_low = two_product(matrices.supplied[r, b], held[r])
+                    value, value_low = add(value, value_low, -term, -term_low)
+            value, value_low = over(value, value_low, weight, 0.0)
+        desk.total[b], desk.total_low[b] = value, value_low
 
 
 @kernel
 def certify_cells(
-    matrices, desk, conserved, rows, rows_ln_k, tied, weight, total, held, full, ln_activity,
-    ionic_strength, balance, strength, saturation, error,
+    matrices, desk, tied, weight, total, held, ln_activity, ionic_strength, balance, strength, saturation,
+    error,
 ):
     """Judge every cell of an answer (equations.md, 104 and 105).
 
-    conserved (component, species); rows (row, basis), rows_ln_k (row,): minerals, couples, open gases
-    tied (row, cell) int8: 1 where the row is saturated; weight (cell,) kg of water per unit
-    total (component, cell), what is there, per unit; held, full (component, cell, 2) what all solids, and
-        those at their upper bound, hold of it, in doubled precision
+    tied (row, cell) int8: 1 where the row is saturated; rows are minerals, couples, open gases
+    weight (cell,) kg of water per unit; total (component, cell) what is there, per unit; held (row, cell)
+        what the answer says that each row holds of it, in formulas per unit
     ln_activity (basis, cell), ionic_strength (cell,)
     Overwritten: balance (component, cell), strength (cell,), saturation (row, cell), error (basis, cell)
     """
+    for r in range(desk.pivot.shape[0]):
+        desk.pivot[r] = -2
     for i in range(ionic_strength.shape[0]):
         activity_coefficients(
             matrices.model, matrices.debye_hueckel, matrices.charge_squared, matrices.neutral, matrices.size,
@@ -365,14 +379,15 @@ def certify_cells(
             desk.x[b], desk.x_low[b] = ln_activity[b, i], 0.0
         made, _ = speciate(matrices, desk)
         strength[i] = abs(made - ionic_strength[i]) / made if made > 0.0 else 0.0
-        put_back(matrices, desk, conserved, total[:, i], held[:, i], weight[i], balance[:, i])
-        saturations(desk, rows, rows_ln_k, saturation[:, i])
+        put_back(matrices, desk, total[:, i], held[:, i], weight[i], balance[:, i])
+        saturations(matrices, desk, saturation[:, i])
         count = sort_by_abundance(matrices, desk)
-        lay_out(desk, rows, rows_ln_k, tied[:, i], total[:, i], full[:, i], weight[i])
+        lay_out(matrices, desk, tied[:, i], total[:, i], held[:, i], weight[i])
         free = eliminate_tied(desk, count)
         follow(desk, free)
         for b in range(desk.x.shape[0]):
-            error[b, i] = desk.x[b] - ln_activity[b, i] + desk.x_low[b] if ln_activity[b, i] > GONE else 0.0
+            there = ln_activity[b, i] > GONE
+            error[b, i] = (desk.x[b] - ln_activity[b, i]) + desk.x_low[b] if there else 0.0
         made, made_low = speciate(matrices, desk)
         reduced_balances(matrices, desk, free)
         desk.short[free], _ = add(made, made_low, -ionic_strength[i], 0.0)

@@ -20,7 +20,7 @@ PIECES = 13  # of the exponential's series: (0.0055)^13 / 13! is 7e-40
 LEAST_EXPONENT = -600.0  # below, the low part of a result would leave the range of doubles
 
 
-@kernel
+@kernel(inner=True)
 def two_sum(a, b):
     """a + b and what rounding lost of it (equations.md, 101)."""
     high = a + b
@@ -28,7 +28,7 @@ def two_sum(a, b):
     return high, (a - (high - part)) + (b - part)
 
 
-@kernel
+@kernel(inner=True)
 def two_product(a, b):
     """a b and what rounding lost of it, |a|, |b| < 1e290 (equations.md, 102)."""
     high = a * b
@@ -41,7 +41,7 @@ def two_product(a, b):
     return high, ((a_high * b_high - high) + a_high * b_low + a_low * b_high) + a_low * b_low
 
 
-@kernel
+@kernel(inner=True)
 def add(a, a_low, b, b_low):
     """The sum of two pairs; its error is 4e-32 of the larger one, not of the sum."""
     high, low = two_sum(a, b)
@@ -50,14 +50,14 @@ def add(a, a_low, b, b_low):
     return two_sum(high, low + third)
 
 
-@kernel
+@kernel(inner=True)
 def times(a, a_low, b, b_low):
     """The product of two pairs, within 2e-31 of itself."""
     high, low = two_product(a, b)
     return two_sum(high, low + (a * b_low + a_low * b))
 
 
-@kernel
+@kernel(inner=True)
 def over(a, a_low, b, b_low):
     """The quotient of two pairs, within 2e-31 of itself."""
     first = a / b
@@ -70,7 +70,7 @@ def over(a, a_low, b, b_low):
     return add(high, low, left / b, 0.0)
 
 
-@kernel
+@kernel(inner=True)
 def exponential(a, a_low):
     """e^a of a pair, within 1e-30 of itself for |a| < 600; nothing below (equations.md, 103).
 

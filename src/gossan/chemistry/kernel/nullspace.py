@@ -14,6 +14,7 @@ from __future__ import annotations
 import numpy as np
 
 from gossan.base.jit import kernel
+from gossan.chemistry.kernel.doubled import two_product, two_sum
 from gossan.chemistry.kernel.vectors import add_row
 
 GONE = -99  # place of a component that is absent
@@ -195,18 +196,16 @@ def pivot_constant(matrices, bench, active, row):
 
 @kernel(inner=True, forceinline=True)
 def reduce_totals(bench, active, free):
-    """Subtract the pivots' totals from the free ones', keeping what rounding would lose (two-sum)."""
+    """Subtract the pivots' totals from the free ones', keeping what rounding would lose of sums and products."""
     rows, total = bench.rows, bench.total
     for j in range(free):
         k = bench.free[j]
         value = total[k]
         lost = 0.0
         for r in range(active):
-            term = -rows[r, k] * total[bench.pivot[r]]
-            both = value + term
-            part = both - value
-            lost += (value - (both - part)) + (term - part)
-            value = both
+            term, rest = two_product(-rows[r, k], total[bench.pivot[r]])
+            value, missed = two_sum(value, term)
+            lost += missed + rest
         bench.reduced_total[j] = value + lost
 
 
