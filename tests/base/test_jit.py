@@ -201,7 +201,7 @@ BITS = """
 import hashlib, numpy as np
 from tests.support.battery import battery, random_bounds
 from tests.support.small_systems import MINE_COMPONENTS
-from tools.battery import mine_system
+from tools.battery.mixes import mine_system
 from gossan.chemistry.equilibrium import Solver
 system = mine_system("davies")
 totals = np.zeros((len(MINE_COMPONENTS), 200))

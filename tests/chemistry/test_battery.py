@@ -1,6 +1,7 @@
 """Random waters by the thousand: all converge, meet every condition, and stand up to other methods.
 
-The waters: tests/support/battery.py. The judges: a convex minimum of Gibbs energy, Newton at 60 digits.
+The waters: tests/support/battery.py and redox_waters.py; the systems: tools/battery/mixes.py. The judges: plain
+numpy, a convex minimum of Gibbs energy, cantera, Newton at 60 and 120 digits.
 """
 
 from __future__ import annotations
@@ -9,176 +10,182 @@ from concurrent.futures import ThreadPoolExecutor
 
 import numpy as np
 import pytest
+from tests.oracles.cantera_mixture import cantera_equilibrium, ct
 from tests.oracles.gibbs import least_gibbs_energy
-from tests.oracles.newton60 import settle
-from tests.support.battery import battery, random_bounds, scaled, stirred, wide_battery
-from tests.support.small_systems import MINE_COMPONENTS, WIDE_COMPONENTS
-from tools.battery import (
-    LAWS,
-    Answers,
-    as_plain,
-    hardest,
-    mine_system,
-    molalities,
-    report_conditions,
-    solve,
-    wide_system,
-)
+from tests.support.battery import random_bounds, scaled, stirred
+from tests.support.plain_of import judged, solids_of
+from tools.battery.answers import Answers, solve
+from tools.battery.conditions import conditions
+from tools.battery.digits import hardest, scarcity, settled
+from tools.battery.mixes import MIXES, Batch, batches, first_waters, mine_system, wide_system
+from tools.battery.report import IN_LN_ACTIVITY, Report
 
+from gossan.chemistry.certificate import certify
 from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.chemistry.system import System
 
 SEED = 20261201
 OF_LARGEST = 1e-6  # what the convex solver is good for, of the largest total
-IN_LN_ACTIVITY = 1e-9
+WIDENED = ("held", "coupled", "partial", "open", "missing", "bounded")
 MINE = {activity: mine_system(activity) for activity in ("ideal", "davies", "debye-hueckel")}
 
 
-def waters(system: System, seed: int, count: int) -> np.ndarray:
-    """(water, component) in the system's order."""
-    wide = len(system.components) > len(MINE_COMPONENTS)
-    names = WIDE_COMPONENTS if wide else MINE_COMPONENTS
-    place = [system.components.index(name) for name in names]
-    totals = np.zeros((count, len(names)))
-    solids = system.mineral_stoichiometry[:, place]
-    totals[:, place] = wide_battery(seed, count, names, solids) if wide else battery(seed, count)
-    return totals
+def first_batch(system: System, seed: int, count: int, bounded: bool = False) -> Batch:
+    """Waters of the first two batteries."""
+    totals = first_waters(system, seed, count)
+    upper = np.full((count, len(system.minerals)), np.inf)
+    return Batch("", system, totals, random_bounds(totals, upper.shape[1], seed) if bounded else upper)
 
 
-def unbounded(system: System, count: int) -> np.ndarray:
-    return np.full((count, len(system.minerals)), np.inf)
+def passed(answers: Answers) -> bool:
+    """Whether every water was solved and meets balances, complementarity, ties and ionic strength."""
+    report = Report("test")
+    report.asked = len(answers.water) + len(answers.failures)
+    report.add(conditions(answers), None)
+    for line in report.lines():
+        print(line)
+    return report.good()
 
 
-def judged(system: System, totals: np.ndarray, upper: np.ndarray, answers: Answers) -> bool:
-    """Whether every water was solved and meets balances, complementarity and ionic strength."""
-    plain = as_plain(system)
-    found = np.isfinite(answers.ionic_strength)
-    law = LAWS[system.activity.name](plain)
-    return bool(report_conditions(plain, law, totals, upper, answers, found) and found.all())
+@pytest.mark.parametrize("mix", ["mine", *WIDENED])
+def test_ideal_waters_are_least_in_gibbs_energy(mix):
+    """Sixty of each kind, 200 of the first battery; open gases and bounds included."""
+    for batch in batches(mix, 71, 200 if mix == "mine" else 60, "ideal"):
+        found = conditions(solve(batch))
+        amounts, _ = solids_of(found.answers.found)
+        for w, totals in enumerate(batch.totals):
+            kept = found.answers.found.ln_activity[: len(totals), w] > -1e5
+            there = np.all(found.plain.dissolution[:, ~kept] == 0.0, axis=1)
+            upper = np.concatenate([batch.upper[w], np.full(found.plain.endless, np.inf)])
+            least = least_gibbs_energy(found.plain.with_only(kept), totals[kept], upper[there])
+            within = OF_LARGEST * max(np.abs(totals).max(), np.abs(amounts[:, w]).max(initial=0.0))
+            dissolved = np.all(found.plain.formation[:, ~kept] == 0.0, axis=1)
+            where = f"{batch.name}, water {w}"
+            assert found.molality[dissolved, w] == pytest.approx(least.molality, abs=within), where
+            assert amounts[there, w] == pytest.approx(least.amount, abs=within), where
 
 
-def claim(answers: Answers, water: int) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
-    """What the program says of one water, to be judged."""
-    return answers.ln_activity[:, water], answers.solid[:, water], answers.presence[:, water]
-
-
-def answers_of(found: Equilibrium) -> Answers:
-    return Answers(found.ln_activity, found.solid, found.presence, found.ionic_strength, found.steps)
-
-
-def test_two_hundred_waters_are_least_in_gibbs_energy():
-    system = MINE["ideal"]
-    plain = as_plain(system)
-    totals = waters(system, 71, 200)
-    answers = solve(system, totals, unbounded(system, 200))
-    made = molalities(plain, LAWS["ideal"](plain), answers)
-    for w, total in enumerate(totals):
-        least = least_gibbs_energy(plain, total)
-        within = OF_LARGEST * np.abs(total).max()
-        assert made[:, w] == pytest.approx(least.molality, abs=within), f"water {w}"
-        assert answers.solid[:, w] == pytest.approx(least.amount, abs=within), f"water {w}"
-
-
-def test_bounded_minerals_are_least_in_gibbs_energy():
-    system = MINE["ideal"]
-    plain = as_plain(system)
-    totals = waters(system, 72, 60)
-    upper = random_bounds(totals, len(system.minerals), 72)
-    answers = solve(system, totals, upper)
-    for w, total in enumerate(totals):
-        least = least_gibbs_energy(plain, total, upper[w])
-        within = OF_LARGEST * np.abs(total).max()
-        assert answers.solid[:, w] == pytest.approx(least.amount, abs=within), f"water {w}"
+def test_cantera_finds_the_same_waters():
+    """Held and coupled ideal waters; where cantera's solver gives up nothing follows, and it seldom does."""
+    given_up = compared = 0
+    for mix in ("mine", "held", "coupled", "partial"):
+        for batch in batches(mix, 72, 24, "ideal"):
+            found = conditions(solve(batch))
+            for w, totals in enumerate(batch.totals):
+                try:
+                    molality, amount = cantera_equilibrium(found.plain, totals, found.molality[:, w].sum())
+                except ct.CanteraError:
+                    given_up += 1
+                    continue
+                compared += 1
+                within = 1e-8 * np.abs(totals).max()
+                assert found.molality[:, w] == pytest.approx(molality, abs=within), f"{batch.name}, water {w}"
+                assert found.answers.found.solid[:, w] == pytest.approx(amount, abs=within)
+    assert compared > 80
+    assert given_up < 0.15 * compared
 
 
 @pytest.fixture(scope="module")
 def many():
-    """Twenty thousand waters with Davies' law, cold."""
-    system = MINE["davies"]
-    totals = waters(system, SEED, 20000)
-    return totals, solve(system, totals, unbounded(system, len(totals)))
+    """Twenty thousand waters of the first battery with Davies' law, cold."""
+    return conditions(solve(first_batch(MINE["davies"], SEED, 20000)))
 
 
 def test_twenty_thousand_waters_converge(many):
-    totals, answers = many
-    assert judged(MINE["davies"], totals, unbounded(MINE["davies"], len(totals)), answers)
-    marks = answers.presence.T
+    assert passed(many.answers)
+    marks = many.answers.found.presence.T
     assert len(np.unique(marks, axis=0)) > 50, "hardly any set of minerals was met"
 
 
 @pytest.mark.parametrize("part", range(2))
 def test_the_fifty_hardest_at_sixty_digits(many, part):
     """By what is dissolved of the scarcest component beside the largest total."""
-    system = MINE["davies"]
-    totals, answers = many
-    plain = as_plain(system)
-    law = LAWS["davies"](plain)
-    chosen = hardest(plain, law, totals, answers, np.ones(len(totals), dtype=bool))[:50]
+    batch, found = many.answers.batch, many.answers.found
+    chosen = np.argsort(-scarcity(many), kind="stable")[:50]
     for w in chosen[part::2].tolist():
-        exact = settle(plain, totals[w], *claim(answers, w), ln_gamma=law)
+        exact = judged(found, w, batch.totals[w], plain=many.plain)
         assert exact.changes == (), f"water {w}"
         assert exact.error < IN_LN_ACTIVITY, f"water {w}"
         assert exact.amount_error < 1e-12, f"water {w}"
 
 
+@pytest.mark.parametrize("mix", WIDENED)
+def test_waters_from_hydrogen_to_oxygen(mix):
+    """0 to 50 degC; the hardest at 60 or 120 digits, each error within what its certificate says."""
+    report = Report(mix)
+    for batch in batches(mix, SEED, 480):
+        found = conditions(solve(batch))
+        report.asked += len(batch.totals)
+        certificate = certify(found.answers.found, totals=batch.totals.T, upper=batch.upper.T)
+        report.add(found, certificate)
+        for cell in hardest(found, certificate, 3):
+            report.settled.append(settled(found, certificate, cell))
+    for line in report.lines():
+        print(line)
+    assert report.good()
+    assert max(one.covered for one in report.settled) <= 1.0
+    if mix == "coupled":
+        pe = np.concatenate(report.pe)
+        assert pe.min() < -10
+        assert pe.max() > 20
+
+
 @pytest.mark.parametrize("activity", ["ideal", "debye-hueckel"])
-def test_the_other_laws(activity):
-    system = MINE[activity]
-    totals = waters(system, 73, 2000)
-    upper = unbounded(system, 2000)
-    assert judged(system, totals, upper, solve(system, totals, upper))
+@pytest.mark.parametrize("mix", ["mine", "coupled"])
+def test_the_other_laws(mix, activity):
+    for batch in batches(mix, 73, 2000 if mix == "mine" else 240, activity):
+        assert passed(solve(batch))
+
+
+def remade(answers: Answers, totals: np.ndarray, found: Equilibrium) -> Answers:
+    """The answers of other totals of the same system."""
+    batch = Batch("warm", answers.batch.system, totals, answers.batch.upper)
+    return Answers(batch, answers.water, found, ())
 
 
 @pytest.mark.parametrize("changed", [scaled, stirred])
-def test_two_thousand_warm_starts(changed):
+@pytest.mark.parametrize("mix", ["mine", "coupled"])
+def test_warm_starts(mix, changed):
     """From the answer of a water that one step of a column ago was a little other."""
-    system = MINE["davies"]
-    solver, count = Solver(system), 2000
-    totals = waters(system, 74, count)
-    nothing = np.zeros((len(system.minerals), count))
-    first = solver.cold(np.ones(count), totals.T, nothing)
-    after = changed(totals, 74)
-    # what a step moves is dissolved; the solids stay
-    dissolved = after.T - system.mineral_stoichiometry.T @ first.solid
-    warm = solver.settled(first, np.ones(count), dissolved, first.solid)
-    assert judged(system, after, unbounded(system, count), answers_of(warm))
-    cold = solver.cold(np.ones(count), after.T, nothing)
-    assert np.array_equal(warm.presence, cold.presence)
-    # rounding of the totals, for traces: as large as the oracle grants them
-    scarcest = (np.abs(system.stoichiometry).T @ warm.molality()).min(axis=0)
-    slack = 1e-9 + 4e-15 * np.abs(after).max(axis=1) / scarcest
-    assert (np.abs(warm.ln_activity - cold.ln_activity).max(axis=0) < slack).all()
-    assert warm.steps.mean() < 0.6 * first.steps.mean()
+    for batch in batches(mix, 74, 2000 if mix == "mine" else 240):
+        system, count = batch.system, len(batch.totals)
+        cold = solve(batch)
+        after = changed(batch.totals, 74)
+        # what a step moves is dissolved; the solids stay
+        dissolved = after.T - system.mineral_stoichiometry.T @ cold.found.solid
+        warm = Solver(system).settled(cold.found, np.ones(count), dissolved, cold.found.solid)
+        assert passed(remade(cold, after, warm))
+        again = solve(Batch("", system, after, batch.upper)).found
+        assert np.array_equal(warm.presence, again.presence)
+        # rounding of the totals, for traces: as large as the certificates grant them
+        slack = 1e-9 + certify(warm, totals=after.T).worst + certify(again, totals=after.T).worst
+        difference = np.where(again.ln_activity > -1e5, np.abs(warm.ln_activity - again.ln_activity), 0.0)
+        assert (difference.max(axis=0) < slack).all()
+        if mix == "mine":
+            assert warm.steps.mean() < 0.6 * cold.found.steps.mean()
 
 
 @pytest.mark.parametrize("bounded", [False, True])
 def test_wide_waters(bounded):
-    """Twenty-two components, 170 species, 42 minerals."""
-    system = wide_system("davies")
-    totals = waters(system, 75, 600)
-    upper = random_bounds(totals, len(system.minerals), 75) if bounded else unbounded(system, 600)
-    answers = solve(system, totals, upper)
-    assert judged(system, totals, upper, answers)
+    """Twenty-two held components with the default list of minerals."""
+    answers = solve(first_batch(wide_system(), 75, 600, bounded))
+    assert passed(answers)
     if bounded:
-        assert {0, 1, 2} == set(np.unique(answers.presence).tolist())
+        assert {0, 1, 2} == set(np.unique(answers.found.presence).tolist())
 
 
 def test_the_hardest_wide_waters_at_sixty_digits():
-    system = wide_system("davies")
-    plain = as_plain(system)
-    law = LAWS["davies"](plain)
-    totals = waters(system, 76, 200)
-    upper = random_bounds(totals, len(system.minerals), 76)
-    answers = solve(system, totals, upper)
-    for w in hardest(plain, law, totals, answers, np.ones(len(totals), dtype=bool))[:3].tolist():
-        exact = settle(plain, totals[w], *claim(answers, w), upper[w], ln_gamma=law)
+    found = conditions(solve(first_batch(wide_system(), 76, 200, bounded=True)))
+    batch = found.answers.batch
+    for w in np.argsort(-scarcity(found), kind="stable")[:3].tolist():
+        exact = judged(found.answers.found, w, batch.totals[w], batch.upper[w], found.plain)
         assert exact.changes == (), f"water {w}"
         assert exact.error < IN_LN_ACTIVITY, f"water {w}"
 
 
 def bits(found: Equilibrium, chosen=slice(None)) -> list[bytes]:
     """Everything an equilibrium holds, as bytes."""
-    names = ("amount", "solid", "presence", "ln_activity", "ionic_strength", "solved", "steps")
+    names = ("amount", "solid", "presence", "ln_activity", "ionic_strength", "solved", "steps", "given")
     return [np.ascontiguousarray(getattr(found, name)[..., chosen]).tobytes() for name in names]
 
 
@@ -188,12 +195,12 @@ def cold(system: System, totals: np.ndarray, upper: np.ndarray) -> Equilibrium:
     return Solver(system).cold(np.ones(count), np.ascontiguousarray(totals.T), nothing, upper.T)
 
 
-@pytest.mark.parametrize("wide", [False, True])
-def test_the_same_bits_however_they_are_solved(wide):
+@pytest.mark.parametrize("mix", ["mine", "wide", "coupled", "open"])
+def test_the_same_bits_however_they_are_solved(mix):
     """All at once, twice, one by one, in another order, in two threads with a solver each."""
-    system = wide_system("davies") if wide else MINE["davies"]
-    count = 60 if wide else 600
-    totals = waters(system, 77, count)
+    batch = next(batches(mix, 77, {"mine": 600, "wide": 60}.get(mix, 480)))
+    system, totals = batch.system, batch.totals
+    count = len(totals)
     upper = random_bounds(totals, len(system.minerals), 77)
     whole = cold(system, totals, upper)
     expected = bits(whole)
@@ -211,3 +218,11 @@ def test_the_same_bits_however_they_are_solved(wide):
         for _ in range(4):
             both = pool.map(lambda half: bits(cold(system, totals[half], upper[half])), halves)
             assert list(both) == [bits(whole, half) for half in halves]
+
+
+def test_every_mix_has_a_dozen_temperatures():
+    for mix in WIDENED:
+        kelvin = [batch.system.temperature for batch in batches(mix, 1, 12)]
+        assert len(set(kelvin)) == 12
+        assert (min(kelvin), max(kelvin)) == (273.15, 323.15)
+    assert set(WIDENED) < set(MIXES)

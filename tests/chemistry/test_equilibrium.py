@@ -10,7 +10,8 @@ from tests.oracles.activity_laws import davies
 from tests.oracles.plain_speciation import speciate
 from tests.support.battery import battery
 from tests.support.small_systems import MINE_COMPONENTS, MINE_MINERALS
-from tools.battery import as_plain, mine_system
+from tests.support.plain_of import plain_of
+from tools.battery.mixes import mine_system
 
 from gossan.base.errors import SolveError
 from gossan.chemistry.equilibrium import Solver, equilibrate
@@ -37,7 +38,7 @@ def found():
 
 def test_a_small_system_as_the_oracle_has_it():
     system = build_system(load_table(), ["Na^+", "Ca^2+", "SO4^2-", "CO3^2-", "Cl^-"], ["gypsum", "calcite"])
-    plain = as_plain(system)
+    plain = plain_of(system)
     slope = system.activity.debye_hueckel / LN10
     rng = np.random.default_rng(62)
     for _ in range(8):

@@ -21,6 +21,10 @@ from numpy.typing import ArrayLike
 from tests.support.small_systems import PlainSystem
 
 ACCURACY = 1e-6  # an answer is refused unless it is exact for totals and ln constants moved by less than this
+LN10 = np.log(10.0)
+# pH and pe at which the energies of H^+ and e^- are counted as nil to begin with; the next one where the solver
+# gets nowhere, since it does not like energies of hundreds of RT
+ORIGINS = ((0.0, 0.0), (7.0, 4.0), (7.0, -4.0), (4.0, 13.0), (10.0, -8.0))
 ROUNDS = 5  # each starts the solver anew from energies measured against the last multipliers
 SOLVER = {
     "tol_gap_abs": 1e-13,
@@ -57,8 +61,22 @@ def least_gibbs_energy(system: PlainSystem, totals: ArrayLike, upper: ArrayLike 
     totals = np.asarray(totals, dtype=float)
     scale = np.abs(totals).max() or 1.0
     upper = np.full(len(system.minerals), np.inf) if upper is None else np.asarray(upper, dtype=float)
-    multipliers = np.zeros(len(totals))
     best: Least | None = None
+    for origin in ORIGINS:
+        best = _refined(system, totals, upper, scale, origin, best)
+        if best is not None and best.error <= ACCURACY:
+            break
+    if best is None:
+        raise NotConverged("the convex solver gave no numbers")
+    if best.error > ACCURACY:
+        raise NotConverged(f"the best answer is exact only for a water {best.error:.1e} away")
+    return best
+
+
+def _refined(system, totals, upper, scale, origin, best):
+    """Solve a few times, each from energies counted from the last multipliers; the best answer so far."""
+    acidity = {"H^+": -origin[0] * LN10, "e^-": -origin[1] * LN10}
+    multipliers = np.array([acidity.get(name, 0.0) for name in system.components])
     for _ in range(ROUNDS):
         found = _solved(system, totals / scale, upper / scale, multipliers, np.log(scale))
         if found is None:
@@ -69,10 +87,6 @@ def least_gibbs_energy(system: PlainSystem, totals: ArrayLike, upper: ArrayLike 
             best = Least(c * scale, n * scale, multipliers, error)
         if error < ACCURACY / 100:
             break
-    if best is None:
-        raise NotConverged("the convex solver gave no numbers")
-    if best.error > ACCURACY:
-        raise NotConverged(f"the best answer is exact only for a water {best.error:.1e} away")
     return best
 
 

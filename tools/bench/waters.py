@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from tests.support.battery import battery, scaled
-from tools.battery import mine_system
+from tools.battery.mixes import mine_system
 
 from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.chemistry.system import System
