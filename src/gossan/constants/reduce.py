@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Collection
 from dataclasses import dataclass, replace
 
-from gossan.base.notation import imbalance, parse_reaction, split_phase
+from gossan.base.notation import charge_of, imbalance, parse_formula, parse_reaction, split_phase
 from gossan.base.wrong import did_you_mean
 from gossan.constants.document import Entry
-from gossan.constants.entries import Constant, Reaction, TemperatureFit
+from gossan.constants.entries import ANY_TEMPERATURE, Constant, Reaction, TemperatureFit
 from gossan.constants.temperature import REFERENCE, combined, evaluated, van_t_hoff
 
 WATER, ELECTRON = "H2O", "e^-"
@@ -22,6 +23,7 @@ class Published:
     log10_k: Constant
     enthalpy: Constant | None
     fit: TemperatureFit | None
+    valid: tuple[float, float]  # K, from and to
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,6 +34,7 @@ class Reduced:
     log10_k: float  # of formation from these at 25 degC
     fit: TemperatureFit  # the same against temperature
     direct: bool  # the printed reaction holds nothing else
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, where all that it is made through is valid
 
     def reaction(self, text: str) -> Reaction:
         """Give the record of this reaction, printed as text."""
@@ -93,7 +96,8 @@ class Reducer:
         if own is None or published is None:
             raise Faulty
         sign = 1.0 if forms else -1.0
-        parts = [(sign, Reduced({}, published.log10_k.value, _fit_of(entry, published), True))]
+        own_part = Reduced({}, published.log10_k.value, _fit_of(entry, published), True, published.valid)
+        parts = [(sign, own_part)]
         for side, times in ((left, sign), (right, -sign)):
             for term, count in side.items():
                 if term != own:
@@ -107,6 +111,7 @@ class Reducer:
             sum(times * part.log10_k for times, part in parts),
             combined((times, part.fit) for times, part in parts),
             all(part.direct for _, part in parts),
+            (max(part.valid[0] for _, part in parts), min(part.valid[1] for _, part in parts)),
         )
 
     def _term(self, entry: Entry, key: str, term: str, held: bool) -> Reduced:
@@ -123,7 +128,7 @@ class Reducer:
                 raise Faulty
             name = solids[0] if solids else name
         if name not in self._entries[kind]:
-            right = did_you_mean(term, [*components, *self._entries["species"]], quote="")
+            right = _cure(term, components, self._entries["species"])
             entry.fault(key, f"uses {term}, which the table lacks", right)
             raise Faulty
         if (kind, name, held) in self._walking:
@@ -155,6 +160,20 @@ def _sides(entry: Entry, key: str) -> tuple[dict[str, float], dict[str, float]]:
         entry.fault(key, "is not balanced", f"from left to right it gains {amounts}")
         raise Faulty
     return sides
+
+
+def _cure(term: str, components: Collection[str], species: Collection[str]) -> str:
+    """What to do about a term that the table lacks: mend its name, or add what it is made of."""
+    formula, phase = split_phase(term)
+    if phase:
+        return "write the reaction with dissolved ions, or add an entry for it too"
+    elements = set(parse_formula(formula)) - {"H", "O"}
+    missing = sorted(elements.difference(*map(parse_formula, components)))
+    if missing:
+        like = f', like [components."{term}"]' if charge_of(term) else ""
+        return f"no component holds {' or '.join(missing)}: add its ion to the components{like}"
+    alike = [name for name in (*components, *species) if elements <= set(parse_formula(name))]
+    return did_you_mean(term, alike, quote="") or f'add it, like [species."{term}"]'
 
 
 def _is_first(component: Entry) -> bool:

@@ -6,12 +6,11 @@ from collections.abc import Iterator
 from typing import Any
 
 from gossan.constants.entries import Alternative, Component, Constant, Gas, Mineral, Species, Table
-from gossan.constants.temperature import log10_k_at
+from gossan.constants.temperature import KELVIN, log10_k_at
 from gossan.views.sheet import Sheet
 
 Entry = Component | Species | Mineral | Gas
 SHOWN_AT = (5.0, 15.0, 25.0, 35.0)  # degC
-KELVIN = 273.15
 
 
 def kind_of(entry: Entry) -> str:
