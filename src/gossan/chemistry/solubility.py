@@ -8,6 +8,7 @@ from math import exp, inf, log
 
 import numpy as np
 
+from gossan.base.errors import SolveError
 from gossan.base.notation import parse_formula
 from gossan.base.wrong import Wrong
 from gossan.chemistry.activity import IDEAL
@@ -38,6 +39,11 @@ class Solubility:
         """Whether there is a number."""
         return not self.lacks and not self.electrons
 
+    @property
+    def soluble(self) -> bool:
+        """Whether it would leave more than MOST."""
+        return self.dissolved == inf
+
 
 def solubilities(
     table: Table,
@@ -67,6 +73,13 @@ def solubilities(
     return found
 
 
+def system_of(
+    table: Table, metals: Iterable[str], totals: Iterable[str], minerals: Iterable[str], temperature: float
+) -> System:
+    """The system of these metals, what else is given, and these solids; activities are ideal."""
+    return build_system(table, [*metals, *totals], minerals, temperature=temperature, activity=IDEAL)
+
+
 def metal_of(mineral: Mineral) -> str:
     """The component that a solid is named for: its first metal, sodium and potassium last.
 
@@ -82,9 +95,9 @@ def metal_of(mineral: Mineral) -> str:
 
 def least_soluble(rows: Iterable[Solubility], among: Iterable[str]) -> set[str]:
     """Of each metal, the solid of these names that leaves the least of it."""
-    names, least = set(among), {}
+    names, least = set(among), dict[str, Solubility]()
     for row in rows:
-        if row.known and row.mineral in names and row.dissolved < inf:
+        if row.known and row.mineral in names and not row.soluble:
             best = least.setdefault(row.metal, row)
             if row.dissolved < best.dissolved:
                 least[row.metal] = row
@@ -92,11 +105,11 @@ def least_soluble(rows: Iterable[Solubility], among: Iterable[str]) -> set[str]:
 
 
 def _of_one_metal(
-    table: Table, metal: str, minerals: list[Mineral], pH: float, totals: Mapping[str, float], temperature: float
+    table: Table, metal: str, minerals: list[Mineral], pH: float, totals: Mapping[str, float],
+    temperature: float,
 ) -> list[Solubility]:
     given = {PROTON, metal, *totals}
-    names = [mineral.name for mineral in minerals]
-    system = build_system(table, given, names, temperature=temperature, activity=IDEAL)
+    system = system_of(table, [metal], totals, [mineral.name for mineral in minerals], temperature)
     dissolved = np.array([0.0 if name == metal else totals.get(name, 0.0) for name in system.components])
     water = _Water(system, pH, dissolved, system.components.index(metal))
     rows = []
@@ -124,6 +137,14 @@ class _Water:
         The metal takes ligands away and so lowers what its solid feels of them: its activity is at least
         that beside untouched ligands, and is sought upwards from there.
         """
+        try:
+            return self._leaves(mineral, shift)
+        except Wrong as wrong:
+            if isinstance(wrong.__cause__, SolveError):
+                raise
+            return inf  # it would take more than any water holds
+
+    def _leaves(self, mineral: str, shift: float) -> float:
         from scipy.optimize import brentq
 
         m = self.system.minerals.index(mineral)
