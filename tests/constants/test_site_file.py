@@ -82,6 +82,13 @@ def test_replacing_a_link_moves_what_hangs_on_it(tmp_path):
 # old text of SITE, new text, line of the fault, key, what it says
 BROKEN = [
     (
+        "enthalpy = {",
+        "temperature_fit = {constant = 0.94}\nenthalpy = {",
+        25,
+        "species.CaF^+.enthalpy",
+        "is +17 kJ/mol away from the slope of temperature_fit at 25 degC",
+    ),
+    (
         '"ZnS(s) + H^+ = Zn^2+ + HS^-"',
         '"SrZnS2(s) + 2 H^+ = Sr^2+ + Zn^2+ + 2 HS^-"',
         6,

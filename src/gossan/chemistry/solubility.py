@@ -172,7 +172,7 @@ class _Water:
         return float(self._with(ln_metal).amount[self.metal, 0])
 
     def _with(self, ln_metal: float) -> Equilibrium:
-        """The water with the metal's activity held: as much of it dissolves as that takes."""
+        """The water with the metal's activity held: as much dissolves as that takes (equations.md, 43)."""
         formula = np.zeros(len(self.system.components))
         formula[self.metal] = 1.0
         metal = Condition(f"an activity of {exp(ln_metal):.3g}", formula, ln_metal)

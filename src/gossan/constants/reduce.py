@@ -9,11 +9,12 @@ from gossan.base.notation import charge_of, imbalance, parse_formula, parse_reac
 from gossan.base.wrong import did_you_mean
 from gossan.constants.document import Entry
 from gossan.constants.entries import ANY_TEMPERATURE, Constant, Reaction, TemperatureFit
-from gossan.constants.temperature import REFERENCE, combined, evaluated, van_t_hoff
+from gossan.constants.temperature import REFERENCE, combined, enthalpy_of, evaluated, van_t_hoff
 
 WATER, ELECTRON = "H2O", "e^-"
 NEGLIGIBLE = 1e-12  # coefficients that cancelled leave this much
 FIT_AGREES = 0.01  # how far a fit may be from log10_k at 25 degC even where the constant is known better
+SLOPE_AGREES = 3e3  # J/mol, the same of its slope and an enthalpy: measured ones scatter by so much
 
 
 @dataclass(frozen=True, slots=True)
@@ -187,7 +188,13 @@ def _fit_of(entry: Entry, published: Published) -> TemperatureFit:
         return van_t_hoff(log10_k.value, published.enthalpy.value if published.enthalpy else 0.0)
     off = evaluated(published.fit, REFERENCE) - log10_k.value
     if abs(off) > max(FIT_AGREES, log10_k.sd or 0.0):
-        entry.fault("temperature_fit", f"is {off:+.3g} away from log10_k at 25 degC")
+        right = "one of the two is wrong: mend it"
+        entry.fault("temperature_fit", f"is {off:+.3g} away from log10_k at 25 degC", right)
+    if published.enthalpy:
+        off = published.enthalpy.value - enthalpy_of(published.fit)
+        if abs(off) > max(SLOPE_AGREES, published.enthalpy.sd or 0.0):
+            wrong = f"is {off / 1e3:+.3g} kJ/mol away from the slope of temperature_fit at 25 degC"
+            entry.fault("enthalpy", wrong, "one of the two is wrong: leave it out, or mend it")
     return published.fit
 
 

@@ -43,6 +43,17 @@ def evaluated(fit: TemperatureFit, temperature_k: float) -> float:
     )
 
 
+def enthalpy_of(fit: TemperatureFit, temperature_k: float = REFERENCE) -> float:
+    """Reaction enthalpy in J/mol that a fit stands for at a temperature in K: its slope (equations.md, 2).
+
+    >>> round(enthalpy_of(van_t_hoff(-10.0, 50e3)), 6)
+    50000.0
+    """
+    t = temperature_k
+    slope = fit.linear * t * t - fit.inverse + fit.log10 * t / log(10.0) - 2.0 * fit.inverse_square / t
+    return GAS_CONSTANT * log(10.0) * slope
+
+
 def van_t_hoff(log10_k: float, enthalpy: float) -> TemperatureFit:
     """Fit that passes log10_k at 25 degC with a constant reaction enthalpy in J/mol (van 't Hoff).
 
