@@ -64,8 +64,8 @@ class Activity:
     def ln_water(self, ionic_strength: np.ndarray, molality: np.ndarray) -> np.ndarray:
         """(...) ln of the activity of water; ionic_strength (...) and molality (species, ...), mol/kg.
 
-        Under SIT it goes with the coefficients (equations.md, 61); the other laws take the common estimate
-        (equations.md, 62).
+        Under SIT it goes with the coefficients (equations.md, 48); the other laws take the common estimate
+        (equations.md, 49).
         """
         from gossan.chemistry.kernel.interaction import ln_water_activity
 

@@ -1,6 +1,6 @@
 """Interaction coefficients of all species of a system: published ones, and estimates where there are none.
 
-Estimates, all on the log10 scale in kg/mol (equations.md, 60):
+Estimates, all on the log10 scale in kg/mol (equations.md, 47):
   cation and chloride or nitrate   as others of its charge: 0.15 for 2, 0.33 (aluminium's) for 3 and more,
                                    0.075 for a complex of charge 1
   neutral species and ion          of a dissolved gas z^2 / 20, so that log10 gamma = I / 10 as in (6)

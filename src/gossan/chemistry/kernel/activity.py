@@ -29,7 +29,7 @@ def activity_coefficients(
     ionic_strength mol/kg; ln_gamma (species,) and slope (species,) kg/mol are overwritten
     Neutral species: log10 gamma = 0.1 I.  Davies' law and that of neutral species are held from HELD_FROM
     on; the extended Debye-Hueckel law of ions needs no such hold.  SIT's part of the ionic strength alone has
-    the extended form too (equations.md, 60); it is held from SIT_HELD_FROM on.
+    the extended form too (equations.md, 47); it is held from SIT_HELD_FROM on.
     """
     strength = ionic_strength if ionic_strength > LEAST_IONIC_STRENGTH else LEAST_IONIC_STRENGTH
     held = strength > HELD_FROM

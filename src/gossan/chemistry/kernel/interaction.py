@@ -19,7 +19,7 @@ def held_share(ionic_strength):
 
 @kernel
 def interaction_sums(interaction, molality, share, out):
-    """Fill the sum over species of interaction coefficient and molality (equations.md, 60).
+    """Fill the sum over species of interaction coefficient and molality (equations.md, 47).
 
     interaction (species, species) symmetric, kg/mol on the natural scale; molality (species,) mol/kg
     share of the molalities that counts; out (species,) is overwritten: what ln gamma gains
@@ -35,7 +35,7 @@ def interaction_sums(interaction, molality, share, out):
 
 @kernel
 def ln_water_activity(debye_hueckel, molality, sums, ionic_strength):
-    """The ln of the activity of water that goes with the coefficients (equations.md, 61).
+    """The ln of the activity of water that goes with the coefficients (equations.md, 48).
 
     debye_hueckel A on the natural scale, (kg/mol)^0.5; molality (species,) mol/kg; sums (species,) those of
     interaction_sums; ionic_strength mol/kg, held like they are
