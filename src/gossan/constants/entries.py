@@ -134,6 +134,7 @@ class Interaction:
     first: str  # the cation, or the neutral species
     second: str  # the anion, or the ion beside the neutral species
     coefficient: Constant  # kg/mol at 25 degC
+    holds: tuple[str, ...] = ()  # complexes that were counted as free ions: left out beside this coefficient
 
     @property
     def name(self) -> str:
