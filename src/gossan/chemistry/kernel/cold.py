@@ -118,7 +118,7 @@ def approach(matrices, bench, dissolved):
         # the electrons that the species hold rise with the activity of e^-: halve it in
         low, high = MOST_OXIDISED, MOST_REDUCED
         for _ in range(HALVINGS):
-            if bench.sums[electron] > dissolved[electron]:
+            if bench.sums[electron] > with_gases(matrices, bench, dissolved, electron):
                 high = bench.ln_activity[electron]
             else:
                 low = bench.ln_activity[electron]
@@ -154,7 +154,9 @@ def continued_fraction(matrices, bench, dissolved, passes):
         for k in range(components):
             if bench.ln_activity[k] == NOWHERE or k == matrices.electron:
                 continue
-            total = dissolved[k] if dissolved[k] > LITTLE or k == matrices.signed else LITTLE
+            total = dissolved[k] if dissolved[k] > LITTLE else LITTLE
+            if k == matrices.signed:
+                total = with_gases(matrices, bench, dissolved, k)
             positive = bench.positive[k] - (total if total < 0.0 else 0.0)
             negative = bench.negative[k] + (total if total > 0.0 else 0.0)
             ratio = math.log((negative + 1e-300) / (positive + 1e-300))
@@ -162,6 +164,19 @@ def continued_fraction(matrices, bench, dissolved, passes):
             bench.ln_activity[k] += ratio / crowd
         carriers_follow(matrices, bench)
     return made
+
+
+@kernel(inner=True)
+def with_gases(matrices, bench, dissolved, component):
+    """What there is of H^+ or e^- once the open gases have given what the water lacks of their carriers."""
+    value = dissolved[component]
+    for gas in range(matrices.carrier.shape[0]):
+        row = matrices.minerals + matrices.first.shape[0] + gas
+        carrier = matrices.carrier[gas]
+        if carrier != component:
+            given = (bench.sums[carrier] - dissolved[carrier]) / matrices.supplied[row, carrier]
+            value += matrices.supplied[row, component] * given
+    return value
 
 
 @kernel(inner=True)
