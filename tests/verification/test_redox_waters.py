@@ -1,6 +1,6 @@
 """Redox in whole waters: pe of couples at pH 7, acid of oxidation, and the order in which oxidants are used.
 
-pe at pH 7 is that of a water which holds as much of one valence as of the other, or both gases at 1 atm, ideal.
+pe at pH 7 is that of a water which holds as much of one valence as of the other, or both gases at 1 atm.
 Acid is what a solid or an ion gives to a water when oxygen takes its electrons: the total of H^+ less that of
 the water before, mol per mol, with fresh iron hydroxide where it is the end.
 
@@ -47,7 +47,8 @@ PE = [
     ("nitrate and nitrite, pH 7", halves("NO3^-", "NO2^-"), 7.15, 0.15, "stumm1996",
      "energies of nitrite in lists are 5 kJ/mol apart"),
     ("nitrate and ammonium, pH 7", halves("NO3^-", "NH4^+"), 6.15, 0.06, "stumm1996", PRINTED),
-    ("sulfate and sulfide, pH 7", halves("SO4^2-", "HS^-"), 4.25 - 7.0 * 9.0 / 8.0, 0.06, "arithmetic", PRINTED),
+    ("sulfate and sulfide, pH 7", halves("SO4^2-", "HS^-"), 4.25 - 7.0 * 9.0 / 8.0, 0.06, "arithmetic",
+     PRINTED),
     ("CO2 and CH4 at 1 atm, pH 7", gases("CH4", CO2=1.0, CH4=1.0), -4.13, 0.04, "stumm1996", PRINTED),
     ("H2 at 1 atm, pH 7", gases("H2", H2=1.0), -7.0, 0.02, "stumm1996", "nil by definition"),
     ("O2 at 1 atm, pH 7", gases("O2", O2=1.0), 13.75, 0.05, "stumm1996", PRINTED),
@@ -106,8 +107,8 @@ def used_up() -> list[float]:
 
 
 CHECKS = [
-    Check(f"pe, {what}", lambda water=water: pe(water.equilibrium()), Within(round(value, 3), tolerance), source,
-          False, why, logarithmic=True)
+    Check(f"pe, {what}", lambda water=water: pe(water.equilibrium()), Within(round(value, 3), tolerance),
+          source, False, why, logarithmic=True)
     for what, water, value, tolerance, source, why in PE
 ] + [
     Check(f"acid of {what}, mol/mol", lambda parts=parts, oxygen=oxygen: acid(parts, oxygen),
