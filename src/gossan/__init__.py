@@ -1,6 +1,6 @@
 """How long a bed of sediment or reactive mix holds back the metals of mine water, and why.
 
-From Python: `load_case`, `run`, `open_result`, `assay` and `equilibrate`; each is imported when first used.
+From Python: `load_case`, `run`, `open_result`, `assay`, `equilibrate` and `certify`; each is imported when first used.
 """
 
 from __future__ import annotations
@@ -16,11 +16,13 @@ _HOMES = {
     "open_result": ("gossan.store.read", "open_result"),
     "assay": ("gossan.views.assay", "assay"),
     "equilibrate": ("gossan.chemistry.equilibrium", "equilibrate"),
+    "certify": ("gossan.chemistry.certificate", "certify"),
 }
-__all__ = ["__version__", "assay", "equilibrate", "load_case", "open_result", "run"]
+__all__ = ["__version__", "assay", "certify", "equilibrate", "load_case", "open_result", "run"]
 
 if TYPE_CHECKING:
     from gossan.case.read import read_case as load_case
+    from gossan.chemistry.certificate import certify
     from gossan.chemistry.equilibrium import equilibrate
     from gossan.recording import run
     from gossan.store.read import open_result

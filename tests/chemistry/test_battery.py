@@ -11,7 +11,7 @@ from concurrent.futures import ThreadPoolExecutor
 import numpy as np
 import pytest
 from tests.oracles.cantera_mixture import cantera_equilibrium, ct
-from tests.oracles.gibbs import least_gibbs_energy
+from tests.oracles.gibbs import NotConverged, least_gibbs_energy
 from tests.support.battery import random_bounds, scaled, stirred
 from tests.support.plain_of import judged, solids_of
 from tools.battery.answers import Answers, solve
@@ -25,7 +25,7 @@ from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.chemistry.system import System
 
 SEED = 20261201
-OF_LARGEST = 1e-6  # what the convex solver is good for, of the largest total
+OF_LARGEST = 1e-6  # what the convex solver and cantera are good for, of the largest total
 WIDENED = ("held", "coupled", "partial", "open", "missing", "bounded")
 MINE = {activity: mine_system(activity) for activity in ("ideal", "davies", "debye-hueckel")}
 
@@ -49,7 +49,11 @@ def passed(answers: Answers) -> bool:
 
 @pytest.mark.parametrize("mix", ["mine", *WIDENED])
 def test_ideal_waters_are_least_in_gibbs_energy(mix):
-    """Sixty of each kind, 200 of the first battery; open gases and bounds included."""
+    """Sixty of each kind, 200 of the first battery; open gases and bounds included.
+
+    Where the convex solver itself gives up, nothing follows.
+    """
+    compared = given_up = 0
     for batch in batches(mix, 71, 200 if mix == "mine" else 60, "ideal"):
         found = conditions(solve(batch))
         amounts, _ = solids_of(found.answers.found)
@@ -57,12 +61,18 @@ def test_ideal_waters_are_least_in_gibbs_energy(mix):
             kept = found.answers.found.ln_activity[: len(totals), w] > -1e5
             there = np.all(found.plain.dissolution[:, ~kept] == 0.0, axis=1)
             upper = np.concatenate([batch.upper[w], np.full(found.plain.endless, np.inf)])
-            least = least_gibbs_energy(found.plain.with_only(kept), totals[kept], upper[there])
+            try:
+                least = least_gibbs_energy(found.plain.with_only(kept), totals[kept], upper[there])
+            except NotConverged:
+                given_up += 1
+                continue
+            compared += 1
             within = OF_LARGEST * max(np.abs(totals).max(), np.abs(amounts[:, w]).max(initial=0.0))
             dissolved = np.all(found.plain.formation[:, ~kept] == 0.0, axis=1)
             where = f"{batch.name}, water {w}"
             assert found.molality[dissolved, w] == pytest.approx(least.molality, abs=within), where
             assert amounts[there, w] == pytest.approx(least.amount, abs=within), where
+    assert compared > 3 * given_up
 
 
 def test_cantera_finds_the_same_waters():
@@ -78,7 +88,7 @@ def test_cantera_finds_the_same_waters():
                     given_up += 1
                     continue
                 compared += 1
-                within = 1e-8 * np.abs(totals).max()
+                within = OF_LARGEST * np.abs(totals).max()
                 assert found.molality[:, w] == pytest.approx(molality, abs=within), f"{batch.name}, water {w}"
                 assert found.answers.found.solid[:, w] == pytest.approx(amount, abs=within)
     assert compared > 80

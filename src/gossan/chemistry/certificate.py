@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -17,8 +17,8 @@ GONE = -1e5  # ln activity below which a component is not there
 class Certificate:
     """How well each water meets its equations; all evaluated with 32 digits from the stored numbers alone.
 
-    The ln activities are off by what Newton's next step would change, which is known to a few percent while
-    it is below 0.01, and by what double precision leaves in the activity coefficients.
+    Amounts of minerals, and whether a balance holds that they take part in, are judged only where the totals
+    were given to `certify`. Under SIT the interactions count as they stand.
     """
 
     system: System
@@ -55,7 +55,7 @@ def certify(
     totals: np.ndarray | None = None,
     upper: np.ndarray | None = None,
 ) -> Certificate:
-    """Put an equilibrium back into its equations, in doubled precision (equations.md, 104 and 105).
+    """Put an equilibrium back into its equations, in doubled precision (equations.md, 55 and 56).
 
     kilograms (cell,) kg of water per unit that the amounts are per; default 1, for mol per kg of water
     totals    (component, cell) what was to be shared out, solids included, in the unit of the amounts;
@@ -101,3 +101,11 @@ def certify(
         ln_activity=error,
     )
 
+
+def certify_water(found: Equilibrium) -> Certificate:
+    """Certify waters on their own: no mineral forms in them, whatever they are oversaturated with."""
+    cells, minerals = found.amount.shape[1], len(found.system.minerals)
+    none = np.zeros((minerals, cells))
+    given = np.zeros((len(found.system.open_gases), cells))
+    alone = replace(found, solid=none, presence=none.astype(np.int8), given=given)
+    return certify(alone, upper=none)

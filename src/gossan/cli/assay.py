@@ -21,6 +21,8 @@ def parser() -> argparse.ArgumentParser:
     made.add_argument("case", metavar="CASE", help="a case file (TOML); [waters] is enough")
     made.add_argument("water", nargs="?", metavar="WATER", help="one water of it; default: all")
     made.add_argument("--json", action="store_true", help="print the findings as JSON, SI inside")
+    made.add_argument("--certificate", action="store_true",
+                      help="say how well each water meets its equations, worked out with 32 digits")
     return made
 
 
@@ -37,12 +39,14 @@ def run(args: argparse.Namespace) -> int:
 
     found = assay(case, args.water)
     if args.json:
-        shell.print_json(found.to_json())
+        shell.print_json(found.to_json(args.certificate))
         return DONE
     from gossan.views.assay_sheets import assay_sheets
 
     for one in found.waters.values():
         for warning in one.warnings:
             shell.say(f"warning: water {one.name}: {warning}")
-    shell.print_sheets(sheet for one in found.waters.values() for sheet in assay_sheets(one))
+    shell.print_sheets(
+        sheet for one in found.waters.values() for sheet in assay_sheets(one, args.certificate)
+    )
     return DONE

@@ -49,7 +49,7 @@ def attempt(
     width = problem.grid.width
     amount = state.dissolved * state.water
     water = state.water + dt * (darcy_flux[:-1] - darcy_flux[1:]) / width
-    before = _equilibrium(problem, state)
+    before = equilibrium_of(problem, state)
 
     first = passages(transport, state.dissolved, state.water, darcy_flux, inflow, dt, theta)
     passed = _held_back(problem, state, first, amount, first.passed)
@@ -113,7 +113,7 @@ def _held_back(
     return kept_positive(problem.transport, first, state.dissolved, state.water, total, passed, positive)
 
 
-def _equilibrium(problem: Problem, state: State) -> Equilibrium:
+def equilibrium_of(problem: Problem, state: State) -> Equilibrium:
     """The equilibrium that a state was left in, where the next solve starts."""
     return Equilibrium(
         system=problem.system,

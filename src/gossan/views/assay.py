@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping
 from dataclasses import dataclass
+from functools import cached_property
 from pathlib import Path
 from typing import Any
 
@@ -14,6 +15,7 @@ from gossan.case.model import Case
 from gossan.case.read import case_from_data, read_case
 from gossan.case.waters import detection_notes, excluded_by, read_waters
 from gossan.chemistry.validity import validity_note
+from gossan.chemistry.certificate import Certificate, certify_water
 from gossan.chemistry.water import REFUSE_PERCENT, WARN_PERCENT, Water
 from gossan.constants.entries import Table
 from gossan.constants.find import find_mineral
@@ -110,6 +112,11 @@ class WaterAssay:
         pressures = BAR_PER_ATMOSPHERE * self.water.equilibrium.gas_pressure()[:, 0]
         return dict(zip(system.gases, pressures.tolist(), strict=True))
 
+    @cached_property
+    def certificate(self) -> Certificate:
+        """How well the water meets its equations, worked out with 32 digits."""
+        return certify_water(self.water.equilibrium)
+
     def parts(self, least: float = 0.001) -> list[Part]:
         """The species that hold at least this share of a component, the largest of each first."""
         found = self.water.equilibrium
@@ -141,9 +148,13 @@ class Assay:
                  f"{one.charge_error_percent:+.1f} %" for name, one in self.waters.items()]
         return "\n".join(["<Assay", *lines]) + ">"
 
-    def to_json(self) -> dict[str, Any]:
-        """The machine-readable result of `gossan assay` (contract, section 3)."""
-        return {"waters": {name: _json(one) for name, one in self.waters.items()}}
+    def to_json(self, certificates: bool = False) -> dict[str, Any]:
+        """The machine-readable result of `gossan assay` (contract, section 3), with certificates if asked."""
+        waters = {name: _json(one) for name, one in self.waters.items()}
+        if certificates:
+            for name, one in self.waters.items():
+                waters[name]["certificate"] = _certified(one.certificate)
+        return {"waters": waters}
 
 
 def assay(water: Case | str | Path | Mapping[str, Any], name: str | None = None, **settings: Any) -> Assay:
@@ -200,6 +211,17 @@ def _cautions(water: Water) -> list[str]:
         f"hydrogen sulfide: air over this water can hold {ppm:.3g} ppm; the ceiling for people is "
         f"{H2S_CEILING:g} ppm and {H2S_DANGEROUS:g} ppm is immediately dangerous (NIOSH); smell is no warning"
     ]
+
+
+def _certified(certificate: Certificate) -> dict[str, Any]:
+    """What each part is off by: relative, relative, in ln."""
+    system = certificate.system
+    balance, off = certificate.balance[:, 0].tolist(), certificate.ln_activity[:, 0].tolist()
+    return {
+        "balance": dict(zip(system.components, balance, strict=True)),
+        "ionic_strength": float(certificate.ionic_strength[0]),
+        "ln_activity": dict(zip(system.species[: len(off)], off, strict=True)),
+    }
 
 
 def _json(one: WaterAssay) -> dict[str, Any]:

@@ -13,13 +13,15 @@ from gossan.views.sheet import Sheet
 MAIN_SHARE = 0.001  # of its component: species with less are not printed
 
 
-def assay_sheets(one: WaterAssay) -> Iterator[Sheet]:
-    """Balance, totals, species, saturation indices, gases of one water."""
+def assay_sheets(one: WaterAssay, certificate: bool = False) -> Iterator[Sheet]:
+    """Balance, totals, species, saturation indices, gases of one water, and its certificate if asked."""
     yield Sheet(f"Water {one.name}", ("", ""), _facts(one), left=2)
     yield _totals(one)
     yield _species(one)
     yield from _saturation(one)
     yield from _gases(one)
+    if certificate:
+        yield _certificate(one)
 
 
 def _facts(one: WaterAssay) -> tuple[tuple[str, str], ...]:
@@ -73,3 +75,15 @@ def _gases(one: WaterAssay) -> Iterator[Sheet]:
     )  # fmt: skip
     if rows:
         yield Sheet("Gases", ("gas", "bar", "log10"), rows)
+
+
+def _certificate(one: WaterAssay) -> Sheet:
+    found, system = one.certificate, one.water.system
+    worst, off = int(found.balance[:, 0].argmax()), int(found.ln_activity[:, 0].argmax())
+    rows = (
+        ("mass balances", f"{found.balance[worst, 0]:.1e}", f"of the largest term, {system.components[worst]}"),
+        ("ionic strength", f"{found.ionic_strength[0]:.1e}", "of itself"),
+        ("ln activities", f"{found.ln_activity[off, 0]:.1e}", f"estimated, {system.species[off]}"),
+    )
+    note = "what the numbers of this page miss their equations by, worked out with 32 digits"
+    return Sheet("Certificate", ("", "at most", ""), rows, note=note)

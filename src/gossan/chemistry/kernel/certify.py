@@ -1,4 +1,4 @@
-"""An answer put back into its equations with twice the digits, and what it is off by (equations.md, 104 and 105).
+"""An answer put back into its equations with twice the digits, and what it is off by (equations.md, 55 and 56).
 
 All that is asked of a cell is its ln activities, ionic strength, marks and amounts: how they were found
 plays no part, and nothing of the solve is used again.
@@ -17,7 +17,8 @@ from gossan.chemistry.kernel.doubled import add, exponential, over, times, two_p
 
 NOTHING = 1e-20  # a coefficient that is left of ones which cancelled
 GONE = -1e5  # ln activity below which a component is not there
-LAW = 4e-16  # what a ln activity coefficient of size 1 is worth in double precision
+LAW = 1e-15  # what a ln activity coefficient of size 1 is worth: half a dozen roundings, one of them a difference
+CAUTION = 1.1  # on a correction: its matrix is known in double precision alone
 DOUBLED = 1e-30  # what a term is worth in doubled precision, over a sum of hundreds
 
 
@@ -270,13 +271,13 @@ def corrections(desk, free, error):
         desk.step[j] = step
         desk.blur[j] = doubt
     for j in range(free):
-        error[desk.free[j]] = abs(desk.step[j])
+        error[desk.free[j]] = CAUTION * abs(desk.step[j])
     for r in range(desk.pivot.shape[0]):
         if desk.pivot[r] >= 0:
             value = error[desk.pivot[r]]
             for j in range(free):
                 value -= desk.rows[r, desk.free[j]] * desk.step[j]
-            error[desk.pivot[r]] = abs(value)
+            error[desk.pivot[r]] = CAUTION * abs(value)
     return True
 
 
@@ -360,7 +361,7 @@ def certify_cells(
     matrices, desk, tied, weight, total, held, ln_activity, ionic_strength, balance, strength, saturation,
     error,
 ):
-    """Judge every cell of an answer (equations.md, 104 and 105).
+    """Judge every cell of an answer (equations.md, 55 and 56).
 
     tied (row, cell) int8: 1 where the row is saturated; rows are minerals, couples, open gases
     weight (cell,) kg of water per unit; total (component, cell) what is there, per unit; held (row, cell)

@@ -33,7 +33,7 @@ from gossan.chemistry.kernel.nullspace import (
     scarcer_free,
 )
 
-SETTLED = 1e-6  # a last step below this leaves an error of about its square
+SETTLED = 1e-7  # a last step below this leaves an error of about its square, times that of a formula's largest number
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
 NEAR = 0.3  # mismatch below which the balances' own Newton step converges
 LOOK = 1e-2  # mismatch below which wrong marks already show
