@@ -8,6 +8,7 @@ from __future__ import annotations
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
 from gossan.case.check_column import check_flow, check_layers, check_ports
+from gossan.case.check_redox import check_redox
 from gossan.case.check_waters import check_tracer, check_waters, mineral_named, solute_named
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
@@ -19,6 +20,7 @@ from gossan.constants.find import UnknownName, find_mineral
 def check_case(draft: Draft, table: Table) -> None:
     """Run every check across keys; faults are added to the draft."""
     check_waters(draft, table)
+    check_redox(draft, table)
     check_layers(draft, table)
     check_flow(draft)
     check_chemistry(draft, table)

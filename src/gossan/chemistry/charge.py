@@ -5,6 +5,15 @@ from __future__ import annotations
 import numpy as np
 
 from gossan.chemistry.equilibrium import Equilibrium
+from gossan.chemistry.system import System
+
+
+def basis_charge(system: System) -> np.ndarray:
+    """(basis,): charge of each valence; none of e^-, which is counted and is not in the water."""
+    charge = system.species_charge[: len(system.basis)].copy()
+    if system.electron >= 0:
+        charge[system.electron] = 0.0
+    return charge
 
 
 def net_charge(found: Equilibrium) -> float:
@@ -16,11 +25,12 @@ def equivalents(found: Equilibrium) -> tuple[float, float]:
     """Equivalents of cations and of anions as a laboratory counts them, eq per kg of water.
 
     Ion pairs count as the ions they are made of (CaSO4: two of each), but protons stay with their anion
-    and hydroxide with its metal: bicarbonate is one equivalent, FeOH^+ one, H2CO3 none.
+    and hydroxide with its metal: bicarbonate is one equivalent, FeOH^+ one, H2CO3 none. Every valence counts
+    as the ion it is, whatever it is conserved as.
     """
     system = found.system
     stoichiometry = system.stoichiometry
-    charge = system.component_charge.copy()
+    charge = basis_charge(system)
     charge[0] = 0.0
     cations = stoichiometry @ np.maximum(charge, 0.0)
     anions = stoichiometry @ np.maximum(-charge, 0.0)

@@ -1,0 +1,23 @@
+"""How much of each valence a water holds."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from gossan.chemistry.equilibrium import Equilibrium
+
+
+def valence_totals(found: Equilibrium) -> np.ndarray:
+    """(basis,): what one water holds dissolved of each of the basis, mol per kg of water; 0 of e^-.
+
+    A component that no coupled valence counts as stands with its very amount, the others with the sum of
+    their species.
+    """
+    system = found.system
+    count = len(system.components)
+    totals = found.held()[:, 0]
+    alone = ~system.conserved[count:].any(axis=0)
+    totals[:count][alone] = found.amount[alone, 0]
+    if system.electron >= 0:
+        totals[system.electron] = 0.0
+    return totals
