@@ -121,8 +121,8 @@ def mineral_named(draft: Draft, table: Table, name: str, at: Path, more: Iterabl
     coupled = coupled_by(draft.case.chemistry, table)
     missing = couples_missing(mineral, coupled, table)
     if missing:
-        named = " and ".join(missing)
-        wrong = f'names "{name}", which gives or takes electrons, and {named} is not coupled'
+        named = " and ".join(missing) + (" are" if len(missing) > 1 else " is")
+        wrong = f'names "{name}", which gives or takes electrons, and {named} not coupled'
         listed = ", ".join(f'"{couple}"' for couple in (*_couples_named(draft), *missing))
         draft.fault(at, wrong, f'write coupled = [{listed}] in [chemistry], or redox = "coupled"')
         return None

@@ -13,6 +13,8 @@ from gossan.case.check_waters import check_tracer, check_waters, mineral_named, 
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.quantities import Range
+from gossan.case.redox import coupled_by
+from gossan.constants.couples import partner
 from gossan.constants.entries import Table
 from gossan.constants.find import UnknownName, find_mineral
 
@@ -62,6 +64,7 @@ def check_limits(draft: Draft, table: Table) -> None:
     """Limits stand at ports that exist, for solutes that exist, once each."""
     ports = [port.name for port in draft.case.ports or () if port.name is not None]
     tracers = _tracer_names(draft)
+    coupled = coupled_by(draft.case.chemistry, table)
     for port, limits in (draft.case.limits or {}).items():
         if port not in (*ports, "outlet"):
             cure = did_you_mean(port, dict.fromkeys((*ports, "outlet")))
@@ -81,6 +84,11 @@ def check_limits(draft: Draft, table: Table) -> None:
                 check_tracer(draft, key, limit, at)
                 continue
             named = solute_named(draft, table, key, limit, at)
+            if named and named.component in coupled:
+                first = partner(table.components[named.component])
+                wrong = f"limits {named.component}, which is coupled and counted as {first}"
+                draft.fault(at, wrong, f"limit {first}, all valences together" * (first in table.components))
+                continue
             if named and named.component in seen:
                 wrong = f"limits {named.component} a second time, after {seen[named.component]}"
                 draft.fault(at, wrong, "keep one of the two")

@@ -20,6 +20,7 @@ from gossan.case.quantities import (
     HeldGas,
     InWater,
     Limit,
+    Oxygen,
     Place,
     Quantity,
     Range,
@@ -63,9 +64,9 @@ class Water(TableOfCase):
     pe: Annotated[float | None, Number("a pe", -50, 50, example="5.2")] = Field(
         default=None, description="-log10 of the electron's activity; or `dissolved_oxygen`"
     )
-    dissolved_oxygen: Annotated[
-        Amount | None, InWater(what="dissolved oxygen", example='"6 mg/L"')
-    ] = Field(default=None, description="the oxygen found; it stands for a pe as well")
+    dissolved_oxygen: Annotated[Amount | None, Oxygen()] = Field(
+        default=None, description="the oxygen found; it stands for a pe as well"
+    )
     alkalinity: Annotated[Amount | None, Alkalinity()] = Field(
         default=None,
         description="alkalinity; excludes inorganic carbon in the analysis and `balance_on = \"pH\"`",

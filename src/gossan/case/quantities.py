@@ -27,6 +27,7 @@ class Quantity(Kind):
     most: float = math.inf
     positive: bool = False
     says: str = ""
+    otherwise: str = ""  # the cure where no slip of the unit explains it
 
     @property
     def unit(self) -> str:  # type: ignore[override]
@@ -63,7 +64,7 @@ class Quantity(Kind):
                 other = text.removesuffix(given) + meant
                 if self.least <= self.parse(other, 0).si <= self.most:
                     return f'did you mean "{other}"?'
-        return ""
+        return self.otherwise
 
 
 @dataclass(frozen=True)
@@ -78,6 +79,19 @@ class InWater(Quantity):
 
     def parse(self, text: str, line: int) -> Amount:
         return in_water(text, line)
+
+
+@dataclass(frozen=True)
+class Oxygen(InWater):
+    """Dissolved oxygen, by a meter or a titration."""
+
+    units: tuple[str, ...] = ("kg/m3", "mol/m3", "mol/kg", "kg/kg")
+    what: str = "dissolved oxygen"
+    example: str = '"6 mg/L"'
+    unit = "mg/L, mmol/L, mg/kg, mmol/kg"
+
+    def parse(self, text: str, line: int) -> Amount:
+        return in_water(text, line, self.units, self.what, self.example.strip('"'))
 
 
 @dataclass(frozen=True)
@@ -198,7 +212,8 @@ class GasPressure(Kind):
         if isinstance(value, HeldGas):
             return value
         pressure = Quantity(("Pa",), "the pressure of a gas", self.example, 0.0, MOST_PASCAL, True,
-                            says="the pressure of a gas is more than zero and at most 1000 atm")
+                            says="the pressure of a gas is more than zero and at most 1000 atm",
+                            otherwise="leave out a gas that is not there")
         if not isinstance(value, dict):
             return HeldGas(pressure.read(value, line))
         for key in value:
@@ -208,7 +223,7 @@ class GasPressure(Kind):
             if key not in value:
                 raise Wrong(f"has no {key}", 'write {pressure = "0.2 atm", amount = "1e-3 mol/L"}')
         amount = Quantity(("mol/m3",), "an amount of a gas", '"1e-3 mol/L"', 0.0,
-                          says="an amount of a gas is not negative")
+                          says="an amount of a gas is not negative", otherwise="write how much there is")
         return HeldGas(
             _within("pressure", pressure, value["pressure"], line),
             _within("amount", amount, value["amount"], line),
@@ -220,7 +235,8 @@ def _within(key: str, kind: Quantity, value: Any, line: int) -> Amount:
     try:
         return kind.read(value, line)
     except Wrong as wrong:
-        raise Wrong(f"has a {key} that {wrong.wrong}", wrong.right) from None
+        article = "an" if key == "amount" else "a"
+        raise Wrong(f"has {article} {key} that {wrong.wrong}", wrong.right) from None
 
 
 @dataclass(frozen=True, slots=True)

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-import numpy as np
-
 from gossan.base.wrong import Wrong
 from gossan.chemistry.equilibrium import Equilibrium
 from gossan.chemistry.reading import Reading
+from gossan.chemistry.redox import ELECTRON, PROTON
 from gossan.chemistry.valences import valence_totals
 from gossan.constants.couples import partner
 from gossan.constants.entries import Component, Table
@@ -18,7 +17,8 @@ WARN_CO2, REFUSE_CO2 = 1.0, 10.0  # atm; no well or adit is under the second (co
 # for H2) an electrode passes only by a slip of sign, unit or reference (common practice, no source)
 WARN_BUBBLES, REFUSE_BUBBLES = 0.0, 3.0
 WARN_OXYGEN = 1.05  # of air saturation; meters read to a few per cent (common practice, no source)
-POISED = 1e-9  # mol of electrons per kg and unit of ln activity, below which traces decide (common practice)
+LASTS = 0.99  # of what a report names; more than the rest is worth a word
+LEAST_SHARE = 1e-3  # % of an element: less of a valence is not worth a word
 CALLED = {"O2": "oxygen", "H2": "hydrogen"}
 
 
@@ -42,7 +42,7 @@ def stability(pe: float, ph: float, temperature: float, table: Table) -> list[st
         return []
     told = (
         f"pe {pe:.2f} (Eh {1e3 * potential_of_pe(pe, temperature):.0f} mV) at pH {ph:.2f} is outside of what "
-        f"water can stand: {CALLED[gas]} would have 1e{log10_pressure:.0f} atm"
+        f"water can stand: {CALLED[gas]} would have {_power(log10_pressure)} atm"
     )
     if log10_pressure > REFUSE_BUBBLES:
         raise Wrong(f"has a redox state that cannot be: {told}",
@@ -61,27 +61,17 @@ def oxygen(found: float, temperature: float) -> list[str]:
     ]
 
 
-def poise(found: Equilibrium, table: Table) -> list[str]:
-    """Warn of a pe that nothing in the water holds."""
-    system = found.system
-    held = dict(zip(system.basis, valence_totals(found).tolist(), strict=True))
-    capacity = 0.0
-    for name in system.basis[len(system.components) :]:
-        component = table.components[name]
-        half = component.half_reaction
-        assert half is not None
-        other = held.get(partner(component), np.inf)  # of water there is no end
-        there = held[name]
-        if partner(component) == "H^+":
-            other = np.inf
-        if there > 0.0 and other > 0.0:
-            capacity += half.electrons**2 * there / (1.0 + there / other)
-    if capacity > POISED:
+def poise(reading: Reading, found: Equilibrium, pe: float) -> list[str]:
+    """Warn of a pe that nothing in the report says: every element stands in one valence alone."""
+    report, system = reading.report, found.system
+    said = any(report.dissolved.get(name) for name in system.basis[len(system.components) :])
+    carried = [found.system.gas_stoichiometry[system.gases.index(name)] for name in report.gases]
+    carried += [system.matrices.solid[system.minerals.index(name)] for name in report.minerals]
+    if report.says_pe or said or any(row @ system.conserved[:, system.electron] for row in carried):
         return []
-    pe = float(-found.log10_activity()[system.electron, 0])
     return [
-        f"hardly anything in it holds its pe, {pe:.1f}: give Eh, pe or dissolved_oxygen, or name two "
-        "valences of an element"
+        f"nothing says how oxidised it is: its pe of {pe:.1f} follows from elements in one valence each; "
+        "give Eh, pe or dissolved_oxygen, or name valences, such as Fe(II) and Fe(III)"
     ]
 
 
@@ -92,10 +82,27 @@ def division(reading: Reading, found: Equilibrium, pe: float) -> list[str]:
     for name in reading.divided:
         component: Component = reading.table.components[name]
         there, other = held[name], held[partner(component)]
-        if there + other > 0.0:
-            share = 100.0 * there / (there + other)
+        share = 100.0 * there / (there + other) if there + other > 0.0 else 0.0
+        if share > LEAST_SHARE:
             told.append(f"at pe {pe:.2f}, {share:.3g} % of {_element(partner(component))} is {name}")
     return told
+
+
+def reacted(reading: Reading, found: Equilibrium, pe: float) -> list[str]:
+    """Say which valences that the report names do not last beside its others, or at its pe."""
+    system, report = reading.system, reading.report
+    count = len(system.components)
+    coupled = {name for b, name in enumerate(system.basis) if b >= count or system.conserved[count:, b].any()}
+    coupled -= {PROTON, ELECTRON, str(report.balance_on), *report.undivided}
+    told = []
+    for name, named, left in zip(system.basis, reading.totals, valence_totals(found), strict=True):
+        if name in coupled and left < LASTS * named:
+            told.append(f"of {named:.3g} mol/kg of {name} in the report {left:.3g} are left at pe {pe:.2f}")
+    return told
+
+
+def _power(log10: float) -> str:
+    return f"{10.0**log10:.2g}" if abs(log10) < 6.0 else f"1e{log10:.0f}"
 
 
 def _element(ion: str) -> str:

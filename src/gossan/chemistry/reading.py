@@ -9,6 +9,7 @@ import numpy as np
 from gossan.base.wrong import Wrong
 from gossan.chemistry.charge import net_charge
 from gossan.chemistry.equilibrium import Equilibrium
+from gossan.chemistry.redox import WATERS_OWN
 from gossan.chemistry.report import LabReport
 from gossan.chemistry.reservoir import fixed_pe, fixed_ph, held_to
 from gossan.chemistry.roots import root_between, root_of_total
@@ -19,6 +20,7 @@ from gossan.constants.entries import Table
 from gossan.constants.potential import pe_of_oxygen
 
 LOWEST_PH, HIGHEST_PH = -2.0, 16.0
+H2_LINE, O2_LINE = -1.0, 21.5  # pe + pH where hydrogen has 100 atm, or oxygen 1000 atm, at 25 degC
 CARBON = "CO3^2-"
 TRACE = 1e-15  # mol/kg: less of a divided valence is none; a millionth of what any laboratory finds
 
@@ -39,7 +41,7 @@ class Reading:
         coupled: Collection[str],
     ):
         self.report, self.table = report, table
-        self._settings = {"temperature": report.temperature, "activity": activity, "excluded": excluded}
+        self._activity, self._excluded = activity, excluded
         self._components = _components_of(report, table)
         self._coupled = applicable(coupled, self._components, table)
         self.divided = tuple(
@@ -96,9 +98,13 @@ class Reading:
         if not self.holds_pe:
             amounts[0] = -float(amounts[1:] @ charge[1:])
             return held_to(self.system, amounts, [])
-        ph = root_between(lambda ph: net_charge(self.at_ph(self.totals, ph)), LOWEST_PH, HIGHEST_PH)
+        low, high = LOWEST_PH, HIGHEST_PH
+        if self.report.pe is not None:  # beyond of these water itself falls apart
+            low, high = max(low, H2_LINE - self.report.pe), min(high, O2_LINE - self.report.pe)
+        ph = root_between(lambda ph: net_charge(self.at_ph(self.totals, ph)), low, high)
         if ph is None:
-            raise Wrong("is neutral at no pH", "check the analysis, or balance on an ion")
+            raise Wrong(f"is neutral at no pH between {low:.3g} and {high:.3g}",
+                        "check the analysis and the redox potential, or balance on an ion")
         return self.at_ph(self.totals, ph)
 
     def at_reported_ph(self, totals: np.ndarray, ph: float) -> Equilibrium:
@@ -133,12 +139,14 @@ class Reading:
             raise Wrong(f"has an alkalinity of {given:.3g} eq/kg that no carbon brings about", "check the pH")
         return with_carbon(needed)
 
-    def divide(self, found: Equilibrium, neutral: bool = False) -> Equilibrium:
-        """The water with what pe has divided as components of their own, from here on held.
+    def let_go(self, found: Equilibrium, neutral: bool = False) -> Equilibrium:
+        """The water once nothing holds its pe any more, and what that has divided is held apart.
 
+        The oxygen and hydrogen that water itself makes at a held pe are left behind: where they are no
+        solutes of the water they are no store of electrons either.
         neutral: H^+ closes the charge
         """
-        if not self.divided:
+        if not self.holds_pe or not (self.divided or set(WATERS_OWN) - set(self._coupled)):
             return found
         held = dict(zip(self.system.basis, valence_totals(found).tolist(), strict=True))
         for name in self.divided:
@@ -152,7 +160,10 @@ class Reading:
         return held_to(system, amounts, [])
 
     def _system(self, components: Collection[str], coupled: Collection[str]) -> System:
-        return build_system(self.table, components, self.table.minerals, coupled=coupled, **self._settings)
+        return build_system(
+            self.table, components, self.table.minerals, temperature=self.report.temperature,
+            activity=self._activity, excluded=self._excluded, coupled=coupled,
+        )  # fmt: skip
 
 
 def _components_of(report: LabReport, table: Table) -> set[str]:

@@ -11,13 +11,15 @@ def valence_totals(found: Equilibrium) -> np.ndarray:
     """(basis,): what one water holds dissolved of each of the basis, mol per kg of water; 0 of e^-.
 
     A component that no coupled valence counts as stands with its very amount, the others with the sum of
-    their species.
+    their species: so does H^+, of which the oxygen and hydrogen that water itself makes count some.
     """
     system = found.system
     count = len(system.components)
-    totals = found.held()[:, 0]
+    held = found.held()[:, 0]
+    totals = held.copy()
     alone = ~system.conserved[count:].any(axis=0)
     totals[:count][alone] = found.amount[alone, 0]
     if system.electron >= 0:
+        totals[0] = held[0]
         totals[system.electron] = 0.0
     return totals

@@ -10,7 +10,7 @@ from gossan.chemistry import plausible
 from gossan.chemistry.activity import DAVIES
 from gossan.chemistry.balance import balanced
 from gossan.chemistry.charge import charge_error_percent
-from gossan.chemistry.equilibrium import Equilibrium
+from gossan.chemistry.equilibrium import Equilibrium, pe_of
 from gossan.chemistry.reading import Reading
 from gossan.chemistry.redox import ELECTRON
 from gossan.chemistry.report import LabReport
@@ -92,7 +92,11 @@ def read_water(
         stated = not report.is_pure and report.pH is not None
         percent = charge_error_percent(reading.at_ph(reading.totals, ph)) if stated else 0.0
         warnings += _ph_of_pure_water(report, found)
+        if report.pe is not None:
+            warnings += plausible.stability(report.pe, _ph(found), report.temperature, table)
     else:
+        if report.pe is not None:
+            warnings += plausible.stability(report.pe, ph, report.temperature, table)
         found = reading.at_reported_ph(reading.totals, ph)
         percent = charge_error_percent(found)
         if report.alkalinity is not None:
@@ -104,15 +108,16 @@ def read_water(
     reported_pe = float("nan")
     if report.says_pe:
         reported_pe = _pe(found) if reading.holds_pe else reading.pe_at(_ph(found))
-        warnings += plausible.stability(reported_pe, _ph(found), report.temperature, table)
         warnings += plausible.division(reading, found, reported_pe)
     if report.oxygen is not None:
         warnings += plausible.oxygen(report.oxygen, report.temperature)
-    found = reading.divide(found, neutral)
+    if coupled:
+        warnings += plausible.reacted(reading, found, _pe(found))
+    found = reading.let_go(found, neutral)
     if report.minerals or report.gases:
         found = _saturated(report, found)
     if found.system.electron >= 0:
-        warnings += plausible.poise(found, table)
+        warnings += plausible.poise(reading, found, _pe(found))
     warnings += _strength(found)
     return Water(report.name, found, percent, tuple(warnings), reported_pe)
 
@@ -163,5 +168,4 @@ def _ph(found: Equilibrium) -> float:
 
 
 def _pe(found: Equilibrium) -> float:
-    electron = found.system.electron
-    return float(-found.log10_activity()[electron, 0]) if electron >= 0 else float("nan")
+    return float(pe_of(found.system, found.ln_activity)[0])

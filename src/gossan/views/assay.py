@@ -116,7 +116,7 @@ class WaterAssay:
         """Totals of the coupled valences, each first ion before what its element is divided into."""
         system, held = self.water.system, self.valences
         count = len(system.components)
-        found = {}
+        found: dict[str, float] = {}
         for k, first in enumerate(system.components):
             others = [name for v, name in enumerate(system.basis[count:], count) if system.conserved[v, k]]
             if others and first not in (PROTON, ELECTRON):

@@ -13,6 +13,7 @@ from gossan.views.sheet import Sheet
 MAIN_SHARE = 0.001  # of its component: species with less are not printed
 KELVIN = 273.15
 LEAST_OXYGEN = 0.5  # % of saturation: less is not printed
+SAME_EH = 5e-4  # V: what rounds to the same number of mV
 
 
 def assay_sheets(one: WaterAssay) -> Iterator[Sheet]:
@@ -42,8 +43,10 @@ def _redox(one: WaterAssay) -> tuple[tuple[str, str], ...]:
     rows: list[tuple[str, str]] = []
     if not math.isnan(one.pe):
         rows += [("pe", f"{one.pe:.2f}"), ("Eh", f"{1e3 * one.Eh:.0f} mV against the hydrogen electrode")]
-    elif not math.isnan(one.reported_Eh):
-        rows += [("pe", "none: nothing is coupled"), ("Eh reported", f"{1e3 * one.reported_Eh:.0f} mV")]
+    else:
+        rows.append(("pe", "none: nothing is coupled"))
+    if not math.isnan(one.reported_Eh) and not abs(one.reported_Eh - one.Eh) < SAME_EH:
+        rows.append(("Eh reported", f"{1e3 * one.reported_Eh:.0f} mV"))
     if one.oxygen_percent >= LEAST_OXYGEN:
         rows.append(("dissolved oxygen", f"{one.oxygen_percent:.0f} % of saturation with air"))
     return tuple(rows)
