@@ -12,6 +12,7 @@ from gossan.case.redox import coupled_by
 from gossan.case.waters import ATMOSPHERE, excluded_by, read_waters
 from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.chemistry.system import System, build_system
+from gossan.chemistry.valences import valence_totals
 from gossan.chemistry.water import Water
 from gossan.constants.couples import applicable
 from gossan.constants.entries import Mineral, Table
@@ -176,7 +177,7 @@ def _counted(water: Water, system: System) -> np.ndarray:
     totals = water.totals
     if totals.keys() <= set(system.components):
         return np.array([totals.get(name, 0.0) for name in system.components])
-    held = water.valences
+    held = dict(zip(water.system.basis, valence_totals(water.equilibrium).tolist(), strict=True))
     return np.array([held.get(name, 0.0) for name in system.basis]) @ system.conserved
 
 

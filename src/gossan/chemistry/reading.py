@@ -78,6 +78,12 @@ class Reading:
         assert report.oxygen is not None
         return pe_of_oxygen(report.oxygen * oxygen_gamma, ph, report.temperature, self.table)
 
+    def oxygen_gamma(self, found: Equilibrium) -> float:
+        """The activity coefficient of dissolved oxygen in a water, 1 where the report gives none."""
+        if self.report.oxygen is None:
+            return 1.0
+        return float(np.exp(self.system.activity.ln_gamma(found.ionic_strength)[self.index("O2"), 0]))
+
     def at_ph(self, totals: np.ndarray, ph: float) -> Equilibrium:
         """The water of these totals (basis,) at a pH, and at the report's pe where it says one."""
         conditions = [fixed_ph(self.system, ph)]
@@ -86,8 +92,7 @@ class Reading:
             return held_to(self.system, amounts, conditions)
         found = held_to(self.system, amounts, [*conditions, fixed_pe(self.system, self.pe_at(ph))])
         if self.report.oxygen is not None:  # whose activity coefficient needs the ionic strength
-            gamma = self.system.activity.ln_gamma(found.ionic_strength)[self.index("O2"), 0]
-            held = self.pe_at(ph, float(np.exp(gamma)))
+            held = self.pe_at(ph, self.oxygen_gamma(found))
             found = held_to(self.system, amounts, [*conditions, fixed_pe(self.system, held)])
         return found
 

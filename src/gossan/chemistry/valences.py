@@ -8,10 +8,11 @@ from gossan.chemistry.equilibrium import Equilibrium
 
 
 def valence_totals(found: Equilibrium) -> np.ndarray:
-    """(basis,): what one water holds dissolved of each of the basis, mol per kg of water; 0 of e^-.
+    """(basis,): what one water holds dissolved of each of the basis, mol per kg of water.
 
     A component that no coupled valence counts as stands with its very amount, the others with the sum of
-    their species: so does H^+, of which the oxygen and hydrogen that water itself makes count some.
+    their species: so does H^+, of which the oxygen and hydrogen that water itself makes count some, and e^-,
+    which is only in ions between two valences (polysulfides).
     """
     system = found.system
     count = len(system.components)
@@ -20,6 +21,5 @@ def valence_totals(found: Equilibrium) -> np.ndarray:
     alone = ~system.conserved[count:].any(axis=0)
     totals[:count][alone] = found.amount[alone, 0]
     if system.electron >= 0:
-        totals[0] = held[0]
-        totals[system.electron] = 0.0
+        totals[0], totals[system.electron] = held[0], held[system.electron]
     return totals

@@ -107,7 +107,7 @@ def read_water(
             warnings += _imbalance(report, percent)
     reported_pe = float("nan")
     if report.says_pe:
-        reported_pe = _pe(found) if reading.holds_pe else reading.pe_at(_ph(found))
+        reported_pe = reading.pe_at(_ph(found), reading.oxygen_gamma(found))
         warnings += plausible.division(reading, found, reported_pe)
     if report.oxygen is not None:
         warnings += plausible.oxygen(report.oxygen, report.temperature)
