@@ -44,6 +44,7 @@ def matrices_of(
     # a valence in terms of what it is counted as: its own tie undone
     ties = slice(minerals, minerals + len(basis.valences))
     valence_ln_k = solid_ln_k[ties]
+    supplied = np.ascontiguousarray(solid @ basis.conserved)
     return Matrices(
         stoichiometry=filled(rows).T.copy(),
         ln_k=filled(constants, NONE),
@@ -56,10 +57,11 @@ def matrices_of(
         debye_hueckel=law.debye_hueckel,
         solid=np.ascontiguousarray(solid),
         solid_ln_k=solid_ln_k,
-        supplied=np.ascontiguousarray(solid @ basis.conserved),
+        supplied=supplied,
         supplied_ln_k=solid_ln_k - solid[:, components:] @ valence_ln_k,
         minerals=minerals,
         first=basis.first,
+        carrier=_carriers(supplied[minerals + len(basis.valences) :], basis.electron),
         signed=0,
         electron=basis.electron,
     )
@@ -80,4 +82,14 @@ def with_minerals(matrices: Matrices, solid: np.ndarray, ln_k: np.ndarray, conse
         supplied=rows @ conserved,
         supplied_ln_k=constants - rows[:, components:] @ matrices.solid_ln_k[couples],
         minerals=len(solid),
+        carrier=np.zeros(0, np.int64),
     )
+
+
+def _carriers(supplied: np.ndarray, electron: int) -> np.ndarray:
+    """(open gas,) the component that each open gas is known by: neither H^+ nor e^-, if there is another."""
+    others = np.abs(supplied)
+    others[:, 0] = 0.0
+    if electron >= 0:
+        others[:, electron] *= 1e-3  # the last choice
+    return others.argmax(axis=1).astype(np.int64)

@@ -1,4 +1,4 @@
-"""Which valences are coupled, and what a basis of valences is made of (equations.md, 46 and 47)."""
+"""Which valences are coupled, and what a basis of valences is made of (equations.md, 47 and 48)."""
 
 from __future__ import annotations
 

@@ -8,13 +8,14 @@ from gossan.chemistry.kernel.complement import settle
 from gossan.chemistry.kernel.nullspace import GONE
 from gossan.chemistry.kernel.vectors import row_dot
 
+WARM, COLD, MARKED = 0, 1, 2
 REMAINDER = 1e-6  # of what solids took: below, subtraction has lost more digits than the balances have
 
 
 @kernel
 def settle_cells(
     matrices, bench, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength,
-    solved, given, skip, cold, outcome, steps, first, last,
+    solved, given, skip, start, outcome, steps, first, last,
 ):
     """Equilibrate cells first to last (equations.md, 7-18); returns how many failed.
 
@@ -24,7 +25,7 @@ def settle_cells(
     solved (component, cell) mol/kg: what was dissolved after the last solve; a cell whose dissolved
         amounts all stand within skip of it (relative) is left alone
     given (open gas, cell) mol m-3 of bulk that each gave, overwritten
-    cold: start from nothing; outcome (cell,) int64 and steps (cell,) int64 are overwritten
+    start: WARM, COLD (from nothing) or MARKED (warm, with the marks as they stand); outcome (cell,) int64 and steps (cell,) int64 are overwritten
     All state arrays are changed in place, a failed cell's are left as they were.
     """
     components, minerals, gases = amount.shape[0], solid.shape[0], given.shape[0]
@@ -36,7 +37,7 @@ def settle_cells(
         for g in range(gases):
             given[g, i] = 0.0
         weight = kilograms[i]
-        same = not cold
+        same = start == WARM
         for k in range(components):
             now = amount[k, i] / weight
             bench.dissolved[k] = now
@@ -52,7 +53,7 @@ def settle_cells(
             bench.solid[m] = solid[m, i] / weight
             bench.upper[m] = upper[m, i] / weight
             bench.presence[m] = presence[m, i]
-            if bench.presence[m] == 0 and bench.solid[m] > 0.0:
+            if start != MARKED and bench.presence[m] == 0 and bench.solid[m] > 0.0:
                 bench.presence[m] = 1
         for k in range(ln_activity.shape[0]):
             bench.ln_activity[k] = ln_activity[k, i]
@@ -60,7 +61,7 @@ def settle_cells(
             bench.abundance[k] = abs(solved[k, i])
         outcome[i], strength, steps[i] = settle(
             matrices, bench, bench.dissolved, bench.solid, bench.upper, bench.presence,
-            ionic_strength[i], cold,
+            ionic_strength[i], start == COLD,
         )
         if outcome[i] != SOLVED:
             failed += 1
