@@ -22,14 +22,14 @@ class LabReport:
     temperature: float = 298.15  # K
     dissolved: dict[str, float] = field(default_factory=dict)
     pH: float | None = None
-    pe: float | None = None
-    oxygen: float | None = None
-    undivided: frozenset[str] = frozenset()
     alkalinity: float | None = None
     balance_on: str | None = None
     minerals: dict[str, float] = field(default_factory=dict)
     gases: dict[str, float] = field(default_factory=dict)
     accept_imbalance: bool = False
+    pe: float | None = None
+    oxygen: float | None = None
+    undivided: frozenset[str] = frozenset()
 
     @property
     def says_pe(self) -> bool:

@@ -6,12 +6,12 @@ import math
 from collections.abc import Iterator
 
 from gossan.chemistry.redox import ELECTRON
+from gossan.constants.temperature import KELVIN
 from gossan.views.assay import WaterAssay
 from gossan.views.scales import Scale, dissolved_text, solute_scale
 from gossan.views.sheet import Sheet
 
 MAIN_SHARE = 0.001  # of its component: species with less are not printed
-KELVIN = 273.15
 LEAST_OXYGEN = 0.5  # % of saturation: less is not printed
 SAME_EH = 5e-4  # V: what rounds to the same number of mV
 

@@ -25,7 +25,8 @@ def settle_cells(
     solved (component, cell) mol/kg: what was dissolved after the last solve; a cell whose dissolved
         amounts all stand within skip of it (relative) is left alone
     given (open gas, cell) mol m-3 of bulk that each gave, overwritten
-    start: WARM, COLD (from nothing) or MARKED (warm, with the marks as they stand); outcome (cell,) int64 and steps (cell,) int64 are overwritten
+    start: WARM, COLD (from nothing) or MARKED (warm, with the marks as they stand)
+    outcome (cell,) int64 and steps (cell,) int64 are overwritten
     All state arrays are changed in place, a failed cell's are left as they were.
     """
     components, minerals, gases = amount.shape[0], solid.shape[0], given.shape[0]

@@ -7,7 +7,7 @@ in every residual: that is what keeps free sulfide right where zinc and sulfide 
 
 A redox couple is such a tie too, one that always holds: it takes out the scarcer valence, so that the
 electron balance is left in terms of what is scarce, and not as a difference of what is plentiful
-(equations.md, 48).
+(equations.md, 51).
 """
 
 from __future__ import annotations
