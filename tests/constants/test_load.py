@@ -114,7 +114,8 @@ def test_constants_are_in_si_and_say_where_they_come_from():
 
 def test_every_source_of_the_program_is_used():
     used = set()
-    for group in (TABLE.components, TABLE.species, TABLE.minerals, TABLE.gases):
+    groups = (TABLE.components, TABLE.species, TABLE.minerals, TABLE.gases, TABLE.interactions)
+    for group in groups:
         used |= set(re.findall(r"source='([^']*)'", repr(list(group.values()))))
     assert set(TABLE.sources) - used == {"freeze1979"} - used  # that one is cited in debye_huckel.toml
 

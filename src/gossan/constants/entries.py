@@ -121,6 +121,20 @@ class Gas:
 
 
 @dataclass(frozen=True, slots=True)
+class Interaction:
+    """What two ions, or a neutral species and an ion, do to each other's activity (SIT)."""
+
+    first: str  # the cation, or the neutral species
+    second: str  # the anion, or the ion beside the neutral species
+    coefficient: Constant  # kg/mol at 25 degC
+
+    @property
+    def name(self) -> str:
+        """The pair as it is written: `Na^+/Cl^-`."""
+        return f"{self.first}/{self.second}"
+
+
+@dataclass(frozen=True, slots=True)
 class Table:
     """All constants by name, and the list of their sources."""
 
@@ -128,4 +142,5 @@ class Table:
     species: dict[str, Species] = field(default_factory=dict)
     minerals: dict[str, Mineral] = field(default_factory=dict)
     gases: dict[str, Gas] = field(default_factory=dict)
+    interactions: dict[tuple[str, str], Interaction] = field(default_factory=dict)  # by (first, second)
     sources: dict[str, str] = field(default_factory=dict)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from gossan.base.notation import charge_of, normal_ion, parse_formula
-from gossan.constants.document import did_you_mean
+from gossan.base.wrong import did_you_mean
 from gossan.constants.entries import Component, Gas, Mineral, Species, Table
 
 
@@ -43,7 +43,7 @@ def find_mineral(table: Table, name: str) -> Mineral:
         names = [mineral.name for mineral in sharing]
         wrong = f"'{name}' is the formula of {len(names)} minerals"
         raise UnknownName(wrong, f"name one: {', '.join(names)}")
-    raise UnknownName(f"no mineral is called '{name}'", did_you_mean(wanted, called))
+    raise UnknownName(f"no mineral is called '{name}'", did_you_mean(wanted, called, quote=""))
 
 
 def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, ...]:
@@ -64,7 +64,7 @@ def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, 
         if not found:
             known = [each for group in groups for each in group]
             raise UnknownName(
-                f"the table has no '{name}'", did_you_mean(ion, known) or unknown.right
+                f"the table has no '{name}'", did_you_mean(ion, known, quote="") or unknown.right
             ) from None
     return tuple(found)
 

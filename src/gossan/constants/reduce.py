@@ -5,7 +5,8 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 
 from gossan.base.notation import imbalance, parse_reaction, split_phase
-from gossan.constants.document import Entry, did_you_mean
+from gossan.base.wrong import did_you_mean
+from gossan.constants.document import Entry
 from gossan.constants.entries import Constant, Reaction, TemperatureFit
 from gossan.constants.temperature import REFERENCE, combined, evaluated, van_t_hoff
 
@@ -122,7 +123,7 @@ class Reducer:
                 raise Faulty
             name = solids[0] if solids else name
         if name not in self._entries[kind]:
-            right = did_you_mean(term, [*components, *self._entries["species"]])
+            right = did_you_mean(term, [*components, *self._entries["species"]], quote="")
             entry.fault(key, f"uses {term}, which the table lacks", right)
             raise Faulty
         if (kind, name, held) in self._walking:
