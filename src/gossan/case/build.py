@@ -6,18 +6,20 @@ import numpy as np
 
 from gossan.base.amounts import Amount
 from gossan.base.errors import SolveError
+from gossan.case.build_retention import decay_of, isotherms_of, stagnant_of
 from gossan.case.model import Case, Layer
 from gossan.case.quantities import Solid
 from gossan.case.waters import excluded_by, read_waters
 from gossan.chemistry.equilibrium import Equilibrium, Solver
+from gossan.chemistry.isotherm import Isotherms, sorbed_at
 from gossan.chemistry.system import System, build_system
 from gossan.chemistry.water import Water
 from gossan.constants.entries import Mineral, Table
 from gossan.constants.find import find_mineral
 from gossan.coupling.pace import Pace
-from gossan.coupling.problem import Port, Problem
+from gossan.coupling.problem import Port, Problem, Stagnant
 from gossan.coupling.schedule import Schedule, every
-from gossan.coupling.state import State
+from gossan.coupling.state import State, StillWater
 from gossan.transport import clogging, grid
 from gossan.transport.step import transport_of
 
@@ -43,6 +45,7 @@ def build(case: Case) -> Problem:
     porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
     chemical = len(system.components)
     by_volume = case.run.duration.unit == "PV"
+    stagnant, isotherms = stagnant_of(case, cells), isotherms_of(case, cells, system.components)
     ports = tuple(
         Port(name, cells.face_at(x), float(cells.edges[cells.face_at(x)]))
         for name, x in case.port_positions.items()
@@ -60,7 +63,7 @@ def build(case: Case) -> Problem:
         )[cells.layer],
         clogging=tuple(_clogging(layer) for layer in case.layers),
         porosity=porosity,
-        initial=_initial(case, system, cells, composition, solids, len(ports)),
+        initial=_initial(case, system, cells, composition, solids, len(ports), stagnant, isotherms),
         end=Schedule(np.array([case.run.duration.si]), by_volume),
         frames=_interval(case, "profiles_every", FRAMES),
         records=_interval(case, "ports_every", RECORDS),
@@ -68,6 +71,9 @@ def build(case: Case) -> Problem:
         coupling=case.run.coupling,
         accuracy=case.run.accuracy,
         max_courant=case.run.max_courant,
+        decay=decay_of(case, chemical),
+        isotherms=isotherms,
+        stagnant=stagnant,
     )
 
 
@@ -193,9 +199,13 @@ def _interval(case: Case, key: str, divisions: int) -> Schedule:
 
 def _initial(
     case: Case, system: System, cells: grid.Grid, composition: dict[str, np.ndarray],
-    solids: list[dict[str, float]], ports: int,
+    solids: list[dict[str, float]], ports: int, stagnant: Stagnant | None, isotherms: Isotherms | None,
 ) -> State:
-    """Every cell at equilibrium with its own minerals: one solve a layer."""
+    """Every cell at equilibrium with its own minerals: one solve a layer.
+
+    What sorbs is in equilibrium with that water, and is not taken from it. Flowing and immobile water are
+    the same, each with its share of the solids.
+    """
     settled = [
         _settled_layer(layer, system, composition[layer.water], solid)
         for layer, solid in zip(case.layers, solids, strict=True)
@@ -209,18 +219,36 @@ def _initial(
 
     porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
     solutes = chemical + tracers.shape[1]
+    dissolved = np.vstack([spread("amount") / porosity, tracers[cells.layer].T])
+    sorbed = np.zeros((0, len(porosity)))
+    if isotherms is not None:
+        sorbed = sorbed_at(isotherms, dissolved[isotherms.solutes])
+    solid = spread("solid")
+    warm = {field: spread(field) for field in ("ln_activity", "ionic_strength", "presence", "solved")}
+    flowing, still = np.ones(len(porosity)), None
+    if stagnant is not None:
+        at = stagnant.cells
+        flowing[at] = 1.0 - stagnant.fraction
+        still = StillWater(
+            dissolved=dissolved[:, at],
+            solid=solid[:, at] * stagnant.fraction,
+            sorbed=sorbed[:, at] * stagnant.fraction,
+            water=porosity[at] * stagnant.fraction,
+            swelling=np.zeros(len(at)),
+            **{field: np.ascontiguousarray(value[..., at]) for field, value in warm.items()},
+        )
     return State(
         time=0.0,
         step=0,
-        dissolved=np.vstack([spread("amount") / porosity, tracers[cells.layer].T]),
-        solid=spread("solid"),
-        water=porosity.copy(),
+        dissolved=dissolved,
+        solid=solid * flowing,
+        sorbed=sorbed * flowing,
+        water=porosity * flowing,
         swelling=np.zeros(len(porosity)),
-        ln_activity=spread("ln_activity"),
-        ionic_strength=spread("ionic_strength"),
-        presence=spread("presence"),
-        solved=spread("solved"),
+        **warm,
+        still=still,
         passed=np.zeros((2 + ports, solutes, 2)),
+        made=np.zeros((solutes, 2)),
         water_passed=np.zeros((3, 2)),
         splitting_error=0.0,
     )

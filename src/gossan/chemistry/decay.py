@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
@@ -37,6 +38,15 @@ class Decay:
 
     solutes: np.ndarray
     rates: np.ndarray
+
+    @cached_property
+    def descent(self) -> np.ndarray:
+        """(member, member) 1 where the column's solute decays into the row's, directly or through others."""
+        grows = (self.rates > 0.0).astype(float)
+        reached = grows
+        for _ in grows:
+            reached = np.minimum(reached + grows @ reached, 1.0)
+        return reached
 
     def over(self, dt: float) -> Kept:
         """What dt (s) leaves and makes (equations.md, 47).

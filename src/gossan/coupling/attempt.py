@@ -53,7 +53,7 @@ def attempt(
         stage = waters.stage(passed, stage)
     error = size * (SHARE_OF_DIFFERENCE[problem.coupling] if theta is None else 1.0)
     flowing, found = stage.flowing, stage.flowing.found
-    freed = problem.whole(flowing.freed, stage.still and stage.still.freed)
+    freed = problem.whole(flowing.freed, stage.still.freed if stage.still else None)
     lost = pore_space(problem, state.solid) - pore_space(problem, found.solid)
     after = State(
         time=state.time + dt,
@@ -94,8 +94,15 @@ def _held_back(
 
 
 def _scale(problem: Problem, state: State, inflow: np.ndarray) -> np.ndarray:
-    """(solute,) mol m-2: what an error is measured against, the most that was ever there to be wrong."""
-    return problem.stock + np.abs(state.passed[0, :, 0]) + np.abs(inflow) * problem.pore_volume
+    """(solute,) mol m-2: what an error is measured against, the most that was ever there to be wrong.
+
+    What can decay into a solute counts with it.
+    """
+    scale = problem.stock + np.abs(state.passed[0, :, 0]) + np.abs(inflow) * problem.pore_volume
+    if problem.decay is not None:
+        members = problem.decay.solutes
+        scale[members] += problem.decay.descent @ scale[members]
+    return scale
 
 
 def _relative(difference: np.ndarray, scale: np.ndarray) -> float:

@@ -13,8 +13,10 @@ NEARLY_CLOSED = 1e-30  # m/s: so that a closed cell still has a head
 
 
 def pore_space(problem: Problem, solid: np.ndarray) -> np.ndarray:
-    """(cell,) m3 m-3: what solids leave of the bulk for flowing water; solid (mineral, cell) mol m-3 of bulk,
-    what flowing water reaches."""
+    """(cell,) m3 m-3: what solids leave of the bulk for flowing water.
+
+    solid (mineral, cell) mol m-3 of bulk, what flowing water reaches
+    """
     grown = solid - problem.initial.solid
     return problem.flowing_porosity - problem.system.molar_volume @ grown
 
@@ -33,7 +35,7 @@ def squeezed(problem: Problem, still: StillWater, dt: float) -> np.ndarray:
 
 
 def pore_room(problem: Problem, state: State) -> np.ndarray:
-    """(cell,) m3 m-3: what is left before flowing or immobile water has none and the cell counts as closed."""
+    """(cell,) m3 m-3: what is left before flowing or immobile pores count as closed."""
     room = pore_space(problem, state.solid) - problem.closing * (1.0 - problem.immobile_fraction)
     if state.still is not None and problem.stagnant is not None:
         cells, fraction = problem.stagnant.cells, problem.stagnant.fraction
@@ -43,7 +45,7 @@ def pore_room(problem: Problem, state: State) -> np.ndarray:
 
 
 def conductivity(problem: Problem, water: np.ndarray) -> np.ndarray:
-    """(cell,) m s-1: saturated hydraulic conductivity of the bed as it now is; water (cell,), all there is."""
+    """(cell,) m s-1: saturated hydraulic conductivity of the bed; water (cell,), all there is per bulk."""
     left = conductivity_left(problem.clogging, problem.grid.layer, water, problem.porosity)
     return problem.conductivity * left
 

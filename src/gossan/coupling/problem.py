@@ -125,15 +125,15 @@ class Problem:
 
     def water(self, state: State) -> np.ndarray:
         """(cell,) all water per bulk."""
-        return self.whole(state.water, state.still and state.still.water)
+        return self.whole(state.water, state.still.water if state.still else None)
 
     def solid(self, state: State) -> np.ndarray:
         """(mineral, cell) mol m-3 of bulk, all there is."""
-        return self.whole(state.solid, state.still and state.still.solid)
+        return self.whole(state.solid, state.still.solid if state.still else None)
 
     def sorbed(self, state: State) -> np.ndarray:
         """(sorbate, cell) mol m-3 of bulk, all there is."""
-        return self.whole(state.sorbed, state.still and state.still.sorbed)
+        return self.whole(state.sorbed, state.still.sorbed if state.still else None)
 
     def stored(self, state: State) -> np.ndarray:
         """(solute,) mol m-2 of cross-section: dissolved, sorbed and solid in the whole column."""

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, fields, replace
+from typing import Any
 
 import numpy as np
 
@@ -142,6 +143,6 @@ def _with_columns(found: Equilibrium, cells: np.ndarray, part: Equilibrium) -> E
     return replace(found, **arrays)
 
 
-def _arrays(found: Equilibrium) -> dict[str, np.ndarray]:
+def _arrays(found: Equilibrium) -> dict[str, Any]:
     values = {field.name: getattr(found, field.name) for field in fields(found)}
     return {name: value for name, value in values.items() if isinstance(value, np.ndarray)}

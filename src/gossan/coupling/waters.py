@@ -41,7 +41,7 @@ class Waters:
             self.water = self.beside.water
 
     def stage(self, passed: np.ndarray, before: Stage | None = None) -> Stage:
-        """What passages (solute, face) mol m-2 lead to, from the start of the step; before is the first stage.
+        """What passages (solute, face) mol m-2 of the whole step lead to; before is the first stage.
 
         Raises   SolveError where a cell finds no equilibrium
         """
