@@ -5,21 +5,18 @@ from __future__ import annotations
 import numpy as np
 
 from gossan.base.amounts import Amount
-from gossan.base.errors import SolveError
+from gossan.case.build_initial import initial_state
 from gossan.case.build_retention import decay_of, isotherms_of, stagnant_of
 from gossan.case.model import Case, Layer
 from gossan.case.quantities import Solid
 from gossan.case.waters import excluded_by, read_waters
-from gossan.chemistry.equilibrium import Equilibrium, Solver
-from gossan.chemistry.isotherm import Isotherms, sorbed_at
 from gossan.chemistry.system import System, build_system
 from gossan.chemistry.water import Water
 from gossan.constants.entries import Mineral, Table
 from gossan.constants.find import find_mineral
 from gossan.coupling.pace import Pace
-from gossan.coupling.problem import Port, Problem, Stagnant
+from gossan.coupling.problem import Port, Problem
 from gossan.coupling.schedule import Schedule, every
-from gossan.coupling.state import State, StillWater
 from gossan.transport import clogging, grid
 from gossan.transport.step import transport_of
 
@@ -63,7 +60,7 @@ def build(case: Case) -> Problem:
         )[cells.layer],
         clogging=tuple(_clogging(layer) for layer in case.layers),
         porosity=porosity,
-        initial=_initial(case, system, cells, composition, solids, len(ports), stagnant, isotherms),
+        initial=initial_state(case, system, cells, composition, solids, len(ports), stagnant, isotherms),
         end=Schedule(np.array([case.run.duration.si]), by_volume),
         frames=_interval(case, "profiles_every", FRAMES),
         records=_interval(case, "ports_every", RECORDS),
@@ -195,70 +192,3 @@ def _interval(case: Case, key: str, divisions: int) -> Schedule:
     if case.flow is not None and case.flow.darcy_flux is not None:
         return every(case.seconds(interval), case.seconds(duration))
     return every(interval.si, 1e6 * interval.si, interval.unit == "PV")
-
-
-def _initial(
-    case: Case, system: System, cells: grid.Grid, composition: dict[str, np.ndarray],
-    solids: list[dict[str, float]], ports: int, stagnant: Stagnant | None, isotherms: Isotherms | None,
-) -> State:
-    """Every cell at equilibrium with its own minerals: one solve a layer.
-
-    What sorbs is in equilibrium with that water, and is not taken from it. Flowing and immobile water are
-    the same, each with its share of the solids.
-    """
-    settled = [
-        _settled_layer(layer, system, composition[layer.water], solid)
-        for layer, solid in zip(case.layers, solids, strict=True)
-    ]
-    chemical = len(system.components)
-    tracers = np.array([composition[layer.water][chemical:] for layer in case.layers])
-
-    def spread(field: str) -> np.ndarray:
-        layers = np.concatenate([getattr(one, field) for one in settled], -1)
-        return np.ascontiguousarray(layers[..., cells.layer])
-
-    porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
-    solutes = chemical + tracers.shape[1]
-    dissolved = np.vstack([spread("amount") / porosity, tracers[cells.layer].T])
-    sorbed = np.zeros((0, len(porosity)))
-    if isotherms is not None:
-        sorbed = sorbed_at(isotherms, dissolved[isotherms.solutes])
-    solid = spread("solid")
-    warm = {field: spread(field) for field in ("ln_activity", "ionic_strength", "presence", "solved")}
-    flowing, still = np.ones(len(porosity)), None
-    if stagnant is not None:
-        at = stagnant.cells
-        flowing[at] = 1.0 - stagnant.fraction
-        still = StillWater(
-            dissolved=dissolved[:, at],
-            solid=solid[:, at] * stagnant.fraction,
-            sorbed=sorbed[:, at] * stagnant.fraction,
-            water=porosity[at] * stagnant.fraction,
-            swelling=np.zeros(len(at)),
-            **{field: np.ascontiguousarray(value[..., at]) for field, value in warm.items()},
-        )
-    return State(
-        time=0.0,
-        step=0,
-        dissolved=dissolved,
-        solid=solid * flowing,
-        sorbed=sorbed * flowing,
-        water=porosity * flowing,
-        swelling=np.zeros(len(porosity)),
-        **warm,
-        still=still,
-        passed=np.zeros((2 + ports, solutes, 2)),
-        made=np.zeros((solutes, 2)),
-        water_passed=np.zeros((3, 2)),
-        splitting_error=0.0,
-    )
-
-
-def _settled_layer(layer: Layer, system: System, water: np.ndarray, solid: dict[str, float]) -> Equilibrium:
-    amount = water[: len(system.components), None] * layer.porosity
-    grains = np.array([[solid.get(name, 0.0)] for name in system.minerals]).reshape(len(system.minerals), 1)
-    kilograms = np.array([layer.porosity * system.water_density])
-    try:
-        return Solver(system).cold(kilograms, amount, grains)
-    except SolveError as error:
-        raise SolveError(error.reason, 0, layer.name, time=0.0) from error

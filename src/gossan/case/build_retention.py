@@ -39,10 +39,10 @@ def stagnant_of(case: Case, grid: Grid) -> Stagnant | None:
     cells = np.flatnonzero(has[grid.layer])
     if not len(cells):
         return None
-    fraction = np.array([layer.immobile.fraction if layer.immobile else 0.0 for layer in case.layers])
-    transfer = np.array([layer.immobile.transfer.si if layer.immobile else 0.0 for layer in case.layers])
-    where = grid.layer[cells]
-    return Stagnant(cells, fraction[where], transfer[where])
+    said = [layer.immobile for layer in case.layers]
+    of_layer = np.array([(i.fraction, i.share, i.transfer.si) if i else (0.0, 0.0, 0.0) for i in said])
+    fraction, solids, transfer = (np.ascontiguousarray(column) for column in of_layer[grid.layer[cells]].T)
+    return Stagnant(cells, fraction, solids, transfer)
 
 
 def isotherms_of(case: Case, grid: Grid, components: tuple[str, ...]) -> Isotherms | None:

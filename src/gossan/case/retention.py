@@ -59,7 +59,7 @@ class Sorption(TableOfCase):
 
 
 class Immobile(TableOfCase):
-    """Immobile water beside the flowing water; it reaches the same share of the layer's solids."""
+    """Immobile water beside the flowing water, with a share of the layer's solids of its own."""
 
     fraction: Annotated[
         float, Number("a fraction of the porosity", 0, 1, is_open=True, is_share=True, example="0.3")
@@ -67,3 +67,11 @@ class Immobile(TableOfCase):
     transfer: Annotated[Amount, Quantity(("1/s",), "a rate of transfer", '"1e-6 1/s"', 0.0)] = Field(
         description="per bulk volume: exchanged amount = transfer * (flowing - immobile concentration)"
     )
+    solids: Annotated[
+        float | None, Number("a share of the solids", 0, 1, is_share=True, example="0.4")
+    ] = Field(default=None, description="share of the minerals and isotherms it reaches; default `fraction`")
+
+    @property
+    def share(self) -> float:
+        """Of the solids, 1."""
+        return self.fraction if self.solids is None else self.solids

@@ -43,7 +43,8 @@ def attempt(
     """
     transport, width = problem.transport, problem.grid.width
     waters = Waters(problem, solver, state, darcy_flux, dt)
-    first = passages(transport, state.dissolved, state.water, darcy_flux, inflow, dt, theta)
+    made = waters.foreseen() if theta is not None else None
+    first = passages(transport, state.dissolved, state.water, darcy_flux, inflow, dt, theta, made)
     passed = _held_back(problem, state, first, waters.amount, first.passed)
     stage = waters.stage(passed)
     whole = corrected(transport, first, state.dissolved, stage.flowing.dissolved)

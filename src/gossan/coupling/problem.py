@@ -35,7 +35,8 @@ class Stagnant:
     """The immobile water of a column."""
 
     cells: np.ndarray  # (still,) int, rising: the cells that have some
-    fraction: np.ndarray  # (still,) of the pores, and of the solids that water reaches
+    fraction: np.ndarray  # (still,) of the pores
+    solids: np.ndarray  # (still,) of the solids that water reaches
     transfer: np.ndarray  # (still,) s-1, exchange per bulk volume and difference of concentration
 
 
@@ -93,22 +94,27 @@ class Problem:
     @cached_property
     def flowing_isotherms(self) -> Isotherms | None:
         """The laws of what flowing water reaches."""
-        return self.isotherms.shared(1.0 - self.immobile_fraction) if self.isotherms else None
+        if self.stagnant is None or self.isotherms is None:
+            return self.isotherms
+        return self.isotherms.shared(1.0 - self._share(self.stagnant.solids))
 
     @cached_property
     def still_isotherms(self) -> Isotherms | None:
         """The laws of what immobile water reaches, in the cells that have some."""
         if self.stagnant is None or self.isotherms is None:
             return None
-        return self.isotherms.at(self.stagnant.cells).shared(self.stagnant.fraction)
+        return self.isotherms.at(self.stagnant.cells).shared(self.stagnant.solids)
 
     @cached_property
     def immobile_fraction(self) -> np.ndarray:
         """(cell,) of the pores at the start."""
-        fraction = np.zeros(len(self.porosity))
+        return self._share(self.stagnant.fraction) if self.stagnant else np.zeros(len(self.porosity))
+
+    def _share(self, still: np.ndarray) -> np.ndarray:
+        share = np.zeros(len(self.porosity))
         if self.stagnant is not None:
-            fraction[self.stagnant.cells] = self.stagnant.fraction
-        return fraction
+            share[self.stagnant.cells] = still
+        return share
 
     @cached_property
     def flowing_porosity(self) -> np.ndarray:

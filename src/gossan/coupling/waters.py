@@ -40,6 +40,22 @@ class Waters:
             self.beside = Beside(problem, state, self.water, dt)
             self.water = self.beside.water
 
+    def foreseen(self) -> np.ndarray | None:
+        """(solute, cell) mol m-2 that decay and exchange will make in flowing water, None without either."""
+        problem, width = self.problem, self.problem.grid.width
+        if self.kept is None and self.beside is None:
+            return None
+        made = np.zeros_like(self.amount)
+        if self.beside is not None:
+            _, exchange = self.beside.exchange(self.amount, None)
+            made[:, self.beside.cells] -= exchange * width[self.beside.cells]
+        if self.kept is not None and problem.decay is not None:
+            members = problem.decay.solutes
+            stock = self.amount.copy()
+            stock[problem.sorbates] += self.state.sorbed
+            made[members] += (self.kept.whole @ stock[members] - stock[members]) * width
+        return made
+
     def stage(self, passed: np.ndarray, before: Stage | None = None) -> Stage:
         """What passages (solute, face) mol m-2 of the whole step lead to; before is the first stage.
 
