@@ -29,6 +29,14 @@ def test_background_salts_are_understood():
     assert TABLE.interactions["Zn^2+", "ClO4^-"].coefficient.value == 0.33
 
 
+def test_complexes_that_a_coefficient_holds_are_named():
+    assert TABLE.interactions["Na^+", "SO4^2-"].holds == ("NaSO4^-",)
+    assert TABLE.interactions["Zn^2+", "Cl^-"].holds == ()
+    for (first, second), interaction in TABLE.interactions.items():
+        for name in interaction.holds:
+            assert set(TABLE.species[name].reaction.components) - {"H^+"} <= {first, second, "CO3^2-"}
+
+
 def test_a_users_file_adds_and_replaces_pairs(tmp_path):
     path = tmp_path / "site.toml"
     path.write_text("""
@@ -62,6 +70,8 @@ FAULTY = [
     ('"Na^+/Cl^-" = {value = 0.1, source = "judgement"}', "has no sd"),
     ('"Na^+/Cl^-" = {value = 0.1, sd = 0.1}', "has no source"),
     ('"Na^+/Cl^-" = {value = 0.1, sd = 0.1, source = "judgment"}', "did you mean judgement?"),
+    ('"Na^+/Cl^-" = {value = 0.1, holds = "NaCl"}', "write a list of complexes"),
+    ('"Na^+/Cl^-" = {value = 0.1, holds = ["NaSO4"]}', "holds NaSO4, which the table lacks"),
 ]
 
 

@@ -3,6 +3,9 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from math import inf
+
+ANY_TEMPERATURE = (0.0, inf)  # K: where no limit is known
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,6 +68,7 @@ class Component:
     half_log10_k: Constant | None = None  # of half_reaction as published
     half_enthalpy: Constant | None = None  # J/mol, the same
     half_fit: TemperatureFit | None = None  # of half_reaction, reduced to first ions
+    half_valid: tuple[float, float] | None = None  # K, from and to, of half_fit
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
 
@@ -79,6 +83,7 @@ class Species:
     log10_k: Constant  # at 25 degC, of formation from components; its sd is that of the published constant
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of formation from components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     ion_size: Constant | None = None  # m
     diffusion: Constant | None = None  # m2/s at 25 degC in free water
     default: bool = True  # False: only where a case asks for it
@@ -100,6 +105,7 @@ class Mineral:
     forms: bool  # on the default list: forms on the time scale of a column
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of dissolution to components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     also_called: tuple[str, ...] = ()
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
@@ -115,6 +121,7 @@ class Gas:
     log10_k: Constant  # at 25 degC, of dissolution to components; its sd is that of the published constant
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of dissolution to components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
     published: Constant | None = None  # log10 K of reaction.text, where that runs through other species
@@ -127,6 +134,7 @@ class Interaction:
     first: str  # the cation, or the neutral species
     second: str  # the anion, or the ion beside the neutral species
     coefficient: Constant  # kg/mol at 25 degC
+    holds: tuple[str, ...] = ()  # complexes that were counted as free ions: left out beside this coefficient
 
     @property
     def name(self) -> str:

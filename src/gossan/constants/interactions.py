@@ -10,7 +10,7 @@ from gossan.base.wrong import Wrong, did_you_mean
 from gossan.constants.document import Document, read_constant
 from gossan.constants.entries import Interaction
 
-SECTION = "interactions"
+SECTION, HOLDS = "interactions", "holds"
 BACKGROUND = ("ClO4^-",)  # ions of the salts in which constants are measured; no water here holds them
 UNIT = "kg/mol"
 
@@ -18,7 +18,7 @@ UNIT = "kg/mol"
 def read_interactions(
     document: Document, known: Collection[str], sources: dict[str, str], faults: list[Fault]
 ) -> dict[tuple[str, str], Interaction]:
-    """Read the pairs of a file, `"Na^+/Cl^-" = {value, sd, source, seen, note}`; faults go to the list.
+    """Read the pairs of a file, `"Na^+/Cl^-" = {value, sd, source, seen, note, holds}`, and list faults.
 
     known  names of components and species, the ions that a pair may be made of beside BACKGROUND
     """
@@ -27,13 +27,26 @@ def read_interactions(
     for pair, number in found.items() if isinstance(found, dict) else ():
         try:
             first, second = _ions(pair, known)
-            coefficient = read_constant(number, sources, 1.0, UNIT, sd_needed=True)
+            holds = _complexes(number, known)
+            bare = {key: part for key, part in number.items() if key != HOLDS} if holds else number
+            coefficient = read_constant(bare, sources, 1.0, UNIT, sd_needed=True)
         except Wrong as wrong:
             line = document.line_of(SECTION, "", pair)
             faults.append(Fault(document.file, line, f"{SECTION}.{pair}", wrong.wrong, wrong.right))
             continue
-        made[first, second] = Interaction(first, second, coefficient)
+        made[first, second] = Interaction(first, second, coefficient, holds)
     return made
+
+
+def _complexes(number: object, known: Collection[str]) -> tuple[str, ...]:
+    """The complexes that a coefficient says it holds."""
+    names = number.get(HOLDS, []) if isinstance(number, dict) else []
+    if not isinstance(names, list):
+        raise Wrong(f"has {HOLDS} = {names!r}", 'write a list of complexes: ["NaSO4^-"]')
+    for name in names:
+        if name not in known:
+            raise Wrong(f"holds {name}, which the table lacks", did_you_mean(str(name), known, quote=""))
+    return tuple(names)
 
 
 def _ions(pair: str, known: Collection[str]) -> tuple[str, str]:
