@@ -17,7 +17,7 @@ from gossan.transport.grid import Grid
 
 
 def decay_of(case: Case, chemical: int) -> Decay | None:
-    """Half-lives and parents of the tracers, which stand behind so many components (equations.md, 47)."""
+    """Half-lives and parents of the tracers, which stand behind so many components (equations.md, 53)."""
     names = case.tracer_names
     rates = np.zeros((len(names), len(names)))
     for row, name in enumerate(names):
@@ -46,7 +46,7 @@ def stagnant_of(case: Case, grid: Grid) -> Stagnant | None:
 
 
 def isotherms_of(case: Case, grid: Grid, components: tuple[str, ...]) -> Isotherms | None:
-    """The isotherms of all layers, per bulk: with the dry bulk density (equations.md, 49)."""
+    """The isotherms of all layers, per bulk: with the dry bulk density (equations.md, 55)."""
     tracers = case.tracer_names
     solutes = (*components, *tracers)
     laws: dict[int, dict[int, tuple[int, float, float]]] = {}

@@ -49,7 +49,7 @@ class Decay:
         return reached
 
     def over(self, dt: float) -> Kept:
-        """What dt (s) leaves and makes (equations.md, 47).
+        """What dt (s) leaves and makes (equations.md, 53).
 
         The series is summed for a step that is short enough, then doubled: sums of what is not negative, so
         that every entry keeps its digits, for equal rates in a chain as well as for unlike ones.
@@ -74,7 +74,7 @@ class Decay:
 
 
 def decayed(kept: Kept, stock: np.ndarray, gained: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
-    """What is left after a step, and what decay made of it (equations.md, 48).
+    """What is left after a step, and what decay made of it (equations.md, 54).
 
     stock   (member, cell) there at the start, >= 0; gained (member, cell) arrived evenly during the step, net
     Returns (member, cell) left, >= 0 where stock + gained is; (member, cell) left - stock - gained, below 0

@@ -15,7 +15,7 @@ NO_ATOM = 1e-45  # mol m-3 of bulk: less dissolved than this, ahead of a front w
 
 @dataclass(frozen=True, eq=False)
 class Isotherms:
-    """The laws of all solutes that sorb, in every cell (equations.md, 49); each row is one solute's.
+    """The laws of all solutes that sorb, in every cell (equations.md, 55); each row is one solute's.
 
     solutes   (sorbate,) int, rows of the solutes
     law       (sorbate, cell) int8: NOT_SORBED, LINEAR, FREUNDLICH or LANGMUIR
@@ -57,7 +57,7 @@ def sorbed_at(laws: Isotherms, concentration: np.ndarray) -> np.ndarray:
 
 
 def shared_out(laws: Isotherms, total: np.ndarray, water: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
-    """Dissolved and sorbed parts of a total, both mol m-3 of bulk (equations.md, 50).
+    """Dissolved and sorbed parts of a total, both mol m-3 of bulk (equations.md, 56).
 
     total   (sorbate, cell) mol m-3 of bulk, dissolved and sorbed together
     water   (cell,) m3 of water per m3 of bulk, > 0

@@ -30,7 +30,7 @@ def still_pore_space(problem: Problem, solid: np.ndarray) -> np.ndarray:
 
 
 def squeezed(problem: Problem, still: StillWater, dt: float) -> np.ndarray:
-    """(still,) s-1: water per bulk that goes from immobile into flowing water while solids grow in it."""
+    """(still,) s-1: water per bulk that solids squeeze out of immobile pores (equations.md, 59)."""
     return (still.water - still_pore_space(problem, still.solid)) / dt + still.swelling
 
 

@@ -53,7 +53,7 @@ class _Bed:
     sorbed: np.ndarray  # (sorbate, cell) before
 
     def settled(self, start: Equilibrium) -> tuple[Equilibrium, np.ndarray]:
-        """The equilibrium, and the sorbed amounts that isotherm and chemistry agree to (equations.md, 52).
+        """The equilibrium, and the sorbed amounts that isotherm and chemistry agree to (equations.md, 58).
 
         Where no mineral holds a component, all that is not sorbed is dissolved: the isotherm alone decides.
         Where one does, guess that it goes on to hold the concentration, and close what the isotherm then

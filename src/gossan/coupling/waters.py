@@ -154,7 +154,7 @@ class Beside:
         )
 
     def exchange(self, moved: np.ndarray, before: Stage | None) -> tuple[np.ndarray, np.ndarray]:
-        """What has come into the flowing water, and what goes on into the immobile water (equations.md, 51).
+        """What has come into the flowing water, and what goes on into the immobile water (equations.md, 57).
 
         moved (solute, cell) mol m-3 of bulk, dissolved in flowing water after the passages of this stage.
         Returns two (solute, still) mol m-3 of bulk. The second stage adds what the first found and constant
