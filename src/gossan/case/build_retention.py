@@ -7,6 +7,7 @@ import math
 import numpy as np
 
 from gossan.base.amounts import Amount
+from gossan.base.errors import Fault, InputError
 from gossan.case.model import Case, Layer
 from gossan.case.retention import Sorption
 from gossan.chemistry.decay import Decay
@@ -46,13 +47,22 @@ def stagnant_of(case: Case, grid: Grid) -> Stagnant | None:
 
 
 def isotherms_of(case: Case, grid: Grid, components: tuple[str, ...]) -> Isotherms | None:
-    """The isotherms of all layers, per bulk: with the dry bulk density (equations.md, 55)."""
+    """The isotherms of all layers, per bulk: with the dry bulk density (equations.md, 55).
+
+    Raises   InputError for a component that the system does not conserve by itself
+    """
     tracers = case.tracer_names
     solutes = (*components, *tracers)
     laws: dict[int, dict[int, tuple[int, float, float]]] = {}
     for index, layer in enumerate(case.layers):
         for key, said in layer.sorption.items():
             name = key if key in tracers else component_named(key, case.table.components).component
+            if name not in solutes:  # a valence that is coupled is part of its element's total
+                path = ("layers", index, "sorption", key)
+                wrong = f"is for {name}, which is no component of its own in this system"
+                where = f"layers.{layer.name}.sorption.{key}"
+                fault = Fault(case.file, case.line_of(*path), where, wrong, "name the total it is in")
+                raise InputError([fault])
             laws.setdefault(solutes.index(name), {})[index] = _law(case, layer, key, said)
     if not laws:
         return None

@@ -37,6 +37,6 @@ def validity_note(table: Table, system: System, temperature: float, shown: int =
 
 
 def _entries(table: Table, system: System) -> Iterator[Mineral | Gas | Species]:
-    yield from (table.minerals[name] for name in system.minerals)
+    yield from (table.minerals[name] for name in system.minerals if name in table.minerals)
     yield from (table.gases[name] for name in system.gases)
     yield from (table.species[name] for name in system.species if name in table.species)

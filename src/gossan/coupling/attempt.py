@@ -90,7 +90,7 @@ def _held_back(
     total = amount.copy()
     total[problem.sorbates] += state.sorbed
     total[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
-    positive = np.arange(len(amount)) != problem.system.matrices.signed
+    positive = ~np.isin(np.arange(len(amount)), problem.system.signed)
     return kept_positive(problem.transport, first, state.dissolved, state.water, total, passed, positive)
 
 

@@ -40,14 +40,14 @@ class State:
     water: np.ndarray  # (cell,) flowing water per bulk, m3 m-3
     swelling: np.ndarray  # (cell,) s-1, water per bulk that the last step's solids pushed out
     # what the last equilibrium left: the next one starts from it
-    ln_activity: np.ndarray  # (component, cell) of the components, molal
+    ln_activity: np.ndarray  # (basis, cell) of the components and of the valences that are coupled, molal
     ionic_strength: np.ndarray  # (cell,) mol per kg of water
     presence: np.ndarray  # (mineral, cell) int8: 0 absent, 1 present, 2 full (may dissolve only, none lost)
     solved: np.ndarray  # (component, cell) mol per kg of water, dissolved after the last solve: the skip rule
     still: StillWater | None  # the immobile water, where a layer has some
     # since time 0
     passed: np.ndarray  # (gate, solute, 2) mol m-2 through the inlet, the outlet, then each port
-    made: np.ndarray  # (solute, 2) mol m-2, grown less decayed
+    made: np.ndarray  # (solute, 2) mol m-2 that came from no water: grown less decayed, given by open gases
     water_passed: np.ndarray  # (3, 2) m: entered, left, freed by solids that dissolved less what they bound
     splitting_error: float  # running sum of the steps' error estimates, relative
 

@@ -96,13 +96,11 @@ class Waters:
         return np.concatenate([change, gone], axis=1)
 
     def made(self, stage: Stage) -> np.ndarray:
-        """(solute,) mol m-2: what has grown less what has decayed, in both waters."""
-        total = np.zeros(len(self.amount))
-        decay, width = self.problem.decay, self.problem.grid.width
-        if decay is not None and stage.flowing.made is not None:
-            total[decay.solutes] += stage.flowing.made @ width
-            if self.beside is not None and stage.still is not None and stage.still.made is not None:
-                total[decay.solutes] += stage.still.made @ width[self.beside.cells]
+        """(solute,) mol m-2: grown less decayed, and given by open gases, in both waters."""
+        problem, width = self.problem, self.problem.grid.width
+        total = _made(problem, stage.flowing, width, len(self.amount))
+        if self.beside is not None and stage.still is not None:
+            total += _made(problem, stage.still, width[self.beside.cells], len(total))
         return total
 
     def still_after(self, stage: Stage) -> StillWater | None:
@@ -178,7 +176,7 @@ class Beside:
         flowing[problem.sorbates] += self.sorbed
         still[problem.sorbates] += self.still.sorbed
         room = np.where(passed > 0.0, flowing, still)
-        signed = np.arange(len(passed)) == problem.system.matrices.signed
+        signed = np.isin(np.arange(len(passed)), problem.system.signed)
         over = (np.abs(passed) > room) & ~signed[:, None]
         if not over.any():
             return passed
@@ -208,7 +206,16 @@ def equilibrium_of(problem: Problem, water: State | StillWater) -> Equilibrium:
         ionic_strength=water.ionic_strength,
         solved=water.solved,
         steps=np.zeros(len(water.water), np.int64),
+        given=np.zeros((len(problem.system.open_gases), len(water.water))),
     )
+
+
+def _made(problem: Problem, landed: Landed, width: np.ndarray, solutes: int) -> np.ndarray:
+    total = np.zeros(solutes)
+    total[: problem.chemical] = problem.system.gas_supply.T @ (landed.found.given @ width)
+    if problem.decay is not None and landed.made is not None:
+        total[problem.decay.solutes] += landed.made @ width
+    return total
 
 
 def _capacity(problem: Problem, dissolved: np.ndarray, water: np.ndarray, sorbed: np.ndarray) -> np.ndarray:
