@@ -45,8 +45,8 @@ class Solute:
 def tracer_column(
     solutes: Sequence[Solute], *, velocity: float, dispersivity: float, length: float, cells: int,
     days: float, inlet: str = "flux", courant: float = 0.5, every: float | None = None,
-    pulse: float | None = None, porosity: float = POROSITY, immobile: str = "", accuracy: float = 0.9, more: str = "",
-    coupling: str = "two-stage",
+    pulse: float | None = None, porosity: float = POROSITY, immobile: str = "", accuracy: float = 0.9,
+    more: str = "", coupling: str = "two-stage",
 ) -> str:
     """The case; velocity m/d of all pores, others in m and d. The feed stops after pulse.
 

@@ -46,5 +46,5 @@ def test_a_fan_that_spreads():
     for speed, value in fan:
         assert found.at(10.0 * speed, 10.0) == pytest.approx(value, abs=4e-3)  # 0.012 demanded
     behind, ahead = found.at(10.0 * (1.0 / 9.0 - 0.01), 10.0), found.at(10.0 * (25.0 / 33.0 + 0.01), 10.0)
-    assert behind == pytest.approx(0.0, abs=4e-3)
-    assert ahead == pytest.approx(1.0, abs=4e-3)
+    assert behind == pytest.approx(0.0, abs=0.012)  # a fan's corners are round on any grid
+    assert ahead == pytest.approx(1.0, abs=0.012)
