@@ -91,6 +91,13 @@ ONE_FAULT = [
         [('Zn = "0.12 mg/L"', '"Fe(III)" = "1 mg/L"'), (CHEMISTRY, f"[chemistry]\n{IRON}")],
         "limits Fe^3+, which is coupled and counted as Fe^2+: limit Fe^2+, all valences together",
     ),
+    (
+        [
+            ("[layers.clogging]", '[layers.sorption."Fe(III)"]\nlaw="linear"\nkd="1 L/kg"\n[layers.clogging]'),
+            (CHEMISTRY, f"[chemistry]\n{IRON}"),
+        ],
+        "is for Fe^3+, which is coupled and counted as Fe^2+",
+    ),
 ]
 
 GOOD_ALL_THE_SAME = [

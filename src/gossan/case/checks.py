@@ -9,12 +9,12 @@ from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
 from gossan.case.check_column import check_flow, check_layers, check_ports
 from gossan.case.check_redox import check_redox
+from gossan.case.check_retention import check_parents, check_sorption
 from gossan.case.check_waters import check_tracer, check_waters, mineral_named, solute_named
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.quantities import Range
-from gossan.case.redox import coupled_by
-from gossan.constants.couples import partner
+from gossan.case.redox import counted_as
 from gossan.constants.entries import Table
 from gossan.constants.find import UnknownName, find_mineral
 
@@ -27,6 +27,8 @@ def check_case(draft: Draft, table: Table) -> None:
     check_flow(draft)
     check_chemistry(draft, table)
     check_ports(draft)
+    check_parents(draft)
+    check_sorption(draft, table)
     check_limits(draft, table)
 
 
@@ -64,7 +66,6 @@ def check_limits(draft: Draft, table: Table) -> None:
     """Limits stand at ports that exist, for solutes that exist, once each."""
     ports = [port.name for port in draft.case.ports or () if port.name is not None]
     tracers = _tracer_names(draft)
-    coupled = coupled_by(draft.case.chemistry, table)
     for port, limits in (draft.case.limits or {}).items():
         if port not in (*ports, "outlet"):
             cure = did_you_mean(port, dict.fromkeys((*ports, "outlet")))
@@ -84,10 +85,10 @@ def check_limits(draft: Draft, table: Table) -> None:
                 check_tracer(draft, key, limit, at)
                 continue
             named = solute_named(draft, table, key, limit, at)
-            if named and named.component in coupled:
-                first = partner(table.components[named.component])
+            first = counted_as(named.component, draft.case.chemistry, table) if named else ""
+            if named and first:
                 wrong = f"limits {named.component}, which is coupled and counted as {first}"
-                draft.fault(at, wrong, f"limit {first}, all valences together" * (first in table.components))
+                draft.fault(at, wrong, f"limit {first}, all valences together")
                 continue
             if named and named.component in seen:
                 wrong = f"limits {named.component} a second time, after {seen[named.component]}"

@@ -9,7 +9,7 @@ from __future__ import annotations
 import math
 from typing import Annotated, Any
 
-from pydantic import BaseModel, ConfigDict, Field, PrivateAttr
+from pydantic import Field, PrivateAttr
 
 from gossan.base.amounts import Amount, amount
 from gossan.base.errors import Fault, InputError
@@ -28,6 +28,8 @@ from gossan.case.quantities import (
     Solid,
     SolidAmount,
 )
+from gossan.case.retention import Immobile, Sorption
+from gossan.case.table import TableOfCase
 from gossan.constants.entries import Table
 from gossan.constants.load import load_table
 
@@ -42,14 +44,6 @@ TEMPERATURE = Quantity(
 )  # fmt: skip
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
-
-
-class TableOfCase(BaseModel):
-    """A table of the TOML, frozen once it is read."""
-
-    model_config = ConfigDict(
-        frozen=True, extra="forbid", arbitrary_types_allowed=True, populate_by_name=True
-    )
 
 
 class Water(TableOfCase):
@@ -158,8 +152,8 @@ class Layer(TableOfCase):
     rates: Later = Field(default=None, description="the kinetic steps that run here")
     exchange: Later = Field(default=None, description="cation exchange (Gaines-Thomas)")
     surface: Later = Field(default=None, description="hydrous ferric oxide with strong and weak sites")
-    sorption: Later = Field(default=None, description="an isotherm per component or tracer")
-    immobile: Later = Field(default=None, description="immobile water beside the flowing water")
+    sorption: dict[str, Sorption] = Field(default={}, description="an isotherm per component or tracer")
+    immobile: Immobile | None = Field(default=None, description="immobile water beside the flowing water")
 
     @property
     def cell_count(self) -> int:
@@ -182,8 +176,12 @@ class Tracer(TableOfCase):
     molar_mass: Annotated[
         Amount | None, Quantity(("kg/mol",), "a molar mass", '"79.9 g/mol"', positive=True)
     ] = Field(default=None, description="needed where amounts of it are in mass")
-    half_life: Later = Field(default=None, description="first-order decay")
-    parent: Later = Field(default=None, description="the tracer that decays into this one")
+    half_life: Annotated[Amount | None, Quantity(("s",), "a half-life", '"40 d"', positive=True)] = Field(
+        default=None, description="first-order decay, in flowing and immobile water and where it is sorbed"
+    )
+    parent: Annotated[str, Text(example='"nitrate"')] = Field(
+        default="", description="the tracer that decays into this one, mole for mole"
+    )
 
 
 class Feed(TableOfCase):

@@ -5,7 +5,7 @@ from __future__ import annotations
 from gossan.base.wrong import Wrong
 from gossan.case.model import Chemistry
 from gossan.chemistry.redox import uncoupled
-from gossan.constants.couples import couple_named, couples_of
+from gossan.constants.couples import couple_named, couples_of, partner
 from gossan.constants.entries import Mineral, Table
 
 
@@ -25,6 +25,11 @@ def coupled_by(chemistry: Chemistry | None, table: Table) -> frozenset[str]:
         except Wrong:
             continue
     return frozenset(found)
+
+
+def counted_as(component: str, chemistry: Chemistry | None, table: Table) -> str:
+    """The first ion of its element that a coupled valence is counted as; "" for what no couple ties."""
+    return partner(table.components[component]) if component in coupled_by(chemistry, table) else ""
 
 
 def carries_electrons(gas: str, coupled: frozenset[str], table: Table) -> bool:

@@ -36,7 +36,7 @@ def fizz(found: Equilibrium, ph: float) -> list[str]:
 
 
 def stability(pe: float, ph: float, temperature: float, table: Table) -> list[str]:
-    """Warn of, or refuse, a pe at which water itself falls apart at that pH (equations.md, 54)."""
+    """Warn of, or refuse, a pe at which water itself falls apart at that pH (equations.md, 61)."""
     log10_pressure, gas = max((p, gas) for gas, p in pressures_of_water(pe, ph, temperature, table).items())
     if log10_pressure <= WARN_BUBBLES:
         return []
@@ -51,7 +51,7 @@ def stability(pe: float, ph: float, temperature: float, table: Table) -> list[st
 
 
 def oxygen(found: float, temperature: float) -> list[str]:
-    """Warn of more dissolved oxygen (mol/kg) than air would leave in the water (equations.md, 55)."""
+    """Warn of more dissolved oxygen (mol/kg) than air would leave in the water (equations.md, 62)."""
     share = found / air_saturated(temperature)
     if share <= WARN_OXYGEN:
         return []

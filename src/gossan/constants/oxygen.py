@@ -10,7 +10,7 @@ _BENSON_KRAUSE = (-135.29996, 1.572288e5, -6.637149e7, 1.243678e10, -8.621061e11
 
 
 def air_saturated(temperature: float) -> float:
-    """Dissolved oxygen of fresh water under air at 1 atm, mol per kg of water (equations.md, 55).
+    """Dissolved oxygen of fresh water under air at 1 atm, mol per kg of water (equations.md, 62).
 
     temperature  K
     Valid    0 to 40 degC, fresh water at sea level; salt and height take from it (1 % per 100 m)

@@ -12,7 +12,7 @@ ELECTRONS_OF_OXYGEN = 4.0  # 2 H2O = O2 + 4 H^+ + 4 e^-
 
 
 def pe_of_potential(volts: float, temperature: float) -> float:
-    """The pe of a redox potential against the hydrogen electrode (equations.md, 53).
+    """The pe of a redox potential against the hydrogen electrode (equations.md, 60).
 
     volts        V, against the hydrogen electrode and no other
     temperature  K
@@ -24,7 +24,7 @@ def pe_of_potential(volts: float, temperature: float) -> float:
 
 
 def potential_of_pe(pe: float, temperature: float) -> float:
-    """The redox potential of a pe in V, against the hydrogen electrode (equations.md, 53).
+    """The redox potential of a pe in V, against the hydrogen electrode (equations.md, 60).
 
     >>> round(potential_of_pe(-4.0, 298.15), 3)
     -0.237
@@ -33,7 +33,7 @@ def potential_of_pe(pe: float, temperature: float) -> float:
 
 
 def pe_of_oxygen(activity: float, ph: float, temperature: float, table: Table) -> float:
-    """The pe that dissolved oxygen stands for, were it at equilibrium with water (equations.md, 54).
+    """The pe that dissolved oxygen stands for, were it at equilibrium with water (equations.md, 61).
 
     activity  of dissolved oxygen, > 0, molal scale
     """
@@ -42,7 +42,7 @@ def pe_of_oxygen(activity: float, ph: float, temperature: float, table: Table) -
 
 
 def pressures_of_water(pe: float, ph: float, temperature: float, table: Table) -> dict[str, float]:
-    """log10 of the pressures, atm, of oxygen and hydrogen over water of this pe and pH (equations.md, 54).
+    """log10 of the pressures, atm, of oxygen and hydrogen over water of this pe and pH (equations.md, 61).
 
     Water is stable where both are small: above 1 atm it would give off bubbles.
     """
