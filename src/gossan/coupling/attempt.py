@@ -116,7 +116,7 @@ def _held_back(
 def _equilibrium(problem: Problem, state: State) -> Equilibrium:
     """The equilibrium that a state was left in, where the next solve starts."""
     return Equilibrium(
-        system=problem.system,
+        system=problem.settled_in or problem.system,
         amount=state.dissolved[: problem.chemical],
         solid=state.solid,
         presence=state.presence,
