@@ -137,4 +137,7 @@ def time_to_pass(volume: float, inlet: tuple[float, float]) -> float:
 
 def at_once(settled: State, before: State) -> State:
     """A state that has settled anew in no time: what solids pushed out then goes on no longer."""
-    return replace(settled, time=before.time, step=before.step, swelling=before.swelling)
+    still = settled.still
+    if still is not None and before.still is not None:
+        still = replace(still, swelling=before.still.swelling)
+    return replace(settled, time=before.time, step=before.step, swelling=before.swelling, still=still)
