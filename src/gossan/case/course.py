@@ -102,7 +102,7 @@ def _fluxes(piece: Piece) -> tuple[float | None, float | None]:
 
 
 def volume_at(pieces: Sequence[Piece], time: float) -> float:
-    """m3 m-2 that have entered by a time, s, under held fluxes (equations.md, 80)."""
+    """m3 m-2 that have entered by a time, s, under held fluxes (equations.md, 63)."""
     volume = 0.0
     for i, piece in enumerate(pieces):
         end = pieces[i + 1].start if i + 1 < len(pieces) else math.inf

@@ -25,7 +25,7 @@ def clock(problem: Problem, state: State) -> float:
 
 
 def settled(problem: Problem, state: State) -> Problem:
-    """The problem with the chemistry at the temperature that a state was left in.
+    """The problem with the chemistry at the temperature that a state was left in (equations.md, 65).
 
     Where the temperature jumps, a state that stands at the jump still has the one before it.
     """
@@ -82,7 +82,7 @@ class Drive:
         return (mean - first) / (0.5 * dt)
 
     def mean_inflow(self, dt: float, inlet: tuple[float, float]) -> np.ndarray:
-        """(solute,) mol m-3: what enters in a step of dt over the water that does (equations.md, 81).
+        """(solute,) mol m-3: what enters in a step of dt over the water that does (equations.md, 64).
 
         inlet  its Darcy flux at this instant, m s-1, and how fast that changes, m s-2
         """

@@ -21,7 +21,7 @@ class Push(NamedTuple):
 
 @dataclass(frozen=True, eq=False)
 class Feeds:
-    """Pieces on a clock, all straight within a piece (equations.md, 80); what jumps does so between two.
+    """Pieces on a clock, all straight within a piece (equations.md, 63); what jumps does so between two.
 
     Each array holds the values at the start of a piece and at its end. The last piece has no end: there the
     two are alike.
