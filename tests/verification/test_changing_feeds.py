@@ -52,8 +52,10 @@ def step(x: np.ndarray, passed: float) -> np.ndarray:
     )
 
 
-def ramped(x: np.ndarray, moved: Callable[[float], float], start: float, end: float, now: float) -> np.ndarray:
-    """The same of an inflow that rises from 0 to 1 between two times, d; moved: how far water is by a time."""
+def ramped(
+    x: np.ndarray, moved: Callable[[float], float], start: float, end: float, now: float
+) -> np.ndarray:
+    """The same of an inflow that rises from 0 to 1 between two times, d; moved: m of the water by a time."""
     last = min(end, now)
 
     def at(place: float) -> float:
