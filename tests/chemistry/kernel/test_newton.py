@@ -41,7 +41,7 @@ class Ground:
         self.bench.total[:] = battery(seed, 1)[0]
         self.bench.ln_activity[:] = x
         reduce_species(self.matrices, self.bench, n, self.free)
-        reduce_totals(self.bench, n, self.free)
+        reduce_totals(self.matrices, self.bench, n, self.free)
         self.reduced = self.bench.reduced[: self.free, :SPECIES]
         self.ln_k = self.bench.reduced_ln_k[:SPECIES]
         # constants such that no water is a brine, where near_step shortens its way on purpose

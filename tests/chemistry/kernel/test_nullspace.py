@@ -100,6 +100,36 @@ def test_pivots_follow_and_the_minerals_are_saturated():
         assert saturation == pytest.approx(0.0, abs=1e-12)
 
 
+def exact_rows(done) -> list[list[Fraction]]:
+    """The reduced rows as fractions: what Gauss-Jordan on whole numbers gives for these pivots."""
+    rows = [[Fraction(value) for value in row] for row in done.stoichiometry.tolist()]
+    for r, p in enumerate(done.pivot):
+        best = next(i for i in range(r, len(rows)) if rows[i][p])
+        rows[r], rows[best] = rows[best], rows[r]
+        rows[r] = [value / rows[r][p] for value in rows[r]]
+        for i in range(len(rows)):
+            if i != r and rows[i][p]:
+                rows[i] = [a - rows[i][p] * b for a, b in zip(rows[i], rows[r], strict=True)]
+    return rows
+
+
+def test_coefficients_that_are_no_doubles_lose_nothing():
+    """Three of one to seven of the other: thirds of two totals that cancel to fifteen digits."""
+    done = Eliminated(marked("covellite"), np.full(COMPONENTS, 1e-3))
+    k, other = done.free[0], done.pivot[0]
+    solid = np.zeros_like(done.matrices.solid)
+    solid[done.active[0], [other, k]] = [3.0, -7.0]
+    done.bench.rows[0] = 0.0
+    done.bench.rows[0, [other, k]] = [1.0, -7.0 / 3.0]
+    done.bench.turns[0, 0] = 1.0 / 3.0
+    done.bench.total[:] = 0.0
+    done.bench.total[other], done.bench.total[k] = 0.3, -0.7
+    reduce_totals(done.matrices._replace(solid=solid), done.bench, done.n, done.f)
+    exact = Fraction(-0.7) + Fraction(7, 3) * Fraction(0.3)
+    assert abs(exact) < Fraction(1, 10**15)
+    assert done.bench.reduced_total[0] == pytest.approx(float(exact), rel=1e-12)
+
+
 def test_totals_are_subtracted_as_if_exactly():
     """Totals that cancel to twelve digits and more: one rounding is left of all subtractions."""
     rng = np.random.default_rng(5)
@@ -109,10 +139,11 @@ def test_totals_are_subtracted_as_if_exactly():
         total = MINE.dissolution.T @ (presence * 10.0 ** rng.uniform(-6, 0, MINERALS))
         total += 1e-16 * rng.uniform(-1, 1, COMPONENTS)
         done.bench.total[:] = total
-        reduce_totals(done.bench, done.n, done.f)
+        reduce_totals(done.matrices, done.bench, done.n, done.f)
+        rows = exact_rows(done)
         for j, k in enumerate(done.free):
             terms = [Fraction(total[k])]
-            terms += [Fraction(-done.rows[r, k] * total[p]) for r, p in enumerate(done.pivot)]
+            terms += [-rows[r][k] * Fraction(total[p]) for r, p in enumerate(done.pivot)]
             exact = sum(terms)
             lost = EPS**2 * sum(abs(term) for term in terms) * len(terms)
             assert abs(Fraction(done.bench.reduced_total[j]) - exact) <= EPS * abs(exact) + lost

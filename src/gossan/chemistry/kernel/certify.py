@@ -1,4 +1,4 @@
-"""An answer put back into its equations with twice the digits, and what it is off by (equations.md, 65 and 66).
+"""An answer put back into its equations with twice the digits, and what it is off by (equations.md, 68 and 69).
 
 All that is asked of a cell is its ln activities, ionic strength, marks and amounts: how they were found
 plays no part, and nothing of the solve is used again.
@@ -361,7 +361,7 @@ def certify_cells(
     matrices, desk, tied, weight, total, held, ln_activity, ionic_strength, balance, strength, saturation,
     error,
 ):
-    """Judge every cell of an answer (equations.md, 65 and 66).
+    """Judge every cell of an answer (equations.md, 68 and 69).
 
     tied (row, cell) int8: 1 where the row is saturated; rows are minerals, couples, open gases
     weight (cell,) kg of water per unit; total (component, cell) what is there, per unit; held (row, cell)

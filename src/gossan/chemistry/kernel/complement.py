@@ -52,7 +52,7 @@ def reduce_all(matrices, bench, dissolved, solid, upper, presence, entering):
     # minerals that found no room were marked absent or full: what they hold belongs to the totals now
     fill_totals(matrices, bench, dissolved, solid, upper, presence)
     reduce_species(matrices, bench, active, free)
-    reduce_totals(bench, active, free)
+    reduce_totals(matrices, bench, active, free)
     return active, free
 
 

@@ -12,6 +12,8 @@ electron balance is left in terms of what is scarce, and not as a difference of 
 
 from __future__ import annotations
 
+import math
+
 import numpy as np
 
 from gossan.base.jit import kernel
@@ -196,18 +198,47 @@ def pivot_constant(matrices, bench, active, row):
 
 
 @kernel(inner=True, forceinline=True)
-def reduce_totals(bench, active, free):
-    """Subtract the pivots' totals from the free ones', keeping what rounding would lose of sums and products."""
-    rows, total = bench.rows, bench.total
+def reduce_totals(matrices, bench, active, free):
+    """Subtract the pivots' totals from the free ones', keeping what rounding would lose of every operation."""
+    rows, total, missed = bench.rows, bench.total, bench.right
     for j in range(free):
         k = bench.free[j]
+        whole = True
+        for r in range(active):
+            twice = 2.0 * rows[r, k]
+            whole = whole and twice == math.floor(twice)
+            missed[r] = 0.0
+        if not whole:
+            refine_column(matrices, bench, active, k)
         value = total[k]
         lost = 0.0
         for r in range(active):
-            term, rest = two_product(-rows[r, k], total[bench.pivot[r]])
-            value, missed = two_sum(value, term)
-            lost += missed + rest
+            amount = total[bench.pivot[r]]
+            term, rest = two_product(-rows[r, k], amount)
+            value, rounded = two_sum(value, term)
+            lost += rounded + rest - missed[r] * amount
         bench.reduced_total[j] = value + lost
+
+
+@kernel(inner=True)
+def refine_column(matrices, bench, active, k):
+    """Fill bench.right with what the reduced rows' coefficients of one of the basis lost in rounding.
+
+    Thirds and tenths are no doubles, and their totals may cancel to a ten thousandth. The exact coefficients
+    R give S = S_pivot R with the minerals' own S, of small numbers; what is left of that, times the turns.
+    """
+    for a in range(active):
+        mineral = bench.active[a]
+        left, lost = matrices.solid[mineral, k], 0.0
+        for r in range(active):
+            term, rest = two_product(-matrices.solid[mineral, bench.pivot[r]], bench.rows[r, k])
+            left, rounded = two_sum(left, term)
+            lost += rounded + rest
+        bench.side[a] = left + lost
+    for r in range(active):
+        bench.right[r] = 0.0
+        for a in range(active):
+            bench.right[r] += bench.turns[r, a] * bench.side[a]
 
 
 @kernel(inner=True, forceinline=True)
