@@ -1,6 +1,7 @@
 """How long a bed of sediment or reactive mix holds back the metals of mine water, and why.
 
-From Python: `load_case`, `run`, `open_result`, `assay`, `equilibrate` and `certify`; each is imported when first used.
+From Python: `load_case`, `run`, `open_result`, `assay`, `equilibrate` and `certify`; each is imported when
+first used.
 """
 
 from __future__ import annotations

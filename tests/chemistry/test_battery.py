@@ -1,7 +1,7 @@
 """Random waters by the thousand: all converge, meet every condition, and stand up to other methods.
 
-The waters: tests/support/battery.py and redox_waters.py; the systems: tools/battery/mixes.py. The judges: plain
-numpy, a convex minimum of Gibbs energy, cantera, Newton at 60 and 120 digits.
+The waters: tests/support/battery.py and redox_waters.py; the systems: tools/battery/mixes.py. The judges:
+plain numpy, a convex minimum of Gibbs energy, cantera, Newton at 60 and 120 digits.
 """
 
 from __future__ import annotations

@@ -9,8 +9,8 @@ import pytest
 from tests.oracles.activity_laws import davies
 from tests.oracles.plain_speciation import speciate
 from tests.support.battery import battery
-from tests.support.small_systems import MINE_COMPONENTS, MINE_MINERALS
 from tests.support.plain_of import plain_of
+from tests.support.small_systems import MINE_COMPONENTS, MINE_MINERALS
 from tools.battery.mixes import mine_system
 
 from gossan.base.errors import SolveError

@@ -87,6 +87,19 @@ def test_assay_json_is_what_the_contract_says(waters_file, capsys):
     assert mine["saturation"]["gypsum"] < 0.0
 
 
+def test_assay_certifies_if_asked(waters_file, capsys):
+    found = as_json(capsys, "assay", str(waters_file), "--certificate")["waters"]["mine"]["certificate"]
+    assert set(found) == {"balance", "ionic_strength", "ln_activity"}
+    assert 0.0 <= max(found["balance"].values()) < 1e-12
+    assert 0.0 < max(found["ln_activity"].values()) < 1e-12
+    assert main(["assay", str(waters_file), "mine", "--certificate"]) == 0
+    printed = capsys.readouterr().out
+    for word in ("Certificate", "mass balances", "ln activities", "32 digits"):
+        assert word in printed
+    assert main(["assay", str(waters_file), "mine"]) == 0
+    assert "Certificate" not in capsys.readouterr().out
+
+
 def test_assay_warns_of_hydrogen_sulfide_and_counts_gases_in_bar(waters_file, capsys):
     gate = as_json(capsys, "assay", str(waters_file), "gate")["waters"]["gate"]
     molality = gate["species"]["H2S"]["molality"]

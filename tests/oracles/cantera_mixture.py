@@ -1,14 +1,14 @@
 """Equilibrium of an ideal solution and pure solids by cantera, a general library of thermodynamics.
 
-What it can express: one ideal solution in mole fractions, pure solids of fixed composition, any elements, and
-so redox. What it cannot: activity coefficients beside molalities, gases held open, upper bounds. A molality is
-a mole fraction where the solvent is plenty; that it is one exactly, the potentials count from the amount of
-solution that the judged answer has:
+What it can express: one ideal solution in mole fractions, pure solids of fixed composition, any elements,
+and so redox. What it cannot: activity coefficients beside molalities, gases held open, upper bounds. A
+molality is a mole fraction where the solvent is plenty; that it is one exactly, the potentials count from the
+amount of solution that the judged answer has:
 
     ln (n / N) + ln N - ln K = ln n - ln K          N = solvent and dissolved species, mol
 
 Every component is an element of its own, with a charge; H^+ is hydrogen and e^- is charge. Pure water, of
-which there is plenty and whose potential is nil, lends oxygen and hydrogen to what has fewer protons than none.
+which there is plenty and whose potential is nil, lends oxygen and hydrogen to what has less than no protons.
 """
 
 from __future__ import annotations
@@ -50,7 +50,8 @@ def cantera_equilibrium(
     mixed = _phase(system, "ideal-condensed", species, {"standard-concentration-basis": "unity"})
     phases = [mixed]
     for m, made in enumerate(solids):
-        phases.append(_phase(system, "fixed-stoichiometry", [_species(f"m{m}", made, system.mineral_ln_k[m])]))
+        solid = _species(f"m{m}", made, system.mineral_ln_k[m])
+        phases.append(_phase(system, "fixed-stoichiometry", [solid]))
     phases.append(_phase(system, "fixed-stoichiometry", [_species("water", {"H": 2.0, "O": 1.0}, 0.0)]))
     mixture = ct.Mixture([(phase, 1.0) for phase in phases])
     mixture.T, mixture.P = KELVIN, ct.one_atm
@@ -107,7 +108,8 @@ def _phase(system: PlainSystem, thermo: str, species: list[dict], more: dict | N
         "elements": [{"symbol": name, "atomic-weight": 1.0} for name in own],
         "phases": [{
             "name": species[0]["name"], "thermo": thermo, "elements": elements,
-            "species": [each["name"] for each in species], "state": {"T": KELVIN, "P": "1 atm"}, **(more or {}),
+            "species": [each["name"] for each in species], "state": {"T": KELVIN, "P": "1 atm"},
+            **(more or {}),
         }],
         "species": species,
     }  # fmt: skip

@@ -5,9 +5,9 @@ In units of RT, and with the components' standard potentials at zero, the energy
     sum c (ln c - 1 - ln_k) + sum n mineral_ln_k      subject to  formation' c + dissolution' n = totals,
 
 c >= 0, 0 <= n <= upper (van Zeggeren & Storey 1970, The Computation of Chemical Equilibria, from memory). The
-ln activities are the multipliers of the mass balances. Electrons are balanced like any component, and there is
-no species of them; what an open gas gives may have either sign. Nothing here knows Newton's method or active
-sets.
+ln activities are the multipliers of the mass balances. Electrons are balanced like any component, and there
+is no species of them; what an open gas gives may have either sign. Nothing here knows Newton's method or
+active sets.
 """
 
 from __future__ import annotations
@@ -22,8 +22,8 @@ from tests.support.small_systems import PlainSystem
 
 ACCURACY = 1e-6  # an answer is refused unless it is exact for totals and ln constants moved by less than this
 LN10 = np.log(10.0)
-# pH and pe at which the energies of H^+ and e^- are counted as nil to begin with; the next one where the solver
-# gets nowhere, since it does not like energies of hundreds of RT
+# pH and pe at which the energies of H^+ and e^- are counted as nil to begin with; the next one where the
+# solver gets nowhere, since it does not like energies of hundreds of RT
 ORIGINS = ((0.0, 0.0), (7.0, 4.0), (7.0, -4.0), (4.0, 13.0), (10.0, -8.0))
 ROUNDS = 5  # each starts the solver anew from energies measured against the last multipliers
 SOLVER = {

@@ -120,7 +120,9 @@ def _exactly(values: ArrayLike) -> list:
 
 
 def _both(values: ArrayLike, rest: ArrayLike | None) -> list:
-    return _exactly(values) if rest is None else [a + b for a, b in zip(_exactly(values), _exactly(rest))]
+    if rest is None:
+        return _exactly(values)
+    return [a + b for a, b in zip(_exactly(values), _exactly(rest), strict=True)]
 
 
 def _right_set(water, x, presence):

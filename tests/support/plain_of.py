@@ -44,7 +44,8 @@ def plain_of(system: System) -> PlainSystem:
         return float(exact), float(exact - Fraction(float(exact)))
 
     formed = np.array([split(matrices.ln_k[s], matrices.stoichiometry[:, s], 1) for s in there])
-    dissolved = np.array([split(matrices.solid_ln_k[r], matrices.solid[r], -1) for r in solids]).reshape(-1, 2)
+    dissolved = np.array([split(matrices.solid_ln_k[r], matrices.solid[r], -1) for r in solids])
+    dissolved = dissolved.reshape(len(solids), 2)
     names = [*system.species, *(f"unnamed {s}" for s in unnamed)]
     return PlainSystem(
         components=system.components,

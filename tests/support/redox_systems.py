@@ -65,7 +65,7 @@ def redox_system(
 
 
 class _Frame:
-    """Conserved components, and how everything else is made of them; constants are log10 at one temperature."""
+    """Conserved components, and how all else is made of them; constants are log10 at one temperature."""
 
     def __init__(self, table: Table, components: Sequence[str], kelvin: float):
         self.table, self.kelvin = table, kelvin

@@ -27,7 +27,7 @@ def main() -> int:
     parser.add_argument("--mix", nargs="+", choices=[*MIXES], default=[*MIXES], help="default: all of them")
     parser.add_argument("--waters", type=int, default=2000, help="of each mix")
     parser.add_argument("--seed", type=int, default=20261201)
-    parser.add_argument("--hard", type=int, default=0, metavar="K", help="settle the K hardest at many digits")
+    parser.add_argument("--hard", type=int, default=0, metavar="K", help="settle the K hardest")
     parser.add_argument("--activity", default="davies", choices=("davies", "debye-hueckel", "ideal"))
     parser.add_argument("--change", default="", choices=["", *CHANGES])
     parser.add_argument("--no-certificates", action="store_true", help="judge in plain numpy alone: faster")

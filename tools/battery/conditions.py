@@ -43,7 +43,7 @@ class Conditions:
 
 
 def molalities(plain: PlainSystem, law: LnGamma | None, x: np.ndarray, strength: np.ndarray) -> np.ndarray:
-    """(species, water) mol per kg of water, from ln activities (component, water) and ionic strength alone."""
+    """(species, water) mol/kg, from ln activities (component, water) and ionic strength alone."""
     logs = np.zeros((len(plain.species), 1))
     if law is not None:
         logs = np.array([law(value) for value in strength.tolist()], dtype=float).T
@@ -89,7 +89,7 @@ def conditions(answers: Answers) -> Conditions:
 
 
 def _couples_off(answers: Answers) -> np.ndarray:
-    """(couple, water): |ln| by which each valence is off what its first ion, protons and electrons make of it."""
+    """(couple, water): |ln| by which each valence is off what its first ion and electrons make of it."""
     system, x = answers.batch.system, answers.found.ln_activity
     ends, count = len(system.minerals), len(system.components)
     ties = slice(ends, ends + len(system.basis) - count)

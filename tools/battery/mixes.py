@@ -1,4 +1,4 @@
-"""Which systems and waters there are: every mix is a dozen systems from 0 to 50 degC, a batch of waters each."""
+"""Which systems and waters there are: a mix is a dozen systems from 0 to 50 degC, each with its waters."""
 
 from __future__ import annotations
 

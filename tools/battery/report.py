@@ -38,7 +38,8 @@ class Report:
         name, found = answers.batch.name, answers.found
         self.failures += [f"{name}, water {water}: {reason}" for water, reason in answers.failures]
         for cell in np.flatnonzero(judged_by.broken()).tolist():
-            wrong = [f"{what} {off[cell]:.1e}" for what, off in judged_by.off.items() if not off[cell] <= LIMITS[what]]
+            here = {what: off[cell] for what, off in judged_by.off.items()}
+            wrong = [f"{what} {off:.1e}" for what, off in here.items() if not off <= LIMITS[what]]
             self.failures.append(f"{name}, water {answers.water[cell]}: {', '.join(wrong)}")
         for what, off in judged_by.off.items():
             cell = int(np.argmax(off))
@@ -63,7 +64,8 @@ class Report:
     def lines(self) -> Iterator[str]:
         """The report, for people."""
         solved = sum(map(len, self.steps))
-        yield f"{self.mix}: {solved} of {self.asked} waters converged, {1e6 * self.seconds / self.asked:.0f} us each"
+        each = 1e6 * self.seconds / self.asked
+        yield f"{self.mix}: {solved} of {self.asked} waters converged, {each:.0f} us each"
         yield from (f"  FAILED {one}" for one in self.failures[:MOST_LINES])
         if len(self.failures) > MOST_LINES:
             yield f"  and {len(self.failures) - MOST_LINES} more failed"
@@ -73,7 +75,8 @@ class Report:
             if value > 0.0:
                 yield f"  {what}: at worst {value:.1e} ({where}), allowed {LIMITS[what]:g}"
         steps = np.concatenate(self.steps)
-        yield f"  Newton steps: median {np.median(steps):.0f}, 99 % {np.quantile(steps, 0.99):.0f}, most {steps.max()}"
+        middle, late = np.quantile(steps, [0.5, 0.99])
+        yield f"  Newton steps: median {middle:.0f}, 99 % {late:.0f}, most {steps.max()}"
         for what, parts in (("pH", self.ph), ("pe", self.pe)):
             if parts:
                 every = np.concatenate(parts)
@@ -95,14 +98,15 @@ class Report:
         errors = [one.error for one in self.settled]
         hard = max(self.settled, key=lambda one: one.error)
         yield (
-            f"  {len(errors)} hardest at many digits: ln activity off by {hard.error:.1e} at worst ({hard.name}, "
-            f"water {hard.water}), median {np.median(errors):.1e};"
+            f"  {len(errors)} hardest at many digits: ln activity off by {hard.error:.1e} at worst "
+            f"({hard.name}, water {hard.water}), median {np.median(errors):.1e};"
         )
         amount = max(one.amount_error for one in self.settled)
         covered = np.array([one.covered for one in self.settled])
         yield (
             f"    amounts off by {amount:.1e} of the largest total; "
-            f"{(covered <= 1.0).sum()} of {len(covered)} errors within their certificates, at most {covered.max():.3f} of it"
+            f"{(covered <= 1.0).sum()} of {len(covered)} errors within their certificates, "
+            f"at most {covered.max():.3f} of it"
         )
         for one in self.settled:
             if one.changes:

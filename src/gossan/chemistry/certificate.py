@@ -1,4 +1,4 @@
-"""What an equilibrium is worth: its residuals in doubled precision, and how far its answer is from the truth."""
+"""What an equilibrium is worth: its residuals in doubled precision, and how far it is from the truth."""
 
 from __future__ import annotations
 

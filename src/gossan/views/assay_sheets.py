@@ -114,8 +114,9 @@ def _gases(one: WaterAssay) -> Iterator[Sheet]:
 def _certificate(one: WaterAssay) -> Sheet:
     found, system = one.certificate, one.water.system
     worst, off = int(found.balance[:, 0].argmax()), int(found.ln_activity[:, 0].argmax())
+    scarce = system.components[worst]
     rows = (
-        ("mass balances", f"{found.balance[worst, 0]:.1e}", f"of the largest term, {system.components[worst]}"),
+        ("mass balances", f"{found.balance[worst, 0]:.1e}", f"of the largest term, {scarce}"),
         ("ionic strength", f"{found.ionic_strength[0]:.1e}", "of itself"),
         ("ln activities", f"{found.ln_activity[off, 0]:.1e}", f"estimated, {system.species[off]}"),
     )

@@ -7,7 +7,9 @@ from fractions import Fraction
 import numpy as np
 import pytest
 
-from gossan.chemistry.kernel.certify import desk, eliminate_tied, follow, invert
+from gossan.chemistry.kernel.certify import desk
+from gossan.chemistry.kernel.dense import invert
+from gossan.chemistry.kernel.pairs import eliminate_tied, follow
 
 
 def laid_out(rows: np.ndarray, right: np.ndarray, order: list[int]):

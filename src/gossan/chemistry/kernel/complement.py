@@ -33,7 +33,8 @@ from gossan.chemistry.kernel.nullspace import (
     scarcer_free,
 )
 
-SETTLED = 1e-7  # a last step below this leaves an error of about its square, times that of a formula's largest number
+# a last step below this leaves an error of about its square, times that of a formula's largest number
+SETTLED = 1e-7
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
 NEAR = 0.3  # mismatch below which the balances' own Newton step converges
 LOOK = 1e-2  # mismatch below which wrong marks already show

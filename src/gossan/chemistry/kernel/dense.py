@@ -88,3 +88,27 @@ def solve_general(matrix, n, right):
             value -= matrix[i, k] * right[k]
         right[i] = value / matrix[i, i]
     return True
+
+
+@kernel(inner=True)
+def invert(matrix, n):
+    """Turn (matrix | unit) into (unit | inverse), in place; False where it is singular."""
+    for j in range(n):
+        best = j
+        for i in range(j + 1, n):
+            if abs(matrix[i, j]) > abs(matrix[best, j]):
+                best = i
+        if not abs(matrix[best, j]) > 1e-300:
+            return False
+        if best != j:
+            for c in range(2 * n):
+                matrix[j, c], matrix[best, c] = matrix[best, c], matrix[j, c]
+        head = matrix[j, j]
+        for c in range(2 * n):
+            matrix[j, c] /= head
+        for i in range(n):
+            share = matrix[i, j]
+            if i != j and share != 0.0:
+                for c in range(2 * n):
+                    matrix[i, c] -= share * matrix[j, c]
+    return True

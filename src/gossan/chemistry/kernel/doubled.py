@@ -1,6 +1,7 @@
 """Numbers of twice the digits: a pair of doubles whose sum is meant, about 32 decimal digits.
 
-The high part is the double nearest to the sum.  Sums and products of doubles are exact (equations.md, 66) as long as the compiler neither regroups nor fuses, which no kernel here allows it to.
+The high part is the double nearest to the sum.  Sums and products of doubles are exact (equations.md, 66) as
+long as the compiler neither regroups nor fuses, which no kernel here allows it to.
 """
 
 from __future__ import annotations

@@ -199,7 +199,7 @@ def pivot_constant(matrices, bench, active, row):
 
 @kernel(inner=True, forceinline=True)
 def reduce_totals(matrices, bench, active, free):
-    """Subtract the pivots' totals from the free ones', keeping what rounding would lose of every operation."""
+    """Subtract the pivots' totals from the free ones', keeping what rounding would lose."""
     rows, total, missed = bench.rows, bench.total, bench.right
     for j in range(free):
         k = bench.free[j]
