@@ -115,11 +115,13 @@ def kept(path: Path) -> dict:
     """The checkpoint within a file, its arrays as bytes."""
     with h5py.File(path, "r", locking=False) as file:
         parts = decode(file["checkpoint/state"][:].tobytes()).parts
-    return {
-        (part, name): value.tobytes() if isinstance(value, np.ndarray) else value
-        for part, values in parts.items()
-        for name, value in values.items()
-    }
+    return {part: in_bytes(values) for part, values in parts.items()}
+
+
+def in_bytes(value):
+    if isinstance(value, dict):
+        return {name: in_bytes(each) for name, each in value.items()}
+    return value.tobytes() if isinstance(value, np.ndarray) else value
 
 
 @pytest.mark.parametrize("step", [1, 5, 23, 24, 60])
