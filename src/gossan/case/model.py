@@ -16,8 +16,11 @@ from gossan.base.errors import Fault, InputError
 from gossan.case.fields import Choice, Flag, Names, NotLanded, Number, Text
 from gossan.case.quantities import (
     Alkalinity,
+    GasPressure,
+    HeldGas,
     InWater,
     Limit,
+    Oxygen,
     Place,
     Quantity,
     Range,
@@ -47,6 +50,17 @@ class Water(TableOfCase):
     """A laboratory report, as the laboratory writes it; without analysis it is pure water."""
 
     pH: PH = Field(default=7.0, description="pH; with `balance_on = \"pH\"` a first guess")
+    Eh: Annotated[
+        Amount | None,
+        Quantity(("V",), "a redox potential", '"310 mV"', -3.0, 3.0,
+                 says="a redox potential of water is between -3 and 3 V"),
+    ] = Field(default=None, description="redox potential against the hydrogen electrode; or `pe`")
+    pe: Annotated[float | None, Number("a pe", -50, 50, example="5.2")] = Field(
+        default=None, description="-log10 of the electron's activity; or `dissolved_oxygen`"
+    )
+    dissolved_oxygen: Annotated[Amount | None, Oxygen()] = Field(
+        default=None, description="the oxygen found; it stands for a pe as well"
+    )
     alkalinity: Annotated[Amount | None, Alkalinity()] = Field(
         default=None,
         description="alkalinity; excludes inorganic carbon in the analysis and `balance_on = \"pH\"`",
@@ -75,9 +89,6 @@ class Water(TableOfCase):
     tracers: dict[str, Annotated[Amount, InWater()]] = Field(default={}, description="amount by tracer")
     table: Later = Field(default=None, description="a laboratory table (CSV) to read the water from")
     sample: Later = Field(default=None, description="this sample of the table")
-    Eh: Later = Field(default=None, description="redox potential against the hydrogen electrode")
-    pe: Later = Field(default=None, description="the same as -log10 of the electron's activity")
-    dissolved_oxygen: Later = Field(default=None, description="or the oxygen found")
 
 
 class Clogging(TableOfCase):
@@ -208,8 +219,12 @@ class Chemistry(TableOfCase):
     activity: Annotated[str, Choice(("davies", "debye-hueckel", "ideal"), ("sit",))] = Field(
         default="davies", description="activity coefficients"
     )
-    redox: Annotated[str, Choice(("held",), ("coupled",))] = Field(
-        default="held", description='"held": each valence is its own component'
+    redox: Annotated[str, Choice(("held", "coupled"))] = Field(
+        default="held",
+        description='"held": each valence is its own component; "coupled": one electron balance over all',
+    )
+    coupled: Annotated[tuple[str, ...], Names('["Fe(II)/Fe(III)"]')] = Field(
+        default=(), description='couples at equilibrium although redox is "held"'
     )
     minerals: Annotated[tuple[str, ...] | None, Names()] = Field(
         default=None, description="exactly these may form and dissolve; excludes `also`"
@@ -223,8 +238,9 @@ class Chemistry(TableOfCase):
     constants: Annotated[str, Text(example='"site.toml"')] = Field(
         default="", description="a file of your own constants, beside the case; adds or replaces entries"
     )
-    coupled: Later = Field(default=None, description="couples at equilibrium although redox is held")
-    gases: Later = Field(default=None, description="pressures held in every cell")
+    gases: dict[str, Annotated[HeldGas, GasPressure()]] = Field(
+        default={}, description="pressures held in every cell, of gases without end or of a limited amount"
+    )
 
 
 class Port(TableOfCase):
