@@ -58,7 +58,7 @@ HELD_HEAD = column(
 )  # fmt: skip
 RETAINED = column(
     WATERS + '[tracers.bromide]\nhalf_life = "1 d"\n[tracers.krypton]\nparent = "bromide"\n',
-    minerals='gypsum = "1 g/kg", calcite = "0.2 g/kg"', cells=6, length="20 cm", dispersivity="1 cm",
+    minerals='gypsum = "1 g/kg", calcite = "0.2 g/kg"', cells=8, length="20 cm", dispersivity="1 cm",
     flow='darcy_flux = "8 cm/d"', feed=feeds("1 PV", "1.7 PV"), duration="3 d",
     run='profiles_every = "0.5 d"\nports_every = "0.13 d"',
 )  # fmt: skip
