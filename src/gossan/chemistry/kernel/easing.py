@@ -1,4 +1,4 @@
-"""From where a water is to where new marks would have it, by stages (equations.md, 63).
+"""From where a water is to where new marks would have it, by stages (equations.md, 66).
 
 A mineral that enters far from saturation ties its components at once, and what is tied to them goes along:
 iron hydroxide takes Fe^3+ down, that takes the pe down, and methane goes with its eighth power.  From sums
