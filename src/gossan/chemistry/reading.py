@@ -50,7 +50,7 @@ class Reading:
             if report.says_pe
             and name in table.components
             and name not in self._coupled
-            and partner(table.components[name]) in report.undivided
+            and partner(table.components[name]) in report.undivided & self._components
         )
         self.system = self._system(self._components, (*self._coupled, *self.divided))
         self.totals = np.array([report.dissolved.get(name, 0.0) for name in self.system.basis])
