@@ -1,4 +1,4 @@
-"""An answer put back into its equations with twice the digits (equations.md, 68 and 69).
+"""An answer put back into its equations with twice the digits (equations.md, 69 and 70).
 
 All that is asked of a cell is its ln activities, ionic strength, marks and amounts: how they were found
 plays no part, and nothing of the solve is used again.
@@ -236,7 +236,7 @@ def certify_cells(
     matrices, desk, tied, weight, total, held, ln_activity, ionic_strength, balance, strength, saturation,
     error,
 ):
-    """Judge every cell of an answer (equations.md, 68 and 69).
+    """Judge every cell of an answer (equations.md, 69 and 70).
 
     tied (row, cell) int8: 1 where the row is saturated; rows are minerals, couples, open gases
     weight (cell,) kg of water per unit; total (component, cell) what is there, per unit; held (row, cell)

@@ -1,4 +1,4 @@
-"""Rows that hold take the scarce out of the problem, in pairs of doubles (equations.md, 10 and 69)."""
+"""Rows that hold take the scarce out of the problem, in pairs of doubles (equations.md, 10 and 70)."""
 
 from __future__ import annotations
 
