@@ -93,7 +93,9 @@ def test_every_tool_of_a_page_exists(page):
         tool = re.match(r"python (?:-m (tools[\w.]+)|(tools/\S+))", line)
         if tool:
             path = ROOT / (tool[2] or tool[1].replace(".", "/") + ".py")
-            assert path.is_file() or (path.with_suffix("") / "__main__.py").is_file(), line
+            if path.with_suffix("").is_dir():
+                path = path.with_suffix("") / "__main__.py"
+            assert path.is_file(), line
             for option in re.findall(r"--[a-z-]+", line):
                 assert f'"{option}"' in text_of(path), line
 
