@@ -10,7 +10,7 @@ from concurrent.futures import ThreadPoolExecutor
 
 import numpy as np
 import pytest
-from tests.oracles.cantera_mixture import cantera_equilibrium, ct
+from tests.oracles.cantera_mixture import Unbalanced, cantera_equilibrium, ct
 from tests.oracles.gibbs import NotConverged, least_gibbs_energy
 from tests.support.battery import random_bounds, scaled, stirred
 from tests.support.plain_of import judged, solids_of
@@ -76,15 +76,18 @@ def test_ideal_waters_are_least_in_gibbs_energy(mix):
 
 
 def test_cantera_finds_the_same_waters():
-    """Held and coupled ideal waters; where cantera's solver gives up nothing follows, and it seldom does."""
+    """Held and coupled ideal waters; where cantera's solver gives up nothing follows, and it seldom does.
+
+    Of partly coupled waters it gives up every other one.
+    """
     given_up = compared = 0
-    for mix in ("mine", "held", "coupled", "partial"):
-        for batch in batches(mix, 72, 24, "ideal"):
+    for mix in ("mine", "held", "coupled"):
+        for batch in batches(mix, 72, 36, "ideal"):
             found = conditions(solve(batch))
             for w, totals in enumerate(batch.totals):
                 try:
                     molality, amount = cantera_equilibrium(found.plain, totals, found.molality[:, w].sum())
-                except ct.CanteraError:
+                except (ct.CanteraError, Unbalanced):
                     given_up += 1
                     continue
                 compared += 1

@@ -27,8 +27,13 @@ KELVIN = 298.15  # potentials are in units of RT: the temperature drops out
 RT = 8.31446261815324 * KELVIN  # J/mol
 SOLVENT, WATER = 1.0, 100.0  # mol: an inert solvent for what is dissolved, and pure water
 PER_KMOL = 1e3
+BALANCED = 1e-9  # of the largest total
 FLAT = {"model": "constant-cp", "T0": KELVIN, "s0": 0.0, "cp0": 0.0}
 VOLUME = {"model": "constant-volume", "molar-volume": "1 cm^3/mol"}
+
+
+class Unbalanced(ArithmeticError):
+    """The solver ended with another mixture than it began with."""
 
 
 def cantera_equilibrium(
@@ -38,7 +43,7 @@ def cantera_equilibrium(
 
     totals    (component,) mol per kg of water
     dissolved mol per kg of water of all species together, in the answer that is judged
-    Raises    ct.CanteraError where the solver gives up
+    Raises    ct.CanteraError where the solver gives up, Unbalanced where its answer lost some of the totals
     """
     moles = SOLVENT + dissolved
     charge = [charge_of(name) for name in system.components]
@@ -59,7 +64,11 @@ def cantera_equilibrium(
     mixture.species_moles = np.array(given) / PER_KMOL
     mixture.equilibrate("TP", solver="vcs", rtol=1e-11, max_steps=5000, estimate_equil=0)
     found = np.array(mixture.species_moles) * PER_KMOL
-    return found[1 : 1 + len(atoms)], found[1 + len(atoms) : -1]
+    molality, amount = found[1 : 1 + len(atoms)], found[1 + len(atoms) : -1]
+    left = system.formation.T @ molality + system.dissolution.T @ amount - totals
+    if np.abs(left).max() > BALANCED * np.abs(totals).max():
+        raise Unbalanced(f"the mixture holds {np.abs(left).max():.1e} mol more or less than it was given")
+    return molality, amount
 
 
 def _atoms(system: PlainSystem, row: np.ndarray, charge: list[int]) -> dict[str, float]:
