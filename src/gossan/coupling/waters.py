@@ -69,16 +69,20 @@ class Waters:
             moved[:, beside.cells] -= exchange
         moved[np.abs(moved) < NO_ATOM] = 0.0
         start = before.flowing.found if before else equilibrium_of(problem, state)
+        guess = before.flowing.sorbed if before else state.sorbed
         laws = problem.flowing_isotherms
-        flowing = land(problem, self.solver, state, start, laws, self.kept, moved, self.water)
+        flowing = land(problem, self.solver, state, start, guess, laws, self.kept, moved, self.water)
         if beside is None or exchange is None:
             return Stage(flowing)
         still = beside.still
         moved = still.dissolved * still.water + exchange
         moved[np.abs(moved) < NO_ATOM] = 0.0
         start = before.still.found if before and before.still else equilibrium_of(problem, still)
+        guess = before.still.sorbed if before and before.still else still.sorbed
         laws = problem.still_isotherms
-        landed = land(problem, self.solver, still, start, laws, self.kept, moved, beside.still_water)
+        landed = land(
+            problem, self.solver, still, start, guess, laws, self.kept, moved, beside.still_water
+        )
         return Stage(flowing, landed, arriving, exchange)
 
     def difference(self, first: Stage, passed: np.ndarray, more: np.ndarray) -> np.ndarray:
