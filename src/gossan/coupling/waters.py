@@ -176,10 +176,10 @@ class Beside:
     def _within(self, moved: np.ndarray, passed: np.ndarray) -> np.ndarray:
         """The exchange, held back to what the giving water has; one share for all components of a group."""
         problem = self.problem
-        flowing, still = np.maximum(moved, 0.0), self.still.dissolved * self.still.water
+        flowing, still = moved.copy(), self.still.dissolved * self.still.water
         flowing[problem.sorbates] += self.sorbed
         still[problem.sorbates] += self.still.sorbed
-        room = np.where(passed > 0.0, flowing, still)
+        room = np.maximum(np.where(passed > 0.0, flowing, still), 0.0)
         signed = np.isin(np.arange(len(passed)), problem.system.signed)
         over = (np.abs(passed) > room) & ~signed[:, None]
         if not over.any():
