@@ -1,4 +1,4 @@
-"""Columns whose feed, flow and temperature change: nothing lost, nothing overshot, the same bits on resuming."""
+"""Columns whose feed, flow and temperature change: nothing lost, nothing overshot, resumed bit for bit."""
 
 from __future__ import annotations
 
@@ -103,7 +103,12 @@ CHANGING = column(
     '{from = "1.8 d", series = "feed.csv"}',
     run='profiles_every = "0.5 d"\nports_every = "0.13 d"',
 )  # fmt: skip
-SERIES = "time (d),water,temperature (degC),darcy_flux (m/d)\n0,second,10,0\n0.4,feed,18,0.2\n2,second,6,0.1\n"
+SERIES = """\
+time (d),water,temperature (degC),darcy_flux (m/d)
+0,second,10,0
+0.4,feed,18,0.2
+2,second,6,0.1
+"""
 
 
 def stopping_after(steps: int):
@@ -191,8 +196,8 @@ def test_ramps_of_feed_and_flux_are_of_second_order_in_time():
 def test_a_ramp_of_temperature_is_of_second_order_in_time():
     """Gypsum that the warming water goes on dissolving all along the bed."""
     text = column(
-        "[waters.feed]\n[waters.pore]\nsaturated_with = {gypsum = 0.0}", minerals='gypsum = "2 wt%"', cells=10,
-        length="50 cm", dispersivity="5 mm", forms='["gypsum"]', flow='darcy_flux = "0.2 m/d"',
+        "[waters.feed]\n[waters.pore]\nsaturated_with = {gypsum = 0.0}", minerals='gypsum = "2 wt%"',
+        cells=10, length="50 cm", dispersivity="5 mm", forms='["gypsum"]', flow='darcy_flux = "0.2 m/d"',
         duration="0.6 d", feed='{from = "0 d", water = "pore", temperature = "1 degC"}, '
         '{from = "0.1 d", water = "pore", over = "0.7 d", temperature = "30 degC"}',
         run='accuracy = 0.9\nmax_courant = NUMBER\nports_every = "0.6 d"\nprofiles_every = "0.6 d"',
