@@ -18,7 +18,7 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
-from gossan.chemistry.equilibrium import LN10, log10_activity, saturation
+from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation
 from gossan.coupling.beyond import Beyond, watched
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Clogged, Stride, march, pore_volumes
@@ -271,7 +271,7 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
     return {
         "dissolved": state.dissolved,
         "solid": state.solid,
-        "saturation": saturation(system.mineral_stoichiometry, system.matrices.solid_ln_k, state.ln_activity),
+        "saturation": mineral_saturation(system, state.ln_activity),
         "activity": activity,
         "porosity": state.water,
         "conductivity": conductivity(problem, state.water),

@@ -16,7 +16,7 @@ POWERS = ("constant", "linear", "inverse", "log10", "inverse_square")
 _CONSTANT = ("value", "sd", "source", "seen", "note")
 _SHARED = ("reaction", "log10_k", "enthalpy", "temperature_fit", "note", "alternatives")
 KEYS = {
-    "components": ("half_reaction", *_SHARED[1:], "ion_size", "diffusion"),
+    "components": ("half_reaction", "couple", *_SHARED[1:], "ion_size", "diffusion"),
     "species": (*_SHARED, "ion_size", "diffusion", "default"),
     "minerals": (*_SHARED, "molar_volume", "forms", "also_called"),
     "gases": _SHARED,

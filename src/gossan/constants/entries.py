@@ -65,6 +65,7 @@ class Component:
     half_log10_k: Constant | None = None  # of half_reaction as published
     half_enthalpy: Constant | None = None  # J/mol, the same
     half_fit: TemperatureFit | None = None  # of half_reaction, reduced to first ions
+    couple: str = ""  # "Fe(II)/Fe(III)": what couples it to its first ion; "" for what never is coupled
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
 

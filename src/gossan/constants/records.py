@@ -30,6 +30,8 @@ def component(
     held = "half_reaction" in entry.keys
     if held and "log10_k" not in entry.keys:
         entry.fault("log10_k", "is missing: a half reaction has a constant")
+    if not held and "couple" in entry.keys:
+        entry.fault("couple", "is given to a first ion", "it belongs to the valences made from it")
     if not held and "log10_k" in entry.keys:
         entry.fault("half_reaction", "is missing: a first ion has no constant")
     charge = charge_of(entry.name)
@@ -43,6 +45,7 @@ def component(
         half_log10_k=published.log10_k if published else None,
         half_enthalpy=published.enthalpy if published else None,
         half_fit=half.fit if half else None,
+        couple=entry.typed("couple", str, ""),
         note=entry.typed("note", str, ""),
         alternatives=entry.alternatives(sources),
     )
