@@ -220,6 +220,7 @@ def _initial(
         ionic_strength=spread("ionic_strength"),
         presence=spread("presence"),
         solved=spread("solved"),
+        seen=spread("seen"),
         passed=np.zeros((2 + ports, solutes, 2)),
         made=np.zeros((solutes, 2)),
         water_passed=np.zeros((3, 2)),

@@ -10,7 +10,7 @@ Source: means of the published values; 0.05 to 0.1 for hydroxo complexes is cust
 
 from __future__ import annotations
 
-from collections.abc import Collection, Sequence
+from collections.abc import Sequence
 
 import numpy as np
 
@@ -54,14 +54,9 @@ def interaction_matrix(table: Table, species: Sequence[str]) -> np.ndarray:
     return found
 
 
-def held_in_coefficients(table: Table, species: Collection[str]) -> list[str]:
-    """Complexes that a published coefficient of two of these species holds already.
+def held_complexes(table: Table) -> set[str]:
+    """Complexes that a published coefficient of the ions they are made of holds already.
 
-    A weak pair shows as a low coefficient of the ions that it is made of; with both it would count twice.
+    A weak pair shows as a low coefficient; with both it would count twice.
     """
-    return [
-        name
-        for (first, second), interaction in table.interactions.items()
-        if first in species and second in species
-        for name in interaction.holds
-    ]
+    return {name for interaction in table.interactions.values() for name in interaction.holds}

@@ -83,6 +83,7 @@ def attempt(
         ionic_strength=found.ionic_strength,
         presence=found.presence,
         solved=found.solved,
+        seen=found.seen,
         passed=added(state.passed, passed[:, problem.gates].T),
         made=added(state.made, _made(problem, found)),
         water_passed=added(
@@ -125,6 +126,7 @@ def _equilibrium(problem: Problem, state: State) -> Equilibrium:
         solved=state.solved,
         steps=np.zeros(len(state.water), np.int64),
         given=np.zeros((len(problem.system.open_gases), len(state.water))),
+        seen=state.seen,
     )
 
 

@@ -27,6 +27,7 @@ class State:
     ionic_strength: np.ndarray  # (cell,) mol per kg of water
     presence: np.ndarray  # (mineral, cell) int8: 0 absent, 1 present, 2 full (may dissolve only, none lost)
     solved: np.ndarray  # (component, cell) mol per kg of water, dissolved after the last solve: the skip rule
+    seen: np.ndarray  # (species, cell) mol per kg of water: what SIT's sums were taken with; else no rows
     # since time 0
     passed: np.ndarray  # (gate, solute, 2) mol m-2 through the inlet, the outlet, then each port
     made: np.ndarray  # (solute, 2) mol m-2 that came from no water: what open gases gave
