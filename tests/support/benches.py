@@ -47,6 +47,7 @@ def matrices_of(plain: PlainSystem, model: int = IDEAL) -> Matrices:
         supplied_ln_k=plain.mineral_ln_k.copy(),
         minerals=len(plain.minerals),
         first=np.zeros(0, np.int64),
+        carrier=np.zeros(0, np.int64),
         signed=0 if plain.components[0] == "H^+" else -1,
         electron=-1,
         given=0,

@@ -72,7 +72,7 @@ def log10_activity(system: System, ln_activity: np.ndarray) -> np.ndarray:
 
 
 def mineral_saturation(system: System, ln_activity: np.ndarray) -> np.ndarray:
-    """(mineral, cell): saturation indices from ln activities (basis, cell); NaN where one is absent."""
+    """(mineral, cell): saturation indices from ln activities (basis, cell); NaN: an element is absent."""
     count = len(system.minerals)
     return saturation(system.matrices.solid[:count], system.matrices.solid_ln_k[:count], ln_activity)
 
@@ -132,7 +132,7 @@ class Solver:
         skip: leave a cell alone whose dissolved amounts all stand within this (relative) of the last solve
         Raises   SolveError naming the cell; nothing given is changed
         """
-        from gossan.chemistry.kernel.cells import settle_cells
+        from gossan.chemistry.kernel.cells import COLD, WARM, settle_cells
 
         system = self.system
         if upper is None:
@@ -146,7 +146,7 @@ class Solver:
         given = np.zeros((len(system.open_gases), cells))
         failed = settle_cells(
             system.matrices, self._bench, kilograms, amount, solid, upper, presence, ln_activity,
-            ionic_strength, solved, given, seen, skip, cold, outcome, steps, 0, cells,
+            ionic_strength, solved, given, seen, skip, COLD if cold else WARM, outcome, steps, 0, cells,
         )  # fmt: skip
         if failed:
             arrays = (
@@ -161,14 +161,14 @@ class Solver:
 
     def _rescue(self, arrays: tuple[np.ndarray, ...], outcome: np.ndarray, steps: np.ndarray) -> None:
         """Find the minerals of failed cells another way, then settle them again; in place."""
-        from gossan.chemistry.kernel.cells import settle_cells
+        from gossan.chemistry.kernel.cells import MARKED, settle_cells
         from gossan.chemistry.kernel.rescue import find_minerals_in
 
         for i in np.flatnonzero(outcome != SOLVED):
             one = [np.ascontiguousarray(a[..., i : i + 1]) for a in arrays]
             result, count = outcome[i : i + 1].copy(), steps[i : i + 1].copy()
             find_minerals_in(self.system.matrices, self._bench, *one[:7])
-            settle_cells(self.system.matrices, self._bench, *one, -1.0, False, result, count, 0, 1)
+            settle_cells(self.system.matrices, self._bench, *one, -1.0, MARKED, result, count, 0, 1)
             if result[0] != SOLVED:
                 result[0] = outcome[i]
                 raise SolveError(SENTENCES[int(result[0])], cell=int(i))

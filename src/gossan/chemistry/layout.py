@@ -48,6 +48,7 @@ def matrices_of(
     ties = slice(minerals, minerals + valences)
     own = slice(components, components + valences)
     valence_ln_k = solid_ln_k[ties]
+    supplied = np.ascontiguousarray(solid @ basis.conserved)
     interaction = np.zeros((0, 0))
     if law.interacts:
         interaction = np.zeros((count, count))
@@ -64,10 +65,11 @@ def matrices_of(
         debye_hueckel=law.debye_hueckel,
         solid=np.ascontiguousarray(solid),
         solid_ln_k=solid_ln_k,
-        supplied=np.ascontiguousarray(solid @ basis.conserved),
+        supplied=supplied,
         supplied_ln_k=solid_ln_k - solid[:, own] @ valence_ln_k,
         minerals=minerals,
         first=basis.first,
+        carrier=_carriers(supplied[minerals + len(basis.valences) :], basis.electron),
         signed=0,
         electron=basis.electron,
         given=int(basis.water),
@@ -91,4 +93,14 @@ def with_minerals(matrices: Matrices, solid: np.ndarray, ln_k: np.ndarray, conse
         supplied=rows @ conserved,
         supplied_ln_k=constants - rows[:, own] @ matrices.solid_ln_k[couples],
         minerals=len(solid),
+        carrier=np.zeros(0, np.int64),
     )
+
+
+def _carriers(supplied: np.ndarray, electron: int) -> np.ndarray:
+    """(open gas,) the component that each open gas is known by: neither H^+ nor e^-, if there is another."""
+    others = np.abs(supplied)
+    others[:, 0] = 0.0
+    if electron >= 0:
+        others[:, electron] *= 1e-3  # the last choice
+    return others.argmax(axis=1).astype(np.int64)

@@ -1,4 +1,4 @@
-"""Which valences are coupled, and what a basis of valences is made of (equations.md, 46 and 47)."""
+"""Which valences are coupled, and what a basis of valences is made of (equations.md, 50 and 51)."""
 
 from __future__ import annotations
 

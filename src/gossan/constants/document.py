@@ -10,11 +10,12 @@ from typing import Any
 from gossan.base.errors import Fault
 from gossan.base.wrong import Wrong, did_you_mean
 from gossan.constants.entries import Alternative, Constant, TemperatureFit
+from gossan.constants.temperature import KELVIN, REFERENCE
 
 POWERS = ("constant", "linear", "inverse", "log10", "inverse_square")
 
 _CONSTANT = ("value", "sd", "source", "seen", "note")
-_SHARED = ("reaction", "log10_k", "enthalpy", "temperature_fit", "note", "alternatives")
+_SHARED = ("reaction", "log10_k", "enthalpy", "temperature_fit", "valid", "note", "alternatives")
 KEYS = {
     "components": ("half_reaction", "couple", *_SHARED[1:], "ion_size", "diffusion"),
     "species": (*_SHARED, "ion_size", "diffusion", "default"),
@@ -136,6 +137,20 @@ class Entry:
                 self.fault("temperature_fit", f"has no power '{power}'", right)
                 return None
         return TemperatureFit(**{power: float(value) for power, value in powers.items()})
+
+    def valid(self) -> tuple[float, float] | None:
+        """Value of valid, from and to which temperature in K; None where there is none or it is faulty."""
+        found = self.keys.get("valid")
+        if found is None:
+            return None
+        if not isinstance(found, list) or len(found) != 2 or not all(map(_is_number, found)):
+            self.fault("valid", f"is {found!r}", "write the range in degC, like [5, 90]")
+            return None
+        low, high = found
+        if not low <= REFERENCE - KELVIN <= high:
+            self.fault("valid", f"is {found!r}", "it holds 25 degC, where log10_k stands")
+            return None
+        return low + KELVIN, high + KELVIN
 
     def alternatives(self, sources: dict[str, str]) -> tuple[Alternative, ...]:
         """Value of alternatives: published constants that were not chosen."""

@@ -3,6 +3,9 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from math import inf
+
+ANY_TEMPERATURE = (0.0, inf)  # K: where no limit is known
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,6 +69,7 @@ class Component:
     half_enthalpy: Constant | None = None  # J/mol, the same
     half_fit: TemperatureFit | None = None  # of half_reaction, reduced to first ions
     couple: str = ""  # "Fe(II)/Fe(III)": what couples it to its first ion; "" for what never is coupled
+    half_valid: tuple[float, float] | None = None  # K, from and to, of half_fit
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
 
@@ -80,6 +84,7 @@ class Species:
     log10_k: Constant  # at 25 degC, of formation from components; its sd is that of the published constant
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of formation from components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     ion_size: Constant | None = None  # m
     diffusion: Constant | None = None  # m2/s at 25 degC in free water
     default: bool = True  # False: only where a case asks for it
@@ -101,6 +106,7 @@ class Mineral:
     forms: bool  # on the default list: forms on the time scale of a column
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of dissolution to components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     also_called: tuple[str, ...] = ()
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
@@ -116,6 +122,7 @@ class Gas:
     log10_k: Constant  # at 25 degC, of dissolution to components; its sd is that of the published constant
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of dissolution to components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
     published: Constant | None = None  # log10 K of reaction.text, where that runs through other species

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from gossan.base.notation import charge_of, normal_ion, parse_formula
 from gossan.base.wrong import did_you_mean
-from gossan.constants.entries import Component, Gas, Mineral, Species, Table
+from gossan.constants.entries import Component, Gas, Interaction, Mineral, Species, Table
 
 
 class UnknownName(LookupError):
@@ -46,15 +46,26 @@ def find_mineral(table: Table, name: str) -> Mineral:
     raise UnknownName(f"no mineral is called '{name}'", did_you_mean(wanted, called, quote=""))
 
 
+def find_interaction(table: Table, pair: str) -> Interaction:
+    """Find the interaction coefficient of two ions, `Na^+/Cl^-`, whichever stands first.
+
+    Raises  UnknownName, with the pairs that the table has of the first ion
+    """
+    ions = [_normal(ion) for ion in pair.split("/")]
+    for both in (tuple(ions), tuple(reversed(ions))):
+        if len(both) == 2 and both in table.interactions:
+            return table.interactions[both]
+    others = [each.name for each in table.interactions.values() if ions[0] in (each.first, each.second)]
+    right = f"of {ions[0]} it has {', '.join(others)}" if others else ""
+    raise UnknownName(f"the table has no interaction coefficient of {' and '.join(ions)}", right)
+
+
 def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, ...]:
     """Find everything that bears a name: CO2 is a species and a gas, CaCO3 a species and three minerals.
 
     Raises  UnknownName, with the nearest name
     """
-    try:
-        ion = normal_ion(name)
-    except ValueError:
-        ion = name
+    ion = _normal(name)
     groups = (table.components, table.species, table.gases)
     found: list[Component | Species | Mineral | Gas] = [group[ion] for group in groups if ion in group]
     try:
@@ -67,6 +78,13 @@ def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, 
                 f"the table has no '{name}'", did_you_mean(ion, known, quote="") or unknown.right
             ) from None
     return tuple(found)
+
+
+def _normal(ion: str) -> str:
+    try:
+        return normal_ion(ion)
+    except ValueError:
+        return ion.strip()
 
 
 def _with_formula(table: Table, formula: str) -> list[Mineral]:

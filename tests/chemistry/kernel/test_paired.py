@@ -67,8 +67,9 @@ def slopes(function, at):
     columns = []
     for k, value in enumerate(at):
         step = np.zeros(len(at))
-        step[k] = NUDGE * abs(value) if value else NUDGE
-        columns.append((function(at + step) - function(at - step)) / (2 * step[k]))
+        step[k] = max(NUDGE * abs(value), NUDGE)
+        back = at - step if abs(value) > step[k] else at  # no molality is below zero
+        columns.append((function(at + step) - function(back)) / ((at + step) - back)[k])
     return np.array(columns).T
 
 

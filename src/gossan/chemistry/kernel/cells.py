@@ -8,13 +8,14 @@ from gossan.chemistry.kernel.complement import settle
 from gossan.chemistry.kernel.nullspace import GONE
 from gossan.chemistry.kernel.vectors import row_dot
 
+WARM, COLD, MARKED = 0, 1, 2
 REMAINDER = 1e-6  # of what solids took: below, subtraction has lost more digits than the balances have
 
 
 @kernel
 def settle_cells(
     matrices, bench, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength,
-    solved, given, seen, skip, cold, outcome, steps, first, last,
+    solved, given, seen, skip, start, outcome, steps, first, last,
 ):
     """Equilibrate cells first to last (equations.md, 7-18); returns how many failed.
 
@@ -25,7 +26,8 @@ def settle_cells(
         amounts all stand within skip of it (relative) is left alone
     given (open gas, cell) mol m-3 of bulk that each gave, overwritten
     seen (species, cell) mol/kg, the molalities that the sums of SIT were taken with; (0, cell) without it
-    cold: start from nothing; outcome (cell,) int64 and steps (cell,) int64 are overwritten
+    start: WARM, COLD (from nothing) or MARKED (warm, with the marks as they stand)
+    outcome (cell,) int64 and steps (cell,) int64 are overwritten
     All state arrays are changed in place, a failed cell's are left as they were.
     """
     components, minerals, gases = amount.shape[0], solid.shape[0], given.shape[0]
@@ -37,7 +39,7 @@ def settle_cells(
         for g in range(gases):
             given[g, i] = 0.0
         weight = kilograms[i]
-        same = not cold
+        same = start == WARM
         for k in range(components):
             now = amount[k, i] / weight
             bench.dissolved[k] = now
@@ -53,7 +55,7 @@ def settle_cells(
             bench.solid[m] = solid[m, i] / weight
             bench.upper[m] = upper[m, i] / weight
             bench.presence[m] = presence[m, i]
-            if bench.presence[m] == 0 and bench.solid[m] > 0.0:
+            if start != MARKED and bench.presence[m] == 0 and bench.solid[m] > 0.0:
                 bench.presence[m] = 1
         for k in range(ln_activity.shape[0]):
             bench.ln_activity[k] = ln_activity[k, i]
@@ -63,7 +65,7 @@ def settle_cells(
             bench.seen[s] = seen[s, i]
         outcome[i], strength, steps[i] = settle(
             matrices, bench, bench.dissolved, bench.solid, bench.upper, bench.presence,
-            ionic_strength[i], cold,
+            ionic_strength[i], start == COLD,
         )
         if outcome[i] != SOLVED:
             failed += 1

@@ -99,8 +99,11 @@ def approach(matrices, bench, dissolved):
     components = matrices.conserved.shape[0]
     electron = matrices.electron
     bench.ln_activity[matrices.signed] = math.log(1e-7)
-    if electron >= 0:
+    counted = electron >= 0  # and not held by a gas
+    if counted:
         bench.ln_activity[electron] = 0.5 * (MOST_OXIDISED + MOST_REDUCED)
+    for gas in range(matrices.carrier.shape[0]):
+        counted = counted and matrices.carrier[gas] != electron
     for k in range(components):
         if k == matrices.signed or k == electron:
             continue
@@ -108,8 +111,9 @@ def approach(matrices, bench, dissolved):
             level(matrices, bench, k, dissolved[k])
         else:
             bench.ln_activity[k] = NOWHERE
+    carriers_follow(matrices, bench)
     made = continued_fraction(matrices, bench, dissolved, PASSES)
-    if electron >= 0:
+    if counted:
         # the electrons that the species hold rise with the activity of e^-: halve it in
         low, high = MOST_OXIDISED, MOST_REDUCED
         for _ in range(HALVINGS):
@@ -122,13 +126,13 @@ def approach(matrices, bench, dissolved):
                 if k != matrices.signed and k != electron and bench.ln_activity[k] != NOWHERE:
                     level(matrices, bench, k, dissolved[k])
             made = continued_fraction(matrices, bench, dissolved, FEW_PASSES)
-        valences_follow(matrices, bench)
+    valences_follow(matrices, bench)
     return made if made < 1.0 else 1.0
 
 
 @kernel(inner=True)
 def continued_fraction(matrices, bench, dissolved, passes):
-    """Bring the balances of all but e^- nearer, so many times; returns the ionic strength."""
+    """Bring the balances of all but e^- and what gases hold nearer; returns the ionic strength."""
     components = matrices.conserved.shape[0]
     stoichiometry, ln_k = matrices.conserved, matrices.conserved_ln_k
     made = 0.0
@@ -156,4 +160,18 @@ def continued_fraction(matrices, bench, dissolved, passes):
             ratio = math.log((negative + 1e-300) / (positive + 1e-300))
             crowd = bench.weight[k] / bench.abundance[k] if bench.abundance[k] > 0.0 else 1.0
             bench.ln_activity[k] += ratio / crowd
+        carriers_follow(matrices, bench)
     return made
+
+
+@kernel(inner=True)
+def carriers_follow(matrices, bench):
+    """Set the ln activity of each open gas's carrier from its pressure."""
+    for gas in range(matrices.carrier.shape[0]):
+        row = matrices.minerals + matrices.first.shape[0] + gas
+        carrier = matrices.carrier[gas]
+        rest = matrices.supplied_ln_k[row]
+        for k in range(matrices.conserved.shape[0]):
+            if k != carrier and matrices.supplied[row, k] != 0.0:
+                rest -= matrices.supplied[row, k] * bench.ln_activity[k]
+        bench.ln_activity[carrier] = rest / matrices.supplied[row, carrier]

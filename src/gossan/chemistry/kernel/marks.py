@@ -35,7 +35,7 @@ def fill_totals(matrices, bench, dissolved, solid, upper, presence):
 
 @kernel(inner=True)
 def set_totals(matrices, bench, dissolved, solid, upper, presence):
-    """Fill bench.total and mark what is absent of the basis, and which ties hold, under these marks."""
+    """Fill bench.total, mark what is absent of the basis and which ties hold (equations.md, 50 to 52)."""
     components = matrices.conserved.shape[0]
     fill_totals(matrices, bench, dissolved, solid, upper, presence)
     for k in range(components):

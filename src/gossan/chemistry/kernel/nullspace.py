@@ -6,7 +6,8 @@ solution, and leaves a smaller problem in the free components.  Totals are subtr
 in every residual: that is what keeps free sulfide right where zinc and sulfide nearly cancel.
 
 A redox couple is such a tie too, one that always holds: it takes out the scarcer valence, so that the
-electron balance is left in terms of what is scarce, and not as a difference of what is plentiful.
+electron balance is left in terms of what is scarce, and not as a difference of what is plentiful
+(equations.md, 51).
 """
 
 from __future__ import annotations
