@@ -72,10 +72,12 @@ def test_assay_json_is_what_the_contract_says(waters_file, capsys):
     assert list(found) == ["mine", "gate"]
     mine = found["mine"]
     assert set(mine) == {
-        "pH", "pe", "temperature_K", "ionic_strength", "charge_error_percent", "dissolved", "species",
-        "saturation", "gases", "warnings",
+        "pH", "pe", "Eh_V", "temperature_K", "ionic_strength", "water_activity",
+        "charge_error_percent", "dissolved", "valences", "oxygen_saturation_percent", "species", "saturation", "gases",
+        "warnings",
     }  # fmt: skip
-    assert mine["pe"] is None
+    assert mine["pe"] is mine["Eh_V"] is mine["oxygen_saturation_percent"] is None
+    assert mine["valences"] == mine["dissolved"]
     assert mine["pH"] == pytest.approx(5.4, abs=1e-9)
     assert mine["temperature_K"] == pytest.approx(285.15)
     # 24 mg/L over 65.38 g/mol, in water of 0.9995 kg/L
@@ -156,6 +158,12 @@ def test_a_constant_is_shown_at_the_temperature_asked_for(capsys):
     # -3.5 with -30 kJ/mol, van 't Hoff: 30000 / (8.314462618 ln 10) (1/285.15 - 1/298.15) = 0.2396
     assert found["log10_k_at_K"]["285.15"] == pytest.approx(-3.5 + 0.2396, abs=1e-4)
     assert found["valid_K"] == pytest.approx([273.15, 323.15])
+
+
+def test_a_held_component_names_its_couple(capsys):
+    assert main(["constants", "Fe^3+"]) == 0
+    assert "Fe(II)/Fe(III)" in capsys.readouterr().out
+    assert as_json(capsys, "constants", "Fe^3+")[0]["couple"] == "Fe(II)/Fe(III)"
 
 
 def test_interactions_of_ions_are_shown(capsys):

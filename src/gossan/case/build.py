@@ -5,19 +5,21 @@ from __future__ import annotations
 import numpy as np
 
 from gossan.base.amounts import Amount
-from gossan.base.errors import SolveError
+from gossan.case.build_initial import initial_state
+from gossan.case.build_retention import decay_of, isotherms_of, stagnant_of
 from gossan.case.model import Case, Layer
 from gossan.case.quantities import Solid
-from gossan.case.waters import excluded_by, read_waters
-from gossan.chemistry.equilibrium import Equilibrium, Solver
+from gossan.case.redox import coupled_by
+from gossan.case.waters import ATMOSPHERE, excluded_by, read_waters
 from gossan.chemistry.system import System, build_system
+from gossan.chemistry.valences import valence_totals
 from gossan.chemistry.water import Water
+from gossan.constants.couples import applicable
 from gossan.constants.entries import Mineral, Table
 from gossan.constants.find import find_mineral
 from gossan.coupling.pace import Pace
 from gossan.coupling.problem import Port, Problem
 from gossan.coupling.schedule import Schedule, every
-from gossan.coupling.state import State
 from gossan.transport import clogging, grid
 from gossan.transport.step import transport_of
 
@@ -37,12 +39,15 @@ def build(case: Case) -> Problem:
     waters = read_waters(case, list(used))
     solids = [_starting_solids(layer, table) for layer in case.layers]
     system = _system(case, table, waters, solids)
+    gases = {f"{gas}(g)": held.amount.si for gas, held in case.chemistry.gases.items() if held.amount}
+    solids = [{**solid, **gases} for solid in solids]
     cells = grid.grid_of([_cut(layer) for layer in case.layers])
     tracers = case.tracer_names
     composition = {name: _composition(case, name, water, system) for name, water in waters.items()}
     porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
     chemical = len(system.components)
     by_volume = case.run.duration.unit == "PV"
+    stagnant, isotherms = stagnant_of(case, cells), isotherms_of(case, cells, system.components)
     ports = tuple(
         Port(name, cells.face_at(x), float(cells.edges[cells.face_at(x)]))
         for name, x in case.port_positions.items()
@@ -60,7 +65,7 @@ def build(case: Case) -> Problem:
         )[cells.layer],
         clogging=tuple(_clogging(layer) for layer in case.layers),
         porosity=porosity,
-        initial=_initial(case, system, cells, composition, solids, len(ports)),
+        initial=initial_state(case, system, cells, composition, solids, len(ports), stagnant, isotherms),
         end=Schedule(np.array([case.run.duration.si]), by_volume),
         frames=_interval(case, "profiles_every", FRAMES),
         records=_interval(case, "ports_every", RECORDS),
@@ -68,6 +73,9 @@ def build(case: Case) -> Problem:
         coupling=case.run.coupling,
         accuracy=case.run.accuracy,
         max_courant=case.run.max_courant,
+        decay=decay_of(case, chemical),
+        isotherms=isotherms,
+        stagnant=stagnant,
     )
 
 
@@ -126,11 +134,15 @@ def _moles_of_solid(solid: Solid, mineral: Mineral, layer: Layer) -> float:
 
 def _system(case: Case, table: Table, waters: dict[str, Water], solids: list[dict[str, float]]) -> System:
     """The system of all that is in the waters and solids of the column."""
-    components = {name for water in waters.values() for name in water.totals}
+    components = {name for water in waters.values() for name in water.valences}
     dissolving = list(dict.fromkeys(name for layer in solids for name in layer))
     for name in dissolving:
         components |= set(table.minerals[name].reaction.components)
     chemistry = case.chemistry
+    pressure = {gas: held.pressure.si / ATMOSPHERE for gas, held in chemistry.gases.items()}
+    limited = {gas for gas, held in chemistry.gases.items() if held.amount is not None}
+    for gas in pressure:
+        components |= set(table.gases[gas].reaction.components)
     listed = None
     if chemistry.minerals is not None:
         listed = [find_mineral(table, name).name for name in chemistry.minerals]
@@ -145,16 +157,31 @@ def _system(case: Case, table: Table, waters: dict[str, Water], solids: list[dic
         temperature=case.temperature.si,
         activity=chemistry.activity,
         excluded=excluded_by(case, table),
+        coupled=applicable(coupled_by(chemistry, table), components, table),
+        open_gases={gas: atm for gas, atm in pressure.items() if gas not in limited},
+        limited_gases={gas: atm for gas, atm in pressure.items() if gas in limited},
     )
 
 
 def _composition(case: Case, name: str, water: Water, system: System) -> np.ndarray:
     """(solute,) mol per m3 of water, as the laboratory counts its litres."""
-    totals = water.totals
-    chemical = [totals.get(component, 0.0) * water.system.water_density for component in system.components]
+    chemical = (_counted(water, system) * water.system.water_density).tolist()
     said = case.waters[name].tracers
     density = water.system.water_density
     return np.array(chemical + [_tracer(case, tracer, said, density) for tracer in case.tracer_names])
+
+
+def _counted(water: Water, system: System) -> np.ndarray:
+    """(component,) mol per kg of a water, in what the column conserves.
+
+    A water that couples the same valences has its totals. One that holds apart what the column couples, or
+    the other way round, is counted valence by valence.
+    """
+    totals = water.totals
+    if totals.keys() <= set(system.components):
+        return np.array([totals.get(name, 0.0) for name in system.components])
+    held = dict(zip(water.system.basis, valence_totals(water.equilibrium).tolist(), strict=True))
+    return np.array([held.get(name, 0.0) for name in system.basis]) @ system.conserved
 
 
 def _tracer(case: Case, name: str, said: dict[str, Amount], water_density: float) -> float:
@@ -189,50 +216,3 @@ def _interval(case: Case, key: str, divisions: int) -> Schedule:
     if case.flow is not None and case.flow.darcy_flux is not None:
         return every(case.seconds(interval), case.seconds(duration))
     return every(interval.si, 1e6 * interval.si, interval.unit == "PV")
-
-
-def _initial(
-    case: Case, system: System, cells: grid.Grid, composition: dict[str, np.ndarray],
-    solids: list[dict[str, float]], ports: int,
-) -> State:
-    """Every cell at equilibrium with its own minerals: one solve a layer."""
-    settled = [
-        _settled_layer(layer, system, composition[layer.water], solid)
-        for layer, solid in zip(case.layers, solids, strict=True)
-    ]
-    chemical = len(system.components)
-    tracers = np.array([composition[layer.water][chemical:] for layer in case.layers])
-
-    def spread(field: str) -> np.ndarray:
-        layers = np.concatenate([getattr(one, field) for one in settled], -1)
-        return np.ascontiguousarray(layers[..., cells.layer])
-
-    porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
-    solutes = chemical + tracers.shape[1]
-    return State(
-        time=0.0,
-        step=0,
-        dissolved=np.vstack([spread("amount") / porosity, tracers[cells.layer].T]),
-        solid=spread("solid"),
-        water=porosity.copy(),
-        swelling=np.zeros(len(porosity)),
-        ln_activity=spread("ln_activity"),
-        ionic_strength=spread("ionic_strength"),
-        presence=spread("presence"),
-        solved=spread("solved"),
-        seen=spread("seen"),
-        passed=np.zeros((2 + ports, solutes, 2)),
-        made=np.zeros((solutes, 2)),
-        water_passed=np.zeros((3, 2)),
-        splitting_error=0.0,
-    )
-
-
-def _settled_layer(layer: Layer, system: System, water: np.ndarray, solid: dict[str, float]) -> Equilibrium:
-    amount = water[: len(system.components), None] * layer.porosity
-    grains = np.array([[solid.get(name, 0.0)] for name in system.minerals]).reshape(len(system.minerals), 1)
-    kilograms = np.array([layer.porosity * system.water_density])
-    try:
-        return Solver(system).cold(kilograms, amount, grains)
-    except SolveError as error:
-        raise SolveError(error.reason, 0, layer.name, time=0.0) from error

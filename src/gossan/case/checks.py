@@ -8,10 +8,13 @@ from __future__ import annotations
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
 from gossan.case.check_column import check_flow, check_layers, check_ports
+from gossan.case.check_redox import check_redox
+from gossan.case.check_retention import check_parents, check_sorption
 from gossan.case.check_waters import check_tracer, check_waters, mineral_named, solute_named
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.quantities import Range
+from gossan.case.redox import counted_as
 from gossan.constants.entries import Table
 from gossan.constants.find import UnknownName, find_mineral
 
@@ -19,10 +22,13 @@ from gossan.constants.find import UnknownName, find_mineral
 def check_case(draft: Draft, table: Table) -> None:
     """Run every check across keys; faults are added to the draft."""
     check_waters(draft, table)
+    check_redox(draft, table)
     check_layers(draft, table)
     check_flow(draft)
     check_chemistry(draft, table)
     check_ports(draft)
+    check_parents(draft)
+    check_sorption(draft, table)
     check_limits(draft, table)
 
 
@@ -79,6 +85,11 @@ def check_limits(draft: Draft, table: Table) -> None:
                 check_tracer(draft, key, limit, at)
                 continue
             named = solute_named(draft, table, key, limit, at)
+            first = counted_as(named.component, draft.case.chemistry, table) if named else ""
+            if named and first:
+                wrong = f"limits {named.component}, which is coupled and counted as {first}"
+                draft.fault(at, wrong, f"limit {first}, all valences together")
+                continue
             if named and named.component in seen:
                 wrong = f"limits {named.component} a second time, after {seen[named.component]}"
                 draft.fault(at, wrong, "keep one of the two")

@@ -9,15 +9,18 @@ from __future__ import annotations
 import math
 from typing import Annotated, Any
 
-from pydantic import BaseModel, ConfigDict, Field, PrivateAttr
+from pydantic import Field, PrivateAttr
 
 from gossan.base.amounts import Amount, amount
 from gossan.base.errors import Fault, InputError
 from gossan.case.fields import Choice, Flag, Names, NotLanded, Number, Text
 from gossan.case.quantities import (
     Alkalinity,
+    GasPressure,
+    HeldGas,
     InWater,
     Limit,
+    Oxygen,
     Place,
     Quantity,
     Range,
@@ -25,6 +28,8 @@ from gossan.case.quantities import (
     Solid,
     SolidAmount,
 )
+from gossan.case.retention import Immobile, Sorption
+from gossan.case.table import TableOfCase
 from gossan.constants.entries import Table
 from gossan.constants.load import load_table
 
@@ -41,18 +46,21 @@ POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
 
 
-class TableOfCase(BaseModel):
-    """A table of the TOML, frozen once it is read."""
-
-    model_config = ConfigDict(
-        frozen=True, extra="forbid", arbitrary_types_allowed=True, populate_by_name=True
-    )
-
-
 class Water(TableOfCase):
     """A laboratory report, as the laboratory writes it; without analysis it is pure water."""
 
     pH: PH = Field(default=7.0, description="pH; with `balance_on = \"pH\"` a first guess")
+    Eh: Annotated[
+        Amount | None,
+        Quantity(("V",), "a redox potential", '"310 mV"', -3.0, 3.0,
+                 says="a redox potential of water is between -3 and 3 V"),
+    ] = Field(default=None, description="redox potential against the hydrogen electrode; or `pe`")
+    pe: Annotated[float | None, Number("a pe", -50, 50, example="5.2")] = Field(
+        default=None, description="-log10 of the electron's activity; or `dissolved_oxygen`"
+    )
+    dissolved_oxygen: Annotated[Amount | None, Oxygen()] = Field(
+        default=None, description="the oxygen found; it stands for a pe as well"
+    )
     alkalinity: Annotated[Amount | None, Alkalinity()] = Field(
         default=None,
         description="alkalinity; excludes inorganic carbon in the analysis and `balance_on = \"pH\"`",
@@ -81,9 +89,6 @@ class Water(TableOfCase):
     tracers: dict[str, Annotated[Amount, InWater()]] = Field(default={}, description="amount by tracer")
     table: Later = Field(default=None, description="a laboratory table (CSV) to read the water from")
     sample: Later = Field(default=None, description="this sample of the table")
-    Eh: Later = Field(default=None, description="redox potential against the hydrogen electrode")
-    pe: Later = Field(default=None, description="the same as -log10 of the electron's activity")
-    dissolved_oxygen: Later = Field(default=None, description="or the oxygen found")
 
 
 class Clogging(TableOfCase):
@@ -147,8 +152,8 @@ class Layer(TableOfCase):
     rates: Later = Field(default=None, description="the kinetic steps that run here")
     exchange: Later = Field(default=None, description="cation exchange (Gaines-Thomas)")
     surface: Later = Field(default=None, description="hydrous ferric oxide with strong and weak sites")
-    sorption: Later = Field(default=None, description="an isotherm per component or tracer")
-    immobile: Later = Field(default=None, description="immobile water beside the flowing water")
+    sorption: dict[str, Sorption] = Field(default={}, description="an isotherm per component or tracer")
+    immobile: Immobile | None = Field(default=None, description="immobile water beside the flowing water")
 
     @property
     def cell_count(self) -> int:
@@ -171,8 +176,12 @@ class Tracer(TableOfCase):
     molar_mass: Annotated[
         Amount | None, Quantity(("kg/mol",), "a molar mass", '"79.9 g/mol"', positive=True)
     ] = Field(default=None, description="needed where amounts of it are in mass")
-    half_life: Later = Field(default=None, description="first-order decay")
-    parent: Later = Field(default=None, description="the tracer that decays into this one")
+    half_life: Annotated[Amount | None, Quantity(("s",), "a half-life", '"40 d"', positive=True)] = Field(
+        default=None, description="first-order decay, in flowing and immobile water and where it is sorbed"
+    )
+    parent: Annotated[str, Text(example='"nitrate"')] = Field(
+        default="", description="the tracer that decays into this one, mole for mole"
+    )
 
 
 class Feed(TableOfCase):
@@ -210,8 +219,12 @@ class Chemistry(TableOfCase):
     activity: Annotated[str, Choice(("davies", "debye-hueckel", "sit", "ideal"))] = Field(
         default="davies", description="activity coefficients"
     )
-    redox: Annotated[str, Choice(("held",), ("coupled",))] = Field(
-        default="held", description='"held": each valence is its own component'
+    redox: Annotated[str, Choice(("held", "coupled"))] = Field(
+        default="held",
+        description='"held": each valence is its own component; "coupled": one electron balance over all',
+    )
+    coupled: Annotated[tuple[str, ...], Names('["Fe(II)/Fe(III)"]')] = Field(
+        default=(), description='couples at equilibrium although redox is "held"'
     )
     minerals: Annotated[tuple[str, ...] | None, Names()] = Field(
         default=None, description="exactly these may form and dissolve; excludes `also`"
@@ -225,8 +238,9 @@ class Chemistry(TableOfCase):
     constants: Annotated[str, Text(example='"site.toml"')] = Field(
         default="", description="a file of your own constants, beside the case; adds or replaces entries"
     )
-    coupled: Later = Field(default=None, description="couples at equilibrium although redox is held")
-    gases: Later = Field(default=None, description="pressures held in every cell")
+    gases: dict[str, Annotated[HeldGas, GasPressure()]] = Field(
+        default={}, description="pressures held in every cell, of gases without end or of a limited amount"
+    )
 
 
 class Port(TableOfCase):

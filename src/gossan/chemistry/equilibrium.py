@@ -37,11 +37,14 @@ class Equilibrium:
         """(species, cell): log10 of the activity of every species, -inf where a component is absent."""
         return log10_activity(self.system, self.ln_activity)
 
+    def ln_gamma(self) -> np.ndarray:
+        """(species, cell): ln of the activity coefficients."""
+        return self.system.activity.ln_gamma(self.ionic_strength, self.seen[: len(self.system.species)])
+
     def molality(self) -> np.ndarray:
         """(species, cell): mol per kg of water."""
         system = self.system
-        ln_gamma = system.activity.ln_gamma(self.ionic_strength, self.seen[: len(system.species)])
-        found = np.exp(LN10 * self.log10_activity() - ln_gamma)
+        found = np.exp(LN10 * self.log10_activity() - self.ln_gamma())
         for name in (ELECTRON, WATER):
             if name in system.basis:
                 found[system.basis.index(name)] = 0.0  # it has an activity and is no solute
@@ -69,6 +72,13 @@ def log10_activity(system: System, ln_activity: np.ndarray) -> np.ndarray:
     """(species, cell): log10 of the activity of every species from the components' (equations.md, 1)."""
     ln = system.stoichiometry @ ln_activity + system.ln_k[:, None]
     return np.where(ln < -1e4, -np.inf, ln / LN10)
+
+
+def pe_of(system: System, ln_activity: np.ndarray) -> np.ndarray:
+    """(cell,): -log10 of the activity of e^- of ln activities (basis, cell); NaN where nothing is coupled."""
+    if system.electron < 0:
+        return np.full(ln_activity.shape[1], np.nan)
+    return -ln_activity[system.electron] / LN10
 
 
 def mineral_saturation(system: System, ln_activity: np.ndarray) -> np.ndarray:

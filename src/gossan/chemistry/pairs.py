@@ -21,6 +21,7 @@ MONATOMIC_ONES = ("H^+", "Na^+", "K^+", "NH4^+", "Cu^+")  # known one by one, or
 MEASURED_IN = ("Cl^-", "NO3^-")
 BY_CHARGE = {1: 0.075, 2: 0.15, 3: 0.33}
 GASES_PER_CHARGE_SQUARED = 0.05
+MATTERS = 0.03  # mol/kg of either ion: an estimate wrong by 0.2 kg/mol is then worth 1.4 % of the other's activity
 
 
 def coefficient(table: Table, one: str, other: str) -> tuple[float, bool]:
@@ -52,6 +53,21 @@ def interaction_matrix(table: Table, species: Sequence[str]) -> np.ndarray:
         for j in range(i):
             found[i, j] = found[j, i] = coefficient(table, one, species[j])[0]
     return found
+
+
+def estimated_pairs(table: Table, species: Sequence[str], molality: np.ndarray) -> list[str]:
+    """Pairs of ions, both abundant in a water, whose coefficient is an estimate.
+
+    molality (species,) mol/kg
+    """
+    main = [name for name, amount in zip(species, molality, strict=True) if amount > MATTERS]
+    ions = [name for name in main if charge_of(name)]
+    return [
+        f"{cation}/{anion}"
+        for cation in ions
+        for anion in ions
+        if charge_of(cation) > 0 > charge_of(anion) and coefficient(table, cation, anion)[1]
+    ]
 
 
 def held_complexes(table: Table) -> set[str]:

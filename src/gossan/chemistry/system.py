@@ -65,6 +65,11 @@ class System:
         return self.matrices.supplied[len(self.matrices.supplied) - len(self.open_gases) :]
 
     @property
+    def valences(self) -> tuple[str, ...]:
+        """The members of the basis that couples tie to components."""
+        return self.basis[len(self.components) :][: len(self.matrices.first)]
+
+    @property
     def electron(self) -> int:
         """Where e^- stands among the components, -1 where nothing is coupled."""
         return self.matrices.electron

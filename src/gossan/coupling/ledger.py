@@ -30,7 +30,7 @@ class Books:
     def __init__(self, problem: Problem):
         self.problem = problem
         self.first = problem.stored(problem.initial)
-        self.first_water = float(np.sum(problem.initial.water * problem.grid.width))
+        self.first_water = float(np.sum(problem.water(problem.initial) * problem.grid.width))
 
     def closed(self, state: State) -> Ledger:
         """The ledger of a state (equations.md, 39)."""
@@ -46,7 +46,7 @@ class Books:
         chemical = problem.chemical
         charges = float(np.abs(charge) @ most[:chemical])
         water_in, water_out, freed = state.water_passed.sum(axis=-1).tolist()
-        water_now = float(np.sum(state.water * problem.grid.width))
+        water_now = float(np.sum(problem.water(state) * problem.grid.width))
         water_open = water_in - water_out + freed - (water_now - self.first_water)
         return Ledger(
             time=state.time,

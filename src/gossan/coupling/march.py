@@ -12,7 +12,7 @@ from gossan.base.errors import SolveError
 from gossan.chemistry.equilibrium import Solver
 from gossan.coupling.attempt import Trial, attempt
 from gossan.coupling.pace import Pace, acceptable
-from gossan.coupling.pores import flow, pore_space
+from gossan.coupling.pores import flow, pore_room
 from gossan.coupling.problem import Problem
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
@@ -20,8 +20,8 @@ from gossan.transport.step import courant, explicit_limit
 
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
 # Explicit dispersion may cost so many times the steps; beyond, it is solved implicitly, which is as good for
-# tracers but only first order beside a mineral front.
-GAIN_OF_TRACERS, GAIN_OF_MINERALS = 3.0, 10.0
+# tracers but only first order beside a front of what solids hold.
+GAIN_OF_TRACERS, GAIN_OF_RETENTION = 3.0, 10.0
 DAMPED_STEPS = 2  # half steps of backward Euler after a switch of feed (Rannacher 1984, from memory)
 
 
@@ -69,7 +69,7 @@ def march(problem: Problem, state: State, pace: Pace, solver: Solver | None = No
 def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: float) -> Stride:
     feed = max(problem.feeds.passed(problem.feeds.clock(state.time, entered)) - 1, 0)
     inflow = problem.inflow[feed]
-    room = pore_space(problem, state.solid) - problem.closing
+    room = pore_room(problem, state)
     if room.min() < 0.0:
         raise Clogged(int(room.argmin()), state.time)
     shortest = SHORTEST * max(state.time, pace.dt)
@@ -124,7 +124,8 @@ def longest_step(problem: Problem, state: State, darcy_flux: np.ndarray) -> tupl
     unit = courant(problem.transport, state.water, darcy_flux, 1.0)
     by_courant = problem.max_courant / unit if unit > 0.0 else math.inf
     by_dispersion = explicit_limit(problem.transport, state.water, darcy_flux)
-    gain = GAIN_OF_MINERALS if problem.system.minerals else GAIN_OF_TRACERS
+    retained = bool(problem.system.minerals) or problem.isotherms is not None
+    gain = GAIN_OF_RETENTION if retained else GAIN_OF_TRACERS
     if by_dispersion * gain >= by_courant:
         return min(by_courant, by_dispersion), False
     if by_courant == math.inf:

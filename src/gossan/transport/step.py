@@ -85,6 +85,7 @@ def passages(
     inflow: np.ndarray,
     dt: float,
     theta: float | None = None,
+    made: np.ndarray | None = None,
 ) -> Passages:
     """The first stage of a step, or the whole of a one-step scheme (equations.md, 21 to 25).
 
@@ -93,6 +94,8 @@ def passages(
     dt          s; explicit dispersion is stable up to `explicit_limit`
     theta       None: explicit dispersion. Else implicit, with this weight on the end of the step: 1/2 for
                 second order, 1 for the first steps after the inflow has jumped (Rannacher 1984, from memory)
+    made        (solute, cell) mol m-2 that reactions make meanwhile, as far as it is known: what they take
+                away again must not disperse
     """
     conductance, slopes = _of_the_moment(transport, water, darcy_flux)
     explicit = np.empty((dissolved.shape[0], dissolved.shape[1] + 1))
@@ -106,7 +109,11 @@ def passages(
     factor(storage, conductance, theta * dt, elimination.hold, elimination.inverse, elimination.lower,
            elimination.upper)
     passed = explicit.copy()
-    _disperse(elimination, dissolved, dt * (darcy_flux[:-1] - darcy_flux[1:]), explicit, passed)
+    surplus = explicit
+    if made is not None:  # as if it came through the faces upstream
+        surplus = explicit.copy()
+        surplus[:, 1:] -= np.cumsum(made, axis=1)
+    _disperse(elimination, dissolved, dt * (darcy_flux[:-1] - darcy_flux[1:]), surplus, passed)
     return Passages(passed, explicit, conductance, bias, slopes, darcy_flux, inflow, dt, theta, elimination)
 
 
