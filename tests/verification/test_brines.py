@@ -28,7 +28,7 @@ FREE = "free of calcium and magnesium; what pairs with sodium counts as free her
 
 
 def in_salt(sodium_chloride: float) -> float:
-    salt = {"Na^+": sodium_chloride, "Cl^-": sodium_chloride}
+    salt = {"Na^+": sodium_chloride, "Cl^-": sodium_chloride} if sodium_chloride else {}
     return total("Ca^2+")(Solution(salt, minerals=("gypsum",), activity="sit").equilibrium())
 
 

@@ -21,7 +21,7 @@ MONATOMIC_ONES = ("H^+", "Na^+", "K^+", "NH4^+", "Cu^+")  # known one by one, or
 MEASURED_IN = ("Cl^-", "NO3^-")
 BY_CHARGE = {1: 0.075, 2: 0.15, 3: 0.33}
 GASES_PER_CHARGE_SQUARED = 0.05
-MATTERS = 0.03  # mol/kg of either ion: an estimate wrong by 0.2 kg/mol is then worth 1.4 % of the other's activity
+MATTERS = 0.03  # mol/kg: an estimate wrong by 0.2 kg/mol is then worth 1.4 % of the other ion's activity
 
 
 def coefficient(table: Table, one: str, other: str) -> tuple[float, bool]:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import numpy as np
+
 from gossan.base.wrong import Wrong
 from gossan.chemistry.equilibrium import Equilibrium
 from gossan.chemistry.reading import Reading
@@ -92,7 +94,7 @@ def reacted(reading: Reading, found: Equilibrium, pe: float) -> list[str]:
     """Say which valences that the report names do not last beside its others, or at its pe."""
     system, report = reading.system, reading.report
     count = len(system.components)
-    counted = system.conserved[count:].any(axis=0)
+    counted = np.any(system.conserved[count:] != 0.0, axis=0).tolist()
     coupled = {name for name, others in zip(system.components, counted, strict=True) if others}
     coupled |= set(system.valences)
     coupled -= {PROTON, ELECTRON, str(report.balance_on), *report.undivided}
