@@ -173,7 +173,7 @@ def test_what_entered_is_what_each_feed_brought(tmp_path):
     water = result.ports["outlet"].pore_volumes.values * problem.pore_volume
     switches = np.array([1.0, 1.7]) * problem.pore_volume
     shares = np.diff(np.minimum(water[:, None], [0.0, *switches, np.inf]), axis=1)
-    entered = shares @ problem.inflow
+    entered = shares @ problem.feeds.inflow[:, 0]
     assert result.ledger.entered.values == pytest.approx(entered, rel=1e-11, abs=1e-15)
     assert np.abs(result.ledger.error.values).max() < 1e-12
 

@@ -10,6 +10,7 @@ from pydantic import ValidationError
 
 from gossan.base.amounts import Amount
 from gossan.base.errors import InputError
+from gossan.case.entries import course
 from gossan.case.model import Case, Layer, case_schema
 from gossan.case.quantities import Range
 from gossan.case.read import case_from_data, case_from_text, read_case
@@ -69,14 +70,14 @@ def test_pore_volumes_become_seconds_under_a_held_flux():
     case = case_from_text(SMALL)
     assert case.pore_length == pytest.approx(0.4)
     # 20 times 0.4 m of water at 0.1 m/d are 80 d
-    assert case.seconds(case.run.duration) == pytest.approx(80 * 86400, rel=1e-14)
+    assert course(case).seconds(case.run.duration) == pytest.approx(80 * 86400, rel=1e-14)
     held_head = case_from_text(
         SMALL.replace('darcy_flux = "0.1 m/d"', 'head_drop = "5 cm"').replace(
             "cells = 10", 'cells = 10\nconductivity = "5 m/d"'
         )
     )
     with pytest.raises(ValueError, match="held"):
-        held_head.seconds(held_head.run.duration)
+        course(held_head).seconds(held_head.run.duration)
 
 
 @pytest.mark.parametrize(

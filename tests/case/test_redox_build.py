@@ -12,6 +12,10 @@ from gossan.case.build import build
 from gossan.case.waters import lab_report, read_waters
 from gossan.recording import run
 from gossan.views.assay import assay
+from gossan.views.plan import plan_of
+from gossan.views.plan_sheets import plan_sheets
+from gossan.views.run_sheets import run_sheets
+from gossan.views.summary import summary_of
 
 WATERS = """
 [waters.feed]
@@ -32,7 +36,7 @@ def problem(chemistry: str = "", minerals: str = "", waters: str = WATERS):
 
 
 def inflow(built) -> dict[str, float]:
-    return dict(zip(built.solutes, built.inflow[0].tolist(), strict=True))
+    return dict(zip(built.solutes, built.feeds.inflow[0, 0].tolist(), strict=True))
 
 
 def start(built) -> dict[str, float]:
@@ -151,6 +155,21 @@ def test_pe_is_recorded(tmp_path):
     assert np.asarray(frames)[0] == pytest.approx(np.asarray(port)[0], abs=1e-9)
     assert np.asarray(frames)[0, 0] == pytest.approx(13.6, abs=0.05)
     assert np.asarray(frames)[-1, 0] < 13.5  # iron(II) arrives and eats the oxygen
+
+
+def test_a_run_and_a_check_tell_of_redox(tmp_path):
+    gases = 'gases = {CO2 = {pressure = "0.01 atm", amount = "1e-3 mol/L"}, N2 = "0.8 atm"}'
+    case = case_of(column(WATERS, chemistry=f"{BOTH}\n{gases}", forms="[]", cells=2, duration="0.2 PV"))
+    told = dict(row[:2] for sheet in plan_sheets(plan_of(case)) for row in sheet.rows)
+    assert told["redox"] == "held, but for Fe(II)/Fe(III), O2/H2O"
+    assert told["gases"] == "CO2 at 0.01 atm, 1e-3 mol/L of it; N2 at 0.8 atm, without end"
+    result = run(case, tmp_path / "iron.h5")
+    summary = summary_of(result)
+    first, last = summary.redox["outlet"]
+    pe = np.asarray(result.ports["outlet"]["pe"])
+    assert (first, last) == pytest.approx((0.05916 * pe[0], 0.05916 * pe[-1]), rel=1e-4)
+    (sheet,) = (sheet for sheet in run_sheets(summary) if sheet.title == "Redox")
+    assert sheet.rows == (("outlet", f"{1e3 * first:.0f}", f"{1e3 * last:.0f}"),)
 
 
 def test_an_assay_shows_pe_valences_and_oxygen():

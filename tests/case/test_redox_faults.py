@@ -7,6 +7,7 @@ from gossan.case.read import case_from_text
 
 IRON = 'coupled = ["Fe(II)/Fe(III)"]'
 ALL = 'redox = "coupled"'
+LINEAR = '{law = "linear", kd = "1 L/kg"}'
 PH, CHEMISTRY, SATURATED = "pH = 7.2", "[chemistry]", 'CO2 = "0.003 atm"'
 
 # what stands in the good case and what stands there instead; the words of the fault
@@ -93,7 +94,7 @@ ONE_FAULT = [
     ),
     (
         [
-            ("[layers.clogging]", '[layers.sorption."Fe(III)"]\nlaw="linear"\nkd="1 L/kg"\n[layers.clogging]'),
+            ("[layers.clogging]", f'[layers.sorption]\n"Fe(III)" = {LINEAR}\n[layers.clogging]'),
             (CHEMISTRY, f"[chemistry]\n{IRON}"),
         ],
         "is for Fe^3+, which is coupled and counted as Fe^2+",

@@ -13,6 +13,7 @@ from pydantic import Field, PrivateAttr
 
 from gossan.base.amounts import Amount, amount
 from gossan.base.errors import Fault, InputError
+from gossan.case.feed import TEMPERATURE, Flow
 from gossan.case.fields import Choice, Flag, Names, NotLanded, Number, Text
 from gossan.case.quantities import (
     Alkalinity,
@@ -38,10 +39,6 @@ MOST_CELLS = 1_000_000  # of a layer; more is a slip of the unit of `cell`
 Name = Annotated[str, Text(is_name=True, example='"gate"')]
 Later = Annotated[Any, NotLanded()]
 PH = Annotated[float, Number("a pH", -2, 16, example="5.9")]
-TEMPERATURE = Quantity(
-    ("K",), "a temperature", '"12 degC"', 273.15, 323.15,
-    says="water must be liquid and its constants valid: between 0 and 50 degC",
-)  # fmt: skip
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
 
@@ -184,35 +181,6 @@ class Tracer(TableOfCase):
     )
 
 
-class Feed(TableOfCase):
-    """What enters, from when."""
-
-    from_: Annotated[Amount, Quantity(("s", "PV"), "a time", '"0 d"', 0.0)] = Field(
-        alias="from", description="since the start of the run; the first is 0"
-    )
-    water: Annotated[str, Text(example='"mine"')] = Field(description="the water that enters")
-    darcy_flux: Later = Field(default=None, description="from then on: seasons, pump stops")
-    head_drop: Later = Field(default=None, description="from then on")
-    temperature: Later = Field(default=None, description="from then on")
-
-
-class Flow(TableOfCase):
-    """How the water is driven; exactly one of `darcy_flux` and `head_drop`."""
-
-    darcy_flux: Annotated[
-        Amount | None, Quantity(("m/s",), "a Darcy flux", '"0.12 m/d"', positive=True)
-    ] = Field(
-        default=None, description="held flux: volume per area of the whole section and time"
-    )
-    head_drop: Annotated[Amount | None, Quantity(("m",), "a head drop", '"0.15 m"', positive=True)] = Field(
-        default=None, description="held head over the whole column: the flux follows the conductivity"
-    )
-    inlet: Annotated[str, Choice(("flux", "concentration"))] = Field(
-        default="flux", description='"flux" (third type) or "concentration" (first type)'
-    )
-    feed: tuple[Feed, ...] = Field(default=(), description="what enters, in order of time")
-
-
 class Chemistry(TableOfCase):
     """Which reactions are at equilibrium."""
 
@@ -298,6 +266,7 @@ class Case(TableOfCase):
     _text: str = PrivateAttr("")
     _table: Table | None = PrivateAttr(default=None)
     _constants_text: str = PrivateAttr("")
+    _files: dict[str, str] = PrivateAttr(default={})
     _lines: dict[tuple[str | int, ...], int] = PrivateAttr(default={})
 
     @property
@@ -319,6 +288,11 @@ class Case(TableOfCase):
     def constants_text(self) -> str:
         """The text of the user's own constants; empty without."""
         return self._constants_text
+
+    @property
+    def files(self) -> dict[str, str]:
+        """The texts of the files beside the case that it names, by name; the constants are not among them."""
+        return self._files
 
     def line_of(self, *path: str | int) -> int:
         """The line of a key or table in the text, 0 where it is not known."""
@@ -353,17 +327,6 @@ class Case(TableOfCase):
         """Temperature of a water of the case, K."""
         own = self.waters[water].temperature
         return own.si if own else self.temperature.si
-
-    def seconds(self, time: Amount) -> float:
-        """A time or a number of pore volumes in s, under held flux.
-
-        Raises  ValueError for pore volumes under held head: the flux is not known before the run
-        """
-        if time.unit == "s":
-            return time.si
-        if self.flow is None or self.flow.darcy_flux is None:
-            raise ValueError("pore volumes become a time only where the flux is held")
-        return time.si * self.pore_length / self.flow.darcy_flux.si
 
     def require_column(self) -> None:
         """Refuse a case that says too little to run a column; raises InputError with all that is missing."""

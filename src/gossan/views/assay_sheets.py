@@ -8,7 +8,7 @@ from collections.abc import Iterator
 from gossan.chemistry.redox import ELECTRON
 from gossan.constants.temperature import KELVIN
 from gossan.views.assay import WaterAssay
-from gossan.views.scales import Scale, dissolved_text, solute_scale
+from gossan.views.scales import TRACE, Scale, dissolved_text, solute_scale
 from gossan.views.sheet import Sheet
 
 MAIN_SHARE = 0.001  # of its component: species with less are not printed
@@ -44,7 +44,7 @@ def _redox(one: WaterAssay) -> tuple[tuple[str, str], ...]:
     rows: list[tuple[str, str]] = []
     if not math.isnan(one.pe):
         rows += [("pe", f"{one.pe:.2f}"), ("Eh", f"{1e3 * one.Eh:.0f} mV against the hydrogen electrode")]
-    else:
+    elif not math.isnan(one.reported_Eh):
         rows.append(("pe", "none: nothing is coupled"))
     if not math.isnan(one.reported_Eh) and not abs(one.reported_Eh - one.Eh) < SAME_EH:
         rows.append(("Eh reported", f"{1e3 * one.reported_Eh:.0f} mV"))
@@ -79,7 +79,10 @@ def _valences(one: WaterAssay) -> Iterator[Sheet]:
 def _species(one: WaterAssay) -> Sheet:
     activities = one.species
     rows, last = [], ""
+    density = one.water.system.water_density
     for part in one.parts(MAIN_SHARE):
+        if one.valences[part.component] * density < TRACE:
+            continue
         first = part.component if part.component != last else ""
         amount, activity = f"{1e3 * part.molality:.4g}", f"{activities[part.species][1]:.3f}"
         rows.append((first, part.species, amount, f"{100 * part.share:.1f}", activity))

@@ -30,7 +30,9 @@ def _layers(plan: Plan) -> Sheet:
 def _facts(plan: Plan) -> tuple[tuple[str, str], ...]:
     problem, run = plan.problem, plan.case.run
     assert run is not None
-    held = "held" if problem.head_drop is None else "at the start; it follows the conductivity"
+    feeds = problem.feeds
+    held = "at the start; it follows the " + ("conductivity" if feeds.head_at_start else "feed")
+    held = "held" if feeds.flux_is_steady else held
     seconds = "not known"
     if plan.seconds is not None:
         seconds = f"about {time_words(plan.seconds)}, from its first steps"
@@ -44,10 +46,30 @@ def _facts(plan: Plan) -> tuple[tuple[str, str], ...]:
         ("steps", f"about {plan.steps}, or more where accuracy = {run.accuracy:g} needs shorter ones"),
         ("wall clock", seconds),
         ("dissolved", ", ".join(problem.solutes)),
+        ("redox", _redox(plan)),
+        *_gases(plan),
         ("may form", ", ".join(plan.may_form) or "nothing"),
         ("may only dissolve", ", ".join(plan.may_dissolve) or "nothing"),
         ("ports", ", ".join(f"{port.name} at {port.x:.4g} m" for port in problem.ports)),
     )
+
+
+def _redox(plan: Plan) -> str:
+    """What is coupled, in the words of the case."""
+    chemistry = plan.case.chemistry
+    if chemistry.redox == "coupled":
+        return "coupled: valences of all elements are at equilibrium"
+    if chemistry.coupled:
+        return f"held, but for {', '.join(chemistry.coupled)}"
+    return "held: no valence turns into another"
+
+
+def _gases(plan: Plan) -> tuple[tuple[str, str], ...]:
+    told = [
+        f"{name} at {held.pressure}" + (f", {held.amount} of it" if held.amount else ", without end")
+        for name, held in plan.case.chemistry.gases.items()
+    ]
+    return (("gases", "; ".join(told)),) if told else ()
 
 
 def time_words(seconds: float) -> str:
