@@ -1,4 +1,4 @@
-"""The near step where every ion changes the activity of others and of the water (equations.md, 66).
+"""The near step where every ion changes the activity of others and of the water (equations.md, 67).
 
 The interaction sums and the activity of water are taken with molalities that are unknowns of their own,
 bench.seen, beside the ionic strength.  So the balances' own matrix stays symmetric and positive, and Newton's
