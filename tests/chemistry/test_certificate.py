@@ -156,3 +156,19 @@ def test_more_waters_at_once_are_the_same_bits():
     for i in range(5):
         one = certify(equilibrate(system, totals[:, i]), totals=totals[:, i : i + 1])
         assert one.ln_activity[:, 0].tobytes() == np.ascontiguousarray(whole.ln_activity[:, i]).tobytes()
+
+
+def test_interactions_count_as_they_stand():
+    """A brine under SIT: what is certified is what the solve found."""
+    system = build_system(load_table(), ["Na^+", "Cl^-", "SO4^2-", "Ca^2+"], ["gypsum"], activity="sit")
+    totals = np.zeros((len(system.components), 1))
+    for name, value in (("Na^+", 2.1), ("Cl^-", 2.0), ("SO4^2-", 0.25), ("Ca^2+", 0.2)):
+        totals[system.components.index(name)] = value
+    found = equilibrate(system, totals)
+    certificate = certify(found, totals=totals)
+    assert found.presence[0, 0] == 1
+    assert certificate.balance.max() < 1e-10
+    assert certificate.worst[0] < 1e-10
+    wrong = found.ln_activity.copy()
+    wrong[system.components.index("Cl^-")] += 1e-6
+    assert certify(replace(found, ln_activity=wrong), totals=totals).worst[0] > 5e-7

@@ -18,7 +18,8 @@ class Certificate:
     """How well each water meets its equations; all evaluated with 32 digits from the stored numbers alone.
 
     Amounts of minerals, and whether a balance holds that they take part in, are judged only where the totals
-    were given to `certify`. Under SIT the interactions count as they stand.
+    were given to `certify`. Under SIT the interactions
+    and the activity of water count as they stand.
     """
 
     system: System
@@ -55,7 +56,7 @@ def certify(
     totals: np.ndarray | None = None,
     upper: np.ndarray | None = None,
 ) -> Certificate:
-    """Put an equilibrium back into its equations, in doubled precision (equations.md, 69 and 70).
+    """Put an equilibrium back into its equations, in doubled precision (equations.md, 70 and 71).
 
     kilograms (cell,) kg of water per unit that the amounts are per; default 1, for mol per kg of water
     totals    (component, cell) what was to be shared out, solids included, in the unit of the amounts;
@@ -76,12 +77,14 @@ def certify(
         held[len(rows) - len(found.given) :] = -found.given
     total = np.ascontiguousarray(found.amount if totals is None else totals, float)
     weight = np.ones(cells) if kilograms is None else np.ascontiguousarray(kilograms, float)
+    # under SIT they depend on every molality: as the answer has them
+    ln_gamma = found.ln_gamma() if system.activity.interacts else np.zeros((0, cells))
     balance, strength = np.empty(total.shape), np.empty(cells)
     saturation, error = np.empty((len(rows), cells)), np.empty(found.ln_activity.shape)
     certify_cells(
         matrices, desk(len(found.ln_activity), len(matrices.ln_k), len(rows)), tied, weight, total, held,
         np.ascontiguousarray(found.ln_activity), np.ascontiguousarray(found.ionic_strength),
-        balance, strength, saturation, error,
+        np.ascontiguousarray(ln_gamma), balance, strength, saturation, error,
     )  # fmt: skip
     may_form = system.may_form[:, None] if upper is None else upper > 0.0
     there = np.nan_to_num(saturation, nan=0.0)

@@ -26,5 +26,6 @@ def certify_state(problem: Problem, state: State) -> Certificate:
         solved=state.solved,
         steps=np.zeros(cells, np.int64),
         given=np.zeros((len(system.open_gases), cells)),
+        seen=state.seen,
     )
     return certify(found, np.full(cells, system.water_density))

@@ -1,4 +1,4 @@
-"""An answer put back into its equations with twice the digits (equations.md, 69 and 70).
+"""An answer put back into its equations with twice the digits (equations.md, 70 and 71).
 
 All that is asked of a cell is its ln activities, ionic strength, marks and amounts: how they were found
 plays no part, and nothing of the solve is used again.
@@ -219,6 +219,11 @@ def lay_out(matrices, desk, tied, total, held, weight):
         desk.right[r], desk.right_low[r] = matrices.solid_ln_k[r], 0.0
         for b in range(rows.shape[1]):
             desk.rows[r, b], desk.rows_low[r, b] = rows[r, b], 0.0
+        if matrices.given:
+            water = rows.shape[1] - 1  # its activity is given, and no unknown
+            term, term_low = two_product(-rows[r, water], desk.x[water])
+            desk.right[r], desk.right_low[r] = add(desk.right[r], desk.right_low[r], term, term_low)
+            desk.rows[r, water] = 0.0
     for b in range(desk.total.shape[0]):
         value, value_low = 0.0, 0.0
         if b < total.shape[0]:
@@ -233,15 +238,16 @@ def lay_out(matrices, desk, tied, total, held, weight):
 
 @kernel
 def certify_cells(
-    matrices, desk, tied, weight, total, held, ln_activity, ionic_strength, balance, strength, saturation,
-    error,
+    matrices, desk, tied, weight, total, held, ln_activity, ionic_strength, ln_gamma, balance, strength,
+    saturation, error,
 ):
-    """Judge every cell of an answer (equations.md, 69 and 70).
+    """Judge every cell of an answer (equations.md, 70 and 71).
 
     tied (row, cell) int8: 1 where the row is saturated; rows are minerals, couples, open gases
     weight (cell,) kg of water per unit; total (component, cell) what is there, per unit; held (row, cell)
         what the answer says that each row holds of it, in formulas per unit
     ln_activity (basis, cell), ionic_strength (cell,)
+    ln_gamma (species, cell) where the ionic strength alone does not give it, else (0, cell)
     Overwritten: balance (component, cell), strength (cell,), saturation (row, cell), error (basis, cell)
     """
     for r in range(desk.pivot.shape[0]):
@@ -251,6 +257,8 @@ def certify_cells(
             matrices.model, matrices.debye_hueckel, matrices.charge_squared, matrices.neutral, matrices.size,
             ionic_strength[i], desk.ln_gamma, desk.slope,
         )  # fmt: skip
+        for s in range(ln_gamma.shape[0]):
+            desk.ln_gamma[s] = ln_gamma[s, i]
         for b in range(desk.x.shape[0]):
             desk.x[b], desk.x_low[b] = ln_activity[b, i], 0.0
         made, _ = speciate(matrices, desk)

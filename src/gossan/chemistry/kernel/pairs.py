@@ -1,4 +1,4 @@
-"""Rows that hold take the scarce out of the problem, in pairs of doubles (equations.md, 10 and 70)."""
+"""Rows that hold take the scarce out of the problem, in pairs of doubles (equations.md, 10 and 71)."""
 
 from __future__ import annotations
 
@@ -18,7 +18,7 @@ def sort_by_abundance(matrices, desk):
     Returns how many there are.
     """
     count = 0
-    for b in range(desk.x.shape[0]):
+    for b in range(desk.x.shape[0] - matrices.given):
         if desk.x[b] < GONE:
             continue
         abundance = 0.0
