@@ -198,7 +198,9 @@ def test_the_hardest_wide_waters_at_sixty_digits():
 
 def bits(found: Equilibrium, chosen=slice(None)) -> list[bytes]:
     """Everything an equilibrium holds, as bytes."""
-    names = ("amount", "solid", "presence", "ln_activity", "ionic_strength", "solved", "steps", "given", "seen")
+    names = (
+        "amount", "solid", "presence", "ln_activity", "ionic_strength", "solved", "steps", "given", "seen",
+    )  # fmt: skip
     return [np.ascontiguousarray(getattr(found, name)[..., chosen]).tobytes() for name in names]
 
 

@@ -48,7 +48,9 @@ def solve(batch: Batch) -> Answers:
 
 
 def _joined(parts: list[Equilibrium], batch: Batch) -> Equilibrium:
-    names = ("amount", "solid", "presence", "ln_activity", "ionic_strength", "solved", "steps", "given", "seen")
+    names = (
+        "amount", "solid", "presence", "ln_activity", "ionic_strength", "solved", "steps", "given", "seen",
+    )  # fmt: skip
     if not parts:
         raise SolveError(f"none of the waters of {batch.name} was solved")
     return Equilibrium(batch.system, **{  # type: ignore[arg-type]
