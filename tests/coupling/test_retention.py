@@ -72,7 +72,7 @@ def totals(problem: Problem, state: State) -> np.ndarray:
 
 def marched(problem: Problem, state: State, steps: int, theta: float | None) -> np.ndarray:
     """Totals after a fifth of a day in equal steps."""
-    flux = np.full(len(problem.grid.width) + 1, problem.inlet_flux)
+    flux = np.full(len(problem.grid.width) + 1, POROSITY / 86400.0)
     inflow = state.dissolved[:, 0]
     solver = Solver(problem.system)
     for _ in range(steps):
@@ -160,7 +160,7 @@ def test_nothing_falls_below_nothing_or_rises_above_what_there_was(text):
     run = walk(text)
     problem = run.problem
     tracers = slice(problem.chemical, None)
-    most = (problem.inflow.max(axis=0) + problem.initial.dissolved.max(axis=1))[tracers].sum()
+    most = (problem.feeds.inflow.max(axis=(0, 1)) + problem.initial.dissolved.max(axis=1))[tracers].sum()
     for state in run.records:
         waters = [state.dissolved[tracers]] + ([state.still.dissolved[tracers]] if state.still else [])
         for dissolved in waters:
