@@ -38,7 +38,7 @@ class Ground:
         set_totals(self.matrices, bench, total, np.zeros(count), bench.upper, presence)
         n, self.free = eliminate(self.matrices, bench, presence, -1)
         reduce_species(self.matrices, bench, n, self.free)
-        reduce_totals(bench, n, self.free)
+        reduce_totals(self.matrices, bench, n, self.free)
         # constants such that the water has about this strength and no species more than that
         reduced = bench.reduced[: self.free, :SPECIES]
         raised = bench.reduced_ln_k[:SPECIES] + reduced.T @ self.x
