@@ -19,7 +19,8 @@ from gossan.coupling.problem import Port, Problem
 from gossan.coupling.schedule import Schedule, every
 from gossan.coupling.state import State
 from gossan.transport import clogging, grid
-from gossan.transport.step import transport_of
+from gossan.transport.faces import transport_of
+from gossan.transport.tortuosity import Tortuosity
 
 FRAMES, RECORDS = 100, 1000  # default divisions of a run
 
@@ -85,8 +86,14 @@ def _cut(layer: Layer) -> grid.Layer:
         cells=layer.cell_count,
         dispersivity=layer.dispersivity.si,
         diffusion=layer.diffusion.si,
-        tortuosity=float("nan") if layer.tortuosity is None else layer.tortuosity,
+        tortuosity=_tortuosity(layer),
     )
+
+
+def _tortuosity(layer: Layer) -> Tortuosity:
+    if layer.tortuosity is None:
+        return Tortuosity()
+    return Tortuosity("number", factor=layer.tortuosity)
 
 
 def _clogging(layer: Layer) -> clogging.Clogging:

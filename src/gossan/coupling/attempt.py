@@ -11,7 +11,8 @@ from gossan.chemistry.equilibrium import UNBOUNDED, Equilibrium, Solver
 from gossan.coupling.pores import pore_space
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State
-from gossan.transport.step import Passages, corrected, courant, kept_positive, passages
+from gossan.transport.faces import Faces
+from gossan.transport.step import Passages, corrected, kept_positive, passages
 
 # A cell is left alone while its dissolved amounts stand within this of its last solve: far below any
 # accuracy that a case may ask for, far above rounding.
@@ -36,29 +37,28 @@ class Trial:
 
 
 def attempt(
-    problem: Problem, solver: Solver, state: State, darcy_flux: np.ndarray, inflow: np.ndarray, dt: float,
+    problem: Problem, solver: Solver, state: State, faces: Faces, inflow: np.ndarray, dt: float,
     theta: float | None,
 ) -> Trial:
     """March one step of dt from a state.
 
-    darcy_flux (face,) m s-1 during the step; inflow (solute,) mol m-3
-    theta      None: explicit dispersion; else the weight of the end in an implicit one
+    faces      during the step; inflow (solute,) mol m-3
+    theta      None: explicit; else the weight of the end in an implicit step
     Raises     SolveError where a cell finds no equilibrium
     """
-    transport = problem.transport
-    width = problem.grid.width
+    width, darcy_flux = problem.grid.width, faces.darcy_flux
     amount = state.dissolved * state.water
     water = state.water + dt * (darcy_flux[:-1] - darcy_flux[1:]) / width
     before = _equilibrium(problem, state)
 
-    first = passages(transport, state.dissolved, state.water, darcy_flux, inflow, dt, theta)
+    first = passages(faces, state.dissolved, inflow, dt, theta)
     passed = _held_back(problem, state, first, amount, first.passed)
     moved = _moved(amount, passed, width)
     found = _react(problem, solver, before, moved, state.solid, water)
     predicted = moved.copy()
     predicted[: problem.chemical] = found.amount
     predicted /= water + _freed(problem, found.solid - state.solid)
-    whole = corrected(transport, first, state.dissolved, predicted)
+    whole = corrected(first, state.dissolved, predicted)
     difference = whole - passed
     size = _relative(difference[:, :-1] - difference[:, 1:], _scale(problem, state, inflow))
     if problem.coupling == "two-stage":
@@ -90,7 +90,7 @@ def attempt(
         splitting_error=state.splitting_error + error,
     )
     change = float(np.max(np.abs(lost) / state.water)) if len(lost) else 0.0
-    return Trial(after, dt, error, change, courant(transport, state.water, darcy_flux, dt))
+    return Trial(after, dt, error, change, faces.fastest * dt)
 
 
 def _moved(amount: np.ndarray, passed: np.ndarray, width: np.ndarray) -> np.ndarray:
@@ -109,7 +109,7 @@ def _held_back(
     total = amount.copy()
     total[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
     positive = np.arange(len(amount)) != problem.system.matrices.signed
-    return kept_positive(problem.transport, first, state.dissolved, state.water, total, passed, positive)
+    return kept_positive(first, state.dissolved, total, passed, positive)
 
 
 def _equilibrium(problem: Problem, state: State) -> Equilibrium:

@@ -16,13 +16,14 @@ from gossan.coupling.pores import flow, pore_space
 from gossan.coupling.problem import Problem
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
-from gossan.transport.step import courant, explicit_limit
+from gossan.transport.faces import Faces, faces_of
+from gossan.transport.step import DAMPING
 
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
-# Explicit dispersion may cost so many times the steps; beyond, it is solved implicitly, which is as good for
-# tracers but only first order beside a mineral front.
+# Explicit transport may cost so many times the steps; beyond, it is implicit, which is as good for tracers
+# but only first order beside a mineral front.
 GAIN_OF_TRACERS, GAIN_OF_MINERALS = 3.0, 10.0
-DAMPED_STEPS = 2  # half steps of backward Euler after a switch of feed (Rannacher 1984, from memory)
+WEIGHT_OF_END = {"two-stage": DAMPING, "lie": 1.0}  # in an implicit step
 
 
 @dataclass(frozen=True, eq=False)
@@ -77,11 +78,12 @@ def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: f
     rejected = 0
     while True:
         darcy_flux, head = flow(problem, state, pace.dt)
-        longest, implicit = longest_step(problem, state, darcy_flux)
-        theta = (1.0 if pace.afresh < DAMPED_STEPS else 0.5) if implicit else None
+        faces = faces_of(problem.transport, state.water, darcy_flux)
+        longest, implicit = longest_step(problem, faces)
+        theta = WEIGHT_OF_END[problem.coupling] if implicit else None
         dt, lands = _fitted(problem, state, entered, darcy_flux[0], min(pace.dt, longest))
         try:
-            trial = attempt(problem, solver, state, darcy_flux, inflow, dt, theta)
+            trial = attempt(problem, solver, state, faces, inflow, dt, theta)
         except SolveError as error:
             failure, trial = error, None
         if trial is not None:
@@ -97,11 +99,6 @@ def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: f
     if lands and following.dt >= dt:
         following = replace(following, dt=max(following.dt, pace.dt))  # a record cut it short, not its error
     now = pore_volumes(problem, trial.state)
-    switched = problem.feeds.passed(problem.feeds.clock(trial.state.time, now)) - 1 > feed
-    if switched:
-        following = Pace(0.5 * following.dt if implicit else following.dt)
-    else:
-        following = replace(following, afresh=pace.afresh + 1)
     return Stride(
         state=trial.state,
         pace=following,
@@ -119,17 +116,20 @@ def _due(schedule: Schedule, before: State, after: State, entered: float, now: f
     )
 
 
-def longest_step(problem: Problem, state: State, darcy_flux: np.ndarray) -> tuple[float, bool]:
-    """The longest step that Courant's number allows, and whether dispersion must be implicit in it."""
-    unit = courant(problem.transport, state.water, darcy_flux, 1.0)
-    by_courant = problem.max_courant / unit if unit > 0.0 else math.inf
-    by_dispersion = explicit_limit(problem.transport, state.water, darcy_flux)
+def longest_step(problem: Problem, faces: Faces) -> tuple[float, bool]:
+    """The longest step that stability and Courant's number allow, and whether it must be implicit.
+
+    Explicit wherever that does not cost GAIN times the steps of an implicit march. That one takes the time in
+    which water crosses an average cell: shorter cells than that, and dispersion, are then implicit.
+    """
+    by_courant = problem.max_courant / faces.fastest if faces.fastest > 0.0 else math.inf
+    explicit = min(by_courant, faces.explicit_limit)
+    still = faces.speed.min() == 0.0
+    implicit = math.inf if still else problem.max_courant * float(np.mean(1.0 / faces.speed))
     gain = GAIN_OF_MINERALS if problem.system.minerals else GAIN_OF_TRACERS
-    if by_dispersion * gain >= by_courant:
-        return min(by_courant, by_dispersion), False
-    if by_courant == math.inf:
-        return 1e3 * by_dispersion, True
-    return by_courant, True
+    if explicit * gain >= implicit:
+        return explicit, False
+    return implicit, True
 
 
 def _fitted(

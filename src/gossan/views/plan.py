@@ -90,7 +90,7 @@ def _step(problem: Problem) -> float:
     """The length of step that Courant's number and the spread by dispersion allow at the start, s."""
     state = problem.initial
     darcy_flux, _ = flow(problem, state, 1.0)
-    return longest_step(problem, state, darcy_flux)[0]
+    return longest_step(problem, faces_of(problem.transport, state.water, darcy_flux))[0]
 
 
 def _seconds_per_step(problem: Problem) -> float | None:
