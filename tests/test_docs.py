@@ -44,7 +44,8 @@ def prose(page: Path) -> str:
 
 
 def is_constants(block: str) -> bool:
-    return not {"sources", "components", "species", "minerals", "gases"}.isdisjoint(tomllib.loads(block))
+    sections = {"sources", "components", "species", "minerals", "gases", "interactions"}
+    return not sections.isdisjoint(tomllib.loads(block))
 
 
 @pytest.mark.parametrize("page", PAGES, ids=IDS)

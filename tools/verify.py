@@ -101,10 +101,16 @@ def row(check: Check) -> str:
     agreement = ""
     if not isinstance(check.published, Between):
         agreement = f"{digits(found, check.published, check.logarithmic):.1f}"
-    shown = f"{found:.3f}" if check.logarithmic else f"{found:.4g}"
+    shown = f"{found:.3f}" if check.logarithmic else f"{found:.{_digits_shown(check)}g}"
     read = "read" if check.seen else "from memory"
     cells = (check.name, check.published, shown, agreement, check.source, read, check.why)
     return f"| {' | '.join(str(cell).replace('|', '/') for cell in cells)} |"
+
+
+def _digits_shown(check: Check) -> int:
+    """Four, or as many as were published."""
+    value = getattr(check.published, "value", 0.0)
+    return max(4, len(f"{value:g}".partition("e")[0].replace(".", "").lstrip("-0")))
 
 
 if __name__ == "__main__":

@@ -18,7 +18,8 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
-from gossan.chemistry.equilibrium import LN10, log10_activity, saturation
+from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation
+from gossan.coupling.beyond import Beyond, watched
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Clogged, Stride, march, pore_volumes
 from gossan.coupling.pace import Pace
@@ -66,6 +67,7 @@ def run_case(case: Case, path: Path, *, overwrite: bool = False, progress: Progr
     )
     with writer:
         run = _Run(problem, writer, progress)
+        run.beyond = watched(problem, state, run.beyond)
         run.frame(state)
         run.records(state)
         writer.checkpoint(run.parts(state, pace))
@@ -83,6 +85,7 @@ def resume(path: Path, *, progress: Progress | None = None) -> Ending:
         run = _Run(problem, writer, progress)
         state = State(**parts["state"])
         run.seen = parts["seen"]
+        run.beyond = Beyond(**parts["beyond"])
         return run.walk(state, Pace(**parts["pace"]))
 
 
@@ -135,6 +138,7 @@ class _Run:
         self.books = Books(problem)
         self.steps: list[dict[str, float]] = []
         self.seen = {"frame": -1.0, "records": -1.0}  # times of the last ones, s
+        self.beyond = Beyond()
         self.asked_to_stop = False
 
     def walk(self, state: State, pace: Pace) -> Ending:
@@ -154,6 +158,7 @@ class _Run:
                 now = wall.monotonic()
                 self.step(stride, now - last)
                 last = now
+                self.beyond = watched(self.problem, stride.state, self.beyond)
                 if stride.frame_due:
                     self.frame(stride.state)
                 if stride.record_due:
@@ -186,7 +191,7 @@ class _Run:
                 self.records(state)
             if state.time > self.seen["frame"]:
                 self.frame(state)
-        figures = {"wall_clock_seconds": wall.monotonic() - began}
+        figures = {"wall_clock_seconds": wall.monotonic() - began, "warnings": self.beyond.told(self.problem)}
         self.writer.finish(ending.status, parts, ending.reason, figures, counts)
         return ending
 
@@ -202,7 +207,7 @@ class _Run:
 
     def parts(self, state: State, pace: Pace) -> dict[str, Any]:
         """All that the run needs to go on from here."""
-        return {"state": state, "pace": pace, "seen": dict(self.seen)}
+        return {"state": state, "pace": pace, "seen": dict(self.seen), "beyond": self.beyond}
 
     def step(self, stride: Stride, seconds: float) -> None:
         self.steps.append(
@@ -266,7 +271,7 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
     return {
         "dissolved": state.dissolved,
         "solid": state.solid,
-        "saturation": saturation(system.mineral_stoichiometry, system.matrices.solid_ln_k, state.ln_activity),
+        "saturation": mineral_saturation(system, state.ln_activity),
         "activity": activity,
         "porosity": state.water,
         "conductivity": conductivity(problem, state.water),

@@ -29,8 +29,8 @@ def test_json_is_what_the_contract_says(case_file, capsys):
     code, found = run_json(capsys, str(case_file), "-o", str(out))
     assert code == 0
     assert set(found) == {
-        "status", "reason", "ports", "conductivity", "ledger_error", "splitting_error", "steps", "seconds",
-        "file",
+        "status", "reason", "ports", "conductivity", "warnings", "ledger_error", "splitting_error", "steps",
+        "seconds", "file",
     }  # fmt: skip
     assert (found["status"], found["reason"], found["file"]) == ("finished", None, str(out))
     outlet = found["ports"]["outlet"]
@@ -45,6 +45,7 @@ def test_json_is_what_the_contract_says(case_file, capsys):
     assert set(outlet["Zn^2+"].values()) - {outlet["Zn^2+"]["limit"]} == {None}
     assert found["conductivity"]["least_fraction"] == pytest.approx(1.0)
     assert found["conductivity"]["half_at_s"] is None
+    assert found["warnings"] == []
     assert found["ledger_error"] < ROUND_OFF
     assert found["steps"] > 60  # 4 pore volumes of 8 cells at half a cell a step
 
@@ -67,6 +68,17 @@ def test_tables_go_to_standard_output_and_the_caution_to_standard_error(case_fil
         assert word in printed.out
     assert "confined spaces" in printed.err
     assert "\x1b" not in printed.out
+
+
+def test_a_run_beyond_the_range_of_its_activity_law_says_so(case_file, capsys):
+    brine = '{Na = "0.8 mol/L", Cl = "0.79 mol/L"}'
+    case_file.write_text(GYPSUM.replace('{Ca = "20 mg/L", SO4 = "48 mg/L"}', brine))
+    out = str(case_file.with_suffix(".h5"))
+    assert main(["run", str(case_file), "-o", out, "--json"]) == 0
+    printed = capsys.readouterr()
+    (warning,) = json.loads(printed.out)["warnings"]
+    assert "the davies law is meant for waters up to 0.5" in warning
+    assert f"warning: {warning}" in printed.err
 
 
 def test_the_result_goes_into_the_current_folder_by_default(case_file, tmp_path, monkeypatch):

@@ -8,7 +8,7 @@ from math import log10
 import pytest
 
 from gossan.base.notation import charge_of, molar_mass, parse_formula, split_ion
-from gossan.constants.find import UnknownName, find, find_mineral
+from gossan.constants.find import UnknownName, find, find_interaction, find_mineral
 from gossan.constants.load import load_table
 from gossan.constants.temperature import log10_k_at
 
@@ -112,9 +112,49 @@ def test_constants_are_in_si_and_say_where_they_come_from():
     assert max(densities) < 12000
 
 
+def test_where_published_values_disagree_the_reason_of_the_choice_stands_there():
+    """An alternative within two standard uncertainties needs none."""
+    records = [(held, held.half_log10_k) for held in TABLE.components.values() if held.half_log10_k]
+    for group in (TABLE.species, TABLE.minerals, TABLE.gases):
+        records += [(record, record.published or record.log10_k) for record in group.values()]
+    for record, chosen in records:
+        for other in record.alternatives:
+            if abs(other.value - chosen.value) > 2.0 * chosen.sd:
+                assert record.note or other.note, f"{record.name}: {chosen.value} and not {other.value}"
+
+
+def test_each_constant_knows_the_temperatures_it_is_known_for():
+    """degC: of an equation what its source says, 0 to 50 with an enthalpy, 25 give or take 10 without."""
+    ranges = {
+        "calcite": (0, 90), "gypsum": (0, 60), "vivianite": (5, 90), "siderite": (25, 250),
+        "sphalerite": (0, 50), "hopeite": (15, 35),
+    }  # fmt: skip
+    for name, (low, high) in ranges.items():
+        assert TABLE.minerals[name].valid == pytest.approx((low + 273.15, high + 273.15)), name
+    assert TABLE.gases["CO2"].valid == pytest.approx((273.15, 523.15))
+    assert TABLE.components["Cu^+"].half_valid == pytest.approx((273.15, 323.15))
+    assert TABLE.components["Zn^2+"].half_valid is None
+    # a pair is known where both it and the bicarbonate it is written with are: 0 to 90 and 0 to 250
+    assert TABLE.species["CaHCO3^+"].valid == pytest.approx((273.15, 363.15))
+    # no enthalpy of its own, whatever is known of bicarbonate
+    assert TABLE.species["ZnHCO3^+"].valid == pytest.approx((288.15, 308.15))
+    for record in (*TABLE.species.values(), *TABLE.minerals.values(), *TABLE.gases.values()):
+        assert record.valid[0] <= 298.15 <= record.valid[1]
+
+
+def test_ripe_solids_and_clusters_do_not_form_by_default():
+    slow = ("dolomite", "magnesite", "millerite", "chalcopyrite", "pyrite", "goethite", "hematite", "quartz",
+            "sphalerite", "wurtzite", "covellite", "lead hydroxide")  # fmt: skip
+    assert not any(TABLE.minerals[name].forms for name in slow)
+    fresh = ("fresh zinc sulfide", "fresh copper sulfide", "mackinawite", "ferrihydrite", "gypsum", "calcite")
+    assert all(TABLE.minerals[name].forms for name in fresh)
+    assert {name for name, species in TABLE.species.items() if not species.default} == {"S^2-", "Zn(OH)HS"}
+
+
 def test_every_source_of_the_program_is_used():
     used = set()
-    for group in (TABLE.components, TABLE.species, TABLE.minerals, TABLE.gases):
+    groups = (TABLE.components, TABLE.species, TABLE.minerals, TABLE.gases, TABLE.interactions)
+    for group in groups:
         used |= set(re.findall(r"source='([^']*)'", repr(list(group.values()))))
     assert set(TABLE.sources) - used == {"freeze1979"} - used  # that one is cited in debye_huckel.toml
 
@@ -153,6 +193,14 @@ def test_an_unknown_mineral_gets_suggestions_and_a_shared_formula_the_choice():
         find_mineral(TABLE, "ZnS")
     with pytest.raises(UnknownName, match="no mineral is called"):
         find_mineral(TABLE, "Zn^2+")
+
+
+def test_interactions_are_found_either_way_round():
+    assert find_interaction(TABLE, "Na⁺/Cl⁻").name == find_interaction(TABLE, "Cl^-/Na^+").name == "Na^+/Cl^-"
+    with pytest.raises(UnknownName, match=r"of Pb\^2\+ and HS\^-: of Pb\^2\+ it has Pb"):
+        find_interaction(TABLE, "Pb^2+/HS^-")
+    with pytest.raises(UnknownName, match=r"of a and b and c$"):
+        find_interaction(TABLE, "a/b/c")
 
 
 def test_find_gives_all_that_bears_a_name():

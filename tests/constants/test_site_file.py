@@ -60,6 +60,14 @@ def test_a_users_file_adds_and_replaces(tmp_path):
     assert TABLE.minerals["sphalerite"].log10_k.value == -11.45
 
 
+def test_a_users_file_may_say_where_its_constants_are_known(tmp_path):
+    text = SITE.replace("forms = false", "valid = [-2, 40]\nforms = false")
+    table = load_table(site(tmp_path, text))
+    # written through CO2(g), which is known from 0 degC on
+    assert table.minerals["site crust"].valid == pytest.approx((273.15, 308.15 + 5.0))
+    assert table.minerals["sphalerite"].valid == pytest.approx((288.15, 308.15))  # no enthalpy was given
+
+
 def test_replacing_a_link_moves_what_hangs_on_it(tmp_path):
     text = """
     [species."HCO3^-"]
@@ -73,6 +81,44 @@ def test_replacing_a_link_moves_what_hangs_on_it(tmp_path):
 
 # old text of SITE, new text, line of the fault, key, what it says
 BROKEN = [
+    (
+        "enthalpy = {",
+        "temperature_fit = {constant = 0.94}\nenthalpy = {",
+        25,
+        "species.CaF^+.enthalpy",
+        "is +17 kJ/mol away from the slope of temperature_fit at 25 degC",
+    ),
+    (
+        '"ZnS(s) + H^+ = Zn^2+ + HS^-"',
+        '"SrZnS2(s) + 2 H^+ = Sr^2+ + Zn^2+ + 2 HS^-"',
+        6,
+        "minerals.sphalerite.reaction",
+        'uses Sr^2+, which the table lacks: no component holds Sr: add its ion to the components, like '
+        '[components."Sr^2+"]',
+    ),
+    (
+        '"ZnS(s) + H^+ = Zn^2+ + HS^-"',
+        '"ZnS(s) + H^+ + CaHCO3^+ = ZnHCO^3+ + HS^- + CaO2"',
+        6,
+        "minerals.sphalerite.reaction",
+        "uses ZnHCO^3+, which the table lacks: did you mean ZnHCO3^+?",
+    ),
+    (
+        "forms = true",
+        'valid = "cold"\nforms = true',
+        9,
+        "minerals.sphalerite.valid",
+        "write the range in degC, like [5, 90]",
+    ),
+    ("forms = true", "valid = [5, 20]\nforms = true", 9, "minerals.sphalerite.valid", "it holds 25 degC"),
+    ("forms = true", "valid = [50, 5]\nforms = true", 9, "minerals.sphalerite.valid", "it holds 25 degC"),
+    (
+        "ion_size = {",
+        "valid = [0, 50]\nion_size = {",
+        18,
+        "components.F^-.half_reaction",
+        "a first ion has no constant",
+    ),
     (
         '"Ca^2+ + F^- = CaF^+"',
         '"CaF^+ + H2O = CaF^+ + H^+ + OH^-"',

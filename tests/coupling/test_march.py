@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 from tests.support.columns import Walk, column, started, walk, watched
 
-from gossan.chemistry.equilibrium import saturation
+from gossan.chemistry.equilibrium import mineral_saturation
 from gossan.coupling.march import pore_volumes
 
 ACID_ON_CALCITE = """
@@ -31,7 +31,7 @@ gypsum = 0.0
 def indices(run: Walk, state) -> np.ndarray:
     """(mineral, cell) saturation indices."""
     system = run.problem.system
-    return saturation(system.mineral_stoichiometry, system.matrices.solid_ln_k, state.ln_activity)
+    return mineral_saturation(system, state.ln_activity)
 
 
 @pytest.mark.parametrize("coupling", ["two-stage", "lie"])

@@ -30,23 +30,32 @@ def matrices_of(plain: PlainSystem, model: int = IDEAL) -> Matrices:
 
     stoichiometry = np.zeros((len(plain.components), padded(species)))
     stoichiometry[:, :species] = plain.formation.T
+    solid = np.ascontiguousarray(plain.dissolution)
     return Matrices(
         stoichiometry=stoichiometry,
         ln_k=filled(plain.ln_k, NONE),
+        conserved=stoichiometry,
+        conserved_ln_k=filled(plain.ln_k, NONE),
         charge_squared=filled(plain.charge**2),
         neutral=filled(plain.charge == 0.0),
         size=filled(np.where(plain.charge == 0.0, 0.0, B_PER_M * plain.ion_size)),
         model=model,
         debye_hueckel=A_LOG10 * LN10,
-        solid=np.ascontiguousarray(plain.dissolution),
+        solid=solid,
         solid_ln_k=plain.mineral_ln_k.copy(),
+        supplied=solid,
+        supplied_ln_k=plain.mineral_ln_k.copy(),
+        minerals=len(plain.minerals),
+        first=np.zeros(0, np.int64),
+        carrier=np.zeros(0, np.int64),
         signed=0 if plain.components[0] == "H^+" else -1,
+        electron=-1,
     )
 
 
 def bench_of(plain: PlainSystem) -> Bench:
     """Working space for this system."""
-    return bench(len(plain.components), padded(len(plain.species)), len(plain.minerals))
+    return bench(matrices_of(plain))
 
 
 def law_of(plain: PlainSystem, model: int) -> LnGamma | None:

@@ -11,7 +11,7 @@ import numpy as np
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
-from gossan.chemistry.equilibrium import saturation
+from gossan.chemistry.equilibrium import mineral_saturation
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Stride, march, pore_volumes
 from gossan.coupling.problem import Problem
@@ -162,7 +162,7 @@ def assert_books_closed(books: Books, state: State) -> None:
 def assert_at_equilibrium(problem: Problem, state: State) -> None:
     """No mineral that may form is supersaturated, none is less than nothing, none there is undersaturated."""
     system = problem.system
-    index = saturation(system.mineral_stoichiometry, system.matrices.solid_ln_k, state.ln_activity)
+    index = mineral_saturation(system, state.ln_activity)
     assert state.solid.min(initial=0.0) >= 0.0
     if system.may_form.any():
         assert np.nanmax(index[system.may_form], initial=-np.inf) <= SATURATED, system.minerals

@@ -2,7 +2,9 @@
 
 The classroom rule that ZnS stays dissolved in 0.3 M acid holds for the fresh solid only, and copper over
 covellite with Cu(II) species alone is a number without meaning (1e-26 mol/kg): pore waters hold Cu(I) with
-bisulfide. Both are kept here as what they are, traps.
+bisulfide. Both are kept here as what they are, traps. A third: against sulfide, what should be dissolved has
+the shape of a U, but in a treatment wetland filtered Zn, Cu and Cd lay flat and above it, worst where sulfide
+was low, because spheres of ZnS pass the filter (gammons2001). A floor is the least that can be measured.
 
 Citations
   wang1999       Wang & Tessier (1999), Cadmium complexation with bisulfide, Environ. Sci. Technol. 33,
@@ -15,6 +17,8 @@ Citations
                  complexes of Rickard & Luther (2006)
   porewater      pore waters of sulfidic mud: 1e-10 to 1e-7 mol/L of Zn, 1e-11 to 1e-8 of Cu; the program
                  stays among them
+  gammons2001    Gammons & Frandsen (2001), Fate and transport of metals in H2S-rich waters at a treatment
+                 wetland, Geochem. Trans. 2, 1
   vogel          the classical scheme of qualitative analysis (Vogel): 0.1 M H2S in 0.3 M acid, ideal
                  concentrations
   computed       solved apart from this program with the same constants: fresh ZnS -9.0, FeS -3.5, Zn(HS)n
@@ -129,7 +133,9 @@ def test_sulfidic_water(check):
 
 
 def test_complexes_carry_zinc_up_with_sulfide():
-    """Over a solid, more sulfide first takes zinc away and then, as bisulfide, brings it back."""
+    """Over a solid, more sulfide first takes zinc away and then, as bisulfide, brings it back: the U of
+    gammons2001.
+    """
     amounts = [1e-9, 1e-7, 1e-5, 1e-3, 1e-1]
     left = [
         log10_total("Zn^2+")(Solution({"HS^-": hs}, pH=7.0, minerals=("sphalerite",)).equilibrium())

@@ -228,6 +228,7 @@ def _initial(
         presence=spread("presence"),
         solved=spread("solved"),
         passed=np.zeros((2 + ports, solutes, 2)),
+        made=np.zeros((solutes, 2)),
         water_passed=np.zeros((3, 2)),
         splitting_error=0.0,
     )

@@ -25,10 +25,11 @@ class Equilibrium:
     amount: np.ndarray  # (component, cell) dissolved
     solid: np.ndarray  # (mineral, cell)
     presence: np.ndarray  # (mineral, cell) int8: 0 absent, 1 present, 2 full
-    ln_activity: np.ndarray  # (component, cell)
+    ln_activity: np.ndarray  # (basis, cell)
     ionic_strength: np.ndarray  # (cell,) mol/kg (equations.md, 3)
     solved: np.ndarray  # (component, cell) mol/kg: dissolved after the last solve
     steps: np.ndarray  # (cell,) Newton steps; 0 where the last answer still held
+    given: np.ndarray  # (open gas, cell) what the last solve took from each open gas
 
     def log10_activity(self) -> np.ndarray:
         """(species, cell): log10 of the activity of every species, -inf where a component is absent."""
@@ -37,12 +38,18 @@ class Equilibrium:
     def molality(self) -> np.ndarray:
         """(species, cell): mol per kg of water."""
         ln_gamma = self.system.activity.ln_gamma(self.ionic_strength)
-        return np.exp(LN10 * self.log10_activity() - ln_gamma)
+        found = np.exp(LN10 * self.log10_activity() - ln_gamma)
+        if self.system.electron >= 0:
+            found[self.system.electron] = 0.0  # e^- has an activity and is nowhere
+        return found
+
+    def held(self) -> np.ndarray:
+        """(basis, cell): mol per kg of water dissolved of each valence, in all its species."""
+        return self.system.stoichiometry.T @ self.molality()
 
     def saturation(self) -> np.ndarray:
         """(mineral, cell): saturation indices, NaN where a component is absent."""
-        matrices = self.system.matrices
-        return saturation(self.system.mineral_stoichiometry, matrices.solid_ln_k, self.ln_activity)
+        return mineral_saturation(self.system, self.ln_activity)
 
     def gas_pressure(self) -> np.ndarray:
         """(gas, cell): partial pressures in atm, NaN where a component is absent."""
@@ -52,8 +59,14 @@ class Equilibrium:
 
 def log10_activity(system: System, ln_activity: np.ndarray) -> np.ndarray:
     """(species, cell): log10 of the activity of every species from the components' (equations.md, 1)."""
-    ln = system.stoichiometry @ ln_activity + system.matrices.ln_k[: len(system.species), None]
+    ln = system.stoichiometry @ ln_activity + system.ln_k[:, None]
     return np.where(ln < -1e4, -np.inf, ln / LN10)
+
+
+def mineral_saturation(system: System, ln_activity: np.ndarray) -> np.ndarray:
+    """(mineral, cell): saturation indices from ln activities (basis, cell); NaN: an element is absent."""
+    count = len(system.minerals)
+    return saturation(system.matrices.solid[:count], system.matrices.solid_ln_k[:count], ln_activity)
 
 
 def saturation(stoichiometry: np.ndarray, ln_k: np.ndarray, ln_activity: np.ndarray) -> np.ndarray:
@@ -69,7 +82,7 @@ class Solver:
         from gossan.chemistry.kernel.matrices import bench
 
         self.system = system
-        self._bench = bench(len(system.components), len(system.matrices.ln_k), len(system.minerals))
+        self._bench = bench(system.matrices)
 
     def cold(
         self, kilograms: np.ndarray, amount: np.ndarray, solid: np.ndarray, upper: np.ndarray | None = None
@@ -82,10 +95,11 @@ class Solver:
             amount=amount,
             solid=solid,
             presence=np.zeros((len(system.minerals), cells), np.int8),
-            ln_activity=np.zeros((len(system.components), cells)),
+            ln_activity=np.zeros((len(system.basis), cells)),
             ionic_strength=np.full(cells, START_STRENGTH),
             solved=np.full((len(system.components), cells), np.nan),
             steps=np.zeros(cells, np.int64),
+            given=np.zeros((len(system.open_gases), cells)),
         )
         return self.settled(start, kilograms, amount, solid, upper, cold=True)
 
@@ -109,7 +123,7 @@ class Solver:
         skip: leave a cell alone whose dissolved amounts all stand within this (relative) of the last solve
         Raises   SolveError naming the cell; nothing given is changed
         """
-        from gossan.chemistry.kernel.cells import settle_cells
+        from gossan.chemistry.kernel.cells import COLD, WARM, settle_cells
 
         system = self.system
         if upper is None:
@@ -120,30 +134,31 @@ class Solver:
         ionic_strength, solved = start.ionic_strength.copy(), start.solved.copy()
         cells = amount.shape[1]
         outcome, steps = np.zeros(cells, np.int64), np.zeros(cells, np.int64)
+        given = np.zeros((len(system.open_gases), cells))
         failed = settle_cells(
             system.matrices, self._bench, kilograms, amount, solid, upper, presence, ln_activity,
-            ionic_strength, solved, skip, cold, outcome, steps, 0, cells,
+            ionic_strength, solved, given, skip, COLD if cold else WARM, outcome, steps, 0, cells,
         )  # fmt: skip
         if failed:
             arrays = (
-                kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved
+                kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, given
             )  # fmt: skip
             self._rescue(arrays, outcome, steps)
         return replace(
             start, amount=amount, solid=solid, presence=presence, ln_activity=ln_activity,
-            ionic_strength=ionic_strength, solved=solved, steps=steps,
+            ionic_strength=ionic_strength, solved=solved, steps=steps, given=given,
         )  # fmt: skip
 
     def _rescue(self, arrays: tuple[np.ndarray, ...], outcome: np.ndarray, steps: np.ndarray) -> None:
         """Find the minerals of failed cells another way, then settle them again; in place."""
-        from gossan.chemistry.kernel.cells import settle_cells
+        from gossan.chemistry.kernel.cells import MARKED, settle_cells
         from gossan.chemistry.kernel.rescue import find_minerals_in
 
         for i in np.flatnonzero(outcome != SOLVED):
             one = [np.ascontiguousarray(a[..., i : i + 1]) for a in arrays]
             result, count = outcome[i : i + 1].copy(), steps[i : i + 1].copy()
             find_minerals_in(self.system.matrices, self._bench, *one[:7])
-            settle_cells(self.system.matrices, self._bench, *one, -1.0, False, result, count, 0, 1)
+            settle_cells(self.system.matrices, self._bench, *one, -1.0, MARKED, result, count, 0, 1)
             if result[0] != SOLVED:
                 result[0] = outcome[i]
                 raise SolveError(SENTENCES[int(result[0])], cell=int(i))

@@ -14,6 +14,7 @@ import numpy as np
 from gossan.base.errors import SolveError
 from gossan.base.wrong import Wrong
 from gossan.chemistry.equilibrium import Equilibrium, Solver
+from gossan.chemistry.layout import with_minerals
 from gossan.chemistry.system import LN10, System
 
 PLENTY = 1e3  # mol/kg: more than any water takes up or gives back
@@ -24,7 +25,7 @@ class Condition:
     """One thing that must hold: the ion activity product of a formula."""
 
     name: str
-    formula: np.ndarray  # (component,)
+    formula: np.ndarray  # (basis,)
     ln_product: float
 
     def __str__(self) -> str:
@@ -33,16 +34,23 @@ class Condition:
 
 def fixed_ph(system: System, ph: float) -> Condition:
     """The pH is held; protons come and go."""
-    formula = np.zeros(len(system.components))
+    formula = np.zeros(len(system.basis))
     formula[0] = 1.0
     return Condition(f"pH {ph:g}", formula, -ph * LN10)
+
+
+def fixed_pe(system: System, pe: float) -> Condition:
+    """The pe is held; electrons come and go. Something must be coupled."""
+    formula = np.zeros(len(system.basis))
+    formula[system.electron] = 1.0
+    return Condition(f"pe {pe:g}", formula, -pe * LN10)
 
 
 def saturated(system: System, mineral: str, index: float) -> Condition:
     """A mineral's saturation index is held; its whole formula comes and goes."""
     m = system.minerals.index(mineral)
     product = system.matrices.solid_ln_k[m] + index * LN10
-    return Condition(mineral, system.mineral_stoichiometry[m], product)
+    return Condition(mineral, system.matrices.solid[m], product)
 
 
 def under_gas(system: System, gas: str, pressure: float) -> Condition:
@@ -57,8 +65,8 @@ def held_to(system: System, dissolved: np.ndarray, conditions: list[Condition]) 
     dissolved (component,) mol per kg of water; amounts of the answer are (component, 1)
     Raises   Wrong where the conditions contradict each other or cannot be met; SolveError
     """
-    rows = np.array([c.formula for c in conditions]).reshape(-1, len(system.components))
-    if len(conditions) and np.linalg.matrix_rank(rows) < len(conditions):
+    rows = np.array([c.formula for c in conditions]).reshape(-1, len(system.basis))
+    if len(conditions) and np.linalg.matrix_rank(rows @ system.conserved) < len(conditions):
         named = ", ".join(map(str, conditions))
         raise Wrong(f"holds the water to more than the phase rule allows ({named})", "leave one of them out")
     products = np.array([c.ln_product for c in conditions])
@@ -66,7 +74,8 @@ def held_to(system: System, dissolved: np.ndarray, conditions: list[Condition]) 
         system,
         minerals=tuple(c.name for c in conditions),
         may_form=np.ones(len(conditions), bool),
-        matrices=system.matrices._replace(solid=rows, solid_ln_k=products),
+        open_gases=(),
+        matrices=with_minerals(system.matrices, rows, products, system.conserved),
     )
     solid = np.full((len(conditions), 1), PLENTY)
     try:

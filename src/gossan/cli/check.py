@@ -48,6 +48,8 @@ def run(args: argparse.Namespace) -> int:
     from gossan.views.plan_sheets import plan_sheets
 
     _say_warnings(found.warnings)
+    for warning in found.column_warnings:
+        shell.say(f"warning: {warning}")
     if found.seconds is None:
         shell.say("warning: the first steps of this case find no equilibrium; a run will stop there")
     shell.print_sheets(plan_sheets(found))

@@ -106,6 +106,8 @@ def _told(args: argparse.Namespace, case: Case, path: Path, ending: Ending | Non
 
         shell.print_sheets(run_sheets(summary))
         shell.say(f"\n{summary.result.caution}")
+    for warning in summary.result.warnings:
+        shell.say(f"warning: {warning}")
     if ending is not None and ending.status != "finished":
         return _stopped(path, ending)
     for verdict in summary.exceeded if args.enforce_limits else ():

@@ -5,18 +5,19 @@ from __future__ import annotations
 import math
 import re
 from dataclasses import dataclass
-from difflib import get_close_matches
 from typing import Any
 
 from gossan.base.errors import Fault
+from gossan.base.wrong import Wrong, did_you_mean
 from gossan.constants.entries import Alternative, Constant, TemperatureFit
+from gossan.constants.temperature import KELVIN, REFERENCE
 
 POWERS = ("constant", "linear", "inverse", "log10", "inverse_square")
 
 _CONSTANT = ("value", "sd", "source", "seen", "note")
-_SHARED = ("reaction", "log10_k", "enthalpy", "temperature_fit", "note", "alternatives")
+_SHARED = ("reaction", "log10_k", "enthalpy", "temperature_fit", "valid", "note", "alternatives")
 KEYS = {
-    "components": ("half_reaction", *_SHARED[1:], "ion_size", "diffusion"),
+    "components": ("half_reaction", "couple", *_SHARED[1:], "ion_size", "diffusion"),
     "species": (*_SHARED, "ion_size", "diffusion", "default"),
     "minerals": (*_SHARED, "molar_volume", "forms", "also_called"),
     "gases": _SHARED,
@@ -87,7 +88,7 @@ class Entry:
         allowed = KEYS[self.kind]
         for key in self.keys:
             if key not in allowed:
-                self.fault(key, "is not a key of such an entry", did_you_mean(key, allowed))
+                self.fault(key, "is not a key of such an entry", did_you_mean(key, allowed, quote=""))
         for key in REQUIRED[self.kind]:
             if key not in self.keys:
                 self.fault(key, "is missing")
@@ -113,17 +114,14 @@ class Entry:
         found = self.keys.get(key)
         if found is None:
             return None
-        needed = ("value", "sd") if key == "log10_k" else ("value",)
-        complaint = _complaint(found, sources, needed)
-        if not complaint and key in _POSITIVE and found["value"] <= 0.0:
-            complaint = f"has value = {found['value']}", "it is above zero"
-        if complaint:
-            self.fault(key, *complaint)
+        try:
+            made = read_constant(found, sources, *_UNITS[key], sd_needed=key == "log10_k")
+            if key in _POSITIVE and made.value <= 0.0:
+                raise Wrong(f"has value = {found['value']}", "it is above zero")
+        except Wrong as wrong:
+            self.fault(key, wrong.wrong, wrong.right)
             return None
-        factor, unit = _UNITS[key]
-        sd = factor * found["sd"] if "sd" in found else None
-        seen, note = found.get("seen", False), found.get("note", "")
-        return Constant(factor * found["value"], sd, unit, found["source"], not seen, note)
+        return made
 
     def fit(self) -> TemperatureFit | None:
         """Value of temperature_fit; None where there is none or it is faulty."""
@@ -135,10 +133,24 @@ class Entry:
             return None
         for power in powers:
             if power not in POWERS:
-                right = did_you_mean(power, POWERS) or f"its powers are {', '.join(POWERS)}"
+                right = did_you_mean(power, POWERS, quote="")
                 self.fault("temperature_fit", f"has no power '{power}'", right)
                 return None
         return TemperatureFit(**{power: float(value) for power, value in powers.items()})
+
+    def valid(self) -> tuple[float, float] | None:
+        """Value of valid, from and to which temperature in K; None where there is none or it is faulty."""
+        found = self.keys.get("valid")
+        if found is None:
+            return None
+        if not isinstance(found, list) or len(found) != 2 or not all(map(_is_number, found)):
+            self.fault("valid", f"is {found!r}", "write the range in degC, like [5, 90]")
+            return None
+        low, high = found
+        if not low <= REFERENCE - KELVIN <= high:
+            self.fault("valid", f"is {found!r}", "it holds 25 degC, where log10_k stands")
+            return None
+        return low + KELVIN, high + KELVIN
 
     def alternatives(self, sources: dict[str, str]) -> tuple[Alternative, ...]:
         """Value of alternatives: published constants that were not chosen."""
@@ -158,13 +170,26 @@ class Entry:
         )
 
 
+def read_constant(found: Any, sources: dict[str, str], factor: float, unit: str, sd_needed: bool) -> Constant:
+    """Make a constant of `{value, sd, source, seen, note}`, its numbers times factor in SI.
+
+    Raises  Wrong: a part is missing, unknown or of the wrong kind, or the source has no line
+    """
+    complaint = _complaint(found, sources, ("value", "sd") if sd_needed else ("value",))
+    if complaint:
+        raise Wrong(*complaint)
+    sd = factor * found["sd"] if "sd" in found else None
+    seen, note = found.get("seen", False), found.get("note", "")
+    return Constant(factor * found["value"], sd, unit, found["source"], not seen, note)
+
+
 def _complaint(found: Any, sources: dict[str, str], needed: tuple[str, ...]) -> tuple[str, str] | None:
     """Say what is wrong with one `{value, sd, source, seen, note}` and what would be right; None: nothing."""
     if not isinstance(found, dict):
         return f"is {found!r}", 'write {value = ..., sd = ..., source = "..."}'
     for part in found:
         if part not in _CONSTANT:
-            return f"has no part '{part}'", did_you_mean(part, _CONSTANT)
+            return f"has no part '{part}'", did_you_mean(part, _CONSTANT, quote="")
     for part in ("value", "sd"):
         if part in found and not _is_number(found[part]):
             return f"has {part} = {found[part]!r}, which is no number", ""
@@ -175,17 +200,11 @@ def _complaint(found: Any, sources: dict[str, str], needed: tuple[str, ...]) -> 
     if "source" not in found:
         return "has no source", 'add source = "..." and a line for it to [sources]'
     if found["source"] not in sources:
-        right = did_you_mean(str(found["source"]), sources) or "add a line for it to [sources]"
+        right = did_you_mean(str(found["source"]), sources, quote="") or "add a line for it to [sources]"
         return f"cites '{found['source']}', which [sources] lacks", right
     if not isinstance(found.get("seen", False), bool) or not isinstance(found.get("note", ""), str):
         return "has a seen or a note of the wrong kind", "seen is true or false, note is a text"
     return None
-
-
-def did_you_mean(word: str, known: Any) -> str:
-    """Suggest the nearest of the known words, or nothing."""
-    near = get_close_matches(word, list(known), n=1, cutoff=0.6)
-    return f"did you mean {near[0]}?" if near else ""
 
 
 def _is_number(value: object) -> bool:

@@ -3,6 +3,9 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from math import inf
+
+ANY_TEMPERATURE = (0.0, inf)  # K: where no limit is known
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,6 +68,8 @@ class Component:
     half_log10_k: Constant | None = None  # of half_reaction as published
     half_enthalpy: Constant | None = None  # J/mol, the same
     half_fit: TemperatureFit | None = None  # of half_reaction, reduced to first ions
+    couple: str = ""  # "Fe(II)/Fe(III)": what couples it to its first ion; "" for what never is coupled
+    half_valid: tuple[float, float] | None = None  # K, from and to, of half_fit
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
 
@@ -79,6 +84,7 @@ class Species:
     log10_k: Constant  # at 25 degC, of formation from components; its sd is that of the published constant
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of formation from components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     ion_size: Constant | None = None  # m
     diffusion: Constant | None = None  # m2/s at 25 degC in free water
     default: bool = True  # False: only where a case asks for it
@@ -100,6 +106,7 @@ class Mineral:
     forms: bool  # on the default list: forms on the time scale of a column
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of dissolution to components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     also_called: tuple[str, ...] = ()
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
@@ -115,9 +122,25 @@ class Gas:
     log10_k: Constant  # at 25 degC, of dissolution to components; its sd is that of the published constant
     enthalpy: Constant | None = None  # J/mol of reaction.text as published
     fit: TemperatureFit | None = None  # of dissolution to components; the loader fills it always
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, from and to, of log10_k and fit
     note: str = ""
     alternatives: tuple[Alternative, ...] = ()
     published: Constant | None = None  # log10 K of reaction.text, where that runs through other species
+
+
+@dataclass(frozen=True, slots=True)
+class Interaction:
+    """What two ions, or a neutral species and an ion, do to each other's activity (SIT)."""
+
+    first: str  # the cation, or the neutral species
+    second: str  # the anion, or the ion beside the neutral species
+    coefficient: Constant  # kg/mol at 25 degC
+    holds: tuple[str, ...] = ()  # complexes that were counted as free ions: left out beside this coefficient
+
+    @property
+    def name(self) -> str:
+        """The pair as it is written: `Na^+/Cl^-`."""
+        return f"{self.first}/{self.second}"
 
 
 @dataclass(frozen=True, slots=True)
@@ -128,4 +151,5 @@ class Table:
     species: dict[str, Species] = field(default_factory=dict)
     minerals: dict[str, Mineral] = field(default_factory=dict)
     gases: dict[str, Gas] = field(default_factory=dict)
+    interactions: dict[tuple[str, str], Interaction] = field(default_factory=dict)  # by (first, second)
     sources: dict[str, str] = field(default_factory=dict)

@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 from gossan.base.notation import charge_of, normal_ion, parse_formula
-from gossan.constants.document import did_you_mean
-from gossan.constants.entries import Component, Gas, Mineral, Species, Table
+from gossan.base.wrong import did_you_mean
+from gossan.constants.entries import Component, Gas, Interaction, Mineral, Species, Table
 
 
 class UnknownName(LookupError):
@@ -43,7 +43,21 @@ def find_mineral(table: Table, name: str) -> Mineral:
         names = [mineral.name for mineral in sharing]
         wrong = f"'{name}' is the formula of {len(names)} minerals"
         raise UnknownName(wrong, f"name one: {', '.join(names)}")
-    raise UnknownName(f"no mineral is called '{name}'", did_you_mean(wanted, called))
+    raise UnknownName(f"no mineral is called '{name}'", did_you_mean(wanted, called, quote=""))
+
+
+def find_interaction(table: Table, pair: str) -> Interaction:
+    """Find the interaction coefficient of two ions, `Na^+/Cl^-`, whichever stands first.
+
+    Raises  UnknownName, with the pairs that the table has of the first ion
+    """
+    ions = [_normal(ion) for ion in pair.split("/")]
+    for both in (tuple(ions), tuple(reversed(ions))):
+        if len(both) == 2 and both in table.interactions:
+            return table.interactions[both]
+    others = [each.name for each in table.interactions.values() if ions[0] in (each.first, each.second)]
+    right = f"of {ions[0]} it has {', '.join(others)}" if others else ""
+    raise UnknownName(f"the table has no interaction coefficient of {' and '.join(ions)}", right)
 
 
 def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, ...]:
@@ -51,10 +65,7 @@ def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, 
 
     Raises  UnknownName, with the nearest name
     """
-    try:
-        ion = normal_ion(name)
-    except ValueError:
-        ion = name
+    ion = _normal(name)
     groups = (table.components, table.species, table.gases)
     found: list[Component | Species | Mineral | Gas] = [group[ion] for group in groups if ion in group]
     try:
@@ -64,9 +75,16 @@ def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, 
         if not found:
             known = [each for group in groups for each in group]
             raise UnknownName(
-                f"the table has no '{name}'", did_you_mean(ion, known) or unknown.right
+                f"the table has no '{name}'", did_you_mean(ion, known, quote="") or unknown.right
             ) from None
     return tuple(found)
+
+
+def _normal(ion: str) -> str:
+    try:
+        return normal_ion(ion)
+    except ValueError:
+        return ion.strip()
 
 
 def _with_formula(table: Table, formula: str) -> list[Mineral]:

@@ -9,15 +9,17 @@ from pathlib import Path
 
 from gossan.base.errors import Fault, InputError
 from gossan.base.notation import normal_ion
-from gossan.constants.document import KEYS, Document, Entry, did_you_mean
+from gossan.base.wrong import did_you_mean
+from gossan.constants.document import KEYS, Document, Entry
 from gossan.constants.entries import Table
 from gossan.constants.find import UnknownName, find, find_mineral
+from gossan.constants.interactions import SECTION, read_interactions
 from gossan.constants.records import MAKERS, read_published
 from gossan.constants.reduce import Faulty, Reducer
 
 __all__ = ["UnknownName", "find", "find_mineral", "load_table"]
 
-BUILT_IN = ("sources", "components", "species", "minerals", "gases")
+BUILT_IN = ("sources", "components", "species", "minerals", "gases", "interactions")
 
 
 def load_table(extra: Path | None = None, text: str | None = None) -> Table:
@@ -77,6 +79,9 @@ def _assembled(documents: tuple[Document, ...]) -> Table:
         _merge_entries(document, entries, faults)
     _check_names(entries)
     table = _records(entries, sources, faults)
+    known = {*entries["components"], *entries["species"]}
+    for document in documents:
+        table.interactions.update(read_interactions(document, known, sources, faults))
     if faults:
         raise InputError(faults)
     return table
@@ -101,9 +106,10 @@ def _merge_sources(document: Document, sources: dict[str, str], faults: list[Fau
 
 
 def _merge_entries(document: Document, entries: dict[str, dict[str, Entry]], faults: list[Fault]) -> None:
+    sections = (*KEYS, SECTION, "sources")
     for kind, found in document.tables.items():
-        if kind != "sources" and (kind not in KEYS or not isinstance(found, dict)):
-            right = did_you_mean(kind, ("sources", *KEYS)) or f"sections are {', '.join(KEYS)}, sources"
+        if kind != "sources" and (kind not in sections or not isinstance(found, dict)):
+            right = did_you_mean(kind, sections, quote="")
             wrong = "is no section of a constants file"
             faults.append(Fault(document.file, document.line_of(kind), kind, wrong, right))
             continue

@@ -9,9 +9,11 @@ from gossan.base.notation import charge_of, molar_mass
 from gossan.constants.document import Entry
 from gossan.constants.entries import Component, Constant, Gas, Mineral, Species, TemperatureFit
 from gossan.constants.reduce import Faulty, Published, Reducer, solid_of
-from gossan.constants.temperature import combined
+from gossan.constants.temperature import NEAR_REFERENCE, WITH_ENTHALPY, combined
 
 ASSUMED_ION_SIZE = Constant(4e-10, None, "m", "kielland1937", True, "assumed, as usual for complexes")
+
+OF_A_CONSTANT = ("log10_k", "enthalpy", "temperature_fit", "valid")
 
 Maker = Callable[[Entry, Published | None, Reducer, dict[str, str]], Component | Species | Mineral | Gas]
 
@@ -19,8 +21,10 @@ Maker = Callable[[Entry, Published | None, Reducer, dict[str, str]], Component |
 def read_published(entry: Entry, sources: dict[str, str]) -> Published | None:
     """Read what an entry says of its printed reaction; None where it has no constant or a faulty one."""
     log10_k = entry.constant("log10_k", sources)
-    enthalpy, fit = entry.constant("enthalpy", sources), entry.fit()
-    return None if log10_k is None else Published(log10_k, enthalpy, fit)
+    enthalpy, fit, valid = entry.constant("enthalpy", sources), entry.fit(), entry.valid()
+    if valid is None:
+        valid = WITH_ENTHALPY if enthalpy or fit else NEAR_REFERENCE
+    return None if log10_k is None else Published(log10_k, enthalpy, fit, valid)
 
 
 def component(
@@ -30,7 +34,9 @@ def component(
     held = "half_reaction" in entry.keys
     if held and "log10_k" not in entry.keys:
         entry.fault("log10_k", "is missing: a half reaction has a constant")
-    if not held and "log10_k" in entry.keys:
+    if not held and "couple" in entry.keys:
+        entry.fault("couple", "is given to a first ion", "it belongs to the valences made from it")
+    if not held and any(key in entry.keys for key in OF_A_CONSTANT):
         entry.fault("half_reaction", "is missing: a first ion has no constant")
     charge = charge_of(entry.name)
     half = reducer.reduced(entry.kind, entry.name, held=False) if held else None
@@ -43,6 +49,8 @@ def component(
         half_log10_k=published.log10_k if published else None,
         half_enthalpy=published.enthalpy if published else None,
         half_fit=half.fit if half else None,
+        couple=entry.typed("couple", str, ""),
+        half_valid=half.valid if half else None,
         note=entry.typed("note", str, ""),
         alternatives=entry.alternatives(sources),
     )
@@ -60,6 +68,7 @@ def species(entry: Entry, published: Published | None, reducer: Reducer, sources
         log10_k,
         enthalpy=published.enthalpy if published else None,
         fit=made.fit,
+        valid=made.valid,
         ion_size=_ion_size(entry, charge, sources),
         diffusion=entry.constant("diffusion", sources),
         default=entry.typed("default", bool, True),
@@ -87,6 +96,7 @@ def mineral(entry: Entry, published: Published | None, reducer: Reducer, sources
         entry.typed("forms", bool, False),
         enthalpy=published.enthalpy if published else None,
         fit=_dissolving(made.fit),
+        valid=made.valid,
         also_called=entry.names("also_called"),
         note=entry.typed("note", str, ""),
         alternatives=entry.alternatives(sources),
@@ -104,6 +114,7 @@ def gas(entry: Entry, published: Published | None, reducer: Reducer, sources: di
         log10_k,
         enthalpy=published.enthalpy if published else None,
         fit=_dissolving(made.fit),
+        valid=made.valid,
         note=entry.typed("note", str, ""),
         alternatives=entry.alternatives(sources),
         published=printed,

@@ -2,16 +2,19 @@
 
 from __future__ import annotations
 
+from collections.abc import Collection
 from dataclasses import dataclass, replace
 
-from gossan.base.notation import imbalance, parse_reaction, split_phase
-from gossan.constants.document import Entry, did_you_mean
-from gossan.constants.entries import Constant, Reaction, TemperatureFit
-from gossan.constants.temperature import REFERENCE, combined, evaluated, van_t_hoff
+from gossan.base.notation import charge_of, imbalance, parse_formula, parse_reaction, split_phase
+from gossan.base.wrong import did_you_mean
+from gossan.constants.document import Entry
+from gossan.constants.entries import ANY_TEMPERATURE, Constant, Reaction, TemperatureFit
+from gossan.constants.temperature import REFERENCE, combined, enthalpy_of, evaluated, van_t_hoff
 
 WATER, ELECTRON = "H2O", "e^-"
 NEGLIGIBLE = 1e-12  # coefficients that cancelled leave this much
 FIT_AGREES = 0.01  # how far a fit may be from log10_k at 25 degC even where the constant is known better
+SLOPE_AGREES = 3e3  # J/mol, the same of its slope and an enthalpy: measured ones scatter by so much
 
 
 @dataclass(frozen=True, slots=True)
@@ -21,6 +24,7 @@ class Published:
     log10_k: Constant
     enthalpy: Constant | None
     fit: TemperatureFit | None
+    valid: tuple[float, float]  # K, from and to
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,6 +35,7 @@ class Reduced:
     log10_k: float  # of formation from these at 25 degC
     fit: TemperatureFit  # the same against temperature
     direct: bool  # the printed reaction holds nothing else
+    valid: tuple[float, float] = ANY_TEMPERATURE  # K, where all that it is made through is valid
 
     def reaction(self, text: str) -> Reaction:
         """Give the record of this reaction, printed as text."""
@@ -92,7 +97,8 @@ class Reducer:
         if own is None or published is None:
             raise Faulty
         sign = 1.0 if forms else -1.0
-        parts = [(sign, Reduced({}, published.log10_k.value, _fit_of(entry, published), True))]
+        own_part = Reduced({}, published.log10_k.value, _fit_of(entry, published), True, published.valid)
+        parts = [(sign, own_part)]
         for side, times in ((left, sign), (right, -sign)):
             for term, count in side.items():
                 if term != own:
@@ -106,6 +112,7 @@ class Reducer:
             sum(times * part.log10_k for times, part in parts),
             combined((times, part.fit) for times, part in parts),
             all(part.direct for _, part in parts),
+            (max(part.valid[0] for _, part in parts), min(part.valid[1] for _, part in parts)),
         )
 
     def _term(self, entry: Entry, key: str, term: str, held: bool) -> Reduced:
@@ -122,7 +129,7 @@ class Reducer:
                 raise Faulty
             name = solids[0] if solids else name
         if name not in self._entries[kind]:
-            right = did_you_mean(term, [*components, *self._entries["species"]])
+            right = _cure(term, components, self._entries["species"])
             entry.fault(key, f"uses {term}, which the table lacks", right)
             raise Faulty
         if (kind, name, held) in self._walking:
@@ -156,6 +163,20 @@ def _sides(entry: Entry, key: str) -> tuple[dict[str, float], dict[str, float]]:
     return sides
 
 
+def _cure(term: str, components: Collection[str], species: Collection[str]) -> str:
+    """What to do about a term that the table lacks: mend its name, or add what it is made of."""
+    formula, phase = split_phase(term)
+    if phase:
+        return "write the reaction with dissolved ions, or add an entry for it too"
+    elements = set(parse_formula(formula)) - {"H", "O"}
+    missing = sorted(elements.difference(*map(parse_formula, components)))
+    if missing:
+        like = f', like [components."{term}"]' if charge_of(term) else ""
+        return f"no component holds {' or '.join(missing)}: add its ion to the components{like}"
+    alike = [name for name in (*components, *species) if elements <= set(parse_formula(name))]
+    return did_you_mean(term, alike, quote="") or f'add it, like [species."{term}"]'
+
+
 def _is_first(component: Entry) -> bool:
     return "half_reaction" not in component.keys
 
@@ -167,7 +188,13 @@ def _fit_of(entry: Entry, published: Published) -> TemperatureFit:
         return van_t_hoff(log10_k.value, published.enthalpy.value if published.enthalpy else 0.0)
     off = evaluated(published.fit, REFERENCE) - log10_k.value
     if abs(off) > max(FIT_AGREES, log10_k.sd or 0.0):
-        entry.fault("temperature_fit", f"is {off:+.3g} away from log10_k at 25 degC")
+        right = "one of the two is wrong: mend it"
+        entry.fault("temperature_fit", f"is {off:+.3g} away from log10_k at 25 degC", right)
+    if published.enthalpy:
+        off = published.enthalpy.value - enthalpy_of(published.fit)
+        if abs(off) > max(SLOPE_AGREES, published.enthalpy.sd or 0.0):
+            wrong = f"is {off / 1e3:+.3g} kJ/mol away from the slope of temperature_fit at 25 degC"
+            entry.fault("enthalpy", wrong, "one of the two is wrong: leave it out, or mend it")
     return published.fit
 
 

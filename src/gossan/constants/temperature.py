@@ -9,6 +9,9 @@ from gossan.constants.entries import Component, Gas, Mineral, Species, Temperatu
 
 GAS_CONSTANT = 8.314462618  # J/(mol K), exact since the SI of 2019
 REFERENCE = 298.15  # K, the temperature of every log10_k
+KELVIN = 273.15  # K at 0 degC, exact
+WITH_ENTHALPY = (KELVIN, KELVIN + 50.0)  # K: what a constant with an enthalpy or a fit is trusted for
+NEAR_REFERENCE = (REFERENCE - 10.0, REFERENCE + 10.0)  # K: what one without either is trusted for
 
 
 def log10_k_at(entry: Component | Species | Mineral | Gas, temperature_k: float) -> float:
@@ -18,8 +21,8 @@ def log10_k_at(entry: Component | Species | Mineral | Gas, temperature_k: float)
     Returns  1; by the temperature fit if there is one, else by van 't Hoff's law with the enthalpy at
              25 degC, else the value at 25 degC. For a held component: its half reaction.
     Raises   ValueError for a component that is the first ion of its element
-    Valid    0 to 50 degC, or as far as the entry's fit was made; without a fit the heat capacity is taken
-             as nil, which costs up to a few hundredths at 0 and 50 degC
+    Valid    as the entry's `valid` says; with an enthalpy alone the heat capacity is taken as nil, which
+             costs up to a few hundredths at 0 and 50 degC
     """
     if isinstance(entry, Component):
         constant, enthalpy, fit = entry.half_log10_k, entry.half_enthalpy, entry.half_fit
@@ -38,6 +41,17 @@ def evaluated(fit: TemperatureFit, temperature_k: float) -> float:
     return (
         fit.constant + fit.linear * t + fit.inverse / t + fit.log10 * log10(t) + fit.inverse_square / (t * t)
     )
+
+
+def enthalpy_of(fit: TemperatureFit, temperature_k: float = REFERENCE) -> float:
+    """Reaction enthalpy in J/mol that a fit stands for at a temperature in K: its slope (equations.md, 2).
+
+    >>> round(enthalpy_of(van_t_hoff(-10.0, 50e3)), 6)
+    50000.0
+    """
+    t = temperature_k
+    slope = fit.linear * t * t - fit.inverse + fit.log10 * t / log(10.0) - 2.0 * fit.inverse_square / t
+    return GAS_CONSTANT * log(10.0) * slope
 
 
 def van_t_hoff(log10_k: float, enthalpy: float) -> TemperatureFit:

@@ -84,6 +84,7 @@ def attempt(
         presence=found.presence,
         solved=found.solved,
         passed=added(state.passed, passed[:, problem.gates].T),
+        made=added(state.made, _made(problem, found)),
         water_passed=added(
             state.water_passed, dt * np.array([darcy_flux[0], darcy_flux[-1], float(freed @ width) / dt])
         ),
@@ -108,7 +109,7 @@ def _held_back(
         return passed
     total = amount.copy()
     total[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
-    positive = np.arange(len(amount)) != problem.system.matrices.signed
+    positive = ~np.isin(np.arange(len(amount)), problem.system.signed)
     return kept_positive(first, state.dissolved, total, passed, positive)
 
 
@@ -123,6 +124,7 @@ def _equilibrium(problem: Problem, state: State) -> Equilibrium:
         ionic_strength=state.ionic_strength,
         solved=state.solved,
         steps=np.zeros(len(state.water), np.int64),
+        given=np.zeros((len(problem.system.open_gases), len(state.water))),
     )
 
 
@@ -134,6 +136,13 @@ def _react(
     upper = np.where(problem.system.may_form[:, None], UNBOUNDED, solid)
     kilograms = water * problem.system.water_density
     return solver.settled(start, kilograms, moved[: problem.chemical], solid, upper, skip=SKIP)
+
+
+def _made(problem: Problem, found: Equilibrium) -> np.ndarray:
+    """(solute,) mol m-2 that the open gases gave to the whole column."""
+    made = np.zeros(len(problem.solutes))
+    made[: problem.chemical] = problem.system.gas_supply.T @ (found.given @ problem.grid.width)
+    return made
 
 
 def _freed(problem: Problem, gained: np.ndarray) -> np.ndarray:

@@ -37,7 +37,7 @@ class Books:
         problem = self.problem
         now = problem.stored(state)
         entered, left = state.passed[:2].sum(axis=-1)
-        made = np.zeros_like(entered)
+        made = state.made.sum(axis=-1)
         change = now - self.first
         open_ = entered - left - change + made
         most = problem.stock + np.abs(entered) + np.abs(made)

@@ -116,6 +116,7 @@ ATTRIBUTES: dict[str, str] = {
     "case": "the whole TOML text of the case",
     "constants": "the whole text of the user's own constants; empty without",
     "caution": "what the numbers must not be used for",
+    "warnings": "what the run went beyond, a line each; empty while it runs, or without any",
     "started": "when the run began, UTC; it also marks the run's own state files",
 }
 

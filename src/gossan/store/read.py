@@ -132,6 +132,11 @@ class Result:
         return str(self.attributes.get("constants", ""))
 
     @property
+    def warnings(self) -> tuple[str, ...]:
+        """What the run went beyond, such as the range of its activity law; a sentence each."""
+        return tuple(str(self.attributes.get("warnings", "")).splitlines())
+
+    @property
     def caution(self) -> str:
         return self.attributes["caution"]
 

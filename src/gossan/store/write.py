@@ -43,7 +43,7 @@ class ResultWriter:
         started = datetime.now(UTC).isoformat()
         attributes = {"Conventions": CONVENTIONS, "title": title, "status": "running", "reason": "",
                       "gossan_version": __version__, "case": case, "constants": constants, "caution": caution,
-                      "started": started}
+                      "warnings": "", "started": started}
         with _told(self.path):
             lock = Lock(self.path)
         with _released_on_error(lock), _told(self.path):
@@ -84,7 +84,7 @@ class ResultWriter:
             born = disk.beside(path, "new")
             with _opened(path) as old:
                 axes, attributes, checkpoint = _last_seen(path, old)
-                attributes |= {"status": "running", "reason": ""}
+                attributes |= {"status": "running", "reason": "", "warnings": ""}
                 file.create(born, axes, attributes, file.rooms(axes, checkpoint.counts))
                 with file.open_running(born) as new:
                     file.copy_rows(old, new, axes, checkpoint.counts)
@@ -161,7 +161,7 @@ class ResultWriter:
 
         status  `finished`, `stopped` or `failed`; reason in a few words
         parts   as in checkpoint: the state behind the last row, or the last good one
-        figures root attributes that depend on the wall clock
+        figures root attributes known only now: what depends on the wall clock, and warnings
         counts  rows of every group that a run keeps which goes on from here; default all
         """
         self.flush()

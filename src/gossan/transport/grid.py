@@ -70,7 +70,7 @@ class Grid:
 
 
 def grid_of(layers: Sequence[Layer]) -> Grid:
-    """Cut layers into cells, each layer by its growth; where layers meet there is a face (equations.md, 58).
+    """Cut layers into cells, each layer by its growth; where layers meet there is a face (equations.md, 61).
 
     >>> grid = grid_of([Layer("sand", 1.0, 2), Layer("gate", 0.7, 3, growth=2.0)])
     >>> grid.edges.round(3).tolist(), grid.layer.tolist()
@@ -112,7 +112,7 @@ def _shares(cells: int, growth: float) -> np.ndarray:
 
 
 def growing(length: float, first: float, last: float) -> tuple[int, float]:
-    """The fewest cells from a first to a last length that fill a layer, and their growth (equations.md, 58).
+    """The fewest cells from a first to a last length that fill a layer, and their growth (equations.md, 61).
 
     length, first, last  m, > 0
     Returns   cells, growth: `grid_of` makes the first and the last cell at most as long as asked, and in

@@ -13,6 +13,7 @@ from gossan.base.wrong import did_you_mean
 from gossan.case.model import Case
 from gossan.case.read import case_from_data, read_case
 from gossan.case.waters import detection_notes, excluded_by, read_waters
+from gossan.chemistry.validity import validity_note
 from gossan.chemistry.water import REFUSE_PERCENT, WARN_PERCENT, Water
 from gossan.constants.entries import Table
 from gossan.constants.find import find_mineral
@@ -40,7 +41,13 @@ class WaterAssay:
     water: Water
     balanced_on: str  # the ion that took up the charge imbalance, "pH", or ""
     forms: frozenset[str]  # minerals that the case lets form
-    warnings: tuple[str, ...]
+    said: tuple[str, ...]  # what is to be told of the report and its water
+    validity: str  # what is to be told of constants at its temperature, or ""
+
+    @property
+    def warnings(self) -> tuple[str, ...]:
+        """All that is to be told of it."""
+        return (*self.said, self.validity) if self.validity else self.said
 
     @property
     def name(self) -> str:
@@ -158,8 +165,9 @@ def assay(water: Case | str | Path | Mapping[str, Any], name: str | None = None,
 
 
 def _worked_out(case: Case, name: str, water: Water, forms: frozenset[str]) -> WaterAssay:
-    warnings = (*water.warnings, *detection_notes(case, name), *_cautions(water))
-    return WaterAssay(water, case.waters[name].balance_on, forms, warnings)
+    said = (*water.warnings, *detection_notes(case, name), *_cautions(water))
+    validity = validity_note(case.table, water.system, water.system.temperature)
+    return WaterAssay(water, case.waters[name].balance_on, forms, said, validity)
 
 
 def known_water(case: Case, name: str) -> str:

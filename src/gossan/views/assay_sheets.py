@@ -5,12 +5,12 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 
+from gossan.constants.temperature import KELVIN
 from gossan.views.assay import WaterAssay
 from gossan.views.scales import Scale, dissolved_text, solute_scale
 from gossan.views.sheet import Sheet
 
 MAIN_SHARE = 0.001  # of its component: species with less are not printed
-KELVIN = 273.15
 
 
 def assay_sheets(one: WaterAssay) -> Iterator[Sheet]:

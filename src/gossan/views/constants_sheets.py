@@ -2,61 +2,103 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from typing import Any
 
-from gossan.constants.entries import Alternative, Component, Constant, Gas, Mineral, Species, Table
-from gossan.constants.temperature import log10_k_at
+from gossan.constants.entries import (
+    Alternative,
+    Component,
+    Constant,
+    Gas,
+    Interaction,
+    Mineral,
+    Species,
+    Table,
+)
+from gossan.constants.temperature import KELVIN, REFERENCE, log10_k_at
 from gossan.views.sheet import Sheet
 
 Entry = Component | Species | Mineral | Gas
 SHOWN_AT = (5.0, 15.0, 25.0, 35.0)  # degC
-KELVIN = 273.15
 
 
-def kind_of(entry: Entry) -> str:
+def kind_of(entry: Entry | Interaction) -> str:
     """What an entry is, in a word."""
     return type(entry).__name__.lower()
 
 
-def list_sheet(table: Table) -> Sheet:
-    """All entries in one list."""
+def list_sheets(table: Table) -> Iterator[Sheet]:
+    """All entries in one list, and all interactions of ions in another."""
+    yield _list(table)
+    yield interactions_sheet(table.interactions.values(), table)
+
+
+def _list(table: Table) -> Sheet:
     rows = []
     for group in (table.components, table.species, table.minerals, table.gases):
         for entry in group.values():
             constant = constant_of(entry)
             rows.append((
                 kind_of(entry), entry.name, f"{constant.value:.3f}" if constant else "-", _sd(constant),
-                _status(constant), "may form" if isinstance(entry, Mineral) and entry.forms else "",
+                _status(constant), _range(valid_of(entry)),
+                "may form" if isinstance(entry, Mineral) and entry.forms else "",
             ))  # fmt: skip
-    heads = ("kind", "name", "log10 K", "sd", "status", "")
+    heads = ("kind", "name", "log10 K", "sd", "status", "degC", "")
     note = (
-        "25 degC; species forming from components, minerals and gases dissolving to them; "
+        "log10 K at 25 degC; species forming from components, minerals and gases dissolving to them; "
+        "degC: where it is known; "
         "may form: on the default list"
     )
     return Sheet("Constants", heads, tuple(rows), left=2, note=note)
 
 
-def entry_sheets(entry: Entry, table: Table) -> Iterator[Sheet]:
-    """All that is known of one entry."""
+def interactions_sheet(interactions: Iterable[Interaction], table: Table) -> Sheet:
+    """Interaction coefficients of ions."""
+    rows = tuple(
+        (each.name, f"{each.coefficient.value:g}", _sd(each.coefficient), _seen(each.coefficient),
+         _with_note(each.coefficient.note, table.sources[each.coefficient.source]))
+        for each in interactions
+    )  # fmt: skip
+    heads = ("ions", "kg/mol", "sd", "status", "source")
+    return Sheet("Interactions of ions", heads, rows, wraps=True, note="25 degC, for activity = \"sit\"")
+
+
+def entry_sheets(entry: Entry, table: Table, temperature: float | None = None) -> Iterator[Sheet]:
+    """All that is known of one entry; its log10 K also at a temperature (K) that is asked for."""
     yield Sheet(f"{entry.name}, {kind_of(entry)}", ("", ""), tuple(_facts(entry, table)), left=2, wraps=True)
     if constant_of(entry):
-        heads = tuple(f"{celsius:g} degC" for celsius in SHOWN_AT)
-        rows = (tuple(f"{log10_k_at(entry, celsius + KELVIN):.3f}" for celsius in SHOWN_AT),)
+        shown = sorted({*(celsius + KELVIN for celsius in SHOWN_AT), temperature or REFERENCE})
+        heads = tuple(f"{kelvin - KELVIN:.4g} degC" for kelvin in shown)
+        rows = (tuple(f"{log10_k_at(entry, kelvin):.3f}" for kelvin in shown),)
         yield Sheet("log10 K by temperature", heads, rows, left=0, note=_reading(entry))
     if entry.alternatives:
         others = tuple(_alternative(other, table) for other in entry.alternatives)
         yield Sheet("Published values not chosen", ("value", "status", "source"), others, 0, True)
+    paired = [each for pair, each in table.interactions.items() if entry.name in pair]
+    if paired and isinstance(entry, (Component, Species)):
+        yield interactions_sheet(paired, table)
 
 
 def _alternative(other: Alternative, table: Table) -> tuple[str, str, str]:
-    source = table.sources[other.source]
-    return f"{other.value:g}", _seen(other), f"{other.note}; {source}" if other.note else source
+    return f"{other.value:g}", _seen(other), _with_note(other.note, table.sources[other.source])
 
 
 def constant_of(entry: Entry) -> Constant | None:
     """The log10 K of an entry; None for the first ion of an element."""
     return entry.half_log10_k if isinstance(entry, Component) else entry.log10_k
+
+
+def valid_of(entry: Entry) -> tuple[float, float] | None:
+    """From which to which temperature (K) the constant of an entry is known; None for a first ion."""
+    return entry.half_valid if isinstance(entry, Component) else entry.valid
+
+
+def _range(valid: tuple[float, float] | None) -> str:
+    return f"{valid[0] - KELVIN:.4g} to {valid[1] - KELVIN:.4g}" if valid else "-"
+
+
+def _with_note(note: str, source: str) -> str:
+    return f"{note}; {source}" if note else source
 
 
 def _reading(entry: Entry) -> str:
@@ -85,6 +127,7 @@ def _facts(entry: Entry, table: Table) -> Iterator[tuple[str, str]]:
         if constant.note:
             yield "of the constant", constant.note
         yield "temperature", _temperature(entry, table)
+        yield "valid", f"{_range(valid_of(entry))} degC"
     for what, found, factor, unit in _measures(entry):
         yield what, f"{found.value * factor:.4g} {unit}; {table.sources[found.source]}; {_status(found)}"
     if entry.note:
@@ -103,10 +146,13 @@ def _measures(entry: Entry) -> Iterator[tuple[str, Constant, float, str]]:
 
 def _temperature(entry: Entry, table: Table) -> str:
     enthalpy = entry.half_enthalpy if isinstance(entry, Component) else entry.enthalpy
+    fit = entry.half_fit if isinstance(entry, Component) else entry.fit
     if not enthalpy:
-        return "no enthalpy is known: the value at 25 degC is used throughout"
+        return "no enthalpy is known of the reaction above: its value at 25 degC is used throughout"
     said = f"enthalpy {enthalpy.value / 1e3:.4g} kJ/mol of the reaction above"
-    return f"{said}; {table.sources[enthalpy.source]}; {_status(enthalpy)}"
+    said += f"; {table.sources[enthalpy.source]}; {_status(enthalpy)}"
+    curved = fit and (fit.linear or fit.log10 or fit.inverse_square)
+    return f"{said}. The constant follows an equation; this is its slope at 25 degC" if curved else said
 
 
 def _with_sd(constant: Constant) -> str:
@@ -125,9 +171,24 @@ def _seen(known: Constant | Alternative) -> str:
     return "from memory" if known.from_memory else "seen"
 
 
-def entry_json(entry: Entry, table: Table) -> dict[str, Any]:
+def interaction_json(interaction: Interaction, table: Table) -> dict[str, Any]:
+    """One interaction coefficient as data, kg/mol at 25 degC."""
+    found = interaction.coefficient
+    return {
+        "kind": kind_of(interaction),
+        "name": interaction.name,
+        "value_kg_mol": found.value,
+        "sd": found.sd,
+        "source": table.sources[found.source],
+        "status": _seen(found),
+        "note": found.note,
+    }
+
+
+def entry_json(entry: Entry, table: Table, temperature: float | None = None) -> dict[str, Any]:
     """One entry as data: log10 K at 25 degC and by temperature (K), uncertainty, source, status."""
-    constant = constant_of(entry)
+    constant, valid = constant_of(entry), valid_of(entry)
+    shown = sorted({*(celsius + KELVIN for celsius in SHOWN_AT), temperature or REFERENCE})
     reaction = entry.half_reaction if isinstance(entry, Component) else entry.reaction
     return {
         "kind": kind_of(entry),
@@ -137,9 +198,8 @@ def entry_json(entry: Entry, table: Table) -> dict[str, Any]:
         "sd": constant.sd if constant else None,
         "source": table.sources[constant.source] if constant else None,
         "status": _seen(constant) if constant else None,
-        "log10_k_at_K": {
-            f"{celsius + KELVIN:g}": log10_k_at(entry, celsius + KELVIN) for celsius in SHOWN_AT
-        } if constant else {},
+        "log10_k_at_K": {f"{kelvin:g}": log10_k_at(entry, kelvin) for kelvin in shown} if constant else {},
+        "valid_K": list(valid) if valid else None,
         "molar_volume_m3_mol": entry.molar_volume.value if isinstance(entry, Mineral) else None,
         "forms": entry.forms if isinstance(entry, Mineral) else None,
         "note": entry.note,

@@ -12,9 +12,11 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.waters import read_waters
+from gossan.chemistry.validity import validity_note
 from gossan.coupling.march import longest_step, march
 from gossan.coupling.pores import flow
 from gossan.coupling.problem import Problem
+from gossan.transport.faces import faces_of
 from gossan.views.assay import assay
 
 TRIED = 6  # first steps that are timed, and forgotten
@@ -35,6 +37,7 @@ class Plan:
     steps: int
     seconds: float | None  # of wall clock; None where the first steps found no solution
     warnings: dict[str, tuple[str, ...]]  # by water
+    column_warnings: tuple[str, ...]
 
     @property
     def may_form(self) -> list[str]:
@@ -56,7 +59,11 @@ def has_column(case: Case) -> bool:
 
 def water_warnings(case: Case) -> dict[str, tuple[str, ...]]:
     """What is to be said of every water of a case, by water; raises InputError."""
-    return {name: one.warnings for name, one in assay(case).waters.items() if one.warnings}
+    return _told({name: one.warnings for name, one in assay(case).waters.items()})
+
+
+def _told(warnings: dict[str, tuple[str, ...]]) -> dict[str, tuple[str, ...]]:
+    return {name: said for name, said in warnings.items() if said}
 
 
 def plan_of(case: Case) -> Plan:
@@ -72,6 +79,8 @@ def plan_of(case: Case) -> Plan:
     records = len(problem.records.marks)
     steps = max(math.ceil(duration / _step(problem)), records)
     each = _seconds_per_step(problem)
+    # once for the column, which holds all that its waters hold, and not again for each of them
+    validity = validity_note(case.table, problem.system, problem.system.temperature)
     return Plan(
         case=case,
         problem=problem,
@@ -82,7 +91,8 @@ def plan_of(case: Case) -> Plan:
         records=records,
         steps=steps,
         seconds=None if each is None else steps * each,
-        warnings=water_warnings(case),
+        warnings=_told({name: one.said for name, one in assay(case).waters.items()}),
+        column_warnings=tuple(filter(None, [validity])),
     )
 
 
@@ -130,5 +140,6 @@ def plan_json(plan: Plan) -> dict[str, Any]:
         "may_form": plan.may_form,
         "may_dissolve": plan.may_dissolve,
         "ports": {port.name: port.x for port in problem.ports},
+        "column_warnings": list(plan.column_warnings),
         "warnings": {name: list(said) for name, said in plan.warnings.items()},
     }  # fmt: skip

@@ -156,6 +156,7 @@ def run_json(summary: Summary) -> dict[str, Any]:
         "conductivity": {
             "least_fraction": found.least_fraction, "at_m": found.at, "half_at_s": found.half_at
         },
+        "warnings": list(result.warnings),
         "ledger_error": summary.ledger_error,
         "splitting_error": summary.splitting_error,
         "steps": summary.steps,

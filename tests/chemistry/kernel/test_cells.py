@@ -9,7 +9,7 @@ from tests.support.benches import DAVIES, bench_of, law_of, matrices_of, must_se
 from tests.support.small_systems import MINE_MINERALS, mine_water
 
 from gossan.base.outcome import LACKING, SOLVED
-from gossan.chemistry.kernel.cells import settle_cells
+from gossan.chemistry.kernel.cells import COLD, WARM, settle_cells
 from gossan.chemistry.kernel.nullspace import NOWHERE
 
 MINE = mine_water()
@@ -33,15 +33,16 @@ class Block:
         self.ln_activity = np.zeros((COMPONENTS, cells))
         self.ionic_strength = np.full(cells, 0.1)
         self.solved = np.full((COMPONENTS, cells), np.nan)
+        self.given = np.zeros((0, cells))  # of open gases
         self.outcome, self.steps = np.full(cells, -1), np.full(cells, -1)
 
     STATE = ("amount", "solid", "presence", "ln_activity", "ionic_strength", "solved")
 
-    def settle(self, skip=NO_SKIP, cold=True, first=0, last=None):
+    def settle(self, skip=NO_SKIP, start=COLD, first=0, last=None):
         return settle_cells(
             MATRICES, bench_of(MINE), self.kilograms, self.amount, self.solid, self.upper, self.presence,
-            self.ln_activity, self.ionic_strength, self.solved, skip, cold, self.outcome, self.steps,
-            first, len(self.kilograms) if last is None else last,
+            self.ln_activity, self.ionic_strength, self.solved, self.given, skip, start, self.outcome,
+            self.steps, first, len(self.kilograms) if last is None else last,
         )  # fmt: skip
 
     def copies(self):
@@ -91,7 +92,7 @@ def test_what_a_pivot_leaves_dissolved_is_no_remainder():
     assert block.settle() == 0
     # the same totals once more: by now the pivots are chosen by what is dissolved
     block.amount, block.solid[:] = totals.copy(), 0.0
-    assert block.settle(cold=False) == 0
+    assert block.settle(start=WARM) == 0
     law = law_of(MINE, DAVIES)
     gamma = np.array([law(strength) for strength in block.ionic_strength.tolist()], dtype=float).T
     molality = np.exp(MINE.ln_k[:, None] + MINE.formation @ block.ln_activity - gamma)
@@ -114,7 +115,7 @@ def test_warm_and_cold_starts_end_in_the_same_water():
     np.maximum(warm.amount[1:], 0.0, out=warm.amount[1:])
     cold = Block(waters, seed=44)
     cold.upper, cold.amount, cold.solid = warm.upper, warm.amount.copy(), warm.solid.copy()
-    assert warm.settle(cold=False) == 0
+    assert warm.settle(start=WARM) == 0
     assert cold.settle() == 0
     assert np.array_equal(warm.presence, cold.presence)
     assert warm.ln_activity == pytest.approx(cold.ln_activity, abs=1e-9)
@@ -126,18 +127,18 @@ def test_a_settled_cell_is_left_alone():
     block = Block(battery(45, 50), seed=45)
     block.settle()
     given = block.copies()
-    assert block.settle(skip=1e-12, cold=False) == 0
+    assert block.settle(skip=1e-12, start=WARM) == 0
     assert not block.steps.any()
     for name, values in given.items():
         assert np.array_equal(getattr(block, name), values), name
     block.amount *= 1 + 1e-13
     moved = block.amount.copy()
-    block.settle(skip=1e-12, cold=False)
+    block.settle(skip=1e-12, start=WARM)
     assert not block.steps.any()
     assert np.array_equal(block.amount, moved)
     # compared with the last solve, not with the last call: small steps add up
     block.amount *= 1 + 1e-12
-    block.settle(skip=1e-12, cold=False)
+    block.settle(skip=1e-12, start=WARM)
     assert (block.steps > 0).all()
 
 
@@ -146,7 +147,7 @@ def test_one_component_is_enough_to_wake_a_cell():
         block = Block(battery(46, 1), solids=0.0)
         block.settle()
         block.amount[k, 0] *= 1.001
-        block.settle(skip=1e-12, cold=False)
+        block.settle(skip=1e-12, start=WARM)
         assert block.steps[0] > 0, MINE.components[k]
 
 
@@ -156,20 +157,20 @@ def test_a_cell_is_never_skipped_when_its_marks_and_solids_disagree():
     block.settle()
     gone = int(np.flatnonzero(block.presence[:, 0] == 0)[0])
     block.solid[gone, 0] = 1e-6
-    block.settle(skip=1e-12, cold=False)
+    block.settle(skip=1e-12, start=WARM)
     assert block.steps[0] > 0
     block = Block(battery(43, 4)[2:3], solids=0.0)
     block.settle()
     there = int(np.flatnonzero(block.presence[:, 0] == 1)[0])
     block.solid[there, 0] = 0.0
-    block.settle(skip=1e-12, cold=False)
+    block.settle(skip=1e-12, start=WARM)
     assert block.steps[0] > 0
 
 
 def test_skipping_off_solves_every_cell():
     block = Block(battery(48, 20), seed=48)
     block.settle()
-    block.settle(cold=False)
+    block.settle(start=WARM)
     assert (block.steps >= 0).all()
     assert (block.outcome == SOLVED).all()
 
@@ -182,7 +183,7 @@ def test_a_failed_cell_is_left_as_it_was():
     block.amount[calcium, 4] = -1.0
     block.solid[:, 4], block.presence[:, 4] = 0.0, 0
     given = block.copies()
-    assert block.settle(cold=False) == 1
+    assert block.settle(start=WARM) == 1
     assert block.outcome.tolist() == [LACKING if i == 4 else SOLVED for i in range(9)]
     for name, values in given.items():
         assert np.array_equal(getattr(block, name)[..., 4], values[..., 4]), name
@@ -211,12 +212,12 @@ def test_absent_components_come_and_go():
     assert block.amount[copper, 0] == 0.0
     first = block.ln_activity.copy()
     block.amount[copper, 0] = totals[0, copper] * block.kilograms[0]
-    assert block.settle(cold=False) == 0
+    assert block.settle(start=WARM) == 0
     assert block.ln_activity[copper, 0] > -200.0
     # all of it is taken away again, as water and as solids
     block.amount = np.ascontiguousarray(without.T) * block.kilograms
     block.solid[:] = 0.0
-    assert block.settle(cold=False) == 0
+    assert block.settle(start=WARM) == 0
     assert block.ln_activity[copper, 0] == NOWHERE
     assert block.ln_activity == pytest.approx(first, abs=1e-9)
 

@@ -5,31 +5,40 @@ from __future__ import annotations
 from gossan.base.jit import kernel
 from gossan.base.outcome import SOLVED
 from gossan.chemistry.kernel.complement import settle
-from gossan.chemistry.kernel.nullspace import NOWHERE
+from gossan.chemistry.kernel.nullspace import GONE
+from gossan.chemistry.kernel.vectors import row_dot
+
+WARM, COLD, MARKED = 0, 1, 2
+REMAINDER = 1e-6  # of what solids took: below, subtraction has lost more digits than the balances have
 
 
 @kernel
 def settle_cells(
     matrices, bench, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength,
-    solved, skip, cold, outcome, steps, first, last,
+    solved, given, skip, start, outcome, steps, first, last,
 ):
     """Equilibrate cells first to last (equations.md, 7-18); returns how many failed.
 
     kilograms (cell,) kg of water per m3 of bulk
     amount (component, cell) mol m-3 of bulk dissolved; solid, upper (mineral, cell) mol m-3 of bulk
-    presence (mineral, cell) int8; ln_activity (component, cell); ionic_strength (cell,) mol/kg
+    presence (mineral, cell) int8; ln_activity (basis, cell); ionic_strength (cell,) mol/kg
     solved (component, cell) mol/kg: what was dissolved after the last solve; a cell whose dissolved
         amounts all stand within skip of it (relative) is left alone
-    cold: start from nothing; outcome (cell,) int64 and steps (cell,) int64 are overwritten
+    given (open gas, cell) mol m-3 of bulk that each gave, overwritten
+    start: WARM, COLD (from nothing) or MARKED (warm, with the marks as they stand)
+    outcome (cell,) int64 and steps (cell,) int64 are overwritten
     All state arrays are changed in place, a failed cell's are left as they were.
     """
-    components, minerals = amount.shape[0], solid.shape[0]
+    components, minerals, gases = amount.shape[0], solid.shape[0], given.shape[0]
+    endless = matrices.solid.shape[0] - gases  # the first row of an open gas
     failed = 0
     for i in range(first, last):
         steps[i] = 0
         outcome[i] = SOLVED
+        for g in range(gases):
+            given[g, i] = 0.0
         weight = kilograms[i]
-        same = not cold
+        same = start == WARM
         for k in range(components):
             now = amount[k, i] / weight
             bench.dissolved[k] = now
@@ -45,24 +54,24 @@ def settle_cells(
             bench.solid[m] = solid[m, i] / weight
             bench.upper[m] = upper[m, i] / weight
             bench.presence[m] = presence[m, i]
-            if bench.presence[m] == 0 and bench.solid[m] > 0.0:
+            if start != MARKED and bench.presence[m] == 0 and bench.solid[m] > 0.0:
                 bench.presence[m] = 1
-        for k in range(components):
+        for k in range(ln_activity.shape[0]):
             bench.ln_activity[k] = ln_activity[k, i]
+        for k in range(components):
             bench.abundance[k] = abs(solved[k, i])
         outcome[i], strength, steps[i] = settle(
             matrices, bench, bench.dissolved, bench.solid, bench.upper, bench.presence,
-            ionic_strength[i], cold,
+            ionic_strength[i], start == COLD,
         )
         if outcome[i] != SOLVED:
             failed += 1
             continue
         ionic_strength[i] = strength
+        for k in range(ln_activity.shape[0]):
+            ln_activity[k, i] = bench.ln_activity[k]
         for k in range(components):
-            if bench.ln_activity[k] == NOWHERE:
-                ln_activity[k, i] = NOWHERE
-            else:
-                ln_activity[k, i] = bench.ln_activity[k]
+            bench.right[k] = 0.0  # what is taken from or given to the water, without its sign
         for m in range(minerals):
             gained = bench.gained[m] * weight
             mark = bench.presence[m]
@@ -75,13 +84,25 @@ def settle_cells(
                 solid[m, i] = upper[m, i]
             else:
                 solid[m, i] += gained
-            if gained != 0.0:
-                for k in range(components):
-                    amount[k, i] -= matrices.solid[m, k] * gained
-        # a pivot's dissolved amount is known from speciation, to its last digit; by subtraction from
-        # what the solids hold it would be noise
+            take(matrices, bench, amount, m, i, gained)
+        for g in range(gases):
+            given[g, i] = -bench.gained[endless + g] * weight
+            take(matrices, bench, amount, endless + g, i, -given[g, i])
+        # What little is left in the water is known from speciation, to its last digit; by subtraction from
+        # what the solids hold it would be noise.
         for k in range(components):
-            if bench.place[k] < 0 and bench.place[k] > -99:
-                amount[k, i] = bench.sums[k] * weight
+            pivot = components == ln_activity.shape[0] and GONE < bench.place[k] < 0
+            if pivot or abs(amount[k, i]) < REMAINDER * bench.right[k]:
+                amount[k, i] = row_dot(matrices.conserved, k, bench.molality) * weight
             solved[k, i] = amount[k, i] / weight
     return failed
+
+
+@kernel(inner=True)
+def take(matrices, bench, amount, row, i, gained):
+    """Take from the water of cell i what a solid or a gas gained, and note in bench.right how much."""
+    if gained != 0.0:
+        for k in range(amount.shape[0]):
+            part = matrices.supplied[row, k] * gained
+            amount[k, i] -= part
+            bench.right[k] += abs(part)

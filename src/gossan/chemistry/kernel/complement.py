@@ -13,7 +13,7 @@ import numpy as np
 
 from gossan.base.jit import kernel
 from gossan.base.outcome import CYCLING, DIVERGED, ITERATIONS, LACKING, SINGULAR, SOLVED
-from gossan.chemistry.kernel.cold import ABSENT, approach, survey
+from gossan.chemistry.kernel.cold import ABSENT, LITTLE, approach, survey
 from gossan.chemistry.kernel.marks import fill_totals, lacking, mark, set_totals, weigh
 from gossan.chemistry.kernel.newton import (
     balances,
@@ -24,7 +24,14 @@ from gossan.chemistry.kernel.newton import (
     molalities,
     near_step,
 )
-from gossan.chemistry.kernel.nullspace import GONE, eliminate, pivots_follow, reduce_species, reduce_totals
+from gossan.chemistry.kernel.nullspace import (
+    GONE,
+    eliminate,
+    pivots_follow,
+    reduce_species,
+    reduce_totals,
+    scarcer_free,
+)
 
 SETTLED = 1e-6  # a last step below this leaves an error of about its square
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
@@ -32,6 +39,7 @@ NEAR = 0.3  # mismatch below which the balances' own Newton step converges
 LOOK = 1e-2  # mismatch below which wrong marks already show
 NEWTON_LIMIT = 300  # steps for one set of marks
 BRIM = 100.0  # mol/kg: no water holds more; far from the answer the sums may claim it
+CHOICES = 5  # of pivots once the answer shows what is scarce
 LEAST_SHARE = 0.1  # of a step: less is not worth trying
 STALLED = 0.9  # a far step that leaves more of its merit than this was hardly worth it
 FAR, CONVEX = 0, 1  # the two ways from afar
@@ -39,7 +47,7 @@ FAR, CONVEX = 0, 1  # the two ways from afar
 
 @kernel(inner=True, forceinline=True)
 def reduce_all(matrices, bench, dissolved, solid, upper, presence, entering):
-    """Eliminate the present minerals and reduce totals and species; returns (minerals, free components)."""
+    """Eliminate ties and present minerals, reduce totals and species; returns (rows, free ones)."""
     active, free = eliminate(matrices, bench, presence, entering)
     # minerals that found no room were marked absent or full: what they hold belongs to the totals now
     fill_totals(matrices, bench, dissolved, solid, upper, presence)
@@ -55,8 +63,8 @@ def begin(matrices, bench, dissolved, solid, upper, presence):
         presence[mineral] = 1 if solid[mineral] > 0.0 else 0
     set_totals(matrices, bench, dissolved, solid, upper, presence)
     for k in range(dissolved.shape[0]):
-        if bench.place[k] != GONE and bench.total[k] <= ABSENT:
-            bench.total[k] = 1e-12
+        if bench.place[k] != GONE and bench.total[k] <= ABSENT and k != matrices.signed:
+            bench.total[k] = LITTLE
     ionic_strength = approach(matrices, bench, dissolved)
     set_totals(matrices, bench, dissolved, solid, upper, presence)
     survey(matrices, bench, ionic_strength)
@@ -185,7 +193,11 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
     """
     if cold:
         ionic_strength = begin(matrices, bench, dissolved, solid, upper, presence)
-    steps, changes, entering = 0, 0, np.int64(-1)
+    elif matrices.first.shape[0] > 0:
+        # which valence is the scarce one, the dissolved totals do not tell
+        set_totals(matrices, bench, dissolved, solid, upper, presence)
+        survey(matrices, bench, ionic_strength)
+    steps, changes, entering, chosen_again = 0, 0, np.int64(-1), 0
     patience = 2 * (solid.shape[0] + 2)
     while changes < 40 * patience:
         set_totals(matrices, bench, dissolved, solid, upper, presence)
@@ -201,6 +213,9 @@ def settle(matrices, bench, dissolved, solid, upper, presence, ionic_strength, c
         steps += taken
         if code == SOLVED:
             if drop < 0 and add < 0:
+                if chosen_again < CHOICES and scarcer_free(matrices, bench, active, free):
+                    chosen_again += 1
+                    continue
                 return SOLVED, ionic_strength, steps
             if one_by_one:
                 drop, add = (first, -1) if presence[first] == 1 else (-1, first)

@@ -2,10 +2,8 @@
 
 from __future__ import annotations
 
-import math
-
 from gossan.base.jit import kernel
-from gossan.chemistry.kernel.cold import ABSENT, add_up
+from gossan.chemistry.kernel.cold import ABSENT, add_up, level, valences_follow
 from gossan.chemistry.kernel.nullspace import GONE, NOWHERE
 
 OWED = 1e-12  # mol/kg: an absent component may be negative by what rounding leaves of 100 mol/kg, no more
@@ -16,10 +14,14 @@ SLACK = 1e-11  # ln of a saturation ratio that counts as none: between rounding 
 def fill_totals(matrices, bench, dissolved, solid, upper, presence):
     """Fill bench.total with what is dissolved or must dissolve under these marks.
 
-    A mineral that is present adds nothing: its own formula drops out of the reduced totals exactly.
+    A mineral that is present adds nothing: its own formula drops out of the reduced totals exactly.  All is
+    counted in conserved components; the ties share it out among the valences.
     """
-    for k in range(dissolved.shape[0]):
+    components = matrices.conserved.shape[0]
+    for k in range(components):
         bench.total[k] = dissolved[k]
+    for k in range(components, bench.total.shape[0]):
+        bench.total[k] = 0.0
     for mineral in range(solid.shape[0]):
         given = 0.0
         if presence[mineral] == 0:
@@ -27,41 +29,56 @@ def fill_totals(matrices, bench, dissolved, solid, upper, presence):
         elif presence[mineral] == 2:
             given = solid[mineral] - upper[mineral]
         if given != 0.0:
-            for k in range(dissolved.shape[0]):
-                bench.total[k] += matrices.solid[mineral, k] * given
+            for k in range(components):
+                bench.total[k] += matrices.supplied[mineral, k] * given
 
 
 @kernel(inner=True)
 def set_totals(matrices, bench, dissolved, solid, upper, presence):
-    """Fill bench.total and mark the components that are absent under these marks."""
+    """Fill bench.total, mark what is absent of the basis and which ties hold (equations.md, 50 to 52)."""
+    components = matrices.conserved.shape[0]
     fill_totals(matrices, bench, dissolved, solid, upper, presence)
-    for k in range(dissolved.shape[0]):
+    for k in range(components):
         bench.place[k] = 0
-        if k == matrices.signed or bench.total[k] > ABSENT:
+        if k == matrices.signed or k == matrices.electron or bench.total[k] > ABSENT:
             continue
         held = False
-        for mineral in range(solid.shape[0]):
-            held = held or (presence[mineral] == 1 and matrices.solid[mineral, k] != 0.0)
+        for row in range(matrices.solid.shape[0]):
+            always = row >= matrices.minerals or presence[row] == 1
+            held = held or (always and matrices.supplied[row, k] != 0.0)
         if held:
             continue
         for mineral in range(solid.shape[0]):
-            if presence[mineral] == 2 and matrices.solid[mineral, k] != 0.0:
+            if presence[mineral] == 2 and matrices.supplied[mineral, k] != 0.0:
                 presence[mineral] = 1  # nothing else brings this component into the water: it must dissolve
                 held = True
         if not held:
             bench.place[k] = GONE
-    for k in range(dissolved.shape[0]):
+    for row in range(matrices.minerals, matrices.solid.shape[0]):
+        bench.tied[row] = 1
+    for v in range(matrices.first.shape[0]):
+        first = matrices.first[v]
+        absent = first >= 0 and bench.place[first] == GONE
+        bench.place[components + v] = GONE if absent else 0
+        bench.tied[matrices.minerals + v] = 0 if absent else 1
+    arrived = False
+    for k in range(components):
         if bench.place[k] == GONE:
             bench.ln_activity[k] = NOWHERE
         elif not bench.ln_activity[k] > -1e5:
-            total = bench.total[k]
-            bench.ln_activity[k] = math.log(total if total > 1e-12 else 1e-12)
+            level(matrices, bench, k, bench.total[k])
+            arrived = True
+    for v in range(matrices.first.shape[0]):
+        if bench.place[components + v] == GONE:
+            bench.ln_activity[components + v] = NOWHERE
+    if arrived:
+        valences_follow(matrices, bench)
 
 
 @kernel(inner=True, forceinline=True)
 def lacking(bench):
     """Whether a component that counts as absent is in truth owed, or no number at all."""
-    for k in range(bench.total.shape[0]):
+    for k in range(bench.dissolved.shape[0]):
         if bench.place[k] == GONE and not bench.total[k] >= -OWED:
             return True
     return False
@@ -74,7 +91,7 @@ def weigh(matrices, bench, active, solid, upper, presence):
     Returns (mineral to drop or fill, mineral to add or loosen, the first at fault): the largest negative
     amount or excess, the largest contradiction of a saturation ratio, and the least index of all.
     """
-    add_up(matrices, bench)
+    add_up(matrices.stoichiometry, bench)
     drop, add, first = -1, -1, presence.shape[0]
     worst_amount, worst_ratio = 0.0, SLACK
     for mineral in range(solid.shape[0]):
@@ -97,11 +114,15 @@ def weigh(matrices, bench, active, solid, upper, presence):
             worst_ratio, add = wrong, mineral
     for m in range(active):
         mineral = bench.active[m]
+        if matrices.minerals <= mineral < matrices.minerals + matrices.first.shape[0]:
+            continue  # a couple: what changed its valence stays dissolved
         gained = 0.0
         for r in range(active):
             p = bench.pivot[r]
             gained += bench.turns[r, m] * (bench.total[p] - bench.sums[p])
         bench.gained[mineral] = gained
+        if mineral >= matrices.minerals:
+            continue  # there is no end of an open gas
         amount = solid[mineral] + gained
         wrong = amount if amount < upper[mineral] - amount else upper[mineral] - amount
         if wrong < 0.0 and mineral < first:

@@ -12,32 +12,42 @@ LANES = 8  # species are padded to a multiple of this, so that vector registers 
 class Matrices(NamedTuple):
     """A chemical system at one temperature, as the kernels read it.
 
-    Species stand innermost, the components first, padded at the end by species that do not exist: no
-    stoichiometry, no charge and a constant of nothing.
+    Species stand innermost, the basis first, padded at the end by species that do not exist: no
+    stoichiometry, no charge and a constant of nothing.  The basis is the conserved components and then the
+    coupled valences.  Rows are the minerals, and then what always holds, the ties: one for each couple, in
+    the order of the valences, and one for each open gas.
     """
 
-    stoichiometry: np.ndarray  # (component, species) of formation from components
+    stoichiometry: np.ndarray  # (basis, species) of formation
     ln_k: np.ndarray  # (species,) of formation
+    conserved: np.ndarray  # (component, species) of formation from conserved components alone
+    conserved_ln_k: np.ndarray  # (species,) of that
     charge_squared: np.ndarray  # (species,)
     neutral: np.ndarray  # (species,) 1 for a dissolved molecule without charge, else 0
     size: np.ndarray  # (species,) ion size times Debye-Hueckel B, (kg/mol)^0.5
     model: int  # activity model: 0 ideal, 1 Davies, 2 extended Debye-Hueckel
     debye_hueckel: float  # A on the natural scale, (kg/mol)^0.5
-    solid: np.ndarray  # (mineral, component) what one formula dissolves to
-    solid_ln_k: np.ndarray  # (mineral,) of dissolution
-    signed: int  # the one component whose total may be negative: H^+
+    solid: np.ndarray  # (row, basis) what one formula dissolves to
+    solid_ln_k: np.ndarray  # (row,) of dissolution
+    supplied: np.ndarray  # (row, component) what one formula is counted as; nothing for a couple
+    supplied_ln_k: np.ndarray  # (row,) of dissolution to conserved components
+    minerals: int  # how many of the rows are minerals
+    first: np.ndarray  # (couple,) int64: the component that a valence is counted as; -1: water's own
+    carrier: np.ndarray  # (open gas,) int64: the component whose total it leaves open, e^- for O2 and H2
+    signed: int  # H^+, whose total may be negative
+    electron: int  # e^-, whose total may be negative too; -1 where nothing is coupled
 
 
 class Bench(NamedTuple):
     """Working space of one solve, set out once for a block of cells."""
 
-    # the cell
+    # the cell; component: the conserved ones alone
     dissolved: np.ndarray  # (component,) mol/kg
     solid: np.ndarray  # (mineral,) mol/kg
     upper: np.ndarray  # (mineral,) mol/kg
     presence: np.ndarray  # (mineral,) int8
-    ln_activity: np.ndarray  # (component,)
-    total: np.ndarray  # (component,) dissolved, with what absent minerals give back
+    ln_activity: np.ndarray  # (basis,)
+    total: np.ndarray  # (basis,) dissolved, with what absent minerals give back; 0 for valences
     # its species
     ln_gamma: np.ndarray  # (species,)
     slope: np.ndarray  # (species,) d ln_gamma / d ionic strength
@@ -45,31 +55,32 @@ class Bench(NamedTuple):
     bits: np.ndarray  # (species,) int64
     molality: np.ndarray  # (species,)
     share: np.ndarray  # (species,) products of the moment
-    sums: np.ndarray  # (component,) sum of stoichiometry times molality
-    abundance: np.ndarray  # (component,) the same of absolute values
-    # null space of the minerals present
-    rows: np.ndarray  # (mineral + 1, component) reduced stoichiometry of the minerals present
-    turns: np.ndarray  # (mineral + 1, mineral + 1) the row operations that led there
-    active: np.ndarray  # (mineral,) int64
-    pivot: np.ndarray  # (mineral,) int64
-    free: np.ndarray  # (component,) int64
+    sums: np.ndarray  # (basis,) sum of stoichiometry times molality
+    abundance: np.ndarray  # (basis,) the same of absolute values
+    # null space of the rows that hold: ties, and minerals present
+    tied: np.ndarray  # (row,) int8: which ties hold; a couple of an absent element does not
+    rows: np.ndarray  # (row + 1, basis) reduced stoichiometry of the rows that hold
+    turns: np.ndarray  # (row + 1, row + 1) the row operations that led there
+    active: np.ndarray  # (row,) int64
+    pivot: np.ndarray  # (row,) int64
+    free: np.ndarray  # (basis,) int64
     exit: np.ndarray  # (1,) int64: the mark of a mineral that had to make room
-    place: np.ndarray  # (component,) int64: where a component stands in free; -1 - row for a pivot; GONE
-    reduced: np.ndarray  # (component, species) stoichiometry in the free components
+    place: np.ndarray  # (basis,) int64: where one stands in free; -1 - row for a pivot; GONE
+    reduced: np.ndarray  # (basis, species) stoichiometry in the free ones
     reduced_ln_k: np.ndarray  # (species,)
-    reduced_total: np.ndarray  # (component,)
-    # the linear system of the free components
-    positive: np.ndarray  # (component,)
-    negative: np.ndarray  # (component,)
-    short: np.ndarray  # (component,) total less what the species make
-    matrix: np.ndarray  # (component + mineral, component + mineral)
-    right: np.ndarray  # (component + mineral,)
-    side: np.ndarray  # (component + mineral,)
-    weight: np.ndarray  # (component,)
-    taken: np.ndarray  # (component,) the last step of the free ln activities
+    reduced_total: np.ndarray  # (basis,)
+    # the linear system of the free ones
+    positive: np.ndarray  # (basis,)
+    negative: np.ndarray  # (basis,)
+    short: np.ndarray  # (basis,) total less what the species make
+    matrix: np.ndarray  # (basis + row, basis + row)
+    right: np.ndarray  # (basis + row,)
+    side: np.ndarray  # (basis + row,)
+    weight: np.ndarray  # (basis,)
+    taken: np.ndarray  # (basis,) the last step of the free ln activities
     # its minerals
-    gained: np.ndarray  # (mineral,) what a mineral gained in this solve, mol/kg
-    reach: np.ndarray  # (mineral,) the most of a mineral its components allow, mol/kg
+    gained: np.ndarray  # (row,) what a mineral, or an open gas, gained in this solve, mol/kg
+    reach: np.ndarray  # (row,) the most of a mineral its components allow, mol/kg
     saturation: np.ndarray  # (mineral,) ln of activity product over K
 
 
@@ -78,10 +89,12 @@ def padded(species: int) -> int:
     return -(-species // LANES) * LANES
 
 
-def bench(components: int, species: int, minerals: int) -> Bench:
-    """Set out working space for a system of this size; species counts the padded ones."""
-    both = components + minerals
-    some = max(minerals, 1)
+def bench(matrices: Matrices) -> Bench:
+    """Set out working space for a system."""
+    basis, species = matrices.stoichiometry.shape
+    components, minerals = matrices.conserved.shape[0], matrices.minerals
+    rows = max(matrices.solid.shape[0], 1)
+    both = basis + rows
 
     def real(*shape):
         return np.zeros(shape)
@@ -94,35 +107,36 @@ def bench(components: int, species: int, minerals: int) -> Bench:
         solid=real(minerals),
         upper=real(minerals),
         presence=np.zeros(minerals, np.int8),
-        ln_activity=real(components),
-        total=real(components),
+        ln_activity=real(basis),
+        total=real(basis),
         ln_gamma=real(species),
         slope=real(species),
         exponent=real(species),
         bits=whole(species),
         molality=real(species),
         share=real(species),
-        sums=real(components),
-        abundance=real(components),
-        rows=real(some + 1, components),
-        turns=real(some + 1, some + 1),
-        active=whole(some),
-        pivot=whole(some),
-        free=whole(components),
+        sums=real(basis),
+        abundance=real(basis),
+        tied=np.zeros(rows, np.int8),
+        rows=real(rows + 1, basis),
+        turns=real(rows + 1, rows + 1),
+        active=whole(rows),
+        pivot=whole(rows),
+        free=whole(basis),
         exit=whole(1),
-        place=whole(components),
-        reduced=real(components, species),
+        place=whole(basis),
+        reduced=real(basis, species),
         reduced_ln_k=real(species),
-        reduced_total=real(components),
-        positive=real(components),
-        negative=real(components),
-        short=real(components),
+        reduced_total=real(basis),
+        positive=real(basis),
+        negative=real(basis),
+        short=real(basis),
         matrix=real(both, both),
         right=real(both),
         side=real(both),
-        weight=real(components),
-        taken=real(components),
-        gained=real(some),
-        reach=real(some),
-        saturation=real(some),
+        weight=real(basis),
+        taken=real(basis),
+        gained=real(rows),
+        reach=real(rows),
+        saturation=real(rows),
     )

@@ -4,6 +4,10 @@ A mineral at equilibrium ties the activities of its components together.  Gauss-
 stoichiometry of the minerals present solves these ties for one component each, the least abundant in
 solution, and leaves a smaller problem in the free components.  Totals are subtracted here, once, and not
 in every residual: that is what keeps free sulfide right where zinc and sulfide nearly cancel.
+
+A redox couple is such a tie too, one that always holds: it takes out the scarcer valence, so that the
+electron balance is left in terms of what is scarce, and not as a difference of what is plentiful
+(equations.md, 51).
 """
 
 from __future__ import annotations
@@ -17,17 +21,18 @@ GONE = -99  # place of a component that is absent
 NOWHERE = -1e6  # ln activity of an absent component: whatever is made of it vanishes
 SIGNED_LAST = 1e6  # H^+ is scarce in neutral water, yet what a new precipitate leaves scarce is its metal
 NOTHING = 1e-11  # stoichiometry below this is a rounding remainder
+RUNG = 1e4  # digits that a badly chosen pivot may cost, as a factor
 
 
 @kernel(inner=True, forceinline=True)
 def eliminate(matrices, bench, presence, entering):
-    """Choose a pivot for every mineral marked present and reduce their rows.
+    """Choose a pivot for every tie and every mineral marked present and reduce their rows.
 
-    presence (mineral,) int8 is read (1 = present); bench.place must hold GONE for absent components; free
-    and place are set for all others.  entering: the mineral that was marked last, -1 for none.  Where the
-    phase rule leaves no room for it, one of those it can replace goes (see `leaving`); any other mineral
-    whose ties follow from the rest is marked absent.
-    Returns (minerals that stay, free components).
+    presence (mineral,) int8 is read (1 = present); bench.place must hold GONE for what is absent of the
+    basis; free and place are set for all others.  entering: the mineral that was marked last, -1 for none.
+    Where the phase rule leaves no room for it, one of those it can replace goes (see `leaving`); any other
+    mineral whose ties follow from the rest is marked absent.
+    Returns (rows that hold, free ones of the basis).
     """
     place = bench.place
     n = np.int64(-1)  # a literal would have numba compile everything below once more for it
@@ -44,12 +49,18 @@ def eliminate(matrices, bench, presence, entering):
 
 @kernel(inner=True, forceinline=True)
 def tie_all(matrices, bench, presence, entering):
-    """Tie every mineral marked present, the entering one last; the number tied, -1 where one had to leave."""
+    """Tie what always holds, then every mineral marked present, the entering one last.
+
+    Returns the number of rows tied, -1 where a mineral had to leave.
+    """
     place = bench.place
     for k in range(place.shape[0]):
         if place[k] != GONE:
             place[k] = 0
     n = np.int64(0)
+    for row in range(matrices.minerals, matrices.solid.shape[0]):
+        if bench.tied[row] and tie(matrices, bench, row, n):
+            n += 1
     for mineral in range(presence.shape[0]):
         if presence[mineral] == 1 and mineral != entering:
             if tie(matrices, bench, mineral, n):
@@ -71,9 +82,9 @@ def tie_all(matrices, bench, presence, entering):
 
 @kernel(inner=True, forceinline=True)
 def tie(matrices, bench, mineral, n):
-    """Add one mineral to the n that are eliminated; False where its ties follow from theirs.
+    """Add one row to the n that are eliminated; False where it follows from theirs.
 
-    Then turns[n] holds what combination of the minerals before it undoes it.
+    Then turns[n] holds what combination of the rows before it undoes it.
     """
     solid, turns, rows, place, pivot = matrices.solid, bench.turns, bench.rows, bench.place, bench.pivot
     components = solid.shape[1]
@@ -124,7 +135,7 @@ def tie(matrices, bench, mineral, n):
 
 @kernel(inner=True, forceinline=True)
 def leaving(bench, n):
-    """Which of n minerals runs out (or fills up) first as a mineral made of them grows; -1 for none.
+    """Which of n rows runs out (or fills up) first as a mineral made of them grows; -1 for none.
 
     turns[n] holds the combination that undoes the growing one; the answer is a row, and bench.exit[0] the
     mark that its mineral gets: 0 absent, 2 full.
@@ -133,6 +144,8 @@ def leaving(bench, n):
     for m in range(n):
         spent = -bench.turns[n, m]
         mineral = bench.active[m]
+        if mineral >= bench.solid.shape[0]:
+            continue  # a tie always holds
         amount = bench.solid[mineral] + bench.gained[mineral]
         if spent > NOTHING:
             reach, mark = amount / spent, 0
@@ -206,3 +219,16 @@ def pivots_follow(matrices, bench, active, free):
         for j in range(free):
             value -= bench.rows[r, bench.free[j]] * bench.ln_activity[bench.free[j]]
         bench.ln_activity[bench.pivot[r]] = value
+
+
+@kernel(inner=True, forceinline=True)
+def scarcer_free(matrices, bench, active, free):
+    """Whether a free one is so much scarcer than a pivot it is tied to that digits were lost on it."""
+    for r in range(active):
+        pivot = bench.abundance[bench.pivot[r]]
+        for j in range(free):
+            k = bench.free[j]
+            share = abs(bench.rows[r, k])
+            if k != matrices.signed and share != 0.0 and bench.abundance[k] * RUNG < share * pivot:
+                return True
+    return False

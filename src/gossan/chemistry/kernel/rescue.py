@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 
 from gossan.base.jit import kernel
-from gossan.chemistry.kernel.cold import approach, survey
+from gossan.chemistry.kernel.cold import approach, survey_of, valences_follow
 from gossan.chemistry.kernel.dense import solve_general
 from gossan.chemistry.kernel.marks import set_totals
 from gossan.chemistry.kernel.nullspace import GONE, NOWHERE
@@ -34,10 +34,13 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
     saturation (two of them nested where the amount has an upper bound).  bench.ln_activity and presence
     are left near the answer, to be settled from there; returns (found, ionic strength).
     Source: Kraeutle (2011), Adv. Water Resour. 34, 137-151, for the method; Billups (1995) for two bounds.
-    amount, reach (mineral,) are working space.
+    amount, reach (row,) are working space.  Everything is counted in conserved components: where couples
+    cancel that costs digits, not the marks.
     """
     components, minerals = dissolved.shape[0], solid.shape[0]
-    n = components + minerals
+    gases = matrices.minerals + matrices.first.shape[0]  # the first row of an open gas
+    rows = matrices.solid.shape[0]
+    n = components + rows
     for m in range(minerals):
         presence[m] = 0
     set_totals(matrices, bench, dissolved, solid, upper, presence)
@@ -45,16 +48,18 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
     for m in range(minerals):
         reach[m] = 1e300
         for k in range(components):
-            if matrices.solid[m, k] != 0.0 and k != matrices.signed:
-                most = 0.0 if bench.place[k] == GONE else bench.total[k] / abs(matrices.solid[m, k])
+            if matrices.supplied[m, k] != 0.0 and k != matrices.signed and k != matrices.electron:
+                most = 0.0 if bench.place[k] == GONE else bench.total[k] / abs(matrices.supplied[m, k])
                 if most < reach[m]:
                     reach[m] = most
         amount[m] = 0.01 * reach[m]
         if amount[m] > upper[m]:
             amount[m] = upper[m]
-    matrix, right = bench.matrix, bench.right
+    for row in range(minerals, rows):
+        amount[row], reach[row] = 0.0, 1.0
+    matrix, right, stoichiometry = bench.matrix, bench.right, matrices.conserved
     for step in range(LIMIT):
-        made = survey(matrices, bench, ionic_strength)
+        made = survey_of(matrices, stoichiometry, matrices.conserved_ln_k, bench, ionic_strength)
         for i in range(n):
             right[i] = 0.0
             for j in range(n):
@@ -63,8 +68,8 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
             total = bench.total[k]
             bench.positive[k] -= total if total < 0.0 else 0.0
             bench.negative[k] += total if total > 0.0 else 0.0
-            for m in range(minerals):
-                part = matrices.solid[m, k] * amount[m]
+            for m in range(rows):
+                part = matrices.supplied[m, k] * amount[m]
                 if part > 0.0:
                     bench.positive[k] += part
                 else:
@@ -77,8 +82,8 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
             # far: logarithms reach further; their slope is the balances' own, row by row
             right[k] = math.log((bench.negative[k] + 1e-290) / (bench.positive[k] + 1e-290))
             worst = max(worst, abs(right[k]))
-            for m in range(minerals):
-                value = matrices.solid[m, k]
+            for m in range(rows):
+                value = matrices.supplied[m, k]
                 if value != 0.0:
                     side = bench.positive[k] if value * amount[m] > 0.0 else bench.negative[k]
                     matrix[k, components + m] = value * reach[m] / (side + 1e-290)
@@ -87,16 +92,25 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
                 continue
             positive, negative = bench.positive[k] + 1e-290, bench.negative[k] + 1e-290
             for s in range(matrices.ln_k.shape[0]):
-                value = matrices.stoichiometry[k, s] * bench.molality[s]
+                value = stoichiometry[k, s] * bench.molality[s]
                 bench.share[s] = value / (positive if value > 0.0 else negative)
             for j in range(components):
-                matrix[k, j] += row_dot(matrices.stoichiometry, j, bench.share)
-        for m in range(minerals):
+                matrix[k, j] += row_dot(stoichiometry, j, bench.share)
+        for m in range(rows):
             row = components + m
-            under = matrices.solid_ln_k[m]
+            under = matrices.supplied_ln_k[m]
             for k in range(components):
-                if matrices.solid[m, k] != 0.0:
-                    under -= matrices.solid[m, k] * bench.ln_activity[k]
+                if matrices.supplied[m, k] != 0.0:
+                    under -= matrices.supplied[m, k] * bench.ln_activity[k]
+            if m >= minerals:
+                # a tie holds, whatever its amount; a couple has none, and its formula is empty
+                right[row] = under
+                worst = max(worst, abs(under))
+                matrix[row, row] = 0.0 if m >= gases else 1.0
+                for k in range(components):
+                    if bench.place[k] != GONE:
+                        matrix[row, k] = matrices.supplied[m, k]
+                continue
             if reach[m] <= 0.0 or upper[m] <= 0.0:
                 matrix[row, row] = 1.0
                 right[row] = 0.0
@@ -113,11 +127,12 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
             matrix[row, row] = first + second * from_amount
             for k in range(components):
                 if bench.place[k] != GONE:
-                    matrix[row, k] = -second * from_under * matrices.solid[m, k]
+                    matrix[row, k] = -second * from_under * matrices.supplied[m, k]
         if worst < GOOD and abs(made - ionic_strength) < 1e-6 * (made + 1e-9):
             for m in range(minerals):
                 if reach[m] > 0.0 and amount[m] / reach[m] > 1e-9:
                     presence[m] = 2 if upper[m] - amount[m] < 1e-9 * upper[m] else 1
+            valences_follow(matrices, bench)
             return True, ionic_strength
         if not solve_general(matrix, n, right):
             return False, ionic_strength
@@ -133,7 +148,7 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
                 bench.ln_activity[k] += factor * right[k]
             else:
                 bench.ln_activity[k] = NOWHERE
-        for m in range(minerals):
+        for m in range(rows):
             amount[m] += factor * right[components + m] * reach[m]
         ionic_strength = min(max(made, 0.2 * ionic_strength), 5.0 * ionic_strength)
         ionic_strength = max(ionic_strength, 1e-12)
@@ -153,7 +168,7 @@ def find_minerals_in(matrices, bench, kilograms, amount, solid, upper, presence,
         matrices, bench, bench.dissolved, bench.solid, bench.upper, bench.presence, bench.gained, bench.reach
     )
     ionic_strength[0] = strength
-    for k in range(amount.shape[0]):
+    for k in range(ln_activity.shape[0]):
         ln_activity[k, 0] = bench.ln_activity[k]
     for m in range(minerals):
         presence[m, 0] = bench.presence[m]
