@@ -64,7 +64,8 @@ def test_carry_is_what_the_equations_say(cells, limiter, held):
     names = ("lean_left", "lean_right", "rise_left", "rise_right", "kept")
     expected = transport_faces.passed(
         dissolved, inflow, [[0, 1, 2], [3], [4]], darcy_flux, conductance,
-        dict(zip(names, weights, strict=True)), set(uneven.tolist()), limiter, rest | {"beyond": beyond[0], "gradient": beyond[1]}, 0.3)
+        dict(zip(names, weights, strict=True)), set(uneven.tolist()), limiter,
+        rest | {"beyond": beyond[0], "gradient": beyond[1]}, 0.3)
     np.testing.assert_allclose(passed, expected, rtol=ROUNDING, atol=ROUNDING)
     faint = np.s_[3, :cells] if beyond.any() else np.s_[3, :]
     np.testing.assert_allclose(passed[faint], expected[faint], rtol=1e-11, atol=1e-36)  # by a trace's measure
