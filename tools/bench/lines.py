@@ -1,8 +1,8 @@
 """A whole march against the method of lines: the same column, the same error, two ways through time.
 
 A front enters a column of which the exact profile is known (Lindstrom et al. 1967: held flux, no end). The
-method of lines takes the same cells with unlimited third-order fluxes, and scipy's stiff integrator (BDF, told
-which entries its Jacobian has) at the loosest tolerance whose error is no larger than the march's.
+method of lines takes the same cells with unlimited third-order fluxes, and scipy's stiff integrator (BDF,
+told the entries of its Jacobian) at the loosest tolerance whose error is no larger than the march's.
 """
 
 from __future__ import annotations

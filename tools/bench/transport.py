@@ -130,7 +130,8 @@ def main() -> None:
             unit = 1e9 / (cells * SOLUTES)
             print(
                 f"{cells:8} {solve * unit:8.2f} {alone * unit:8.2f} {prepare * unit:8.2f}"
-                f" {banded * unit:8.2f} {banded / alone:24.1f} {banded / solve:6.1f} {banded / (solve + prepare):4.1f}"
+                f" {banded * unit:8.2f} {banded / alone:24.1f} {banded / solve:6.1f}"
+                f" {banded / (solve + prepare):4.1f}"
             )
     print_lines()
     if asked.cold:

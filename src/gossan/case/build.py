@@ -35,6 +35,8 @@ def build(case: Case) -> Problem:
     assert case.run is not None
     table = case.table
     used = dict.fromkeys([layer.water for layer in case.layers] + [feed.water for feed in case.flow.feed])
+    if case.flow.outlet == "concentration":
+        used[case.flow.outlet_water] = None
     waters = read_waters(case, list(used))
     solids = [_starting_solids(layer, table) for layer in case.layers]
     system = _system(case, table, waters, solids)
@@ -51,7 +53,14 @@ def build(case: Case) -> Problem:
     return Problem(
         system=system,
         tracers=tracers,
-        transport=transport_of(cells, _groups(chemical, len(tracers)), case.flow.inlet),
+        transport=transport_of(
+            cells,
+            _groups(chemical, len(tracers)),
+            case.flow.inlet,
+            case.run.limiter,
+            composition[case.flow.outlet_water] if case.flow.outlet == "concentration" else None,
+            _gradients(case, chemical) if case.flow.outlet == "gradient" else None,
+        ),
         inflow=np.array([composition[feed.water] for feed in case.flow.feed]),
         feeds=_feeds(case),
         inlet_flux=case.flow.darcy_flux.si if case.flow.darcy_flux else None,
@@ -83,7 +92,8 @@ def _cut(layer: Layer) -> grid.Layer:
     return grid.Layer(
         name=layer.name,
         length=layer.length.si,
-        cells=layer.cell_count,
+        cells=layer.mesh[0],
+        growth=layer.mesh[1],
         dispersivity=layer.dispersivity.si,
         diffusion=layer.diffusion.si,
         tortuosity=_tortuosity(layer),
@@ -91,9 +101,11 @@ def _cut(layer: Layer) -> grid.Layer:
 
 
 def _tortuosity(layer: Layer) -> Tortuosity:
-    if layer.tortuosity is None:
+    said = layer.tortuosity
+    if said is None:
         return Tortuosity()
-    return Tortuosity("number", factor=layer.tortuosity)
+    numbers = {"exponent": said.exponent, "factor": said.factor}
+    return Tortuosity(said.law, **{name: number for name, number in numbers.items() if number is not None})
 
 
 def _clogging(layer: Layer) -> clogging.Clogging:
@@ -162,6 +174,20 @@ def _composition(case: Case, name: str, water: Water, system: System) -> np.ndar
     said = case.waters[name].tracers
     density = water.system.water_density
     return np.array(chemical + [_tracer(case, tracer, said, density) for tracer in case.tracer_names])
+
+
+def _gradients(case: Case, chemical: int) -> np.ndarray:
+    """(solute,) mol m-4 at the outlet."""
+    assert case.flow is not None
+    found = np.zeros(chemical + len(case.tracer_names))
+    for name, gradient in case.flow.outlet_gradient.items():
+        of_mole = 1.0
+        if gradient.unit == "kg/m4":
+            molar_mass = case.tracers[name].molar_mass
+            assert molar_mass is not None
+            of_mole = molar_mass.si
+        found[chemical + case.tracer_names.index(name)] = gradient.si / of_mole
+    return found
 
 
 def _tracer(case: Case, name: str, said: dict[str, Amount], water_density: float) -> float:

@@ -7,13 +7,16 @@ from collections.abc import Callable, Iterable
 
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
-from gossan.case.check_waters import mineral_named
+from gossan.case.check_waters import check_tracer, mineral_named, tracer_names
+from gossan.case.column_kinds import Growing
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.model import MOST_CELLS, Layer
 from gossan.constants.entries import Table
 
 ROUND_OFF = 1e-9  # lengths and shares that differ by less than this are the same
+STILL = "the water stands still (darcy_flux is zero): no pore volume ever passes"
+MOST_GROWTH = 1.5  # of a cell's length over its neighbour's, within a layer that grows
 
 
 def check_layers(draft: Draft, table: Table) -> None:
@@ -74,12 +77,25 @@ def _check_cells(draft: Draft, layer: Layer, path: Path) -> None:
     elif len(given) == 2:
         draft.fault((*path, "cell"), "stands beside cells: the same fact twice", "keep one of the two")
     elif layer.cell is not None and layer.length is not None:
-        if layer.cell.si > layer.length.si * (1 + ROUND_OFF):
-            wrong = f'is "{layer.cell}", longer than the layer ("{layer.length}")'
-            draft.fault((*path, "cell"), wrong, f'at most "{layer.length}"')
-        elif layer.length.si / layer.cell.si > MOST_CELLS:
-            wrong = f'is "{layer.cell}", {layer.length.si / layer.cell.si:.3g} cells in "{layer.length}"'
-            draft.fault((*path, "cell"), wrong, f"at most {MOST_CELLS} cells are possible")
+        _check_cell_lengths(draft, layer, (*path, "cell"))
+
+
+def _check_cell_lengths(draft: Draft, layer: Layer, at: Path) -> None:
+    assert layer.cell is not None
+    cells = (layer.cell.first, layer.cell.last) if isinstance(layer.cell, Growing) else (layer.cell,)
+    for cell in cells:
+        if cell.si > layer.length.si * (1 + ROUND_OFF):
+            wrong = f'is "{cell}", longer than the layer ("{layer.length}")'
+            draft.fault(at, wrong, f'at most "{layer.length}"')
+            return
+        if layer.length.si / cell.si > MOST_CELLS:
+            wrong = f'is "{cell}", {layer.length.si / cell.si:.3g} cells in "{layer.length}"'
+            draft.fault(at, wrong, f"at most {MOST_CELLS} cells are possible")
+            return
+    count, growth = layer.mesh
+    if max(growth, 1.0 / growth) > MOST_GROWTH * (1 + ROUND_OFF):
+        wrong = f'goes from "{cells[0]}" to "{cells[-1]}" in {count} cells, by a factor of {growth:.3g} each'
+        draft.fault(at, wrong, f"at most {MOST_GROWTH:g}, or profiles lose their accuracy: bring them closer")
 
 
 def _check_solids(draft: Draft, table: Table, layer: Layer, path: Path) -> None:
@@ -114,6 +130,8 @@ def check_flow(draft: Draft) -> None:
     if len(given) == 2:
         wrong = "stands beside darcy_flux: only one can be held"
         draft.fault(("flow", "head_drop"), wrong, "keep one of the two")
+    _check_outlet(draft)
+    _check_still_water(draft)
     seconds = _clock(draft)
     last = -math.inf
     for index, feed in enumerate(flow.feed or ()):
@@ -134,6 +152,42 @@ def check_flow(draft: Draft) -> None:
         last = max(last, start)
 
 
+def _check_outlet(draft: Draft) -> None:
+    """What the kind of outlet needs, and nothing that belongs to another kind."""
+    flow, given = draft.case.flow, draft.at(("flow",))
+    needed = {
+        "concentration": ("outlet_water", '"river"'),
+        "gradient": ("outlet_gradient", '{bromide = "-5 mg/L/m"}'),
+    }
+    for kind, (key, example) in needed.items():
+        if flow.outlet == kind and key not in given:
+            draft.fault(("flow", key), f'is missing: outlet = "{kind}" needs it', f"write {key} = {example}")
+        elif flow.outlet not in (kind, None) and key in given:
+            cure = f'write outlet = "{kind}", or leave it out'
+            draft.fault(("flow", key), f'goes with outlet = "{kind}"', cure)
+    if "outlet_water" in given:
+        _check_water_name(draft, flow.outlet_water, ("flow", "outlet_water"))
+    tracers = tracer_names(draft)
+    for name, gradient in (flow.outlet_gradient or {}).items():
+        at: Path = ("flow", "outlet_gradient", name)
+        if name not in tracers:
+            wrong = "is no tracer; a gradient of ions would not balance their charges"
+            draft.fault(at, wrong, did_you_mean(name, tracers))
+        elif gradient is not None:
+            check_tracer(draft, name, gradient, at)
+
+
+def _check_still_water(draft: Draft) -> None:
+    """Where no water flows no pore volume passes."""
+    flow, run = draft.case.flow, draft.case.run
+    if not (run and flow.darcy_flux and flow.darcy_flux.si == 0.0):
+        return
+    for key in ("duration", "profiles_every", "ports_every"):
+        given = getattr(run, key)
+        if given is not None and given.unit == "PV":
+            draft.fault(("run", key), f'is "{given}", but {STILL}', 'give a time, such as "30 d"')
+
+
 def _clock(draft: Draft) -> Callable[[Amount, Path | None], float | None]:
     """Turns times and pore volumes into s; None where the text does not say enough."""
     flow, layers = draft.case.flow, draft.case.layers or ()
@@ -145,6 +199,10 @@ def _clock(draft: Draft) -> Callable[[Amount, Path | None], float | None]:
             if at:
                 wrong = f'is "{time}", which is no time before the run: with a head_drop the flux changes'
                 draft.fault(at, wrong, 'give a time, such as "30 d"')
+            return None
+        if flow and flow.darcy_flux and flow.darcy_flux.si == 0.0:
+            if at:
+                draft.fault(at, f'is "{time}", but {STILL}', 'give a time, such as "30 d"')
             return None
         complete = layers and all(layer.length and layer.porosity for layer in layers)
         if not (flow and flow.darcy_flux and complete):

@@ -8,7 +8,13 @@ from __future__ import annotations
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
 from gossan.case.check_column import check_flow, check_layers, check_ports
-from gossan.case.check_waters import check_tracer, check_waters, mineral_named, solute_named
+from gossan.case.check_waters import (
+    check_tracer,
+    check_waters,
+    mineral_named,
+    solute_named,
+    tracer_names,
+)
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.quantities import Range
@@ -59,7 +65,7 @@ def check_chemistry(draft: Draft, table: Table) -> None:
 def check_limits(draft: Draft, table: Table) -> None:
     """Limits stand at ports that exist, for solutes that exist, once each."""
     ports = [port.name for port in draft.case.ports or () if port.name is not None]
-    tracers = _tracer_names(draft)
+    tracers = tracer_names(draft)
     for port, limits in (draft.case.limits or {}).items():
         if port not in (*ports, "outlet"):
             cure = did_you_mean(port, dict.fromkeys((*ports, "outlet")))
@@ -84,9 +90,3 @@ def check_limits(draft: Draft, table: Table) -> None:
                 draft.fault(at, wrong, "keep one of the two")
             if named:
                 seen[named.component] = key
-
-
-def _tracer_names(draft: Draft) -> set[str]:
-    waters = (draft.case.waters or {}).values()
-    named = {name for water in waters if water for name in water.tracers or {}}
-    return named | set(draft.case.tracers or {})

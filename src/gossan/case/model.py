@@ -13,6 +13,7 @@ from pydantic import BaseModel, ConfigDict, Field, PrivateAttr
 
 from gossan.base.amounts import Amount, amount
 from gossan.base.errors import Fault, InputError
+from gossan.case.column_kinds import CellLength, Gradient, Growing, Winding, WindingKind
 from gossan.case.fields import Choice, Flag, Names, NotLanded, Number, Text
 from gossan.case.quantities import (
     Alkalinity,
@@ -27,6 +28,7 @@ from gossan.case.quantities import (
 )
 from gossan.constants.entries import Table
 from gossan.constants.load import load_table
+from gossan.transport.growth import growing
 
 MOST_CELLS = 1_000_000  # of a layer; more is a slip of the unit of `cell`
 
@@ -38,6 +40,7 @@ TEMPERATURE = Quantity(
     says="water must be liquid and its constants valid: between 0 and 50 degC",
 )  # fmt: skip
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
+TURNED = "water enters at the first layer, and to turn it round write the layers in the other order"
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
 
 
@@ -111,8 +114,9 @@ class Layer(TableOfCase):
     cells: Annotated[int | None, Number("a count of cells", 1, MOST_CELLS, whole=True, example="60")] = Field(
         default=None, description="how many cells; this or `cell`"
     )
-    cell: Annotated[Amount | None, Quantity(("m",), "a length of a cell", '"2 cm"', positive=True)] = Field(
-        default=None, description="the length of a cell at most: the layer is divided evenly"
+    cell: Annotated[Amount | Growing | None, CellLength()] = Field(
+        default=None,
+        description="the length of a cell at most; the layer is divided evenly, or by steady growth",
     )
     porosity: Annotated[float, POROSITY] = Field(
         description="water-filled fraction with the starting minerals in place"
@@ -124,8 +128,10 @@ class Layer(TableOfCase):
         default=amount("1e-9 m2/s", ("m2/s",)),
         description="in free water, one value for all dissolved components",
     )
-    tortuosity: Annotated[float | None, Number("a tortuosity", 0, 1, example="0.7")] = Field(
-        default=None, description="factor on diffusion; default porosity^(1/3)"
+    tortuosity: Annotated[Winding | None, WindingKind()] = Field(
+        default=None,
+        description="factor on diffusion; a law follows the porosity of the moment "
+        '([equations](equations.md) 54 to 60), a number stays; default "millington-quirk", porosity^(1/3)',
     )
     conductivity: Annotated[
         Amount | None, Quantity(("m/s",), "a conductivity", '"25 m/d"', positive=True)
@@ -151,18 +157,14 @@ class Layer(TableOfCase):
     immobile: Later = Field(default=None, description="immobile water beside the flowing water")
 
     @property
-    def cell_count(self) -> int:
-        """Number of cells; with `cell`, the fewest that are no longer than it."""
+    def mesh(self) -> tuple[int, float]:
+        """Number of cells, the fewest that `cell` allows, and the length of each over that of the last."""
         if self.cells:
-            return self.cells
+            return self.cells, 1.0
         assert self.cell is not None
-        # a quotient that is whole but for rounding counts as whole
-        return max(1, math.ceil(self.length.si / self.cell.si * (1 - 1e-9)))
-
-    @property
-    def diffusion_factor(self) -> float:
-        """Tortuosity factor on free-water diffusion, 1."""
-        return self.porosity ** (1 / 3) if self.tortuosity is None else self.tortuosity
+        if isinstance(self.cell, Growing):
+            return growing(self.length.si, self.cell.first.si, self.cell.last.si)
+        return growing(self.length.si, self.cell.si, self.cell.si)
 
 
 class Tracer(TableOfCase):
@@ -191,15 +193,32 @@ class Flow(TableOfCase):
     """How the water is driven; exactly one of `darcy_flux` and `head_drop`."""
 
     darcy_flux: Annotated[
-        Amount | None, Quantity(("m/s",), "a Darcy flux", '"0.12 m/d"', positive=True)
+        Amount | None,
+        Quantity(("m/s",), "a Darcy flux", '"0.12 m/d"', 0.0, says=f"a Darcy flux is not negative: {TURNED}"),
     ] = Field(
-        default=None, description="held flux: volume per area of the whole section and time"
+        default=None,
+        description="held flux: volume per area of the whole section and time; zero for diffusion alone",
     )
-    head_drop: Annotated[Amount | None, Quantity(("m",), "a head drop", '"0.15 m"', positive=True)] = Field(
+    head_drop: Annotated[
+        Amount | None,
+        Quantity(("m",), "a head drop", '"0.15 m"', positive=True,
+                 says=f"a head drop is more than zero: {TURNED}"),
+    ] = Field(
         default=None, description="held head over the whole column: the flux follows the conductivity"
     )
     inlet: Annotated[str, Choice(("flux", "concentration"))] = Field(
         default="flux", description='"flux" (third type) or "concentration" (first type)'
+    )
+    outlet: Annotated[str, Choice(("zero-gradient", "concentration", "gradient"))] = Field(
+        default="zero-gradient",
+        description="what holds at the end of the column: no gradient, the concentrations of `outlet_water`, "
+        "or the gradients of `outlet_gradient`",
+    )
+    outlet_water: Annotated[str, Text(example='"river"')] = Field(
+        default="", description="the water that stands beyond the outlet"
+    )
+    outlet_gradient: dict[str, Annotated[Amount, Gradient()]] = Field(
+        default={}, description="change of concentration along the flow at the outlet, by tracer"
     )
     feed: tuple[Feed, ...] = Field(default=(), description="what enters, in order of time")
 
@@ -254,6 +273,10 @@ class Run(TableOfCase):
     )
     max_courant: Annotated[float, Number("a Courant number", 0, 1, example="0.5")] = Field(
         default=0.5, description="cells that water may pass in a step"
+    )
+    limiter: Annotated[str, Choice(("van-leer", "minmod", "none", "upwind"))] = Field(
+        default="van-leer",
+        description='keeps fronts from overshooting; to compare: "none" (they do), "upwind" (they smear)',
     )
 
 
@@ -349,6 +372,8 @@ class Case(TableOfCase):
             return time.si
         if self.flow is None or self.flow.darcy_flux is None:
             raise ValueError("pore volumes become a time only where the flux is held")
+        if self.flow.darcy_flux.si == 0.0:
+            raise ValueError("pore volumes never pass where the water stands still")
         return time.si * self.pore_length / self.flow.darcy_flux.si
 
     def require_column(self) -> None:

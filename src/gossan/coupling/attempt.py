@@ -11,7 +11,7 @@ from gossan.chemistry.equilibrium import UNBOUNDED, Equilibrium, Solver
 from gossan.coupling.pores import pore_space
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State
-from gossan.transport.faces import Faces
+from gossan.transport.faces import LIMITERS, Faces
 from gossan.transport.step import Passages, corrected, kept_positive, passages
 
 # A cell is left alone while its dissolved amounts stand within this of its last solve: far below any
@@ -104,12 +104,18 @@ def _moved(amount: np.ndarray, passed: np.ndarray, width: np.ndarray) -> np.ndar
 def _held_back(
     problem: Problem, state: State, first: Passages, amount: np.ndarray, passed: np.ndarray
 ) -> np.ndarray:
-    """Passages that take no more from a cell than it holds; explicit ones never do."""
-    if first.elimination is None:
+    """Passages that take no more from a cell than it holds; explicit, limited ones never do.
+
+    Without a limiter tracers may fall below nothing: to show that is what it is for.
+    """
+    unlimited = problem.transport.limiter == LIMITERS["none"]
+    if first.elimination is None and not unlimited:
         return passed
     total = amount.copy()
     total[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
     positive = ~np.isin(np.arange(len(amount)), problem.system.signed)
+    if unlimited:
+        positive[problem.chemical :] = False
     return kept_positive(first, state.dissolved, total, passed, positive)
 
 

@@ -23,6 +23,7 @@ SHORTEST = 1e-9  # of the run: a step below this has no chance left
 # Explicit transport may cost so many times the steps; beyond, it is implicit, which is as good for tracers
 # but only first order beside a mineral front.
 GAIN_OF_TRACERS, GAIN_OF_MINERALS = 3.0, 10.0
+TURNED_BACK = "the flow has turned back at the inlet: solids push out more water than the head drives through"
 WEIGHT_OF_END = {"two-stage": DAMPING, "lie": 1.0}  # in an implicit step
 
 
@@ -78,6 +79,8 @@ def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: f
     rejected = 0
     while True:
         darcy_flux, head = flow(problem, state, pace.dt)
+        if darcy_flux[0] < 0.0 and problem.head_drop is not None and problem.head_drop > 0.0:
+            raise SolveError(TURNED_BACK, 0, problem.grid.layers[0].name, 0.0, state.time)
         faces = faces_of(problem.transport, state.water, darcy_flux)
         longest, implicit = longest_step(problem, faces)
         theta = WEIGHT_OF_END[problem.coupling] if implicit else None

@@ -146,7 +146,7 @@ def outlet_rise(last: float, before: float, layer: float) -> float:
                   they resolve) to 1/2 (none)
 
     >>> [round(outlet_rise(0.01, 0.01, d), 4) for d in (0.0, 0.01, 1e9)]
-    [0.5, 0.2323, 0.1667]
+    [0.5, 0.22, 0.1667]
     """
     if layer <= 0.0:
         return last / (last + before)

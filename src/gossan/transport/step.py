@@ -17,12 +17,12 @@ what solids hold), and damps what is too fast for the step.
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from gossan.transport.faces import Faces
-from gossan.transport.kernel.advect import BLOCK, ROWS, Outlet, Slopes, carry
+from gossan.transport.kernel.advect import BLOCK, FIRST_ORDER, ROWS, UNLIMITED, Outlet, Slopes, carry
 from gossan.transport.kernel.disperse import LANES, factor, spread
 
 # The weight of the step's end with which two stages let the fastest modes die out at once (equations.md, 26)
@@ -125,7 +125,10 @@ def kept_positive(
     after = amount * width + passed[:, :-1] - passed[:, 1:]
     if (after[positive] >= 0.0).all():
         return passed
-    low = passages(faces, dissolved, first.inflow, first.dt, 1.0).passed
+    safe = faces
+    if faces.transport.limiter == UNLIMITED:
+        safe = replace(faces, transport=replace(faces.transport, limiter=FIRST_ORDER))
+    low = passages(safe, dissolved, first.inflow, first.dt, 1.0).passed
     spare = np.maximum(amount * width + low[:, :-1] - low[:, 1:], 0.0)
     more = passed - low
     taken = np.maximum(more[:, 1:], 0.0) + np.maximum(-more[:, :-1], 0.0)
