@@ -25,7 +25,7 @@ from gossan.coupling.march import Clogged, Stride, march, pore_volumes
 from gossan.coupling.pace import Pace
 from gossan.coupling.pores import conductivity, flow
 from gossan.coupling.problem import Port, Problem
-from gossan.coupling.state import State
+from gossan.coupling.state import State, state_of
 from gossan.store.file import Axes
 from gossan.store.read import Result, open_result
 from gossan.store.write import ResultWriter
@@ -83,7 +83,7 @@ def resume(path: Path, *, progress: Progress | None = None) -> Ending:
     writer, parts = ResultWriter.resume(path)
     with writer:
         run = _Run(problem, writer, progress)
-        state = State(**parts["state"])
+        state = state_of(parts["state"])
         run.seen = parts["seen"]
         run.beyond = Beyond(**parts["beyond"])
         return run.walk(state, Pace(**parts["pace"]))
@@ -127,7 +127,15 @@ def axes_of(problem: Problem) -> Axes:
         face=grid.edges,
         layer=tuple(names[i] for i in grid.layer),
         ports={port.name: port.x for port in problem.ports},
+        parts=frozenset(_parts(problem)),
     )
+
+
+def _parts(problem: Problem) -> Iterator[str]:
+    if problem.isotherms is not None:
+        yield "isotherms"
+    if problem.stagnant is not None:
+        yield "immobile"
 
 
 class _Run:
@@ -268,13 +276,21 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
     system = problem.system
     darcy_flux, head = flow(problem, state, settled_dt(state))
     activity = log10_activity(system, state.ln_activity)
+    retained: dict[str, np.ndarray] = {}
+    if problem.isotherms is not None:
+        retained["sorbed"] = np.zeros_like(state.dissolved)
+        retained["sorbed"][problem.sorbates] = problem.sorbed(state)
+    if problem.stagnant is not None and state.still is not None:
+        retained["immobile_dissolved"] = np.full_like(state.dissolved, np.nan)
+        retained["immobile_dissolved"][:, problem.stagnant.cells] = state.still.dissolved
     return {
+        **retained,
         "dissolved": state.dissolved,
-        "solid": state.solid,
+        "solid": problem.solid(state),
         "saturation": mineral_saturation(system, state.ln_activity),
         "activity": activity,
-        "porosity": state.water,
-        "conductivity": conductivity(problem, state.water),
+        "porosity": problem.water(state),
+        "conductivity": conductivity(problem, problem.water(state)),
         "pH": -state.ln_activity[0] / LN10,
         "pe": np.full(len(state.water), np.nan),
         "ionic_strength": state.ionic_strength,

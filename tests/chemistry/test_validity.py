@@ -32,3 +32,19 @@ def test_the_note_counts_and_names_the_first():
     assert "(siderite, FeHCO3^+, FeCO3 ...)" in note
     assert validity_note(TABLE, CARBONATE, 288.15).startswith("at 15 degC one constant is used")
     assert validity_note(TABLE, CARBONATE, 298.15) == ""
+
+
+def test_couples_count_where_they_are_coupled(tmp_path):
+    """A half reaction without an enthalpy is known from 15 to 35 degC, and used only where it is coupled."""
+    path = tmp_path / "site.toml"
+    path.write_text("""
+[components."Mn^3+"]
+half_reaction = "Mn^2+ = Mn^3+ + e^-"
+log10_k = {value = -25.5, sd = 0.1, source = "judgement"}
+""")
+    table = load_table(path)
+    held = build_system(table, ["Mn^2+", "Mn^3+"], [])
+    coupled = build_system(table, ["Mn^2+", "Mn^3+"], [], coupled=["Mn^3+"])
+    assert "Mn^3+" not in beyond_validity(table, held, 273.15 + 10.0)
+    assert "Mn^3+" in beyond_validity(table, coupled, 273.15 + 10.0)
+    assert "Mn^3+" not in beyond_validity(table, coupled, 273.15 + 20.0)

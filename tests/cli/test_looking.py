@@ -158,6 +158,12 @@ def test_a_constant_is_shown_at_the_temperature_asked_for(capsys):
     assert found["valid_K"] == pytest.approx([273.15, 323.15])
 
 
+def test_a_held_component_names_its_couple(capsys):
+    assert main(["constants", "Fe^3+"]) == 0
+    assert "Fe(II)/Fe(III)" in capsys.readouterr().out
+    assert as_json(capsys, "constants", "Fe^3+")[0]["couple"] == "Fe(II)/Fe(III)"
+
+
 def test_interactions_of_ions_are_shown(capsys):
     assert as_json(capsys, "constants", "Cl^-/Na^+")[0]["value_kg_mol"] == 0.03
     assert main(["constants", "Na^+"]) == 0

@@ -14,6 +14,7 @@ from pathlib import Path
 import numpy as np
 
 from gossan.store.file import Axes
+from gossan.store.layout import PARTS
 from gossan.store.write import ResultWriter
 
 CELLS = 12
@@ -45,7 +46,8 @@ def axes() -> Axes:
     names = ("Zn^2+", "SO4^2-", "H^+", "bromide")
     return Axes(names, ("sphalerite", "fresh zinc sulfide, a name of more than thirty-two letters"),
                 ("Zn^2+", "ZnSO4", "OH^-"), (faces[1:] + faces[:-1]) / 2, faces,
-                ("sand",) * 5 + ("Sülfid-Gitter №1",) * 7, {"outlet": 1.2, "Brunnen östlich": 0.4})
+                ("sand",) * 5 + ("Sülfid-Gitter №1",) * 7, {"outlet": 1.2, "Brunnen östlich": 0.4},
+                frozenset(PARTS))
 
 
 def start() -> tuple[Pretended, PretendedPace]:

@@ -9,7 +9,7 @@ import numpy as np
 
 from gossan.chemistry.activity import DEBYE_HUCKEL
 from gossan.chemistry.equilibrium import Equilibrium
-from gossan.chemistry.reservoir import fixed_ph, held_to, saturated, under_gas
+from gossan.chemistry.reservoir import fixed_pe, fixed_ph, held_to, saturated, under_gas
 from gossan.chemistry.system import System, build_system
 from gossan.constants.entries import Constant, Table
 from gossan.constants.load import load_table
@@ -24,12 +24,13 @@ Quantity = Callable[[Equilibrium], float]
 class Solution:
     """What a publication says of a solution.
 
-    totals   mol per kg of water by component; without pH the charge is made up by H^+ or OH^-
-    pH       held, whatever that does to the charge
+    totals   mol per kg of water by component or valence; without pH the charge is made up by H^+ or OH^-
+    pH       held, whatever that does to the charge; so is pe
     minerals, gases  that it is in contact with, at saturation index 0 and at a pressure in atm
     excluded species left out; activity a law, or BATES_GUGGENHEIM
     log10_k  constants of the source, in the form of the table's, in place of the table's
     indexed  minerals that do not form, whose saturation index is wanted
+    coupled  valences at redox equilibrium with the first ion of their element
     """
 
     totals: dict[str, float] = field(default_factory=dict)
@@ -41,12 +42,17 @@ class Solution:
     activity: str = "davies"
     log10_k: dict[str, float] = field(default_factory=dict)
     indexed: tuple[str, ...] = ()
+    coupled: tuple[str, ...] = ()
+    pe: float | None = None
 
     def equilibrium(self) -> Equilibrium:
         system = self._system()
-        totals = np.array([self.totals.get(name, 0.0) for name in system.components])
-        totals[0] = -float(totals[1:] @ system.component_charge[1:])
+        totals = np.zeros(len(system.components))
+        for name, amount in self.totals.items():
+            totals += amount * system.conserved[system.basis.index(name)]
+        totals[0] -= float(totals @ system.component_charge)
         conditions = [fixed_ph(system, self.pH)] if self.pH is not None else []
+        conditions += [fixed_pe(system, self.pe)] if self.pe is not None else []
         conditions += [saturated(system, name, 0.0) for name in self.minerals]
         conditions += [under_gas(system, name, pressure) for name, pressure in self.gases.items()]
         return held_to(system, totals, conditions)
@@ -65,6 +71,7 @@ class Solution:
             temperature=273.15 + self.celsius,
             activity=DEBYE_HUCKEL if self.activity == BATES_GUGGENHEIM else self.activity,
             excluded=self.excluded,
+            coupled=self.coupled,
         )
 
     def _table(self) -> Table:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from pathlib import Path
 
-from gossan.store.layout import ATTRIBUTES, VARIABLES, variables
+from gossan.store.layout import ATTRIBUTES, PARTS, VARIABLES, variables
 
 PAGE = Path(__file__).parents[2] / "docs" / "result-file.md"
 
@@ -49,6 +49,10 @@ says where each array stands behind it (type, shape, order, offset); SHA-256 of 
 """
 
 
+def _only(part: str) -> str:
+    return f" (only of {PARTS[part]})" if part else ""
+
+
 def page() -> str:
     """The whole page."""
     parts = [_HEAD, "\n## Root attributes\n\n| attribute | holds |\n|---|---|\n"]
@@ -56,7 +60,7 @@ def page() -> str:
     parts.append("| others | figures of the wall clock, once the run has ended |\n")
     for group in dict.fromkeys(row.group for row in VARIABLES):
         parts.append(f"\n## {group}\n\n| variable | dimensions | unit | meaning |\n|---|---|---|---|\n")
-        parts += [f"| {row.name} | {', '.join(row.dims)} | {row.unit} | {row.long_name} |\n"
+        parts += [f"| {row.name} | {', '.join(row.dims)} | {row.unit} | {row.long_name}{_only(row.part)} |\n"
                   for row in variables(group)]
     return "".join([*parts, _TAIL])
 

@@ -5,11 +5,11 @@ from __future__ import annotations
 import numpy as np
 
 from gossan.base.amounts import Amount
-from gossan.base.errors import SolveError
+from gossan.case.build_initial import initial_state
+from gossan.case.build_retention import decay_of, isotherms_of, stagnant_of
 from gossan.case.model import Case, Layer
 from gossan.case.quantities import Solid
 from gossan.case.waters import excluded_by, read_waters
-from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.chemistry.system import System, build_system
 from gossan.chemistry.water import Water
 from gossan.constants.entries import Mineral, Table
@@ -17,7 +17,6 @@ from gossan.constants.find import find_mineral
 from gossan.coupling.pace import Pace
 from gossan.coupling.problem import Port, Problem
 from gossan.coupling.schedule import Schedule, every
-from gossan.coupling.state import State
 from gossan.transport import clogging, grid
 from gossan.transport.faces import transport_of
 from gossan.transport.tortuosity import Tortuosity
@@ -46,6 +45,7 @@ def build(case: Case) -> Problem:
     porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
     chemical = len(system.components)
     by_volume = case.run.duration.unit == "PV"
+    stagnant, isotherms = stagnant_of(case, cells), isotherms_of(case, cells, system.components)
     ports = tuple(
         Port(name, cells.face_at(x), float(cells.edges[cells.face_at(x)]))
         for name, x in case.port_positions.items()
@@ -70,7 +70,7 @@ def build(case: Case) -> Problem:
         )[cells.layer],
         clogging=tuple(_clogging(layer) for layer in case.layers),
         porosity=porosity,
-        initial=_initial(case, system, cells, composition, solids, len(ports)),
+        initial=initial_state(case, system, cells, composition, solids, len(ports), stagnant, isotherms),
         end=Schedule(np.array([case.run.duration.si]), by_volume),
         frames=_interval(case, "profiles_every", FRAMES),
         records=_interval(case, "ports_every", RECORDS),
@@ -78,6 +78,9 @@ def build(case: Case) -> Problem:
         coupling=case.run.coupling,
         accuracy=case.run.accuracy,
         max_courant=case.run.max_courant,
+        decay=decay_of(case, chemical),
+        isotherms=isotherms,
+        stagnant=stagnant,
     )
 
 
@@ -222,49 +225,3 @@ def _interval(case: Case, key: str, divisions: int) -> Schedule:
     if case.flow is not None and case.flow.darcy_flux is not None:
         return every(case.seconds(interval), case.seconds(duration))
     return every(interval.si, 1e6 * interval.si, interval.unit == "PV")
-
-
-def _initial(
-    case: Case, system: System, cells: grid.Grid, composition: dict[str, np.ndarray],
-    solids: list[dict[str, float]], ports: int,
-) -> State:
-    """Every cell at equilibrium with its own minerals: one solve a layer."""
-    settled = [
-        _settled_layer(layer, system, composition[layer.water], solid)
-        for layer, solid in zip(case.layers, solids, strict=True)
-    ]
-    chemical = len(system.components)
-    tracers = np.array([composition[layer.water][chemical:] for layer in case.layers])
-
-    def spread(field: str) -> np.ndarray:
-        layers = np.concatenate([getattr(one, field) for one in settled], -1)
-        return np.ascontiguousarray(layers[..., cells.layer])
-
-    porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
-    solutes = chemical + tracers.shape[1]
-    return State(
-        time=0.0,
-        step=0,
-        dissolved=np.vstack([spread("amount") / porosity, tracers[cells.layer].T]),
-        solid=spread("solid"),
-        water=porosity.copy(),
-        swelling=np.zeros(len(porosity)),
-        ln_activity=spread("ln_activity"),
-        ionic_strength=spread("ionic_strength"),
-        presence=spread("presence"),
-        solved=spread("solved"),
-        passed=np.zeros((2 + ports, solutes, 2)),
-        made=np.zeros((solutes, 2)),
-        water_passed=np.zeros((3, 2)),
-        splitting_error=0.0,
-    )
-
-
-def _settled_layer(layer: Layer, system: System, water: np.ndarray, solid: dict[str, float]) -> Equilibrium:
-    amount = water[: len(system.components), None] * layer.porosity
-    grains = np.array([[solid.get(name, 0.0)] for name in system.minerals]).reshape(len(system.minerals), 1)
-    kilograms = np.array([layer.porosity * system.water_density])
-    try:
-        return Solver(system).cold(kilograms, amount, grains)
-    except SolveError as error:
-        raise SolveError(error.reason, 0, layer.name, time=0.0) from error

@@ -8,6 +8,7 @@ from __future__ import annotations
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
 from gossan.case.check_column import check_flow, check_layers, check_ports
+from gossan.case.check_retention import check_parents, check_sorption
 from gossan.case.check_waters import (
     check_tracer,
     check_waters,
@@ -29,6 +30,8 @@ def check_case(draft: Draft, table: Table) -> None:
     check_flow(draft)
     check_chemistry(draft, table)
     check_ports(draft)
+    check_parents(draft)
+    check_sorption(draft, table)
     check_limits(draft, table)
 
 

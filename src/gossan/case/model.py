@@ -9,7 +9,7 @@ from __future__ import annotations
 import math
 from typing import Annotated, Any
 
-from pydantic import BaseModel, ConfigDict, Field, PrivateAttr
+from pydantic import Field, PrivateAttr
 
 from gossan.base.amounts import Amount, amount
 from gossan.base.errors import Fault, InputError
@@ -26,6 +26,8 @@ from gossan.case.quantities import (
     Solid,
     SolidAmount,
 )
+from gossan.case.retention import Immobile, Sorption
+from gossan.case.table import TableOfCase
 from gossan.constants.entries import Table
 from gossan.constants.load import load_table
 from gossan.transport.growth import growing
@@ -42,14 +44,6 @@ TEMPERATURE = Quantity(
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
 TURNED = "water enters at the first layer, and to turn it round write the layers in the other order"
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
-
-
-class TableOfCase(BaseModel):
-    """A table of the TOML, frozen once it is read."""
-
-    model_config = ConfigDict(
-        frozen=True, extra="forbid", arbitrary_types_allowed=True, populate_by_name=True
-    )
 
 
 class Water(TableOfCase):
@@ -131,7 +125,7 @@ class Layer(TableOfCase):
     tortuosity: Annotated[Winding | None, WindingKind()] = Field(
         default=None,
         description="factor on diffusion; a law follows the porosity of the moment "
-        '([equations](equations.md) 54 to 60), a number stays; default "millington-quirk", porosity^(1/3)',
+        '([equations](equations.md) 61 to 67), a number stays; default "millington-quirk", porosity^(1/3)',
     )
     conductivity: Annotated[
         Amount | None, Quantity(("m/s",), "a conductivity", '"25 m/d"', positive=True)
@@ -153,8 +147,8 @@ class Layer(TableOfCase):
     rates: Later = Field(default=None, description="the kinetic steps that run here")
     exchange: Later = Field(default=None, description="cation exchange (Gaines-Thomas)")
     surface: Later = Field(default=None, description="hydrous ferric oxide with strong and weak sites")
-    sorption: Later = Field(default=None, description="an isotherm per component or tracer")
-    immobile: Later = Field(default=None, description="immobile water beside the flowing water")
+    sorption: dict[str, Sorption] = Field(default={}, description="an isotherm per component or tracer")
+    immobile: Immobile | None = Field(default=None, description="immobile water beside the flowing water")
 
     @property
     def mesh(self) -> tuple[int, float]:
@@ -173,8 +167,12 @@ class Tracer(TableOfCase):
     molar_mass: Annotated[
         Amount | None, Quantity(("kg/mol",), "a molar mass", '"79.9 g/mol"', positive=True)
     ] = Field(default=None, description="needed where amounts of it are in mass")
-    half_life: Later = Field(default=None, description="first-order decay")
-    parent: Later = Field(default=None, description="the tracer that decays into this one")
+    half_life: Annotated[Amount | None, Quantity(("s",), "a half-life", '"40 d"', positive=True)] = Field(
+        default=None, description="first-order decay, in flowing and immobile water and where it is sorbed"
+    )
+    parent: Annotated[str, Text(example='"nitrate"')] = Field(
+        default="", description="the tracer that decays into this one, mole for mole"
+    )
 
 
 class Feed(TableOfCase):

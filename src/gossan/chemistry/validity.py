@@ -5,21 +5,21 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from gossan.chemistry.system import System
-from gossan.constants.entries import Gas, Mineral, Species, Table
+from gossan.constants.entries import Table
 from gossan.constants.temperature import KELVIN
 
 ROUNDING = 1e-6  # K: a temperature in degC, brought to K and back, is off by less
 
 
 def beyond_validity(table: Table, system: System, temperature: float) -> tuple[str, ...]:
-    """Names of the entries whose constant is not known at a temperature (K): minerals, gases, species.
+    """Names of constants not known at a temperature (K): of minerals, gases, species, then of couples.
 
     Only what the system holds counts, so that every entry named is made of components that are there.
     """
     return tuple(
-        entry.name
-        for entry in _entries(table, system)
-        if not entry.valid[0] - ROUNDING <= temperature <= entry.valid[1] + ROUNDING
+        name
+        for name, (low, high) in _ranges(table, system)
+        if not low - ROUNDING <= temperature <= high + ROUNDING
     )
 
 
@@ -36,7 +36,14 @@ def validity_note(table: Table, system: System, temperature: float, shown: int =
     )
 
 
-def _entries(table: Table, system: System) -> Iterator[Mineral | Gas | Species]:
-    yield from (table.minerals[name] for name in system.minerals if name in table.minerals)
-    yield from (table.gases[name] for name in system.gases)
-    yield from (table.species[name] for name in system.species if name in table.species)
+def _ranges(table: Table, system: System) -> Iterator[tuple[str, tuple[float, float]]]:
+    """Every constant that a system uses, and from which to which temperature (K) it is known."""
+    for group, names in ((table.minerals, system.minerals), (table.gases, system.gases),
+                         (table.species, system.species)):  # fmt: skip
+        for name in names:
+            if name in group:
+                yield name, group[name].valid
+    for name in system.basis[len(system.components) :]:
+        half = table.components[name].half_valid
+        if half:
+            yield name, half

@@ -30,7 +30,7 @@ class Books:
     def __init__(self, problem: Problem):
         self.problem = problem
         self.first = problem.stored(problem.initial)
-        self.first_water = float(np.sum(problem.initial.water * problem.grid.width))
+        self.first_water = float(np.sum(problem.water(problem.initial) * problem.grid.width))
 
     def closed(self, state: State) -> Ledger:
         """The ledger of a state (equations.md, 39)."""
@@ -40,13 +40,14 @@ class Books:
         made = state.made.sum(axis=-1)
         change = now - self.first
         open_ = entered - left - change + made
-        most = problem.stock + np.abs(entered) + np.abs(made)
+        back = np.maximum(-left, 0.0)  # what diffused in through the outlet
+        most = problem.stock + np.abs(entered) + back + np.abs(made)
         error = np.divide(open_, most, out=np.zeros_like(open_), where=most > 0.0)
         charge = problem.system.component_charge
         chemical = problem.chemical
         charges = float(np.abs(charge) @ most[:chemical])
         water_in, water_out, freed = state.water_passed.sum(axis=-1).tolist()
-        water_now = float(np.sum(state.water * problem.grid.width))
+        water_now = float(np.sum(problem.water(state) * problem.grid.width))
         water_open = water_in - water_out + freed - (water_now - self.first_water)
         return Ledger(
             time=state.time,

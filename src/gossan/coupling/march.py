@@ -12,7 +12,7 @@ from gossan.base.errors import SolveError
 from gossan.chemistry.equilibrium import Solver
 from gossan.coupling.attempt import Trial, attempt
 from gossan.coupling.pace import Pace, acceptable
-from gossan.coupling.pores import flow, pore_space
+from gossan.coupling.pores import flow, pore_room
 from gossan.coupling.problem import Problem
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
@@ -21,8 +21,8 @@ from gossan.transport.step import DAMPING
 
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
 # Explicit transport may cost so many times the steps; beyond, it is implicit, which is as good for tracers
-# but only first order beside a mineral front.
-GAIN_OF_TRACERS, GAIN_OF_MINERALS = 3.0, 10.0
+# but only first order beside a front of what solids hold.
+GAIN_OF_TRACERS, GAIN_OF_RETENTION = 3.0, 10.0
 TURNED_BACK = "the flow has turned back at the inlet: solids push out more water than the head drives through"
 WEIGHT_OF_END = {"two-stage": DAMPING, "lie": 1.0}  # in an implicit step
 
@@ -71,7 +71,7 @@ def march(problem: Problem, state: State, pace: Pace, solver: Solver | None = No
 def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: float) -> Stride:
     feed = max(problem.feeds.passed(problem.feeds.clock(state.time, entered)) - 1, 0)
     inflow = problem.inflow[feed]
-    room = pore_space(problem, state.solid) - problem.closing
+    room = pore_room(problem, state)
     if room.min() < 0.0:
         raise Clogged(int(room.argmin()), state.time)
     shortest = SHORTEST * max(state.time, pace.dt)
@@ -129,7 +129,8 @@ def longest_step(problem: Problem, faces: Faces) -> tuple[float, bool]:
     explicit = min(by_courant, faces.explicit_limit)
     still = faces.speed.min() == 0.0
     implicit = math.inf if still else problem.max_courant * float(np.mean(1.0 / faces.speed))
-    gain = GAIN_OF_MINERALS if problem.system.minerals else GAIN_OF_TRACERS
+    retained = bool(problem.system.minerals) or problem.isotherms is not None
+    gain = GAIN_OF_RETENTION if retained else GAIN_OF_TRACERS
     if explicit * gain >= implicit:
         return explicit, False
     return implicit, True

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
 
+from gossan.chemistry.decay import Decay
+from gossan.chemistry.isotherm import Isotherms
 from gossan.chemistry.system import System
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
@@ -28,6 +31,16 @@ class Port:
 
 
 @dataclass(frozen=True, eq=False)
+class Stagnant:
+    """The immobile water of a column."""
+
+    cells: np.ndarray  # (still,) int, rising: the cells that have some
+    fraction: np.ndarray  # (still,) of the pores
+    solids: np.ndarray  # (still,) of the solids that water reaches
+    transfer: np.ndarray  # (still,) s-1, exchange per bulk volume and difference of concentration
+
+
+@dataclass(frozen=True, eq=False)
 class Problem:
     """A column, its chemistry, what flows in and when things are recorded."""
 
@@ -40,7 +53,7 @@ class Problem:
     head_drop: float | None  # m
     conductivity: np.ndarray  # (cell,) m s-1 of the clean bed, NaN where it is not known
     clogging: tuple[Clogging, ...]  # of each layer
-    porosity: np.ndarray  # (cell,) water-filled fraction at the start
+    porosity: np.ndarray  # (cell,) water-filled fraction at the start, immobile water included
     initial: State
     end: Schedule
     frames: Schedule
@@ -49,6 +62,9 @@ class Problem:
     coupling: str  # "two-stage" or "lie"
     accuracy: float
     max_courant: float
+    decay: Decay | None = None
+    isotherms: Isotherms | None = None  # of the whole solid
+    stagnant: Stagnant | None = None
 
     @property
     def grid(self) -> Grid:
@@ -70,17 +86,78 @@ class Problem:
         """Faces whose passages are summed: inlet, outlet, then each port."""
         return np.array([0, len(self.grid.width), *(port.face for port in self.ports)])
 
+    @property
+    def sorbates(self) -> np.ndarray:
+        """(sorbate,) int: the solutes that sorb by an isotherm."""
+        return self.isotherms.solutes if self.isotherms else np.zeros(0, int)
+
+    @cached_property
+    def flowing_isotherms(self) -> Isotherms | None:
+        """The laws of what flowing water reaches."""
+        if self.stagnant is None or self.isotherms is None:
+            return self.isotherms
+        return self.isotherms.shared(1.0 - self._share(self.stagnant.solids))
+
+    @cached_property
+    def still_isotherms(self) -> Isotherms | None:
+        """The laws of what immobile water reaches, in the cells that have some."""
+        if self.stagnant is None or self.isotherms is None:
+            return None
+        return self.isotherms.at(self.stagnant.cells).shared(self.stagnant.solids)
+
+    @cached_property
+    def immobile_fraction(self) -> np.ndarray:
+        """(cell,) of the pores at the start."""
+        return self._share(self.stagnant.fraction) if self.stagnant else np.zeros(len(self.porosity))
+
+    def _share(self, still: np.ndarray) -> np.ndarray:
+        share = np.zeros(len(self.porosity))
+        if self.stagnant is not None:
+            share[self.stagnant.cells] = still
+        return share
+
+    @cached_property
+    def flowing_porosity(self) -> np.ndarray:
+        """(cell,) pores that water flows through, at the start."""
+        return self.porosity * (1.0 - self.immobile_fraction)
+
+    def whole(self, flowing: np.ndarray, still: np.ndarray | None) -> np.ndarray:
+        """(..., cell): amounts per bulk in flowing water and what it reaches, immobile ones added."""
+        if self.stagnant is None or still is None:
+            return flowing
+        both = flowing.copy()
+        both[..., self.stagnant.cells] += still
+        return both
+
+    def water(self, state: State) -> np.ndarray:
+        """(cell,) all water per bulk."""
+        return self.whole(state.water, state.still.water if state.still else None)
+
+    def solid(self, state: State) -> np.ndarray:
+        """(mineral, cell) mol m-3 of bulk, all there is."""
+        return self.whole(state.solid, state.still.solid if state.still else None)
+
+    def sorbed(self, state: State) -> np.ndarray:
+        """(sorbate, cell) mol m-3 of bulk, all there is."""
+        return self.whole(state.sorbed, state.still.sorbed if state.still else None)
+
     def stored(self, state: State) -> np.ndarray:
-        """(solute,) mol m-2 of cross-section: dissolved and solid in the whole column."""
-        held = state.dissolved * state.water
-        held[: self.chemical] += self.system.mineral_stoichiometry.T @ state.solid
-        return held @ self.grid.width
+        """(solute,) mol m-2 of cross-section: dissolved, sorbed and solid in the whole column."""
+        return self._held(state, self.system.mineral_stoichiometry, lambda amount: amount)
 
     @cached_property
     def stock(self) -> np.ndarray:
         """(solute,) mol m-2: what the column held at the start, every mole counted without its sign."""
-        held = np.abs(self.initial.dissolved) * self.initial.water
-        held[: self.chemical] += np.abs(self.system.mineral_stoichiometry).T @ self.initial.solid
+        return self._held(self.initial, np.abs(self.system.mineral_stoichiometry), np.abs)
+
+    def _held(
+        self, state: State, formulas: np.ndarray, counted: Callable[[np.ndarray], np.ndarray]
+    ) -> np.ndarray:
+        held = counted(state.dissolved) * state.water
+        if state.still is not None:
+            held = self.whole(held, counted(state.still.dissolved) * state.still.water)
+        held[self.sorbates] += self.sorbed(state)
+        held[: self.chemical] += formulas.T @ self.solid(state)
         return held @ self.grid.width
 
     @cached_property
@@ -91,7 +168,7 @@ class Problem:
 
     @cached_property
     def pore_volume(self) -> float:
-        """Water in the column at the start, m3 per m2 of cross-section."""
+        """Water in the column at the start, immobile water included, m3 per m2 of cross-section."""
         return float(np.sum(self.porosity * self.grid.width))
 
     @cached_property

@@ -39,6 +39,7 @@ class Axes:
     x, face                      m from the inlet, (cell,) and (cell + 1,)
     layer                        (cell,) names
     ports                        name to m from the inlet
+    parts                        of the layout's PARTS, those that the case has
     """
 
     component: tuple[str, ...]
@@ -48,6 +49,7 @@ class Axes:
     face: np.ndarray
     layer: tuple[str, ...]
     ports: dict[str, float] = field(default_factory=dict)
+    parts: frozenset[str] = frozenset()
 
     @property
     def groups(self) -> tuple[str, ...]:
@@ -64,7 +66,11 @@ class Axes:
 
     def written(self, group: str) -> tuple[Variable, ...]:
         """The recorded variables of a group, without those along an axis on which nothing stands."""
-        return tuple(row for row in recorded(group) if 0 not in self.shape(row))
+        return tuple(row for row in recorded(group) if self.has(row) and 0 not in self.shape(row))
+
+    def has(self, row: Variable) -> bool:
+        """Whether the case has the part that a variable tells of."""
+        return not row.part or row.part in self.parts
 
 
 def rooms(axes: Axes, counts: Mapping[str, int] | None = None) -> dict[str, int]:
@@ -219,8 +225,9 @@ def read_axes(file: h5py.File) -> Axes:
 
     ports = {name: float(group["x"][()]) for name, group in file["ports"].items()} if "ports" in file else {}
     ports = dict(sorted(ports.items(), key=lambda item: item[1]))
+    parts = frozenset(row.part for row in recorded("profiles") if row.part and row.name in profiles)
     return Axes(names("component"), names("mineral"), names("species"), profiles["x"][:], profiles["face"][:],
-                names("layer"), ports)
+                names("layer"), ports, parts)
 
 
 def committed(file: h5py.File, groups: Iterable[str]) -> dict[str, int]:

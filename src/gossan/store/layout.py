@@ -21,6 +21,7 @@ class Variable:
     dims   its dimensions, the slowest first; () for a single number
     unit   as UDUNITS spells it; "1" for pure numbers and for names
     kind   what it belongs to: an axis, or the frame, port, ledger or step that records it
+    part   only in the file of a case that has this part, one of PARTS; "" for all
     """
 
     group: str
@@ -29,6 +30,7 @@ class Variable:
     unit: str
     long_name: str
     kind: Kind
+    part: str = ""
 
     @property
     def header(self) -> str:
@@ -42,6 +44,7 @@ class Variable:
 
 
 PORT = "ports/NAME"
+PARTS = {"isotherms": "a case with isotherms", "immobile": "a case with immobile water"}
 
 _COMPONENT = "name of the component or tracer"
 
@@ -60,7 +63,12 @@ VARIABLES: tuple[Variable, ...] = (
     Variable("profiles", "saturation", ("time", "mineral", "x"), "1",
              "saturation index, log10 of the ion activity product over Ksp", "frame"),
     Variable("profiles", "activity", ("time", "species", "x"), "1", "log10 of the activity", "frame"),
-    Variable("profiles", "porosity", ("time", "x"), "1", "water-filled fraction of the bulk", "frame"),
+    Variable("profiles", "immobile_dissolved", ("time", "component", "x"), "mol m-3",
+             "total dissolved amount per volume of immobile water", "frame", "immobile"),
+    Variable("profiles", "sorbed", ("time", "component", "x"), "mol m-3",
+             "amount sorbed by an isotherm per bulk volume", "frame", "isotherms"),
+    Variable("profiles", "porosity", ("time", "x"), "1",
+             "water-filled fraction of the bulk, flowing and immobile", "frame"),
     Variable("profiles", "conductivity", ("time", "x"), "m s-1",
              "saturated hydraulic conductivity", "frame"),
     Variable("profiles", "pH", ("time", "x"), "1", "pH", "frame"),

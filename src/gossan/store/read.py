@@ -61,11 +61,13 @@ class Group:
 
     def __getitem__(self, name: str) -> Field:
         row = variable(self.name, name)
+        if not self._axes.has(row):
+            raise KeyError(name)
         coords = {dim: self._values(dim) for dim in row.dims}
         return Field(name, self._values(name), row.dims, coords, row.unit, row.long_name)
 
     def __iter__(self) -> Iterator[str]:
-        return (row.name for row in variables(self.name))
+        return (row.name for row in variables(self.name) if self._axes.has(row))
 
     def __dir__(self) -> list[str]:
         return [*super().__dir__(), *self]

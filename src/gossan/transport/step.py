@@ -57,7 +57,8 @@ class Passages:
 
 
 def passages(
-    faces: Faces, dissolved: np.ndarray, inflow: np.ndarray, dt: float, theta: float | None = None
+    faces: Faces, dissolved: np.ndarray, inflow: np.ndarray, dt: float, theta: float | None = None,
+    made: np.ndarray | None = None,
 ) -> Passages:
     """The first stage of a step, or the whole of a one-step scheme (equations.md, 21 to 25).
 
@@ -67,6 +68,8 @@ def passages(
     theta       None: explicit. Else dispersion is implicit, and advection where water crosses more than half
                 a cell in the step, with this weight on the step's end: DAMPING where a second stage follows,
                 1 (backward Euler) where none does
+    made        (solute, cell) mol m-2 that reactions make meanwhile, as far as it is known: what they take
+                away again must not disperse
     """
     transport = faces.transport
     slopes, crossing = _slopes(faces, dt, theta)
@@ -83,7 +86,11 @@ def passages(
     factor(faces.storage, faces.conductance, crossing, theta * dt, elimination.down, elimination.up,
            elimination.inverse, elimination.lower, elimination.upper)
     passed = explicit.copy()
-    _spread(elimination, dissolved, dt * (faces.darcy_flux[:-1] - faces.darcy_flux[1:]), explicit, passed)
+    surplus = explicit
+    if made is not None:  # as if it came through the faces upstream
+        surplus = explicit.copy()
+        surplus[:, 1:] -= np.cumsum(made, axis=1)
+    _spread(elimination, dissolved, dt * (faces.darcy_flux[:-1] - faces.darcy_flux[1:]), surplus, passed)
     return Passages(passed, explicit, faces, slopes, outlet, inflow, dt, elimination)
 
 

@@ -111,6 +111,8 @@ def _facts(entry: Entry, table: Table) -> Iterator[tuple[str, str]]:
     reaction = entry.half_reaction if isinstance(entry, Component) else entry.reaction
     if reaction:
         yield "reaction", reaction.text
+    if isinstance(entry, Component) and entry.couple:
+        yield "couple", entry.couple
     if isinstance(entry, Mineral):
         yield "formula", entry.formula
         if entry.also_called:
@@ -194,6 +196,7 @@ def entry_json(entry: Entry, table: Table, temperature: float | None = None) -> 
         "kind": kind_of(entry),
         "name": entry.name,
         "reaction": reaction.text if reaction else None,
+        "couple": entry.couple or None if isinstance(entry, Component) else None,
         "log10_k": constant.value if constant else None,
         "sd": constant.sd if constant else None,
         "source": table.sources[constant.source] if constant else None,

@@ -1,0 +1,148 @@
+"""Chemistry of a water, with components that sorb by an isotherm besides."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, fields, replace
+from typing import Any
+
+import numpy as np
+
+from gossan.base.errors import SolveError
+from gossan.chemistry.equilibrium import UNBOUNDED, Equilibrium, Solver
+from gossan.chemistry.isotherm import Isotherms, shared_out, sorbed_at
+from gossan.coupling.problem import Problem
+
+# A cell is left alone while its dissolved amounts stand within this of its last solve: far below any
+# accuracy that a case may ask for, far above rounding.
+SKIP = 1e-12
+AGREED = 1e-12  # of what is sorbed: what the isotherm may still wish for; the solver itself is no better
+ROUNDS = 100  # halving a bracket alone takes half as many
+
+
+def react(
+    problem: Problem, solver: Solver, start: Equilibrium, isotherms: Isotherms | None,
+    moved: np.ndarray, sorbed: np.ndarray, solid: np.ndarray, water: np.ndarray,
+) -> Equilibrium:
+    """Equilibrate what transport left in every cell; amounts are per bulk.
+
+    moved   (component, cell) mol m-3 of bulk, dissolved; solid (mineral, cell)
+    sorbed  (sorbate, cell) mol m-3 of bulk; those of components are changed in place
+    Raises  SolveError naming the cell
+    """
+    upper = np.where(problem.system.may_form[:, None], UNBOUNDED, solid)
+    kilograms = water * problem.system.water_density
+    rows = np.flatnonzero(problem.sorbates < problem.chemical)
+    if isotherms is None or not len(rows):
+        return solver.settled(start, kilograms, moved, solid, upper, skip=SKIP)
+    bed = _Bed(solver, isotherms.of(rows), moved, solid, upper, water, kilograms, sorbed[rows])
+    found, sorbed[rows] = bed.settled(start)
+    return found
+
+
+@dataclass(frozen=True, eq=False)
+class _Bed:
+    """Cells whose water has chemistry and whose solids sorb; laws are those of components alone."""
+
+    solver: Solver
+    laws: Isotherms
+    moved: np.ndarray
+    solid: np.ndarray
+    upper: np.ndarray
+    water: np.ndarray
+    kilograms: np.ndarray
+    sorbed: np.ndarray  # (sorbate, cell) before
+
+    def settled(self, start: Equilibrium) -> tuple[Equilibrium, np.ndarray]:
+        """The equilibrium, and the sorbed amounts that isotherm and chemistry agree to (equations.md, 58).
+
+        Where no mineral holds a component, all that is not sorbed is dissolved: the isotherm alone decides.
+        Where one does, guess that it goes on to hold the concentration, and close what the isotherm then
+        still wishes for.
+        """
+        total = self.moved[self.laws.solutes] + self.sorbed
+        formulas = self.solver.system.mineral_stoichiometry[:, self.laws.solutes]
+        there = np.abs(formulas.T) @ self.solid
+        _, free = shared_out(self.laws, total, self.water)
+        held = np.where(there > 0.0, self.sorbed, free)
+        found = self._tried(start, held)
+        wish = self._wished(found, held)
+        open_ = np.flatnonzero(_far(held, wish))
+        if len(open_):
+            part = self._at(open_)._closed(_columns(found, open_), held[:, open_], wish[:, open_],
+                                           total[:, open_] + there[:, open_], open_)
+            found = _with_columns(found, open_, part[0])
+            held[:, open_] = part[1]
+        return found, held
+
+    def _closed(
+        self, found: Equilibrium, held: np.ndarray, wish: np.ndarray, most: np.ndarray, names: np.ndarray
+    ) -> tuple[Equilibrium, np.ndarray]:
+        """Bring every wish (sorbate, cell) to nothing.
+
+        What is dissolved falls with what is sorbed, so a wish falls at least as fast as what is sorbed grows:
+        its secant is kept no flatter. With one sorbate its bracket is kept, too.
+        """
+        found_all, held_all = found, held.copy()
+        bed, here = self, np.arange(held.shape[1])
+        low, high, fall = np.zeros_like(held), most, np.ones_like(held)
+        for _ in range(ROUNDS):
+            if len(bed.laws.solutes) == 1:
+                low, high = np.where(wish > 0.0, held, low), np.where(wish < 0.0, held, high)
+            aim = held + wish / fall
+            aim = np.where((aim >= low) & (aim < high), aim, 0.5 * (low + high))
+            aim = np.where(wish == 0.0, held, aim)
+            try:
+                found = bed._tried(found, aim)
+            except SolveError as error:
+                error.cell = int(names[here[error.cell]])
+                raise
+            after = bed._wished(found, aim)
+            new = np.divide(wish - after, aim - held, out=np.ones_like(aim), where=aim != held)
+            fall, held, wish = np.maximum(new, 1.0), aim, after
+            far = _far(held, wish)
+            found_all = _with_columns(found_all, here, found)
+            held_all[:, here] = held
+            if not far.any():
+                return found_all, held_all
+            left = np.flatnonzero(far)
+            bed, here, found = bed._at(left), here[left], _columns(found, left)
+            held, wish, fall, low, high = (a[:, left] for a in (held, wish, fall, low, high))
+        reason = "what sorbs and what minerals hold come to no common equilibrium"
+        raise SolveError(reason, cell=int(names[here[0]]), residual=float(np.abs(wish).max()))
+
+    def _tried(self, start: Equilibrium, held: np.ndarray) -> Equilibrium:
+        amount = self.moved.copy()
+        amount[self.laws.solutes] += self.sorbed - held
+        return self.solver.settled(start, self.kilograms, amount, self.solid, self.upper, skip=SKIP)
+
+    def _wished(self, found: Equilibrium, held: np.ndarray) -> np.ndarray:
+        dissolved = np.maximum(found.amount[self.laws.solutes], 0.0) / self.water
+        return sorbed_at(self.laws, dissolved) - held
+
+    def _at(self, cells: np.ndarray) -> _Bed:
+        arrays = {f.name: getattr(self, f.name)[..., cells] for f in fields(self)
+                  if isinstance(getattr(self, f.name), np.ndarray)}
+        return replace(self, laws=self.laws.at(cells), **arrays)
+
+
+def _far(held: np.ndarray, wish: np.ndarray) -> np.ndarray:
+    """(cell,) whether any wish is no rounding yet."""
+    return (np.abs(wish) > AGREED * np.maximum(np.abs(held + wish), np.abs(held))).any(axis=0)
+
+
+def _columns(found: Equilibrium, cells: np.ndarray) -> Equilibrium:
+    """The equilibrium of some of the cells."""
+    return replace(found, **{name: array[..., cells] for name, array in _arrays(found).items()})
+
+
+def _with_columns(found: Equilibrium, cells: np.ndarray, part: Equilibrium) -> Equilibrium:
+    """The equilibrium of all cells, that of some replaced."""
+    arrays = {name: array.copy() for name, array in _arrays(found).items()}
+    for name, array in _arrays(part).items():
+        arrays[name][..., cells] = array
+    return replace(found, **arrays)
+
+
+def _arrays(found: Equilibrium) -> dict[str, Any]:
+    values = {field.name: getattr(found, field.name) for field in fields(found)}
+    return {name: value for name, value in values.items() if isinstance(value, np.ndarray)}
