@@ -124,8 +124,8 @@ class Layer(TableOfCase):
     )
     tortuosity: Annotated[Winding | None, WindingKind()] = Field(
         default=None,
-        description="factor on diffusion; a law follows the porosity of the moment "
-        '([equations](equations.md) 61 to 67), a number stays; default "millington-quirk", porosity^(1/3)',
+        description="factor on diffusion; a law follows the porosity of the moment, a number stays; "
+        'default "millington-quirk", porosity^(1/3)',
     )
     conductivity: Annotated[
         Amount | None, Quantity(("m/s",), "a conductivity", '"25 m/d"', positive=True)
