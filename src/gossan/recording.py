@@ -18,7 +18,7 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
-from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation
+from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation, pe_of
 from gossan.coupling.beyond import Beyond, watched
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Clogged, Stride, march, pore_volumes
@@ -292,7 +292,7 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
         "porosity": problem.water(state),
         "conductivity": conductivity(problem, problem.water(state)),
         "pH": -state.ln_activity[0] / LN10,
-        "pe": np.full(len(state.water), np.nan),
+        "pe": pe_of(system, state.ln_activity),
         "ionic_strength": state.ionic_strength,
         "darcy_flux": darcy_flux,
         "head": head,
@@ -307,13 +307,13 @@ def port_of(
 
     inflow (solute,) mol m-3; through (solute, face) mol m-2 s-1 is what passes every face at this instant
     """
-    flux = faces.darcy_flux[port.face]
+    flux, before = faces.darcy_flux[port.face], max(port.face - 1, 0)
     passing = through[:, port.face]
     return {
         "pore_volumes": pore_volumes(problem, state),
         "darcy_flux": flux,
-        "pH": -state.ln_activity[0, max(port.face - 1, 0)] / LN10,
-        "pe": np.nan,
+        "pH": -state.ln_activity[0, before] / LN10,
+        "pe": pe_of(problem.system, state.ln_activity)[before],
         # flux-averaged; where no water passes there is none
         "dissolved": passing / flux if flux != 0.0 else np.full(len(through), np.nan),
         "resident": faces.resident(state.dissolved, inflow, passing, port.face),

@@ -72,10 +72,11 @@ def test_assay_json_is_what_the_contract_says(waters_file, capsys):
     assert list(found) == ["mine", "gate"]
     mine = found["mine"]
     assert set(mine) == {
-        "pH", "pe", "temperature_K", "ionic_strength", "charge_error_percent", "dissolved", "species",
-        "saturation", "gases", "warnings",
+        "pH", "pe", "Eh_V", "temperature_K", "ionic_strength", "charge_error_percent", "dissolved",
+        "valences", "oxygen_saturation_percent", "species", "saturation", "gases", "warnings",
     }  # fmt: skip
-    assert mine["pe"] is None
+    assert mine["pe"] is mine["Eh_V"] is mine["oxygen_saturation_percent"] is None
+    assert mine["valences"] == mine["dissolved"]
     assert mine["pH"] == pytest.approx(5.4, abs=1e-9)
     assert mine["temperature_K"] == pytest.approx(285.15)
     # 24 mg/L over 65.38 g/mol, in water of 0.9995 kg/L

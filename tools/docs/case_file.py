@@ -39,7 +39,8 @@ An analysis names an element, an ion or the usual name: `Zn`, `"Zn^2+"`, `"ZnÂ²â
 brackets stands in quotes. The name fixes the mass that is meant: `SiO2 = "10 mg/L"` and `Si = "10
 mg/L as SiO2"` are the same. Any of `CO3`, `HCO3`, `CO2`, `C` gives total inorganic carbon, and
 excludes an alkalinity. `S` alone and `N` alone are refused. Fe, Mn, Cu, Co and Pb without a valence
-are the divalent ion.
+are the divalent ion; where the water gives an Eh, pe or dissolved oxygen, Fe, Mn and Cu are divided
+by it ([redox](redox.md)).
 
 `mg/L as N` counts the mass as that substance; its atoms are followed. Calcium and magnesium are
 also read `as CaCO3`. `meq/L` is divided by the charge of the ion as named. `mg/kg` and `mmol/kg`

@@ -9,9 +9,12 @@ from gossan.case.build_initial import initial_state
 from gossan.case.build_retention import decay_of, isotherms_of, stagnant_of
 from gossan.case.model import Case, Layer
 from gossan.case.quantities import Solid
-from gossan.case.waters import excluded_by, read_waters
+from gossan.case.redox import coupled_by
+from gossan.case.waters import ATMOSPHERE, excluded_by, read_waters
 from gossan.chemistry.system import System, build_system
+from gossan.chemistry.valences import valence_totals
 from gossan.chemistry.water import Water
+from gossan.constants.couples import applicable
 from gossan.constants.entries import Mineral, Table
 from gossan.constants.find import find_mineral
 from gossan.coupling.pace import Pace
@@ -39,6 +42,8 @@ def build(case: Case) -> Problem:
     waters = read_waters(case, list(used))
     solids = [_starting_solids(layer, table) for layer in case.layers]
     system = _system(case, table, waters, solids)
+    gases = {f"{gas}(g)": held.amount.si for gas, held in case.chemistry.gases.items() if held.amount}
+    solids = [{**solid, **gases} for solid in solids]
     cells = grid.grid_of([_cut(layer) for layer in case.layers])
     tracers = case.tracer_names
     composition = {name: _composition(case, name, water, system) for name, water in waters.items()}
@@ -148,11 +153,15 @@ def _moles_of_solid(solid: Solid, mineral: Mineral, layer: Layer) -> float:
 
 def _system(case: Case, table: Table, waters: dict[str, Water], solids: list[dict[str, float]]) -> System:
     """The system of all that is in the waters and solids of the column."""
-    components = {name for water in waters.values() for name in water.totals}
+    components = {name for water in waters.values() for name in water.valences}
     dissolving = list(dict.fromkeys(name for layer in solids for name in layer))
     for name in dissolving:
         components |= set(table.minerals[name].reaction.components)
     chemistry = case.chemistry
+    pressure = {gas: held.pressure.si / ATMOSPHERE for gas, held in chemistry.gases.items()}
+    limited = {gas for gas, held in chemistry.gases.items() if held.amount is not None}
+    for gas in pressure:
+        components |= set(table.gases[gas].reaction.components)
     listed = None
     if chemistry.minerals is not None:
         listed = [find_mineral(table, name).name for name in chemistry.minerals]
@@ -167,13 +176,15 @@ def _system(case: Case, table: Table, waters: dict[str, Water], solids: list[dic
         temperature=case.temperature.si,
         activity=chemistry.activity,
         excluded=excluded_by(case, table),
+        coupled=applicable(coupled_by(chemistry, table), components, table),
+        open_gases={gas: atm for gas, atm in pressure.items() if gas not in limited},
+        limited_gases={gas: atm for gas, atm in pressure.items() if gas in limited},
     )
 
 
 def _composition(case: Case, name: str, water: Water, system: System) -> np.ndarray:
     """(solute,) mol per m3 of water, as the laboratory counts its litres."""
-    totals = water.totals
-    chemical = [totals.get(component, 0.0) * water.system.water_density for component in system.components]
+    chemical = (_counted(water, system) * water.system.water_density).tolist()
     said = case.waters[name].tracers
     density = water.system.water_density
     return np.array(chemical + [_tracer(case, tracer, said, density) for tracer in case.tracer_names])
@@ -191,6 +202,19 @@ def _gradients(case: Case, chemical: int) -> np.ndarray:
             of_mole = molar_mass.si
         found[chemical + case.tracer_names.index(name)] = gradient.si / of_mole
     return found
+
+
+def _counted(water: Water, system: System) -> np.ndarray:
+    """(component,) mol per kg of a water, in what the column conserves.
+
+    A water that couples the same valences has its totals. One that holds apart what the column couples, or
+    the other way round, is counted valence by valence.
+    """
+    totals = water.totals
+    if totals.keys() <= set(system.components):
+        return np.array([totals.get(name, 0.0) for name in system.components])
+    held = dict(zip(water.system.basis, valence_totals(water.equilibrium).tolist(), strict=True))
+    return np.array([held.get(name, 0.0) for name in system.basis]) @ system.conserved
 
 
 def _tracer(case: Case, name: str, said: dict[str, Amount], water_density: float) -> float:

@@ -7,6 +7,7 @@ from contextlib import suppress
 from gossan.base.wrong import Wrong, did_you_mean
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
+from gossan.case.redox import counted_as
 from gossan.case.retention import NEEDED, TAKEN, Sorption
 from gossan.constants.entries import Table
 from gossan.constants.find import UnknownName, find_mineral
@@ -70,6 +71,11 @@ def _sorbate(draft: Draft, table: Table, key: str, present: set[str], at: Path) 
         name = component_named(key, table.components).component
     except Wrong as wrong:
         draft.fault(at, f"{wrong.wrong} and no tracer bears", did_you_mean(key, tracers) or wrong.right)
+        return ""
+    first = counted_as(name, draft.case.chemistry, table)
+    if first:
+        told = f"is for {name}, which is coupled and counted as {first}"
+        draft.fault(at, told, f"an isotherm is for {first}, all valences together")
         return ""
     if name not in present:
         draft.fault(at, f"is for {name}, which no water or mineral of the column holds", "leave it out")

@@ -9,6 +9,7 @@ from gossan.base.wrong import Wrong, did_you_mean
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.model import Water
+from gossan.case.redox import coupled_by, couples_missing
 from gossan.constants.entries import Table
 from gossan.constants.find import UnknownName, find_mineral
 from gossan.constants.names import Named, component_named, moles
@@ -25,8 +26,7 @@ def check_waters(draft: Draft, table: Table) -> None:
         named = _check_analysis(draft, table, water, path)
         _check_same_fact(draft, water, named, path)
         _check_balance_ion(draft, table, water, path)
-        for solid, wanted in (water.saturated_with or {}).items():
-            _check_saturation(draft, table, solid, wanted, (*path, "saturated_with", solid))
+        _check_saturations(draft, table, water, (*path, "saturated_with"))
         for tracer, given in (water.tracers or {}).items():
             check_tracer(draft, tracer, given, (*path, "tracers", tracer))
             _check_tracer_name(draft, table, tracer, (*path, "tracers", tracer))
@@ -90,14 +90,23 @@ def _check_balance_ion(draft: Draft, table: Table, water: Water, path: Path) -> 
         draft.fault(at, f'is "{water.balance_on}", which has no charge', "name an ion, or pH")
 
 
-def _check_saturation(draft: Draft, table: Table, name: str, wanted: float | Amount | None, at: Path) -> None:
-    if name in table.gases:
-        if isinstance(wanted, float):
-            draft.fault(at, f"is {wanted:g}, but a gas has a pressure", f'did you mean "{wanted:g} atm"?')
-        return
-    mineral = mineral_named(draft, table, name, at, more=table.gases)
-    if mineral and isinstance(wanted, Amount):
-        draft.fault(at, f'is "{wanted}", but a mineral has a saturation index', "such as 0.0")
+def _check_saturations(draft: Draft, table: Table, water: Water, path: Path) -> None:
+    """Minerals with an index and gases with a pressure, each under one of its names."""
+    seen: dict[str, str] = {}
+    for name, wanted in (water.saturated_with or {}).items():
+        at = (*path, name)
+        if name in table.gases:
+            if isinstance(wanted, float):
+                cure = f'did you mean "{wanted:g} atm"?' if wanted > 0 else 'such as "0.003 atm"'
+                draft.fault(at, f"is {wanted:g}, but a gas has a pressure", cure)
+            continue
+        mineral = mineral_named(draft, table, name, at, more=table.gases)
+        if mineral and isinstance(wanted, Amount):
+            draft.fault(at, f'is "{wanted}", but a mineral has a saturation index', "such as 0.0")
+        if mineral in seen:
+            draft.fault(at, f"is {mineral} a second time, after {seen[mineral]}", "keep one of the two")
+        if mineral:
+            seen[mineral] = name
 
 
 def mineral_named(draft: Draft, table: Table, name: str, at: Path, more: Iterable[str] = ()) -> str | None:
@@ -109,11 +118,20 @@ def mineral_named(draft: Draft, table: Table, name: str, at: Path, more: Iterabl
         wrong = "the formula of several" if shared else "which the table of constants lacks"
         draft.fault(at, f'names the mineral "{name}", {wrong}', unknown.right or did_you_mean(name, more))
         return None
-    if mineral.reaction.electrons:
-        wrong = f'names "{name}", which gives or takes electrons: that has not landed yet'
-        draft.fault(at, wrong, 'it needs redox = "coupled"')
+    coupled = coupled_by(draft.case.chemistry, table)
+    missing = couples_missing(mineral, coupled, table)
+    if missing:
+        named = " and ".join(missing) + (" are" if len(missing) > 1 else " is")
+        wrong = f'names "{name}", which gives or takes electrons, and {named} not coupled'
+        listed = ", ".join(f'"{couple}"' for couple in (*_couples_named(draft), *missing))
+        draft.fault(at, wrong, f'write coupled = [{listed}] in [chemistry], or redox = "coupled"')
         return None
     return mineral.name
+
+
+def _couples_named(draft: Draft) -> tuple[str, ...]:
+    """The couples that a case names already."""
+    return tuple(draft.case.chemistry.coupled or ()) if draft.case.chemistry else ()
 
 
 def check_tracer(draft: Draft, name: str, given: Amount | None, at: Path) -> None:

@@ -8,6 +8,7 @@ from __future__ import annotations
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
 from gossan.case.check_column import check_flow, check_layers, check_ports
+from gossan.case.check_redox import check_redox
 from gossan.case.check_retention import check_parents, check_sorption
 from gossan.case.check_waters import (
     check_tracer,
@@ -19,6 +20,7 @@ from gossan.case.check_waters import (
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.quantities import Range
+from gossan.case.redox import counted_as
 from gossan.constants.entries import Table
 from gossan.constants.find import UnknownName, find_mineral
 
@@ -26,6 +28,7 @@ from gossan.constants.find import UnknownName, find_mineral
 def check_case(draft: Draft, table: Table) -> None:
     """Run every check across keys; faults are added to the draft."""
     check_waters(draft, table)
+    check_redox(draft, table)
     check_layers(draft, table)
     check_flow(draft)
     check_chemistry(draft, table)
@@ -88,6 +91,11 @@ def check_limits(draft: Draft, table: Table) -> None:
                 check_tracer(draft, key, limit, at)
                 continue
             named = solute_named(draft, table, key, limit, at)
+            first = counted_as(named.component, draft.case.chemistry, table) if named else ""
+            if named and first:
+                wrong = f"limits {named.component}, which is coupled and counted as {first}"
+                draft.fault(at, wrong, f"limit {first}, all valences together")
+                continue
             if named and named.component in seen:
                 wrong = f"limits {named.component} a second time, after {seen[named.component]}"
                 draft.fault(at, wrong, "keep one of the two")

@@ -13,12 +13,16 @@ from pydantic import Field, PrivateAttr
 
 from gossan.base.amounts import Amount, amount
 from gossan.base.errors import Fault, InputError
-from gossan.case.column_kinds import CellLength, Gradient, Growing, Winding, WindingKind
-from gossan.case.fields import Choice, Flag, Names, NotLanded, Number, Text
+from gossan.case.column_kinds import CellLength, Growing, Winding, WindingKind
+from gossan.case.fields import Choice, Flag, Later, Names, Number, Text
+from gossan.case.flow import Flow
 from gossan.case.quantities import (
     Alkalinity,
+    GasPressure,
+    HeldGas,
     InWater,
     Limit,
+    Oxygen,
     Place,
     Quantity,
     Range,
@@ -35,14 +39,12 @@ from gossan.transport.growth import growing
 MOST_CELLS = 1_000_000  # of a layer; more is a slip of the unit of `cell`
 
 Name = Annotated[str, Text(is_name=True, example='"gate"')]
-Later = Annotated[Any, NotLanded()]
 PH = Annotated[float, Number("a pH", -2, 16, example="5.9")]
 TEMPERATURE = Quantity(
     ("K",), "a temperature", '"12 degC"', 273.15, 323.15,
     says="water must be liquid and its constants valid: between 0 and 50 degC",
 )  # fmt: skip
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
-TURNED = "water enters at the first layer, and to turn it round write the layers in the other order"
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
 
 
@@ -50,6 +52,17 @@ class Water(TableOfCase):
     """A laboratory report, as the laboratory writes it; without analysis it is pure water."""
 
     pH: PH = Field(default=7.0, description="pH; with `balance_on = \"pH\"` a first guess")
+    Eh: Annotated[
+        Amount | None,
+        Quantity(("V",), "a redox potential", '"310 mV"', -3.0, 3.0,
+                 says="a redox potential of water is between -3 and 3 V"),
+    ] = Field(default=None, description="redox potential against the hydrogen electrode; or `pe`")
+    pe: Annotated[float | None, Number("a pe", -50, 50, example="5.2")] = Field(
+        default=None, description="-log10 of the electron's activity; or `dissolved_oxygen`"
+    )
+    dissolved_oxygen: Annotated[Amount | None, Oxygen()] = Field(
+        default=None, description="the oxygen found; it stands for a pe as well"
+    )
     alkalinity: Annotated[Amount | None, Alkalinity()] = Field(
         default=None,
         description="alkalinity; excludes inorganic carbon in the analysis and `balance_on = \"pH\"`",
@@ -78,9 +91,6 @@ class Water(TableOfCase):
     tracers: dict[str, Annotated[Amount, InWater()]] = Field(default={}, description="amount by tracer")
     table: Later = Field(default=None, description="a laboratory table (CSV) to read the water from")
     sample: Later = Field(default=None, description="this sample of the table")
-    Eh: Later = Field(default=None, description="redox potential against the hydrogen electrode")
-    pe: Later = Field(default=None, description="the same as -log10 of the electron's activity")
-    dissolved_oxygen: Later = Field(default=None, description="or the oxygen found")
 
 
 class Clogging(TableOfCase):
@@ -175,60 +185,18 @@ class Tracer(TableOfCase):
     )
 
 
-class Feed(TableOfCase):
-    """What enters, from when."""
-
-    from_: Annotated[Amount, Quantity(("s", "PV"), "a time", '"0 d"', 0.0)] = Field(
-        alias="from", description="since the start of the run; the first is 0"
-    )
-    water: Annotated[str, Text(example='"mine"')] = Field(description="the water that enters")
-    darcy_flux: Later = Field(default=None, description="from then on: seasons, pump stops")
-    head_drop: Later = Field(default=None, description="from then on")
-    temperature: Later = Field(default=None, description="from then on")
-
-
-class Flow(TableOfCase):
-    """How the water is driven; exactly one of `darcy_flux` and `head_drop`."""
-
-    darcy_flux: Annotated[
-        Amount | None,
-        Quantity(("m/s",), "a Darcy flux", '"0.12 m/d"', 0.0, says=f"a Darcy flux is not negative: {TURNED}"),
-    ] = Field(
-        default=None,
-        description="held flux: volume per area of the whole section and time; zero for diffusion alone",
-    )
-    head_drop: Annotated[
-        Amount | None,
-        Quantity(("m",), "a head drop", '"0.15 m"', positive=True,
-                 says=f"a head drop is more than zero: {TURNED}"),
-    ] = Field(
-        default=None, description="held head over the whole column: the flux follows the conductivity"
-    )
-    inlet: Annotated[str, Choice(("flux", "concentration"))] = Field(
-        default="flux", description='"flux" (third type) or "concentration" (first type)'
-    )
-    outlet: Annotated[str, Choice(("zero-gradient", "concentration", "gradient"))] = Field(
-        default="zero-gradient",
-        description="what holds at the end of the column: no gradient, the concentrations of `outlet_water`, "
-        "or the gradients of `outlet_gradient`",
-    )
-    outlet_water: Annotated[str, Text(example='"river"')] = Field(
-        default="", description="the water that stands beyond the outlet"
-    )
-    outlet_gradient: dict[str, Annotated[Amount, Gradient()]] = Field(
-        default={}, description="change of concentration along the flow at the outlet, by tracer"
-    )
-    feed: tuple[Feed, ...] = Field(default=(), description="what enters, in order of time")
-
-
 class Chemistry(TableOfCase):
     """Which reactions are at equilibrium."""
 
     activity: Annotated[str, Choice(("davies", "debye-hueckel", "ideal"), ("sit",))] = Field(
         default="davies", description="activity coefficients"
     )
-    redox: Annotated[str, Choice(("held",), ("coupled",))] = Field(
-        default="held", description='"held": each valence is its own component'
+    redox: Annotated[str, Choice(("held", "coupled"))] = Field(
+        default="held",
+        description='"held": each valence is its own component; "coupled": one electron balance over all',
+    )
+    coupled: Annotated[tuple[str, ...], Names('["Fe(II)/Fe(III)"]')] = Field(
+        default=(), description='couples at equilibrium although redox is "held"'
     )
     minerals: Annotated[tuple[str, ...] | None, Names()] = Field(
         default=None, description="exactly these may form and dissolve; excludes `also`"
@@ -242,8 +210,9 @@ class Chemistry(TableOfCase):
     constants: Annotated[str, Text(example='"site.toml"')] = Field(
         default="", description="a file of your own constants, beside the case; adds or replaces entries"
     )
-    coupled: Later = Field(default=None, description="couples at equilibrium although redox is held")
-    gases: Later = Field(default=None, description="pressures held in every cell")
+    gases: dict[str, Annotated[HeldGas, GasPressure()]] = Field(
+        default={}, description="pressures held in every cell, of gases without end or of a limited amount"
+    )
 
 
 class Port(TableOfCase):

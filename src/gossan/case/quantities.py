@@ -10,6 +10,8 @@ from gossan.base.amounts import Amount, alkalinity, amount, in_solid, in_water
 from gossan.base.wrong import Wrong, did_you_mean
 from gossan.case.fields import Kind, Number, is_number, shown
 
+MOST_PASCAL = 1000.0 * 101325.0  # of a gas held in a column; more is a slip of the unit
+
 
 @dataclass(frozen=True)
 class Quantity(Kind):
@@ -25,6 +27,7 @@ class Quantity(Kind):
     most: float = math.inf
     positive: bool = False
     says: str = ""
+    otherwise: str = ""  # the cure where no slip of the unit explains it
 
     @property
     def unit(self) -> str:  # type: ignore[override]
@@ -54,14 +57,14 @@ class Quantity(Kind):
         return amount(text, self.units, line, self.what, self.example.strip('"'))
 
     def _cure(self, text: str) -> str:
-        """A slip of the unit that can be guessed: kelvin for degrees, kg/m3 for g/cm3."""
-        swaps = {" K": " degC", " kg/m3": " g/cm3", " degF": " degC"}
+        """A slip of the unit that can be guessed: kelvin for degrees, kg/m3 for g/cm3, V for mV."""
+        swaps = {" K": " degC", " kg/m3": " g/cm3", " degF": " degC", " V": " mV"}
         for given, meant in swaps.items():
             if text.endswith(given):
                 other = text.removesuffix(given) + meant
                 if self.least <= self.parse(other, 0).si <= self.most:
                     return f'did you mean "{other}"?'
-        return ""
+        return self.otherwise
 
 
 @dataclass(frozen=True)
@@ -76,6 +79,19 @@ class InWater(Quantity):
 
     def parse(self, text: str, line: int) -> Amount:
         return in_water(text, line)
+
+
+@dataclass(frozen=True)
+class Oxygen(InWater):
+    """Dissolved oxygen, by a meter or a titration."""
+
+    units: tuple[str, ...] = ("kg/m3", "mol/m3", "mol/kg", "kg/kg")
+    what: str = "dissolved oxygen"
+    example: str = '"6 mg/L"'
+    unit = "mg/L, mmol/L, mg/kg, mmol/kg"
+
+    def parse(self, text: str, line: int) -> Amount:
+        return in_water(text, line, self.units, self.what, self.example.strip('"'))
 
 
 @dataclass(frozen=True)
@@ -164,6 +180,63 @@ class Saturation(Kind):
         if isinstance(value, Amount):
             return value
         return Number("a saturation index", -20, 20, example="0.0").read(value)
+
+
+@dataclass(frozen=True, slots=True)
+class HeldGas:
+    """A gas in every cell: its pressure, and how much of it there is (None: no end of it)."""
+
+    pressure: Amount
+    amount: Amount | None = None
+
+
+@dataclass(frozen=True)
+class GasPressure(Kind):
+    """A pressure, or {pressure, amount} of a gas that can be used up."""
+
+    example = '"0.2 atm"'
+    unit = "pressure; or {pressure, amount}, the amount in mol/L of bulk"
+    schema = {  # noqa: RUF012
+        "anyOf": [
+            {"type": "string", "examples": ["0.2 atm"]},
+            {
+                "type": "object",
+                "properties": {"pressure": {"type": "string"}, "amount": {"type": "string"}},
+                "required": ["pressure", "amount"],
+                "additionalProperties": False,
+            },
+        ]
+    }
+
+    def read(self, value: Any, line: int = 0) -> HeldGas:
+        if isinstance(value, HeldGas):
+            return value
+        pressure = Quantity(("Pa",), "the pressure of a gas", self.example, 0.0, MOST_PASCAL, True,
+                            says="the pressure of a gas is more than zero and at most 1000 atm",
+                            otherwise="leave out a gas that is not there")
+        if not isinstance(value, dict):
+            return HeldGas(pressure.read(value, line))
+        for key in value:
+            if key not in ("pressure", "amount"):
+                raise Wrong(f'has the unknown key "{key}"', did_you_mean(key, ("pressure", "amount")))
+        for key in ("pressure", "amount"):
+            if key not in value:
+                raise Wrong(f"has no {key}", 'write {pressure = "0.2 atm", amount = "1e-3 mol/L"}')
+        amount = Quantity(("mol/m3",), "an amount of a gas", '"1e-3 mol/L"', 0.0,
+                          says="an amount of a gas is not negative", otherwise="write how much there is")
+        return HeldGas(
+            _within("pressure", pressure, value["pressure"], line),
+            _within("amount", amount, value["amount"], line),
+        )
+
+
+def _within(key: str, kind: Quantity, value: Any, line: int) -> Amount:
+    """A quantity in an inline table; what is wrong with it says which key it is."""
+    try:
+        return kind.read(value, line)
+    except Wrong as wrong:
+        article = "an" if key == "amount" else "a"
+        raise Wrong(f"has {article} {key} that {wrong.wrong}", wrong.right) from None
 
 
 @dataclass(frozen=True, slots=True)

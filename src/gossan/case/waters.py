@@ -7,13 +7,18 @@ from gossan.base.errors import Fault, InputError
 from gossan.base.notation import molar_mass, split_ion
 from gossan.base.wrong import Wrong
 from gossan.case.model import Case
-from gossan.chemistry.water import LabReport, Water, read_water
+from gossan.case.model import Water as WaterOfCase
+from gossan.case.redox import coupled_by
+from gossan.chemistry.report import LabReport
+from gossan.chemistry.water import Water, read_water
 from gossan.constants.entries import Table
 from gossan.constants.find import find_mineral
-from gossan.constants.names import Named, component_named, equivalents, moles
+from gossan.constants.names import Named, component_named, equivalents, is_bare_element, moles
+from gossan.constants.potential import pe_of_potential
 from gossan.constants.water import density
 
 ATMOSPHERE = 101325.0  # Pa, exact
+OXYGEN = Named("O2", "O2", 0)
 
 
 def excluded_by(case: Case, table: Table) -> frozenset[str]:
@@ -29,13 +34,15 @@ def read_waters(case: Case, names: list[str] | None = None) -> dict[str, Water]:
     Raises   InputError with the faults of all of them that cannot be what they say
     """
     table = case.table
-    excluded = excluded_by(case, table)
+    excluded, coupled = excluded_by(case, table), coupled_by(case.chemistry, table)
     found: dict[str, Water] = {}
     faults: list[Fault] = []
     for name in names if names is not None else case.waters:
         try:
             report = lab_report(case, name, table)
-            found[name] = read_water(report, table, activity=case.chemistry.activity, excluded=excluded)
+            found[name] = read_water(
+                report, table, activity=case.chemistry.activity, excluded=excluded, coupled=coupled
+            )
         except Wrong as wrong:
             line = case.line_of("waters", name)
             faults.append(Fault(case.file, line, f"waters.{name}", wrong.wrong, wrong.right))
@@ -76,12 +83,34 @@ def lab_report(case: Case, name: str, table: Table) -> LabReport:
         temperature=temperature,
         dissolved=dissolved,
         pH=water.pH if "pH" in water.model_fields_set else None,
+        pe=pe_of_potential(water.Eh.si, temperature) if water.Eh is not None else water.pe,
+        oxygen=_oxygen(water, volume),
+        undivided=_undivided(water, solutes),
         alkalinity=alkalinity,
         balance_on=balance or None,
         minerals=minerals,
         gases=gases,
         accept_imbalance=water.accept_imbalance,
     )
+
+
+def _oxygen(water: WaterOfCase, volume: float) -> float | None:
+    """Dissolved oxygen, mol per kg of water, of which `volume` kg are in a m3."""
+    if water.dissolved_oxygen is None:
+        return None
+    per_kg = water.dissolved_oxygen.unit.endswith("/kg")
+    return moles(water.dissolved_oxygen, OXYGEN) / (1.0 if per_kg else volume)
+
+
+def _undivided(water: WaterOfCase, solutes: list[tuple[Named, Amount]]) -> frozenset[str]:
+    """Components named as a bare element, no other valence of which is named."""
+    bare = {
+        named.component: named.formula
+        for key, (named, _) in zip(water.analysis, solutes, strict=True)
+        if is_bare_element(key)
+    }
+    elements = [split_ion(named.component)[0] for named, _ in solutes]
+    return frozenset(component for component, element in bare.items() if elements.count(element) == 1)
 
 
 def _water_per_volume(solutes: list[tuple[Named, Amount]], sample: float | None, temperature: float) -> float:

@@ -63,6 +63,13 @@ def log10_activity(system: System, ln_activity: np.ndarray) -> np.ndarray:
     return np.where(ln < -1e4, -np.inf, ln / LN10)
 
 
+def pe_of(system: System, ln_activity: np.ndarray) -> np.ndarray:
+    """(cell,): -log10 of the activity of e^- of ln activities (basis, cell); NaN where nothing is coupled."""
+    if system.electron < 0:
+        return np.full(ln_activity.shape[1], np.nan)
+    return -ln_activity[system.electron] / LN10
+
+
 def mineral_saturation(system: System, ln_activity: np.ndarray) -> np.ndarray:
     """(mineral, cell): saturation indices from ln activities (basis, cell); NaN: an element is absent."""
     count = len(system.minerals)

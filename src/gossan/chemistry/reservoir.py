@@ -87,5 +87,8 @@ def held_to(system: System, dissolved: np.ndarray, conditions: list[Condition]) 
     if (found.presence != 1).any():
         marks = zip(conditions, found.presence[:, 0], strict=True)
         named = ", ".join(c.name for c, mark in marks if mark != 1)
-        raise Wrong(f"would take more than {PLENTY:g} mol/kg to reach {named}", "check the amounts")
+        raise Wrong(
+            f"cannot be brought to {named}: it would take more than {PLENTY:g} mol/kg",
+            "lower that index or pressure, or leave out what works against it",
+        )
     return replace(found, system=system)

@@ -42,11 +42,14 @@ VALENCES = {
     "N(-III)": "NH4^+",
     "C(IV)": "CO3^2-",
     "P(V)": "PO4^3-",
+    "N(III)": "NO2^-",
+    "N(0)": "N2",
+    "C(-IV)": "CH4",
     "Si(IV)": "H4SiO4",
     "B(III)": "B(OH)3",
 }
 ROMAN = {"I": 1, "II": 2, "III": 3, "IV": 4}
-VALENCE = re.compile(r"([A-Z][a-z]?)\s?\((\+?-?)([IV]+)\)")
+VALENCE = re.compile(r"([A-Z][a-z]?)\s?\((\+?-?)([IV]+|0)\)")
 UNNAMED_CHARGE = 2  # Fe, Mn, Cu, Co, Pb without a valence are the divalent ion
 
 REFUSED = {
@@ -56,7 +59,7 @@ REFUSED = {
     "H": ("which is not given in an analysis", "the pH says it"),
     "OH": ("which is not given in an analysis", "the pH says it"),
     "H2O": ("the water itself", "leave it out"),
-    "O2": ("dissolved oxygen", "it is given as dissolved_oxygen, which has not landed yet"),
+    "O2": ("dissolved oxygen", 'write dissolved_oxygen = "6 mg/L" among the keys of the water'),
 }
 
 
@@ -129,6 +132,16 @@ def _by_formula(name: str, components: Collection[str]) -> Named | None:
         return None
     component = min(same, key=lambda ion: abs(charge_of(ion) - UNNAMED_CHARGE))
     return Named(component, formula, charge_of(component))
+
+
+def is_bare_element(text: str) -> bool:
+    """Whether a name says nothing of a valence: "Fe" and "iron" do not, "Fe(II)" and "Fe^2+" do.
+
+    >>> is_bare_element("iron"), is_bare_element("ferrous iron")
+    (True, False)
+    """
+    name = WORDS.get(text.strip().lower(), text.strip())
+    return re.fullmatch(r"[A-Z][a-z]?", name) is not None
 
 
 def usual_names(components: Collection[str]) -> list[str]:

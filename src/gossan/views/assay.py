@@ -13,10 +13,13 @@ from gossan.base.wrong import did_you_mean
 from gossan.case.model import Case
 from gossan.case.read import case_from_data, read_case
 from gossan.case.waters import detection_notes, excluded_by, read_waters
+from gossan.chemistry.redox import ELECTRON, PROTON
 from gossan.chemistry.validity import validity_note
 from gossan.chemistry.water import REFUSE_PERCENT, WARN_PERCENT, Water
 from gossan.constants.entries import Table
 from gossan.constants.find import find_mineral
+from gossan.constants.oxygen import air_saturated
+from gossan.constants.potential import potential_of_pe
 
 BAR_PER_ATMOSPHERE = 1.01325  # exact
 # ppm of H2S in air.  Source: NIOSH ceiling (10 minutes) and concentration immediately dangerous to life, as
@@ -60,6 +63,27 @@ class WaterAssay:
         return self.water.pH
 
     @property
+    def pe(self) -> float:
+        """-log10 of the activity of e^-; NaN where nothing is coupled."""
+        return self.water.pe
+
+    @property
+    def Eh(self) -> float:
+        """The same as a potential against the hydrogen electrode, V."""
+        return potential_of_pe(self.pe, self.temperature)
+
+    @property
+    def reported_Eh(self) -> float:
+        """The potential that the report states, or that its pe or oxygen stands for, V; NaN without."""
+        return potential_of_pe(self.water.reported_pe, self.temperature)
+
+    @property
+    def oxygen_percent(self) -> float:
+        """Dissolved oxygen in % of what air would leave in the water; NaN where it is no solute."""
+        found = self.water.valences.get("O2", math.nan)
+        return 100.0 * found / air_saturated(self.temperature)
+
+    @property
     def temperature(self) -> float:
         """In K."""
         return self.water.system.temperature
@@ -86,8 +110,25 @@ class WaterAssay:
 
     @property
     def dissolved(self) -> dict[str, float]:
-        """Totals by component."""
+        """Totals by component, what is coupled under the first ion of its element."""
         return self.water.totals
+
+    @property
+    def valences(self) -> dict[str, float]:
+        """Totals by valence, coupled or not."""
+        return self.water.valences
+
+    @property
+    def coupled(self) -> dict[str, float]:
+        """Totals of the coupled valences, each first ion before what its element is divided into."""
+        system, held = self.water.system, self.valences
+        count = len(system.components)
+        found: dict[str, float] = {}
+        for k, first in enumerate(system.components):
+            others = [name for v, name in enumerate(system.basis[count:], count) if system.conserved[v, k]]
+            if others and first not in (PROTON, ELECTRON):
+                found |= {name: held[name] for name in (first, *others)}
+        return found | {name: held[name] for name in system.basis[count:]}
 
     @property
     def species(self) -> dict[str, tuple[float, float]]:
@@ -115,11 +156,10 @@ class WaterAssay:
         found = self.water.equilibrium
         system, molality = found.system, found.molality()[:, 0]
         parts = []
-        for k, component in enumerate(system.components):
-            total = float(found.amount[k, 0])
-            if k == 0 or total <= 0.0:
+        for component, total in self.valences.items():
+            if component == PROTON or total <= 0.0:
                 continue
-            held = system.stoichiometry[:, k] * molality
+            held = system.stoichiometry[:, system.basis.index(component)] * molality
             for s in sorted(range(len(held)), key=lambda s: -held[s]):
                 share = float(held[s]) / total
                 if share >= least:
@@ -137,8 +177,8 @@ class Assay:
         return self.waters[name]
 
     def __repr__(self) -> str:
-        lines = [f"  {name}: pH {one.pH:.2f}, ionic strength {one.ionic_strength:.3g} mol/kg, charge error "
-                 f"{one.charge_error_percent:+.1f} %" for name, one in self.waters.items()]
+        lines = [f"  {name}: pH {one.pH:.2f}, {_pe_told(one)}ionic strength {one.ionic_strength:.3g} mol/kg, "
+                 f"charge error {one.charge_error_percent:+.1f} %" for name, one in self.waters.items()]
         return "\n".join(["<Assay", *lines]) + ">"
 
     def to_json(self) -> dict[str, Any]:
@@ -202,14 +242,21 @@ def _cautions(water: Water) -> list[str]:
     ]
 
 
+def _pe_told(one: WaterAssay) -> str:
+    return "" if math.isnan(one.pe) else f"pe {one.pe:.2f}, "
+
+
 def _json(one: WaterAssay) -> dict[str, Any]:
     return {
         "pH": one.pH,
-        "pe": None,
+        "pe": one.pe,
+        "Eh_V": one.Eh,
         "temperature_K": one.temperature,
         "ionic_strength": one.ionic_strength,
         "charge_error_percent": one.charge_error_percent,
         "dissolved": one.dissolved,
+        "valences": one.valences,
+        "oxygen_saturation_percent": one.oxygen_percent,
         "species": {
             name: {"molality": molality, "log10_activity": activity}
             for name, (molality, activity) in one.species.items()

@@ -44,10 +44,30 @@ def _facts(plan: Plan) -> tuple[tuple[str, str], ...]:
         ("steps", f"about {plan.steps}, or more where accuracy = {run.accuracy:g} needs shorter ones"),
         ("wall clock", seconds),
         ("dissolved", ", ".join(problem.solutes)),
+        ("redox", _redox(plan)),
+        *_gases(plan),
         ("may form", ", ".join(plan.may_form) or "nothing"),
         ("may only dissolve", ", ".join(plan.may_dissolve) or "nothing"),
         ("ports", ", ".join(f"{port.name} at {port.x:.4g} m" for port in problem.ports)),
     )
+
+
+def _redox(plan: Plan) -> str:
+    """What is coupled, in the words of the case."""
+    chemistry = plan.case.chemistry
+    if chemistry.redox == "coupled":
+        return "coupled: valences of all elements are at equilibrium"
+    if chemistry.coupled:
+        return f"held, but for {', '.join(chemistry.coupled)}"
+    return "held: no valence turns into another"
+
+
+def _gases(plan: Plan) -> tuple[tuple[str, str], ...]:
+    told = [
+        f"{name} at {held.pressure}" + (f", {held.amount} of it" if held.amount else ", without end")
+        for name, held in plan.case.chemistry.gases.items()
+    ]
+    return (("gases", "; ".join(told)),) if told else ()
 
 
 def time_words(seconds: float) -> str:

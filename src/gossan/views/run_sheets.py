@@ -13,6 +13,8 @@ from gossan.views.summary import HALF, Summary
 def run_sheets(summary: Summary) -> Iterator[Sheet]:
     """Breakthrough against limits, the bed, the capacity left, the ledger, the effort."""
     yield from _ports(summary)
+    if summary.redox:
+        yield _redox(summary)
     yield _bed(summary)
     if summary.stocks:
         yield _capacity(summary)
@@ -30,6 +32,13 @@ def _ports(summary: Summary) -> Iterator[Sheet]:
         heads = ("", "unit", "limit", f"exceeded ({scale.unit})", "(PV)", "last", "peak")
         note = "flux-averaged; no limits are given for this port" if not limited else "flux-averaged"
         yield Sheet(f"Port {port}", heads, rows, left=2, note=note)
+
+
+def _redox(summary: Summary) -> Sheet:
+    rows = tuple((port, f"{1e3 * first:.0f}", f"{1e3 * last:.0f}")
+                 for port, (first, last) in summary.redox.items())  # fmt: skip
+    note = "Eh against the hydrogen electrode of what is coupled, in the water there"
+    return Sheet("Redox", ("port", "start (mV)", "end (mV)"), rows, note=note)
 
 
 def _port_row(verdict: Verdict, time: Scale, masses: dict[str, float]) -> tuple[str, ...]:

@@ -61,7 +61,7 @@ def length_scale(metres: float) -> Scale:
 
 
 def solute_scale(name: str, tracer_masses: Mapping[str, float] | None = None) -> Scale:
-    """mg/L of a solute, counted as the ion or molecule that names it; mmol/L of protons and massless tracers.
+    """mg/L of a solute, counted as the ion or molecule that names it; mmol/L of what has no mass.
 
     tracer_masses  kg/mol by tracer, where a case gives them
 
@@ -71,7 +71,7 @@ def solute_scale(name: str, tracer_masses: Mapping[str, float] | None = None) ->
     masses = tracer_masses or {}
     if name in masses:
         return Scale("mg/L", 1e3 * masses[name])
-    if name == "H^+":
+    if name in ("H^+", "e^-"):
         return AMOUNT
     try:
         return Scale("mg/L", 1e3 * molar_mass(name))

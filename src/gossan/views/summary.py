@@ -8,6 +8,7 @@ from typing import Any
 import numpy as np
 
 from gossan.case.model import Case
+from gossan.constants.potential import potential_of_pe
 from gossan.recording import case_of
 from gossan.store.read import Result
 from gossan.views.limits import Verdict, bounds_of, tracer_masses, verdicts
@@ -45,6 +46,7 @@ class Summary:
     result: Result
     verdicts: list[Verdict]
     tracer_masses: dict[str, float]
+    redox: dict[str, tuple[float, float]]  # Eh in V at the start and the end by port, where pe is known
     conductivity: Conductivity
     head_loss: tuple[float, float] | None  # m, first and last
     flux: tuple[float, float]  # m s-1 at the inlet, first and last
@@ -85,6 +87,7 @@ def summary_of(result: Result, case: Case | None = None) -> Summary:
         result=result,
         verdicts=verdicts(result, bounds_of(case)),
         tracer_masses=tracer_masses(case),
+        redox=_redox(result, case.temperature.si),
         conductivity=_conductivity(result),
         head_loss=(float(loss[0]), float(loss[-1])) if np.isfinite(loss[[0, -1]]).all() else None,
         flux=(float(flux[0]), float(flux[-1])),
@@ -96,6 +99,15 @@ def summary_of(result: Result, case: Case | None = None) -> Summary:
         seconds=float(steps.seconds.values.sum()),
         time=float(profiles.time.values[-1]),
     )
+
+
+def _redox(result: Result, temperature: float) -> dict[str, tuple[float, float]]:
+    found = {}
+    for port in result.axes.ports:
+        first, last = (float(result.ports[port].pe.values[i]) for i in (0, -1))
+        if np.isfinite(first):
+            found[port] = (potential_of_pe(first, temperature), potential_of_pe(last, temperature))
+    return found
 
 
 def _stocks(result: Result, width: np.ndarray) -> list[Stock]:
