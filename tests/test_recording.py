@@ -56,7 +56,21 @@ HELD_HEAD = column(
     layer='conductivity = "1 m/d"',
     run='profiles_every = "0.5 PV"\nports_every = "0.13 PV"\ncoupling = "lie"',
 )  # fmt: skip
-TEXTS = {"held flux, two-stage, days": HELD_FLUX, "held head, lie, pore volumes": HELD_HEAD}
+RETAINED = column(
+    WATERS + '[tracers.bromide]\nhalf_life = "1 d"\n[tracers.krypton]\nparent = "bromide"\n',
+    minerals='gypsum = "1 g/kg", calcite = "0.2 g/kg"', cells=8, length="20 cm", dispersivity="1 cm",
+    flow='darcy_flux = "8 cm/d"', feed=feeds("1 PV", "1.7 PV"), duration="3 d",
+    run='profiles_every = "0.5 d"\nports_every = "0.13 d"',
+)  # fmt: skip
+RETAINED = RETAINED.replace("minerals = {", """
+sorption.bromide = {law = "freundlich", coefficient = "0.2 mmol/kg", exponent = 0.6}
+sorption.Ca = {law = "langmuir", capacity = "1 mmol/kg", affinity = "0.5 L/mmol"}
+immobile = {fraction = 0.3, transfer = "1e-6 1/s"}
+minerals = {""")
+TEXTS = {
+    "held flux, two-stage, days": HELD_FLUX, "held head, lie, pore volumes": HELD_HEAD,
+    "isotherms, decay, immobile water": RETAINED,
+}  # fmt: skip
 
 
 @pytest.fixture(params=TEXTS, scope="module")
@@ -101,11 +115,13 @@ def kept(path: Path) -> dict:
     """The checkpoint within a file, its arrays as bytes."""
     with h5py.File(path, "r", locking=False) as file:
         parts = decode(file["checkpoint/state"][:].tobytes()).parts
-    return {
-        (part, name): value.tobytes() if isinstance(value, np.ndarray) else value
-        for part, values in parts.items()
-        for name, value in values.items()
-    }
+    return {part: in_bytes(values) for part, values in parts.items()}
+
+
+def in_bytes(value):
+    if isinstance(value, dict):
+        return {name: in_bytes(each) for name, each in value.items()}
+    return value.tobytes() if isinstance(value, np.ndarray) else value
 
 
 @pytest.mark.parametrize("step", [1, 5, 23, 24, 60])
@@ -173,7 +189,7 @@ def test_what_entered_is_what_each_feed_brought(tmp_path):
     water = result.ports["outlet"].pore_volumes.values * problem.pore_volume
     switches = np.array([1.0, 1.7]) * problem.pore_volume
     shares = np.diff(np.minimum(water[:, None], [0.0, *switches, np.inf]), axis=1)
-    entered = shares @ problem.inflow
+    entered = shares @ problem.feeds.inflow[:, 0]
     assert result.ledger.entered.values == pytest.approx(entered, rel=1e-11, abs=1e-15)
     assert np.abs(result.ledger.error.values).max() < 1e-12
 

@@ -20,10 +20,11 @@ from gossan.case.model import Case
 from gossan.case.read import case_from_text
 from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation, pe_of
 from gossan.coupling.beyond import Beyond, watched
+from gossan.coupling.drive import Drive, pore_volumes, settled
 from gossan.coupling.ledger import Books
-from gossan.coupling.march import Clogged, Stride, march, pore_volumes
+from gossan.coupling.march import Clogged, Stride, march
 from gossan.coupling.pace import Pace
-from gossan.coupling.pores import conductivity, flow
+from gossan.coupling.pores import conductivity
 from gossan.coupling.problem import Port, Problem
 from gossan.coupling.state import State, state_of
 from gossan.store.file import Axes
@@ -63,7 +64,7 @@ def run_case(case: Case, path: Path, *, overwrite: bool = False, progress: Progr
     problem = build(case)
     state, pace = problem.initial, first_pace(problem)
     writer = ResultWriter(
-        path, axes_of(problem), case.title, case.text, CAUTION, overwrite, case.constants_text
+        path, axes_of(problem), case.title, case.text, CAUTION, overwrite, case.constants_text, case.files
     )
     with writer:
         run = _Run(problem, writer, progress)
@@ -91,7 +92,9 @@ def resume(path: Path, *, progress: Progress | None = None) -> Ending:
 
 def case_of(result: Result) -> Case:
     """The case that a result file holds, with the user's constants it was run with."""
-    return case_from_text(result.case, str(result.path), constants=result.constants or None)
+    return case_from_text(
+        result.case, str(result.path), constants=result.constants or None, files=result.files
+    )
 
 
 def run(case: Case, out: str | Path | None = None, progress: bool = False, overwrite: bool = False) -> Result:
@@ -235,8 +238,9 @@ class _Run:
 
     def records(self, state: State) -> None:
         self.seen["records"] = state.time
-        inflow = inflow_at(self.problem, state)
-        darcy_flux, _ = flow(self.problem, state, settled_dt(state))
+        drive = Drive(self.problem, state)
+        inflow = drive.inflow
+        darcy_flux, _ = drive.flow(settled_dt(state), 0.0)
         faces = faces_of(self.problem.transport, state.water, darcy_flux)
         through = passages(faces, state.dissolved, inflow, 1.0).passed
         for index, port in enumerate(self.problem.ports):
@@ -265,16 +269,10 @@ def settled_dt(state: State) -> float:
     return state.time / state.step if state.step else 1.0
 
 
-def inflow_at(problem: Problem, state: State) -> np.ndarray:
-    """(solute,) mol m-3 of what enters at a state's time."""
-    clock = problem.feeds.clock(state.time, pore_volumes(problem, state))
-    return problem.inflow[max(problem.feeds.passed(clock) - 1, 0)]
-
-
 def frame_of(problem: Problem, state: State) -> dict[str, Any]:
     """The profiles of a state."""
-    system = problem.system
-    darcy_flux, head = flow(problem, state, settled_dt(state))
+    system = settled(problem, state).system
+    darcy_flux, head = Drive(problem, state).flow(settled_dt(state), 0.0)
     activity = log10_activity(system, state.ln_activity)
     retained: dict[str, np.ndarray] = {}
     if problem.isotherms is not None:
@@ -296,6 +294,7 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
         "ionic_strength": state.ionic_strength,
         "darcy_flux": darcy_flux,
         "head": head,
+        "temperature": system.temperature,
     }
 
 

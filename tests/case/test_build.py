@@ -60,14 +60,14 @@ def test_amounts_of_minerals_become_moles_per_volume_of_bulk(amount, moles):
 
 def test_what_flows_in_is_what_the_laboratory_found():
     built = problem()
-    inflow = dict(zip(built.solutes, built.inflow[0], strict=True))
+    inflow = dict(zip(built.solutes, built.feeds.inflow[0, 0], strict=True))
     assert inflow["Na^+"] == pytest.approx(5.0, rel=1e-12)
     assert inflow["Ca^2+"] == pytest.approx(0.5, rel=1e-12)
     assert inflow["Cl^-"] == pytest.approx(6.0, rel=1e-6)
     assert inflow["bromide"] == pytest.approx(1.0, rel=1e-12)
     assert inflow["dye"] == pytest.approx(0.01, rel=1e-12)
     assert built.solutes[built.chemical :] == built.tracers == ("bromide", "dye")
-    charge = built.system.component_charge @ built.inflow[0][: built.chemical]
+    charge = built.system.component_charge @ built.feeds.inflow[0, 0][: built.chemical]
     assert charge == pytest.approx(0.0, abs=1e-12)
 
 
@@ -112,7 +112,7 @@ def test_times_and_pore_volumes_each_keep_their_clock():
     feed = '{from = "0 d", water = "feed"}, {from = "1.5 PV", water = "pore"}'
     run = 'profiles_every = "0.5 d"\nports_every = "0.25 PV"'
     held = problem(feed=feed, duration="2 PV", run=run)  # 0.4 m in the pores, 0.1 m/d: a pore volume is 4 d
-    assert held.feeds.marks == pytest.approx([0.0, 6.0 * DAY])
+    assert held.feeds.begins.marks == pytest.approx([0.0, 6.0 * DAY])
     assert held.end.by_volume
     assert held.end.marks.tolist() == [2.0]
     assert not held.frames.by_volume
@@ -125,10 +125,10 @@ def test_times_and_pore_volumes_each_keep_their_clock():
 
 def test_flow_is_held_by_flux_or_by_head():
     flux = problem()
-    assert (flux.inlet_flux, flux.head_drop) == (pytest.approx(0.1 / DAY), None)
+    assert (flux.feeds.darcy_flux, np.isnan(flux.feeds.head_drop).all()) == (pytest.approx(0.1 / DAY), True)
     assert np.isnan(flux.conductivity).all()
     head = problem(flow='head_drop = "15 cm"\ninlet = "concentration"', layer='conductivity = "1 m/d"')
-    assert (head.inlet_flux, head.head_drop) == (None, pytest.approx(0.15))
+    assert (np.isnan(head.feeds.darcy_flux).all(), head.feeds.head_drop) == (True, pytest.approx(0.15))
     assert head.transport.first_type
     assert not flux.transport.first_type
     for built in (flux, head):

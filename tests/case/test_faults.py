@@ -25,7 +25,7 @@ ONE_FAULT = [
     ('"12 degC"', '"12 C"', 'did you mean "12 degC"?'),
     ('"11 degC"', '"99 degC"', "waters.mine.temperature"),
     ('"0.12 m/d"', '"0.12 m"', 'flow.darcy_flux is "0.12 m", a length, where a Darcy flux is needed'),
-    ('"0.12 m/d"', '"-0.12 m/d"', "a Darcy flux is not negative: water enters at the first layer"),
+    ('"0.12 m/d"', '"-0.12 m/d"', "water flows from the first layer to the last; turn the"),
     ('"0.12 m/d"', '"nan m/d"', "not a finite number"),
     ('"0.12 m/d"', '"0,12 m/d"', 'the decimal sign is a point: "0.12 m/d"'),
     ('"0.12 m/d"', "true", "flow.darcy_flux is true; a Darcy flux is needed"),
@@ -244,9 +244,6 @@ NOT_LANDED = [
     ("cells = 50", 'cells = 50\nrates = ["x"]'),
     ("[layers.clogging]", '[layers.exchange]\ncapacity = "4 meq/100g"\n[layers.clogging]'),
     ("[layers.clogging]", '[layers.surface]\nferrihydrite = "0.2 wt%"\n[layers.clogging]'),
-    ('from = "0 d"', 'from = "0 d"\ndarcy_flux = "0.1 m/d"'),
-    ('from = "0 d"', 'from = "0 d"\nhead_drop = "0.1 m"'),
-    ('from = "0 d"', 'from = "0 d"\ntemperature = "4 degC"'),
     ("[chemistry]", '[chemistry]\nactivity = "sit"'),
     ("[[ports]]", '[rates.sulfate]\nlaw = "monod"\n[[ports]]'),
     ('Zn = "0.12 mg/L"', 'Cu = {criterion = "x", hardness = "port"}'),
@@ -316,7 +313,9 @@ def test_head_drop_needs_conductivity_everywhere():
     assert [fault.key for fault in faults] == ['layers."inlet sand".conductivity', "layers.gate.conductivity"]
 
 
-def test_pore_volumes_are_no_time_under_a_held_head():
+def test_under_a_held_head_times_and_pore_volumes_do_not_mix():
     text = GOOD.replace('darcy_flux = "0.12 m/d"', 'head_drop = "0.1 m"').replace('"2 yr"', '"2 PV"')
     text = text.replace("porosity", 'conductivity = "5 m/d"\nporosity')
-    assert ["which is no time before the run" in str(fault) for fault in faults_of(text)] == [True]
+    case_from_text(text)
+    mixed = text.replace('from = "2 PV"', 'from = "1 yr"\nwater = "pore"\n[[flow.feed]]\nfrom = "2 PV"')
+    assert ["give all of them in one unit" in str(fault) for fault in faults_of(mixed)] == [True]

@@ -36,7 +36,7 @@ def problem(chemistry: str = "", minerals: str = "", waters: str = WATERS):
 
 
 def inflow(built) -> dict[str, float]:
-    return dict(zip(built.solutes, built.inflow[0].tolist(), strict=True))
+    return dict(zip(built.solutes, built.feeds.inflow[0, 0].tolist(), strict=True))
 
 
 def start(built) -> dict[str, float]:

@@ -261,6 +261,13 @@ def test_an_index_out_of_reach_is_refused_by_name():
 # what cannot be
 
 
+def test_methane_has_no_alkalinity():
+    """At the foot of water's stability carbon is methane, and no amount of it takes up acid at pH 5.3."""
+    with pytest.raises(Wrong, match="that no carbon brings about") as wrong:
+        read({"Na^+": 0.02, "SO4^2-": 1e-3}, ALL, pH=5.3, pe=-5.2, alkalinity=9.5e-3, balance_on="Na^+")
+    assert "redox potential" in wrong.value.right
+
+
 @pytest.mark.parametrize(
     ("ph", "pe", "outcome"),
     [(7.0, 13.6, ""), (7.0, 13.9, "oxygen"), (7.0, 15.0, "refused"), (7.0, -6.9, ""), (7.0, -7.4, "hydrogen"),

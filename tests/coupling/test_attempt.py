@@ -51,15 +51,17 @@ def salty(folder, coupling: str, dispersivity: str) -> tuple[Problem, State]:
 
 def faces(problem: Problem, state: State) -> Faces:
     """At the state's moment, under the held flux."""
-    return faces_of(problem.transport, state.water, np.full(len(state.water) + 1, problem.inlet_flux))
+    darcy_flux = np.full(len(state.water) + 1, problem.feeds.darcy_flux[0, 0])
+    return faces_of(problem.transport, state.water, darcy_flux)
 
 
 def marched(problem: Problem, state: State, steps: int, theta: float | None) -> tuple[np.ndarray, float]:
     """Totals (solute, cell) after a tenth of a pore volume in equal steps, and the sum of their estimates."""
-    dt = 0.1 * problem.pore_volume / problem.inlet_flux / steps
+    dt = 0.1 * problem.pore_volume / problem.feeds.darcy_flux[0, 0] / steps
     solver = Solver(problem.system)
     for _ in range(steps):
-        state = attempt(problem, solver, state, faces(problem, state), problem.inflow[0], dt, theta).state
+        inflow, now = problem.feeds.inflow[0, 0], faces(problem, state)
+        state = attempt(problem, solver, state, now, inflow, dt, theta).state
     held = state.dissolved * state.water
     return held + problem.system.mineral_stoichiometry.T @ state.solid, state.splitting_error
 
@@ -68,7 +70,7 @@ def errors(folder, coupling: str, dispersivity: str, theta: float | None) -> tup
     """True errors in L1, relative as the estimates are, and the estimates."""
     problem, state = salty(folder, coupling, dispersivity)
     exact, _ = marched(problem, state, EXACT, theta)
-    scale = problem.stock + np.abs(problem.inflow[0]) * problem.pore_volume
+    scale = problem.stock + np.abs(problem.feeds.inflow[0, 0]) * problem.pore_volume
     found, told = [], []
     for steps in STEPS:
         totals, estimate = marched(problem, state, steps, theta)
@@ -98,7 +100,8 @@ def test_lie_is_first_order_and_its_estimate_follows_the_error(tmp_path, dispers
 def test_nothing_that_was_given_is_changed(tmp_path):
     problem, state = salty(tmp_path, "two-stage", "2 cm")
     before = {name: np.array(getattr(state, name), copy=True) for name in State.__slots__}
-    attempt(problem, Solver(problem.system), state, faces(problem, state), problem.inflow[0], 600.0, None)
+    solver, now = Solver(problem.system), faces(problem, state)
+    attempt(problem, solver, state, now, problem.feeds.inflow[0, 0], 600.0, None)
     for name, values in before.items():
         assert np.array_equal(values, getattr(state, name)), name
 
@@ -107,9 +110,10 @@ def test_a_step_tried_twice_gives_the_same_bits(tmp_path):
     """Also after the solver has worked on something else: what it keeps for itself must not matter."""
     problem, state = salty(tmp_path, "two-stage", "2 cm")
     solver, now = Solver(problem.system), faces(problem, state)
-    one = attempt(problem, solver, state, now, problem.inflow[0], 600.0, None)
-    attempt(problem, solver, one.state, faces(problem, one.state), problem.inflow[0] * 0.5, 1200.0, DAMPING)
-    two = attempt(problem, solver, state, now, problem.inflow[0], 600.0, None)
+    inflow = problem.feeds.inflow[0, 0]
+    one = attempt(problem, solver, state, now, inflow, 600.0, None)
+    attempt(problem, solver, one.state, faces(problem, one.state), 0.5 * inflow, 1200.0, DAMPING)
+    two = attempt(problem, solver, state, now, inflow, 600.0, None)
     for name in State.__slots__:
         a, b = (np.asarray(getattr(trial.state, name)) for trial in (one, two))
         assert a.tobytes() == b.tobytes(), name

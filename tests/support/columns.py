@@ -12,6 +12,7 @@ from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
 from gossan.chemistry.equilibrium import mineral_saturation
+from gossan.coupling.drive import settled
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Stride, march, pore_volumes
 from gossan.coupling.problem import Problem
@@ -161,7 +162,7 @@ def assert_books_closed(books: Books, state: State) -> None:
 
 def assert_at_equilibrium(problem: Problem, state: State) -> None:
     """No mineral that may form is supersaturated, none is less than nothing, none there is undersaturated."""
-    system = problem.system
+    system = settled(problem, state).system
     index = mineral_saturation(system, state.ln_activity)
     assert state.solid.min(initial=0.0) >= 0.0
     if system.may_form.any():

@@ -70,7 +70,8 @@ def profile(state: Pretended) -> dict[str, np.ndarray]:
     faces = np.append(c[0], c[1, 0])
     return {"dissolved": c, "solid": state.presence * c[:2], "saturation": np.log10(c[:2]),
             "activity": np.log10(c[1:]), **along, "pe": np.full(CELLS, np.nan), "darcy_flux": faces,
-            "head": -faces}
+            "head": -faces, "temperature": 285.0 + state.time,
+            "immobile_dissolved": 0.5 * c, "sorbed": 2.0 * c}
 
 
 def record(writer: ResultWriter, state: Pretended, pace: PretendedPace) -> None:

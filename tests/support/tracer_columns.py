@@ -10,7 +10,7 @@ import numpy as np
 from scipy.interpolate import CubicSpline
 from tests.support.columns import Walk, column, walk
 
-from gossan.coupling.pores import flow
+from gossan.coupling.drive import Drive
 from gossan.transport.faces import faces_of
 from gossan.transport.step import passages
 
@@ -95,9 +95,10 @@ class Profiles:
         """What leaves at that time: the concentration at the last face."""
         state = next(s for s in self.walk.records if abs(s.time - days * DAY) < 1.0)
         problem = self.walk.problem
-        flux, _ = flow(problem, state, 1.0)
+        drive = Drive(problem, state)
+        flux, _ = drive.flow(1.0, 0.0)
         faces = faces_of(problem.transport, state.water, flux)
-        passed = passages(faces, state.dissolved, problem.inflow[0], 1.0).passed
+        passed = passages(faces, state.dissolved, drive.inflow, 1.0).passed
         return float(passed[problem.solutes.index(name), -1] / flux[-1])
 
     def front(self, value: float, days: float, name: str = "a") -> float:

@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+from functools import lru_cache, partial
+
 import numpy as np
 
 from gossan.base.amounts import Amount
+from gossan.case.build_feeds import feeds_of, frames_of, records_of, waters_entering
 from gossan.case.build_initial import initial_state
 from gossan.case.build_retention import decay_of, isotherms_of, stagnant_of
+from gossan.case.entries import course, series_of, waters_of_rows
 from gossan.case.model import Case, Layer
 from gossan.case.quantities import Solid
 from gossan.case.redox import coupled_by
@@ -17,14 +21,15 @@ from gossan.chemistry.water import Water
 from gossan.constants.couples import applicable
 from gossan.constants.entries import Mineral, Table
 from gossan.constants.find import find_mineral
+from gossan.coupling.drive import Drive
 from gossan.coupling.pace import Pace
 from gossan.coupling.problem import Port, Problem
-from gossan.coupling.schedule import Schedule, every
+from gossan.coupling.schedule import Schedule
 from gossan.transport import clogging, grid
 from gossan.transport.faces import transport_of
 from gossan.transport.tortuosity import Tortuosity
 
-FRAMES, RECORDS = 100, 1000  # default divisions of a run
+SYSTEMS = 256  # temperatures whose chemistry is kept: those of a year in steps of a day and a half
 
 
 def build(case: Case) -> Problem:
@@ -36,17 +41,21 @@ def build(case: Case) -> Problem:
     assert case.flow is not None
     assert case.run is not None
     table = case.table
-    used = dict.fromkeys([layer.water for layer in case.layers] + [feed.water for feed in case.flow.feed])
+    series = series_of(case)
+    feed = course(case, series)
+    told = case.model_copy(update={"waters": {**case.waters, **waters_of_rows(case, series)}})
+    used = dict.fromkeys([layer.water for layer in case.layers]) | waters_entering(feed)
     if case.flow.outlet == "concentration":
         used[case.flow.outlet_water] = None
-    waters = read_waters(case, list(used))
+    waters = read_waters(told, list(used))
     solids = [_starting_solids(layer, table) for layer in case.layers]
-    system = _system(case, table, waters, solids)
+    system_at = lru_cache(maxsize=SYSTEMS)(partial(_system, case, table, waters, solids))
+    system = system_at(feed.pieces[0].first.temperature)
     gases = {f"{gas}(g)": held.amount.si for gas, held in case.chemistry.gases.items() if held.amount}
     solids = [{**solid, **gases} for solid in solids]
     cells = grid.grid_of([_cut(layer) for layer in case.layers])
     tracers = case.tracer_names
-    composition = {name: _composition(case, name, water, system) for name, water in waters.items()}
+    composition = {name: _composition(told, name, water, system) for name, water in waters.items()}
     porosity = np.array([layer.porosity for layer in case.layers])[cells.layer]
     chemical = len(system.components)
     by_volume = case.run.duration.unit == "PV"
@@ -66,10 +75,8 @@ def build(case: Case) -> Problem:
             composition[case.flow.outlet_water] if case.flow.outlet == "concentration" else None,
             _gradients(case, chemical) if case.flow.outlet == "gradient" else None,
         ),
-        inflow=np.array([composition[feed.water] for feed in case.flow.feed]),
-        feeds=_feeds(case),
-        inlet_flux=case.flow.darcy_flux.si if case.flow.darcy_flux else None,
-        head_drop=case.flow.head_drop.si if case.flow.head_drop else None,
+        feeds=feeds_of(feed, composition),
+        system_at=system_at,
         conductivity=np.array(
             [layer.conductivity.si if layer.conductivity else np.nan for layer in case.layers]
         )[cells.layer],
@@ -77,8 +84,8 @@ def build(case: Case) -> Problem:
         porosity=porosity,
         initial=initial_state(case, system, cells, composition, solids, len(ports), stagnant, isotherms),
         end=Schedule(np.array([case.run.duration.si]), by_volume),
-        frames=_interval(case, "profiles_every", FRAMES),
-        records=_interval(case, "ports_every", RECORDS),
+        frames=frames_of(case, feed),
+        records=records_of(case, feed),
         ports=ports,
         coupling=case.run.coupling,
         accuracy=case.run.accuracy,
@@ -91,7 +98,7 @@ def build(case: Case) -> Problem:
 
 def first_pace(problem: Problem) -> Pace:
     """Where a run begins: a short step, which grows as fast as its error allows."""
-    flux = problem.inlet_flux or 0.0
+    flux = float(Drive(problem, problem.initial).flow(1.0)[0][0])
     crossing = problem.pore_volume / flux if flux > 0.0 else 86400.0
     return Pace(crossing / (50.0 * len(problem.grid.width)))
 
@@ -151,8 +158,10 @@ def _moles_of_solid(solid: Solid, mineral: Mineral, layer: Layer) -> float:
     return amount.si * per_bulk * solid.reactive
 
 
-def _system(case: Case, table: Table, waters: dict[str, Water], solids: list[dict[str, float]]) -> System:
-    """The system of all that is in the waters and solids of the column."""
+def _system(
+    case: Case, table: Table, waters: dict[str, Water], solids: list[dict[str, float]], temperature: float
+) -> System:
+    """The system, at a temperature in K, of all that is in the waters and solids of the column."""
     components = {name for water in waters.values() for name in water.valences}
     dissolving = list(dict.fromkeys(name for layer in solids for name in layer))
     for name in dissolving:
@@ -173,7 +182,7 @@ def _system(case: Case, table: Table, waters: dict[str, Water], solids: list[dic
         components,
         listed,
         dissolving=dissolving,
-        temperature=case.temperature.si,
+        temperature=temperature,
         activity=chemistry.activity,
         excluded=excluded_by(case, table),
         coupled=applicable(coupled_by(chemistry, table), components, table),
@@ -230,22 +239,3 @@ def _tracer(case: Case, name: str, said: dict[str, Amount], water_density: float
     return per_volume / molar_mass.si
 
 
-def _feeds(case: Case) -> Schedule:
-    assert case.flow is not None
-    starts = [feed.from_ for feed in case.flow.feed]
-    if case.flow.darcy_flux is None:
-        return Schedule(np.array([start.si for start in starts]), any(s.unit == "PV" for s in starts))
-    return Schedule(np.array([case.seconds(start) for start in starts]))
-
-
-def _interval(case: Case, key: str, divisions: int) -> Schedule:
-    """When to record: every so often, on the clock of the interval, and at the end."""
-    assert case.run is not None
-    duration, interval = case.run.duration, getattr(case.run, key)
-    if interval is None:
-        return every(duration.si / divisions, duration.si, duration.unit == "PV")
-    if interval.unit == duration.unit:
-        return every(interval.si, duration.si, interval.unit == "PV")
-    if case.flow is not None and case.flow.darcy_flux is not None:
-        return every(case.seconds(interval), case.seconds(duration))
-    return every(interval.si, 1e6 * interval.si, interval.unit == "PV")

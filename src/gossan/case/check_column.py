@@ -1,9 +1,9 @@
-"""Checks of the column: layers, flow and ports must fit together."""
+"""Checks of the column: layers and ports must fit together."""
 
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterable
+from collections.abc import Iterable
 
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
@@ -15,7 +15,6 @@ from gossan.case.model import MOST_CELLS, Layer
 from gossan.constants.entries import Table
 
 ROUND_OFF = 1e-9  # lengths and shares that differ by less than this are the same
-STILL = "the water stands still (darcy_flux is zero): no pore volume ever passes"
 MOST_GROWTH = 1.5  # of a cell's length over its neighbour's, within a layer that grows
 
 
@@ -25,7 +24,7 @@ def check_layers(draft: Draft, table: Table) -> None:
     _check_names_once(draft, "layers", layers)
     for index, layer in enumerate(layers):
         path: Path = ("layers", index)
-        _check_water_name(draft, layer.water, (*path, "water"))
+        check_water_name(draft, layer.water, (*path, "water"))
         _check_cells(draft, layer, path)
         _check_solids(draft, table, layer, path)
         _check_conductivity(draft, path)
@@ -34,7 +33,8 @@ def check_layers(draft: Draft, table: Table) -> None:
 
 def _check_conductivity(draft: Draft, path: Path) -> None:
     flow = draft.case.flow
-    if flow and flow.head_drop is not None and "conductivity" not in draft.at(path):
+    heads = [flow.head_drop, *(feed.head_drop for feed in flow.feed or ())] if flow else []
+    if any(head is not None for head in heads) and "conductivity" not in draft.at(path):
         wrong = "is missing: with a head_drop every layer needs one"
         draft.fault((*path, "conductivity"), wrong, 'write conductivity = "25 m/d"')
 
@@ -64,7 +64,7 @@ def _check_names_once(draft: Draft, what: str, entries: Iterable) -> None:
             seen.add(entry.name)
 
 
-def _check_water_name(draft: Draft, name: str | None, at: Path) -> None:
+def check_water_name(draft: Draft, name: str | None, at: Path) -> None:
     waters = draft.at(("waters",))
     if name is not None and waters and name not in waters:
         draft.fault(at, f'is "{name}", but there is no [waters.{name}]', did_you_mean(name, waters))
@@ -119,42 +119,11 @@ def _check_solids(draft: Draft, table: Table, layer: Layer, path: Path) -> None:
         draft.fault((*path, "minerals"), wrong, f"at most {100 * (1 - layer.porosity):.4g} vol% is solid")
 
 
-def check_flow(draft: Draft) -> None:
-    """One way of driving the water; a feed that starts at zero and goes on in order."""
-    flow = draft.case.flow
-    if flow is None:
-        return
-    given = [key for key in ("darcy_flux", "head_drop") if key in draft.at(("flow",))]
-    if not given:
-        draft.fault(("flow", "darcy_flux"), "is missing", 'write darcy_flux = "0.12 m/d", or a head_drop')
-    if len(given) == 2:
-        wrong = "stands beside darcy_flux: only one can be held"
-        draft.fault(("flow", "head_drop"), wrong, "keep one of the two")
-    _check_outlet(draft)
-    _check_still_water(draft)
-    seconds = _clock(draft)
-    last = -math.inf
-    for index, feed in enumerate(flow.feed or ()):
-        path: Path = ("flow", "feed", index)
-        _check_water_name(draft, feed.water, (*path, "water"))
-        if feed.from_ is None:
-            continue
-        start = seconds(feed.from_, (*path, "from"))
-        if start is None:
-            continue
-        if index == 0 and start != 0:
-            wrong = f'is "{feed.from_}"; the first feed starts with the run'
-            draft.fault((*path, "from"), wrong, 'write "0 d"')
-        elif start <= last:
-            wrong = f'is "{feed.from_}", not later than the feed before'
-            draft.fault((*path, "from"), wrong, "put them in order")
-        _check_inside_run(draft, feed.from_, start, (*path, "from"), seconds)
-        last = max(last, start)
-
-
-def _check_outlet(draft: Draft) -> None:
+def check_outlet(draft: Draft) -> None:
     """What the kind of outlet needs, and nothing that belongs to another kind."""
     flow, given = draft.case.flow, draft.at(("flow",))
+    if flow is None:
+        return
     needed = {
         "concentration": ("outlet_water", '"river"'),
         "gradient": ("outlet_gradient", '{bromide = "-5 mg/L/m"}'),
@@ -166,7 +135,7 @@ def _check_outlet(draft: Draft) -> None:
             cure = f'write outlet = "{kind}", or leave it out'
             draft.fault(("flow", key), f'goes with outlet = "{kind}"', cure)
     if "outlet_water" in given:
-        _check_water_name(draft, flow.outlet_water, ("flow", "outlet_water"))
+        check_water_name(draft, flow.outlet_water, ("flow", "outlet_water"))
     tracers = tracer_names(draft)
     for name, gradient in (flow.outlet_gradient or {}).items():
         at: Path = ("flow", "outlet_gradient", name)
@@ -175,48 +144,6 @@ def _check_outlet(draft: Draft) -> None:
             draft.fault(at, wrong, did_you_mean(name, tracers))
         elif gradient is not None:
             check_tracer(draft, name, gradient, at)
-
-
-def _check_still_water(draft: Draft) -> None:
-    """Where no water flows no pore volume passes."""
-    flow, run = draft.case.flow, draft.case.run
-    if not (run and flow.darcy_flux and flow.darcy_flux.si == 0.0):
-        return
-    for key in ("duration", "profiles_every", "ports_every"):
-        given = getattr(run, key)
-        if given is not None and given.unit == "PV":
-            draft.fault(("run", key), f'is "{given}", but {STILL}', 'give a time, such as "30 d"')
-
-
-def _clock(draft: Draft) -> Callable[[Amount, Path | None], float | None]:
-    """Turns times and pore volumes into s; None where the text does not say enough."""
-    flow, layers = draft.case.flow, draft.case.layers or ()
-
-    def seconds(time: Amount, at: Path | None) -> float | None:
-        if time.unit == "s" or time.si == 0:
-            return time.si
-        if flow and flow.head_drop is not None:
-            if at:
-                wrong = f'is "{time}", which is no time before the run: with a head_drop the flux changes'
-                draft.fault(at, wrong, 'give a time, such as "30 d"')
-            return None
-        if flow and flow.darcy_flux and flow.darcy_flux.si == 0.0:
-            if at:
-                draft.fault(at, f'is "{time}", but {STILL}', 'give a time, such as "30 d"')
-            return None
-        complete = layers and all(layer.length and layer.porosity for layer in layers)
-        if not (flow and flow.darcy_flux and complete):
-            return None
-        return time.si * math.fsum(layer.length.si * layer.porosity for layer in layers) / flow.darcy_flux.si
-
-    return seconds
-
-
-def _check_inside_run(draft: Draft, given: Amount, start: float, at: Path, seconds: Callable) -> None:
-    run = draft.case.run
-    end = seconds(run.duration, None) if run and run.duration is not None else None
-    if end is not None and start >= end:
-        draft.fault(at, f'is "{given}", not before the end of the run ("{run.duration}")', "leave it out?")
 
 
 def check_ports(draft: Draft) -> None:

@@ -5,9 +5,12 @@ Each check reads the draft of a case, in which a hole (None) is a value that has
 
 from __future__ import annotations
 
+from pathlib import Path as FilePath
+
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
-from gossan.case.check_column import check_flow, check_layers, check_ports
+from gossan.case.check_column import check_layers, check_ports
+from gossan.case.check_flow import check_flow
 from gossan.case.check_redox import check_redox
 from gossan.case.check_retention import check_parents, check_sorption
 from gossan.case.check_waters import (
@@ -25,12 +28,16 @@ from gossan.constants.entries import Table
 from gossan.constants.find import UnknownName, find_mineral
 
 
-def check_case(draft: Draft, table: Table) -> None:
-    """Run every check across keys; faults are added to the draft."""
+def check_case(draft: Draft, table: Table, files: dict[str, str], folder: FilePath) -> None:
+    """Run every check across keys; faults are added to the draft.
+
+    files   texts of the files that the case names, by name; those read from the folder are added
+    """
     check_waters(draft, table)
     check_redox(draft, table)
     check_layers(draft, table)
-    check_flow(draft)
+    check_flow(draft, table, files, folder)
+    check_outlet(draft)
     check_chemistry(draft, table)
     check_ports(draft)
     check_parents(draft)

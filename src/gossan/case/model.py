@@ -14,8 +14,8 @@ from pydantic import Field, PrivateAttr
 from gossan.base.amounts import Amount, amount
 from gossan.base.errors import Fault, InputError
 from gossan.case.column_kinds import CellLength, Growing, Winding, WindingKind
+from gossan.case.feed import TEMPERATURE, Flow
 from gossan.case.fields import Choice, Flag, Later, Names, Number, Text
-from gossan.case.flow import Flow
 from gossan.case.quantities import (
     Alkalinity,
     GasPressure,
@@ -40,10 +40,6 @@ MOST_CELLS = 1_000_000  # of a layer; more is a slip of the unit of `cell`
 
 Name = Annotated[str, Text(is_name=True, example='"gate"')]
 PH = Annotated[float, Number("a pH", -2, 16, example="5.9")]
-TEMPERATURE = Quantity(
-    ("K",), "a temperature", '"12 degC"', 273.15, 323.15,
-    says="water must be liquid and its constants valid: between 0 and 50 degC",
-)  # fmt: skip
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
 
@@ -274,6 +270,7 @@ class Case(TableOfCase):
     _text: str = PrivateAttr("")
     _table: Table | None = PrivateAttr(default=None)
     _constants_text: str = PrivateAttr("")
+    _files: dict[str, str] = PrivateAttr(default={})
     _lines: dict[tuple[str | int, ...], int] = PrivateAttr(default={})
 
     @property
@@ -295,6 +292,11 @@ class Case(TableOfCase):
     def constants_text(self) -> str:
         """The text of the user's own constants; empty without."""
         return self._constants_text
+
+    @property
+    def files(self) -> dict[str, str]:
+        """The texts of the files beside the case that it names, by name; the constants are not among them."""
+        return self._files
 
     def line_of(self, *path: str | int) -> int:
         """The line of a key or table in the text, 0 where it is not known."""
@@ -329,19 +331,6 @@ class Case(TableOfCase):
         """Temperature of a water of the case, K."""
         own = self.waters[water].temperature
         return own.si if own else self.temperature.si
-
-    def seconds(self, time: Amount) -> float:
-        """A time or a number of pore volumes in s, under held flux.
-
-        Raises  ValueError for pore volumes under held head: the flux is not known before the run
-        """
-        if time.unit == "s":
-            return time.si
-        if self.flow is None or self.flow.darcy_flux is None:
-            raise ValueError("pore volumes become a time only where the flux is held")
-        if self.flow.darcy_flux.si == 0.0:
-            raise ValueError("pore volumes never pass where the water stands still")
-        return time.si * self.pore_length / self.flow.darcy_flux.si
 
     def require_column(self) -> None:
         """Refuse a case that says too little to run a column; raises InputError with all that is missing."""

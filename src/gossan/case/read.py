@@ -38,11 +38,13 @@ def read_case(path: str | Path) -> Case:
 
 
 def case_from_text(
-    text: str, name: str = "case.toml", folder: str | Path = ".", constants: str | None = None
+    text: str, name: str = "case.toml", folder: str | Path = ".", constants: str | None = None,
+    files: dict[str, str] | None = None,
 ) -> Case:
     """Read and check a case given as text; `name` stands in messages, `folder` is where its files are.
 
     constants  the text of the user's own constants, where their file is not in the folder any more
+    files      the same of other files that the case names, by name
 
     Raises  InputError
     """
@@ -50,7 +52,7 @@ def case_from_text(
     data, mended, faults = parse(plain, name)
     if data is None:
         raise InputError(faults)
-    return _checked(data, key_lines(mended), name, text, Path(folder), faults, constants)
+    return _checked(data, key_lines(mended), name, text, Path(folder), faults, constants, files)
 
 
 def case_from_data(data: dict[str, Any], name: str = "case", folder: str | Path = ".") -> Case:
@@ -62,16 +64,17 @@ def case_from_data(data: dict[str, Any], name: str = "case", folder: str | Path 
 
 
 def _checked(data: dict[str, Any], lines: dict[KeyPath, int], name: str, text: str, folder: Path,
-             faults: list[Fault], constants: str | None = None) -> Case:
+             faults: list[Fault], constants: str | None = None, files: dict[str, str] | None = None) -> Case:
     draft = Draft(data, lines, name)
     draft.faults[:0] = faults
     table = _table(draft, folder, constants)
-    check_case(draft, table)
+    files = dict(files or {})
+    check_case(draft, table, files, folder)
     if draft.faults:
         # the case's own faults in the order of lines, then those of other files
         raise InputError(sorted(draft.faults, key=lambda fault: (fault.file != name, fault.line)))
     case: Case = draft.case
-    case._file, case._text, case._lines, case._table = name, text, lines, table
+    case._file, case._text, case._lines, case._table, case._files = name, text, lines, table, files
     if case.chemistry.constants:
         case._constants_text = constants or (folder / case.chemistry.constants).read_text(encoding="utf-8")
     return case

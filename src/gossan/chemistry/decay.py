@@ -89,7 +89,7 @@ def decayed(kept: Kept, stock: np.ndarray, gained: np.ndarray) -> tuple[np.ndarr
     else:
         left = kept.whole @ stock + kept.first @ gained
         made = left - after
-    short = ((left < 0.0) & (after >= 0.0)).any(axis=0)
+    short = (left < 0.0).any(axis=0)
     if short.any():
         left[:, short] = kept.whole @ after[:, short]
         made[:, short] = left[:, short] - after[:, short]

@@ -127,12 +127,15 @@ class Solver:
         amount (component, cell) dissolved, solid (mineral, cell) before
         upper (mineral, cell) the most of a mineral there may be: inf, or what there was at the start for
             one that may only dissolve; default: by system.may_form
-        skip: leave a cell alone whose dissolved amounts all stand within this (relative) of the last solve
+        skip: leave a cell alone whose dissolved amounts all stand within this (relative) of the last solve,
+            where that was of this same system, at this temperature
         Raises   SolveError naming the cell; nothing given is changed
         """
         from gossan.chemistry.kernel.cells import COLD, WARM, settle_cells
 
         system = self.system
+        if start.system is not system:
+            skip = -1.0
         if upper is None:
             upper = np.where(system.may_form[:, None], UNBOUNDED, solid)
         amount, solid, upper = (np.array(a, float, order="C") for a in (amount, solid, upper))
@@ -152,7 +155,7 @@ class Solver:
             )  # fmt: skip
             self._rescue(arrays, outcome, steps)
         return replace(
-            start, amount=amount, solid=solid, presence=presence, ln_activity=ln_activity,
+            start, system=system, amount=amount, solid=solid, presence=presence, ln_activity=ln_activity,
             ionic_strength=ionic_strength, solved=solved, steps=steps, given=given,
         )  # fmt: skip
 

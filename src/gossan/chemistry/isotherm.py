@@ -80,7 +80,7 @@ def shared_out(laws: Isotherms, total: np.ndarray, water: np.ndarray) -> tuple[n
         )
     sorbed = np.minimum(sorbed_at(laws, concentration), np.where(positive, total, 0.0))
     dissolved = np.where(positive, np.minimum(water * concentration, total), total)
-    mostly_sorbed = sorbed > dissolved
+    mostly_sorbed = positive & (sorbed > dissolved)
     dissolved[mostly_sorbed & (dissolved < NO_ATOM)] = 0.0
     return (
         np.where(mostly_sorbed, dissolved, total - sorbed),

@@ -50,7 +50,7 @@ class Reading:
             if report.says_pe
             and name in table.components
             and name not in self._coupled
-            and partner(table.components[name]) in report.undivided
+            and partner(table.components[name]) in report.undivided & self._components
         )
         self.system = self._system(self._components, (*self._coupled, *self.divided))
         self.totals = np.array([report.dissolved.get(name, 0.0) for name in self.system.basis])
@@ -139,9 +139,14 @@ class Reading:
             )
         if least >= 0.0:
             return bare
-        needed = root_of_total(lambda amount: excess(with_carbon(amount)), 0.0, max(given, 1e-9))
+        cure = "check the pH, and the redox potential: carbon that is methane has none"
+        told = f"has an alkalinity of {given:.3g} eq/kg that no carbon brings about"
+        try:
+            needed = root_of_total(lambda amount: excess(with_carbon(amount)), 0.0, max(given, 1e-9))
+        except Wrong as beyond:  # more carbon than any water holds
+            raise Wrong(told, cure) from beyond
         if needed is None:
-            raise Wrong(f"has an alkalinity of {given:.3g} eq/kg that no carbon brings about", "check the pH")
+            raise Wrong(told, cure)
         return with_carbon(needed)
 
     def let_go(self, found: Equilibrium, neutral: bool = False) -> Equilibrium:

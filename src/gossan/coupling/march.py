@@ -11,8 +11,9 @@ import numpy as np
 from gossan.base.errors import SolveError
 from gossan.chemistry.equilibrium import Solver
 from gossan.coupling.attempt import Trial, attempt
+from gossan.coupling.drive import Drive, at_once, pore_volumes, settled, time_to_pass
 from gossan.coupling.pace import Pace, acceptable
-from gossan.coupling.pores import flow, pore_room
+from gossan.coupling.pores import pore_room
 from gossan.coupling.problem import Problem
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
@@ -20,6 +21,7 @@ from gossan.transport.faces import Faces, faces_of
 from gossan.transport.step import DAMPING
 
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
+INSTANT = 1e-9  # s: while nothing flows and this goes by, no solute gets anywhere
 # Explicit transport may cost so many times the steps; beyond, it is implicit, which is as good for tracers
 # but only first order beside a front of what solids hold.
 GAIN_OF_TRACERS, GAIN_OF_RETENTION = 3.0, 10.0
@@ -48,29 +50,35 @@ class Clogged(Exception):
         self.cell, self.time = cell, time
 
 
-def pore_volumes(problem: Problem, state: State) -> float:
-    """Water that has entered over the water there was at the start (equations.md, 45)."""
-    return float(state.water_passed[0].sum()) / problem.pore_volume
-
-
 def march(problem: Problem, state: State, pace: Pace, solver: Solver | None = None) -> Iterator[Stride]:
     """Walk from state.time to the end. To resume is this same call, with a stored state and pace.
 
     Raises   Clogged when a cell closes; SolveError, naming cell and time, when no step length helps
     """
-    solver = solver or Solver(problem.system)
-    while True:
-        entered = pore_volumes(problem, state)
-        if problem.end.passed(problem.end.clock(state.time, entered)):
-            return
-        stride = _step(problem, solver, state, pace, entered)
+    solvers = Solvers(solver or Solver(problem.system))
+    while not _ended(problem, state):
+        stride = _step(problem, solvers, state, pace)
         state, pace = stride.state, stride.pace
         yield stride
 
 
-def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: float) -> Stride:
-    feed = max(problem.feeds.passed(problem.feeds.clock(state.time, entered)) - 1, 0)
-    inflow = problem.inflow[feed]
+class Solvers:
+    """The solver of the system in force; a new one where the temperature has changed."""
+
+    def __init__(self, solver: Solver):
+        self._solver = solver
+
+    def of(self, problem: Problem) -> Solver:
+        """The solver of a problem as it is at one moment."""
+        if self._solver.system is not problem.system:
+            self._solver = Solver(problem.system)
+        return self._solver
+
+
+def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Stride:
+    drive = Drive(problem, state)
+    entered = pore_volumes(problem, state)
+    before = settled(problem, state)
     room = pore_room(problem, state)
     if room.min() < 0.0:
         raise Clogged(int(room.argmin()), state.time)
@@ -78,15 +86,27 @@ def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: f
     failure: SolveError | None = None
     rejected = 0
     while True:
-        darcy_flux, head = flow(problem, state, pace.dt)
-        if darcy_flux[0] < 0.0 and problem.head_drop is not None and problem.head_drop > 0.0:
+        darcy_flux, head = drive.flow(pace.dt, 0.0)
+        if darcy_flux[0] < 0.0 < head[0]:
             raise SolveError(TURNED_BACK, 0, problem.grid.layers[0].name, 0.0, state.time)
+        inlet = float(darcy_flux[0]), drive.rise(pace.dt)
+        if drive.ramps:
+            wish, _ = _fitted(problem, state, entered, inlet, pace.dt)
+            darcy_flux, head = drive.flow(pace.dt, wish)
         faces = faces_of(problem.transport, state.water, darcy_flux)
         longest, implicit = longest_step(problem, faces)
         theta = WEIGHT_OF_END[problem.coupling] if implicit else None
-        dt, lands = _fitted(problem, state, entered, darcy_flux[0], min(pace.dt, longest))
+        dt, lands = _fitted(problem, state, entered, inlet, min(pace.dt, longest))
+        if drive.ramps:
+            darcy_flux, head = drive.flow(pace.dt, dt)
+            faces = faces_of(problem.transport, state.water, darcy_flux)
         try:
-            trial = attempt(problem, solver, state, faces, inflow, dt, theta)
+            begun, start = state, problem.at(drive.temperature, before)
+            if start.system is not before.system:
+                begun = _settled_anew(start, solvers, state, drive.inflow)
+            moment = problem.at(drive.temperature_after(dt, inlet), start)
+            inflow = drive.mean_inflow(dt, inlet)
+            trial = attempt(moment, solvers.of(moment), begun, faces, inflow, dt, theta)
         except SolveError as error:
             failure, trial = error, None
         if trial is not None:
@@ -102,15 +122,30 @@ def _step(problem: Problem, solver: Solver, state: State, pace: Pace, entered: f
     if lands and following.dt >= dt:
         following = replace(following, dt=max(following.dt, pace.dt))  # a record cut it short, not its error
     now = pore_volumes(problem, trial.state)
+    ended = _ended(problem, trial.state)
     return Stride(
         state=trial.state,
         pace=following,
         trial=trial,
         head=head,
-        frame_due=_due(problem.frames, state, trial.state, entered, now),
-        record_due=_due(problem.records, state, trial.state, entered, now),
+        frame_due=ended or _due(problem.frames, state, trial.state, entered, now),
+        record_due=ended or _due(problem.records, state, trial.state, entered, now),
         rejected=rejected,
     )
+
+
+def _ended(problem: Problem, state: State) -> bool:
+    return problem.end.passed(problem.end.clock(state.time, pore_volumes(problem, state))) > 0
+
+
+def _settled_anew(problem: Problem, solvers: Solvers, state: State, inflow: np.ndarray) -> State:
+    """A state after its temperature has jumped: the same amounts in equilibrium anew, in no time.
+
+    Raises   SolveError where a cell finds no equilibrium
+    """
+    nothing = faces_of(problem.transport, state.water, np.zeros(len(problem.grid.edges)))
+    trial = attempt(problem, solvers.of(problem), state, nothing, inflow, INSTANT, None)
+    return at_once(trial.state, state)
 
 
 def _due(schedule: Schedule, before: State, after: State, entered: float, now: float) -> bool:
@@ -137,14 +172,14 @@ def longest_step(problem: Problem, faces: Faces) -> tuple[float, bool]:
 
 
 def _fitted(
-    problem: Problem, state: State, entered: float, inlet_flux: float, dt: float
+    problem: Problem, state: State, entered: float, inlet: tuple[float, float], dt: float
 ) -> tuple[float, bool]:
     """A step no longer than dt that ends on the next event, or leaves a decent step before it."""
     nearest = math.inf
-    for schedule in (problem.frames, problem.records, problem.feeds, problem.end):
+    for schedule in (problem.frames, problem.records, problem.feeds.begins, problem.end):
         ahead = schedule.ahead(schedule.clock(state.time, entered))
-        if schedule.by_volume:
-            ahead = ahead * problem.pore_volume / inlet_flux if inlet_flux > 0.0 else math.inf
+        if schedule.by_volume and ahead < math.inf:
+            ahead = time_to_pass(ahead * problem.pore_volume, inlet)
         nearest = min(nearest, ahead)
     if nearest <= dt * (1.0 + 1e-9):
         return nearest, True

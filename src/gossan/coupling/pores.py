@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from gossan.coupling.feeds import Push
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State, StillWater
 from gossan.transport.clogging import conductivity_left
@@ -50,7 +51,7 @@ def conductivity(problem: Problem, water: np.ndarray) -> np.ndarray:
     return problem.conductivity * left
 
 
-def flow(problem: Problem, state: State, dt: float) -> tuple[np.ndarray, np.ndarray]:
+def flow(problem: Problem, state: State, dt: float, push: Push) -> tuple[np.ndarray, np.ndarray]:
     """Darcy flux and head at every face for the coming step: (face,) m s-1, (face,) m.
 
     What the solids pushed out in the last step they are taken to push out in this one, and what is now in
@@ -61,7 +62,6 @@ def flow(problem: Problem, state: State, dt: float) -> tuple[np.ndarray, np.ndar
         excess = problem.whole(excess, squeezed(problem, state.still, dt))
     made_up = np.concatenate([[0.0], np.cumsum(excess * problem.grid.width)])
     conductivities = np.maximum(conductivity(problem, problem.water(state)), NEARLY_CLOSED)
-    if problem.head_drop is not None:
-        return flow_of_head(problem.head_drop, conductivities, problem.grid.width, made_up)
-    assert problem.inlet_flux is not None
-    return flow_of_flux(problem.inlet_flux, conductivities, problem.grid.width, made_up)
+    if push.head_drop == push.head_drop:
+        return flow_of_head(push.head_drop, conductivities, problem.grid.width, made_up)
+    return flow_of_flux(push.darcy_flux, conductivities, problem.grid.width, made_up)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
@@ -11,6 +11,7 @@ import numpy as np
 from gossan.chemistry.decay import Decay
 from gossan.chemistry.isotherm import Isotherms
 from gossan.chemistry.system import System
+from gossan.coupling.feeds import Feeds
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
 from gossan.transport.clogging import Clogging
@@ -44,13 +45,11 @@ class Stagnant:
 class Problem:
     """A column, its chemistry, what flows in and when things are recorded."""
 
-    system: System
+    system: System  # at the temperature of the moment, see `at`
     tracers: tuple[str, ...]
     transport: Transport
-    inflow: np.ndarray  # (feed, solute) mol m-3 of water
-    feeds: Schedule  # when each begins
-    inlet_flux: float | None  # m s-1, or
-    head_drop: float | None  # m
+    feeds: Feeds
+    system_at: Callable[[float], System]  # the same substances at another temperature, K
     conductivity: np.ndarray  # (cell,) m s-1 of the clean bed, NaN where it is not known
     clogging: tuple[Clogging, ...]  # of each layer
     porosity: np.ndarray  # (cell,) water-filled fraction at the start, immobile water included
@@ -65,6 +64,18 @@ class Problem:
     decay: Decay | None = None
     isotherms: Isotherms | None = None  # of the whole solid
     stagnant: Stagnant | None = None
+    settled_in: System | None = None  # in which a step's first state was, where that is not `system`
+
+    def at(self, temperature: float, before: Problem | None = None) -> Problem:
+        """The same problem with its chemistry at a temperature, K.
+
+        before  how it was for the state that a step begins with; without, as it will be
+        """
+        system = self.system if temperature == self.system.temperature else self.system_at(temperature)
+        settled_in = before.system if before is not None and before.system is not system else None
+        if system is self.system and settled_in is self.settled_in:
+            return self
+        return replace(self, system=system, settled_in=settled_in)
 
     @property
     def grid(self) -> Grid:

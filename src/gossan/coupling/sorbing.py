@@ -9,13 +9,14 @@ import numpy as np
 
 from gossan.base.errors import SolveError
 from gossan.chemistry.equilibrium import UNBOUNDED, Equilibrium, Solver
-from gossan.chemistry.isotherm import Isotherms, shared_out, sorbed_at
+from gossan.chemistry.isotherm import NO_ATOM, Isotherms, shared_out, sorbed_at
 from gossan.coupling.problem import Problem
 
 # A cell is left alone while its dissolved amounts stand within this of its last solve: far below any
 # accuracy that a case may ask for, far above rounding.
 SKIP = 1e-12
-AGREED = 1e-12  # of what is sorbed: what the isotherm may still wish for; the solver itself is no better
+AGREED = 1e-11  # of what is sorbed: what the isotherm may still wish for; above what SKIP leaves
+NEVER = -1.0  # to skip: a secant needs answers that follow every change
 ROUNDS = 100  # halving a bracket alone takes half as many
 
 
@@ -59,65 +60,71 @@ class _Bed:
         Where one does, guess that it goes on to hold the concentration, and close what the isotherm then
         still wishes for.
         """
-        total = self.moved[self.laws.solutes] + self.sorbed
+        moved = self.moved[self.laws.solutes]
         formulas = self.solver.system.mineral_stoichiometry[:, self.laws.solutes]
         there = np.abs(formulas.T) @ self.solid
-        _, free = shared_out(self.laws, total, self.water)
-        held = np.where(there > 0.0, self.sorbed, free)
-        found = self._tried(start, held)
+        free, held = shared_out(self.laws, moved + self.sorbed, self.water)
+        free, held = np.where(there > 0.0, moved, free), np.where(there > 0.0, self.sorbed, held)
+        found = self._tried(start, free, SKIP)
         wish = self._wished(found, held)
-        open_ = np.flatnonzero(_far(held, wish))
+        open_ = np.flatnonzero(~_small(held, wish).all(axis=0))
         if len(open_):
-            part = self._at(open_)._closed(_columns(found, open_), held[:, open_], wish[:, open_],
-                                           total[:, open_] + there[:, open_], open_)
-            found = _with_columns(found, open_, part[0])
-            held[:, open_] = part[1]
+            part = self._at(open_)
+            found_part, held[:, open_] = part._closed(
+                _columns(found, open_), free[:, open_], held[:, open_], wish[:, open_], there[:, open_], open_
+            )
+            found = _with_columns(found, open_, found_part)
         return found, held
 
     def _closed(
-        self, found: Equilibrium, held: np.ndarray, wish: np.ndarray, most: np.ndarray, names: np.ndarray
+        self, found: Equilibrium, free: np.ndarray, held: np.ndarray, wish: np.ndarray, there: np.ndarray,
+        names: np.ndarray,
     ) -> tuple[Equilibrium, np.ndarray]:
         """Bring every wish (sorbate, cell) to nothing.
 
-        What is dissolved falls with what is sorbed, so a wish falls at least as fast as what is sorbed grows:
-        its secant is kept no flatter. With one sorbate its bracket is kept, too.
+        free is what chemistry is given to share, held what is sorbed: both are carried along, or the lesser
+        would lose its digits. What is dissolved falls with what is sorbed, so a wish falls at least as fast
+        as what is sorbed grows: its secant is kept no flatter. With one sorbate its bracket is kept, too.
         """
         found_all, held_all = found, held.copy()
         bed, here = self, np.arange(held.shape[1])
-        low, high, fall = np.zeros_like(held), most, np.ones_like(held)
+        fall = np.ones_like(held)
+        low, high = -held, free + there  # of what may still be added to held
         for _ in range(ROUNDS):
             if len(bed.laws.solutes) == 1:
-                low, high = np.where(wish > 0.0, held, low), np.where(wish < 0.0, held, high)
-            aim = held + wish / fall
-            aim = np.where((aim >= low) & (aim < high), aim, 0.5 * (low + high))
-            aim = np.where(wish == 0.0, held, aim)
+                low, high = np.where(wish > 0.0, 0.0, low), np.where(wish < 0.0, 0.0, high)
+            more = wish / fall
+            more = np.where(more <= low, 0.5 * low, np.where(more >= high, 0.5 * high, more))
+            more = np.where(_small(held, wish), 0.0, more)
+            free, held, low, high = free - more, held + more, low - more, high - more
             try:
-                found = bed._tried(found, aim)
+                found = bed._tried(found, free, NEVER)
             except SolveError as error:
                 error.cell = int(names[here[error.cell]])
                 raise
-            after = bed._wished(found, aim)
-            new = np.divide(wish - after, aim - held, out=np.ones_like(aim), where=aim != held)
-            fall, held, wish = np.maximum(new, 1.0), aim, after
-            far = _far(held, wish)
+            after = bed._wished(found, held)
+            new = np.divide(wish - after, more, out=np.ones_like(more), where=more != 0.0)
+            fall, wish = np.maximum(new, 1.0), after
             found_all = _with_columns(found_all, here, found)
             held_all[:, here] = held
-            if not far.any():
+            left = np.flatnonzero(~_small(held, wish).all(axis=0))
+            if not len(left):
                 return found_all, held_all
-            left = np.flatnonzero(far)
             bed, here, found = bed._at(left), here[left], _columns(found, left)
-            held, wish, fall, low, high = (a[:, left] for a in (held, wish, fall, low, high))
+            free, held, wish, fall, low, high = (a[:, left] for a in (free, held, wish, fall, low, high))
         reason = "what sorbs and what minerals hold come to no common equilibrium"
         raise SolveError(reason, cell=int(names[here[0]]), residual=float(np.abs(wish).max()))
 
-    def _tried(self, start: Equilibrium, held: np.ndarray) -> Equilibrium:
+    def _tried(self, start: Equilibrium, free: np.ndarray, skip: float) -> Equilibrium:
         amount = self.moved.copy()
-        amount[self.laws.solutes] += self.sorbed - held
-        return self.solver.settled(start, self.kilograms, amount, self.solid, self.upper, skip=SKIP)
+        amount[self.laws.solutes] = free
+        return self.solver.settled(start, self.kilograms, amount, self.solid, self.upper, skip=skip)
 
     def _wished(self, found: Equilibrium, held: np.ndarray) -> np.ndarray:
-        dissolved = np.maximum(found.amount[self.laws.solutes], 0.0) / self.water
-        return sorbed_at(self.laws, dissolved) - held
+        dissolved = np.maximum(found.amount[self.laws.solutes], 0.0)
+        wish = sorbed_at(self.laws, dissolved / self.water) - held
+        wish[(dissolved < NO_ATOM) & (wish < 0.0)] = 0.0  # a steep law may hold much at next to nothing
+        return wish
 
     def _at(self, cells: np.ndarray) -> _Bed:
         arrays = {f.name: getattr(self, f.name)[..., cells] for f in fields(self)
@@ -125,9 +132,9 @@ class _Bed:
         return replace(self, laws=self.laws.at(cells), **arrays)
 
 
-def _far(held: np.ndarray, wish: np.ndarray) -> np.ndarray:
-    """(cell,) whether any wish is no rounding yet."""
-    return (np.abs(wish) > AGREED * np.maximum(np.abs(held + wish), np.abs(held))).any(axis=0)
+def _small(held: np.ndarray, wish: np.ndarray) -> np.ndarray:
+    """(sorbate, cell) whether a wish is as good as none."""
+    return np.abs(wish) <= AGREED * np.maximum(np.abs(held + wish), np.abs(held))
 
 
 def _columns(found: Equilibrium, cells: np.ndarray) -> Equilibrium:

@@ -198,7 +198,7 @@ def net(passed: np.ndarray) -> np.ndarray:
 def equilibrium_of(problem: Problem, water: State | StillWater) -> Equilibrium:
     """The equilibrium that a water was left in, where the next solve starts."""
     return Equilibrium(
-        system=problem.system,
+        system=problem.settled_in or problem.system,
         amount=water.dissolved[: problem.chemical],
         solid=water.solid,
         presence=water.presence,

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import json
 import time
 from collections.abc import Callable, Iterable, Iterator, Mapping
 from pathlib import Path
@@ -132,6 +133,12 @@ class Result:
     def constants(self) -> str:
         """The text of the user's own constants; empty without."""
         return str(self.attributes.get("constants", ""))
+
+    @property
+    def files(self) -> dict[str, str]:
+        """The texts of the other files that the case names, by name."""
+        found: dict[str, str] = json.loads(self.attributes.get("files", "{}"))
+        return found
 
     @property
     def warnings(self) -> tuple[str, ...]:

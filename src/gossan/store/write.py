@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import contextlib
+import json
 from collections.abc import Iterable, Iterator, Mapping
 from datetime import UTC, datetime
 from pathlib import Path
@@ -32,7 +33,7 @@ class ResultWriter:
     """
 
     def __init__(self, path: str | Path, axes: Axes, title: str, case: str, caution: str = "",
-                 overwrite: bool = False, constants: str = ""):
+                 overwrite: bool = False, constants: str = "", files: Mapping[str, str] | None = None):
         """Take the lock and begin a file; ResultError where it exists, unless overwrite."""
         self.path = Path(path)
         if self.path.exists() and not overwrite:
@@ -42,7 +43,8 @@ class ResultWriter:
                 raise ResultError(f"a port cannot be named {port!r}: use a name without '/', not only dots")
         started = datetime.now(UTC).isoformat()
         attributes = {"Conventions": CONVENTIONS, "title": title, "status": "running", "reason": "",
-                      "gossan_version": __version__, "case": case, "constants": constants, "caution": caution,
+                      "gossan_version": __version__, "case": case, "constants": constants,
+                      "files": json.dumps(dict(files or {}), ensure_ascii=False), "caution": caution,
                       "warnings": "", "started": started}
         with _told(self.path):
             lock = Lock(self.path)

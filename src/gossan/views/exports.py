@@ -29,7 +29,8 @@ def profile_rows(result: Result) -> Iterator[Row]:
     """Every cell of every frame, one row each: time, x, layer, then all that is known there."""
     profiles = result.profiles
     heads = [variable("profiles", name).header for name in ("time", "x", "layer")]
-    columns = [pair for row in variables("profiles") if row.kind == "frame" and row.dims[-1] == "x"
+    columns = [pair for row in variables("profiles")
+               if row.kind == "frame" and row.dims[-1] == "x" and row.name in profiles
                for pair in _split(profiles, row)]
     yield [*heads, *(head for head, _ in columns)]
     for frame, time in enumerate(profiles.time.values):

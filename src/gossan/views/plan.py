@@ -8,13 +8,16 @@ from dataclasses import dataclass
 from itertools import islice
 from typing import Any
 
+import numpy as np
+
 from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
+from gossan.case.entries import course
 from gossan.case.model import Case
 from gossan.case.waters import read_waters
 from gossan.chemistry.validity import validity_note
+from gossan.coupling.drive import Drive
 from gossan.coupling.march import longest_step, march
-from gossan.coupling.pores import flow
 from gossan.coupling.problem import Problem
 from gossan.transport.faces import faces_of
 from gossan.views.assay import assay
@@ -72,12 +75,11 @@ def plan_of(case: Case) -> Plan:
     read_waters(case)  # all faults of all waters at once, before the column meets the first
     problem = build(case)
     assert case.run is not None
-    flux = float(flow(problem, problem.initial, 1.0)[0][0])
+    flux = float(_first_flow(problem)[0])
     residence = problem.pore_volume / flux if flux > 0.0 else math.inf
-    by_volume = case.run.duration.unit == "PV"
-    duration = case.run.duration.si * residence if by_volume else case.run.duration.si
+    lasts, volumes = _extent(case, residence)
     records = len(problem.records.marks)
-    steps = max(math.ceil(duration / _step(problem)), records)
+    steps = max(math.ceil(lasts / _step(problem)), records)
     each = _seconds_per_step(problem)
     # once for the column, which holds all that its waters hold, and not again for each of them
     validity = validity_note(case.table, problem.system, problem.system.temperature)
@@ -86,8 +88,8 @@ def plan_of(case: Case) -> Plan:
         problem=problem,
         darcy_flux=flux,
         residence=residence,
-        duration=duration,
-        pore_volumes=duration / residence,
+        duration=lasts,
+        pore_volumes=volumes,
         records=records,
         steps=steps,
         seconds=None if each is None else steps * each,
@@ -98,9 +100,24 @@ def plan_of(case: Case) -> Plan:
 
 def _step(problem: Problem) -> float:
     """The length of step that Courant's number and the spread by dispersion allow at the start, s."""
-    state = problem.initial
-    darcy_flux, _ = flow(problem, state, 1.0)
-    return longest_step(problem, faces_of(problem.transport, state.water, darcy_flux))[0]
+    faces = faces_of(problem.transport, problem.initial.water, _first_flow(problem))
+    return longest_step(problem, faces)[0]
+
+
+def _first_flow(problem: Problem) -> np.ndarray:
+    """(face,) m s-1 at the start."""
+    return Drive(problem, problem.initial).flow(1.0)[0]
+
+
+def _extent(case: Case, residence: float) -> tuple[float, float]:
+    """Seconds and pore volumes of a run; under a held head at the first flux."""
+    assert case.run is not None
+    duration, laid = case.run.duration, course(case)
+    if laid.held_flux:
+        seconds = laid.seconds(duration)
+        return seconds, duration.si if duration.unit == "PV" else laid.volumes(seconds)
+    seconds = duration.si * residence if duration.unit == "PV" else duration.si
+    return seconds, seconds / residence
 
 
 def _seconds_per_step(problem: Problem) -> float | None:

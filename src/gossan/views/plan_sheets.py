@@ -30,7 +30,9 @@ def _layers(plan: Plan) -> Sheet:
 def _facts(plan: Plan) -> tuple[tuple[str, str], ...]:
     problem, run = plan.problem, plan.case.run
     assert run is not None
-    held = "held" if problem.head_drop is None else "at the start; it follows the conductivity"
+    feeds = problem.feeds
+    held = "at the start; it follows the " + ("conductivity" if feeds.head_at_start else "feed")
+    held = "held" if feeds.flux_is_steady else held
     seconds = "not known"
     if plan.seconds is not None:
         seconds = f"about {time_words(plan.seconds)}, from its first steps"

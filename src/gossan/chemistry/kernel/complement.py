@@ -14,6 +14,7 @@ import numpy as np
 from gossan.base.jit import kernel
 from gossan.base.outcome import CYCLING, DIVERGED, ITERATIONS, LACKING, SINGULAR, SOLVED
 from gossan.chemistry.kernel.cold import ABSENT, LITTLE, approach, survey
+from gossan.chemistry.kernel.easing import ease, nearer, overfull
 from gossan.chemistry.kernel.marks import fill_totals, lacking, mark, set_totals, weigh
 from gossan.chemistry.kernel.newton import (
     balances,
@@ -37,7 +38,8 @@ SETTLED = 1e-6  # a last step below this leaves an error of about its square
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
 NEAR = 0.3  # mismatch below which the balances' own Newton step converges
 LOOK = 1e-2  # mismatch below which wrong marks already show
-NEWTON_LIMIT = 300  # steps for one set of marks
+NEWTON_LIMIT = 300  # steps for one set of marks, or for one stage on the way to it
+STAGES = 10  # times as many steps are for all of them
 BRIM = 100.0  # mol/kg: no water holds more; far from the answer the sums may claim it
 CHOICES = 5  # of pivots once the answer shows what is scarce
 LEAST_SHARE = 0.1  # of a step: less is not worth trying
@@ -122,12 +124,26 @@ def close_balances(matrices, bench, active, free, solid, upper, presence, ionic_
     last, best, factor, before = 1.0, math.inf, 1.0, ionic_strength
     mode, near, worse, slow = FAR, NEAR, math.inf, 0
     looked = patient
-    steps = 0
-    for newton in range(NEWTON_LIMIT):
+    steps, left = 0, 0.0
+    newton = -1  # of this stage
+    for step in range(STAGES * NEWTON_LIMIT):
+        newton += 1
+        if newton >= NEWTON_LIMIT:
+            break
         made = molalities(matrices, bench, free, ionic_strength)
         mismatch = balances(bench, free)
+        if (step == 0 and overfull(bench, BRIM)) or (left > 0.0 and mismatch < NEAR):
+            newton = 0
+            if step == 0:
+                left = 1.0
+                ease(matrices, bench, active)
+            else:
+                left = nearer(bench, free, left)
+            made = molalities(matrices, bench, free, ionic_strength)
+            mismatch = balances(bench, free)
+            last, best, factor, mode, near, worse, slow = 1.0, math.inf, 1.0, FAR, NEAR, math.inf, 0
         done = last < SETTLED or (mismatch < EXACT and abs(made - ionic_strength) < 1e-13 * made + 1e-30)
-        if done or (mismatch < LOOK and not looked):
+        if left == 0.0 and (done or (mismatch < LOOK and not looked)):
             looked = True
             pivots_follow(matrices, bench, active, free)
             drop, add, first = weigh(matrices, bench, active, solid, upper, presence)
@@ -136,7 +152,7 @@ def close_balances(matrices, bench, active, free, solid, upper, presence, ionic_
             if drop >= 0 or (add >= 0 and abs(bench.saturation[add]) > 0.1):
                 return CYCLING, ionic_strength, steps, drop, add, first
         steps += 1
-        rise = made - ionic_strength
+        rise = made - ionic_strength if made < BRIM else 0.0
         found = False
         if mismatch > worse:
             near *= 0.1  # the near step was not near enough

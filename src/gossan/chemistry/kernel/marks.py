@@ -93,12 +93,13 @@ def weigh(matrices, bench, active, solid, upper, presence):
     """
     add_up(matrices.stoichiometry, bench)
     drop, add, first = -1, -1, presence.shape[0]
-    worst_amount, worst_ratio = 0.0, SLACK
+    worst_amount, worst_ratio = 0.0, 0.0
     for mineral in range(solid.shape[0]):
-        ratio = -matrices.solid_ln_k[mineral]
+        ratio, ions = -matrices.solid_ln_k[mineral], 0.0
         for k in range(matrices.solid.shape[1]):
             if matrices.solid[mineral, k] != 0.0:
                 ratio += matrices.solid[mineral, k] * bench.ln_activity[k]
+                ions += abs(matrices.solid[mineral, k])
         bench.saturation[mineral] = ratio
         bench.gained[mineral] = 0.0
         wrong = SLACK
@@ -110,8 +111,9 @@ def weigh(matrices, bench, active, solid, upper, presence):
             wrong = -ratio
         if wrong > SLACK and mineral < first:
             first = mineral
-        if wrong > worst_ratio:
-            worst_ratio, add = wrong, mineral
+        # an ion's worth, so that of two forms of the same matter the one of larger formula has no advantage
+        if wrong > SLACK and wrong / ions > worst_ratio:
+            worst_ratio, add = wrong / ions, mineral
     for m in range(active):
         mineral = bench.active[m]
         if matrices.minerals <= mineral < matrices.minerals + matrices.first.shape[0]:

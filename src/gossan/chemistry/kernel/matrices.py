@@ -68,6 +68,7 @@ class Bench(NamedTuple):
     place: np.ndarray  # (basis,) int64: where one stands in free; -1 - row for a pivot; GONE
     reduced: np.ndarray  # (basis, species) stoichiometry in the free ones
     reduced_ln_k: np.ndarray  # (species,)
+    eased: np.ndarray  # (species,) how far reduced_ln_k begins from its end, where it is led there by stages
     reduced_total: np.ndarray  # (basis,)
     # the linear system of the free ones
     positive: np.ndarray  # (basis,)
@@ -127,6 +128,7 @@ def bench(matrices: Matrices) -> Bench:
         place=whole(basis),
         reduced=real(basis, species),
         reduced_ln_k=real(species),
+        eased=real(species),
         reduced_total=real(basis),
         positive=real(basis),
         negative=real(basis),
