@@ -9,7 +9,7 @@ from pathlib import Path as FilePath
 
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
-from gossan.case.check_column import check_layers, check_ports
+from gossan.case.check_column import check_layers, check_outlet, check_ports
 from gossan.case.check_flow import check_flow
 from gossan.case.check_redox import check_redox
 from gossan.case.check_retention import check_parents, check_sorption
