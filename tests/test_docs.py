@@ -27,6 +27,7 @@ IDS = [page.relative_to(ROOT).as_posix() for page in PAGES]
 
 FENCE = re.compile(r"^```(\w*)\n(.*?)^```$", re.M | re.S)
 WATER = '[waters.any]\nanalysis = {Ca = "40 mg/L", SO4 = "96 mg/L"}\n'
+SERIES = "feed.csv"  # what the pages call a series
 CONSTANTS = "site.toml"  # what the pages call a user's own file of constants
 
 
@@ -53,6 +54,8 @@ def test_every_case_of_a_page_is_accepted(page, tmp_path):
     """A block without waters goes on with those before it, or is tried with any water."""
     before = ""
     found = blocks(page, "toml")
+    for block in blocks(page, "csv"):
+        (tmp_path / SERIES).write_text(block, encoding="utf-8")
     for block in filter(is_constants, found):
         (tmp_path / CONSTANTS).write_text(block, encoding="utf-8")
         load_table(tmp_path / CONSTANTS)

@@ -244,7 +244,6 @@ NOT_LANDED = [
     ("cells = 50", 'cells = 50\nrates = ["x"]'),
     ("[layers.clogging]", '[layers.exchange]\ncapacity = "4 meq/100g"\n[layers.clogging]'),
     ("[layers.clogging]", '[layers.surface]\nferrihydrite = "0.2 wt%"\n[layers.clogging]'),
-    ("[chemistry]", '[chemistry]\nactivity = "sit"'),
     ("[[ports]]", '[rates.sulfate]\nlaw = "monod"\n[[ports]]'),
     ('Zn = "0.12 mg/L"', 'Cu = {criterion = "x", hardness = "port"}'),
     ("[run]", '[run]\ncoupling = "strang"'),

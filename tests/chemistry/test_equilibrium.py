@@ -187,9 +187,9 @@ def test_a_failed_cell_is_rescued(monkeypatch):
         given = [a.copy() if isinstance(a, np.ndarray) else a for a in arguments]
         failed = settle(*arguments)
         if len(calls) == 1:
-            for values, before in zip(arguments[3:11], given[3:11], strict=True):
+            for values, before in zip(arguments[3:12], given[3:12], strict=True):
                 values[..., 4] = before[..., 4]
-            arguments[13][4] = 2
+            arguments[14][4] = 2
             failed += 1
         return failed
 

@@ -72,8 +72,9 @@ def test_assay_json_is_what_the_contract_says(waters_file, capsys):
     assert list(found) == ["mine", "gate"]
     mine = found["mine"]
     assert set(mine) == {
-        "pH", "pe", "Eh_V", "temperature_K", "ionic_strength", "charge_error_percent", "dissolved",
-        "valences", "oxygen_saturation_percent", "species", "saturation", "gases", "warnings",
+        "pH", "pe", "Eh_V", "temperature_K", "ionic_strength", "water_activity",
+        "charge_error_percent", "dissolved", "valences", "oxygen_saturation_percent", "species",
+        "saturation", "gases", "warnings",
     }  # fmt: skip
     assert mine["pe"] is mine["Eh_V"] is mine["oxygen_saturation_percent"] is None
     assert mine["valences"] == mine["dissolved"]

@@ -50,6 +50,9 @@ def matrices_of(plain: PlainSystem, model: int = IDEAL) -> Matrices:
         carrier=np.zeros(0, np.int64),
         signed=0 if plain.components[0] == "H^+" else -1,
         electron=-1,
+        given=0,
+        interaction=np.zeros((0, 0)),
+        reach=np.zeros(0),
     )
 
 

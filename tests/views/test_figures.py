@@ -8,6 +8,7 @@ import pytest
 from tests.support.small_cases import GYPSUM
 
 from gossan.case.read import case_from_text
+from gossan.recording import run
 from gossan.views import figures
 from gossan.views.limits import bounds_of
 
@@ -78,6 +79,32 @@ def test_nothing_is_clipped(drawn):
             assert box.y0 >= -1.0
             assert box.x1 <= whole.x1 + 1.0
             assert box.y1 <= whole.y1 + 1.0
+
+
+def test_what_the_bed_holds_back_is_drawn(tmp_path):
+    """A layer with immobile water and an isotherm behind one without."""
+    text = GYPSUM.replace("[flow]", """[[layers]]
+name = "clay lumps"
+length = "10 cm"
+cells = 4
+porosity = 0.4
+dispersivity = "1 cm"
+conductivity = "10 m/d"
+water = "pore"
+sorption.bromide = {law = "linear", kd = "0.5 L/kg"}
+immobile = {fraction = 0.3, transfer = "1e-5 1/s"}
+[flow]""")
+    found = run(case_from_text(text), tmp_path / "held.h5").loaded()
+    sorbed = found.profiles.sorbed.sel(component="bromide").values[-1]
+    assert (sorbed[:8] == 0.0).all()
+    assert sorbed[8:].min() > 0.0
+    beside = found.profiles.immobile_dissolved.sel(component="bromide").values[-1]
+    assert np.isnan(beside[:8]).all()
+    assert beside[8:].min() > 0.0
+    figure = dict(figures.all_figures(found))["retention"]
+    labels = {ax.get_ylabel() for ax in visible(figure)}
+    assert {"bromide sorbed\n(mol m-3 of bulk)", "bromide, immobile\n(mmol/L)"} <= labels
+    figure.canvas.draw()
 
 
 def test_lines_differ_without_colour():

@@ -16,7 +16,7 @@ from gossan.coupling.problem import Stagnant
 from gossan.coupling.state import State, StillWater
 from gossan.transport.grid import Grid
 
-WARM = ("ln_activity", "ionic_strength", "presence", "solved")
+WARM = ("ln_activity", "ionic_strength", "presence", "solved", "seen")
 
 
 def initial_state(

@@ -184,7 +184,7 @@ class Tracer(TableOfCase):
 class Chemistry(TableOfCase):
     """Which reactions are at equilibrium."""
 
-    activity: Annotated[str, Choice(("davies", "debye-hueckel", "ideal"), ("sit",))] = Field(
+    activity: Annotated[str, Choice(("davies", "debye-hueckel", "sit", "ideal"))] = Field(
         default="davies", description="activity coefficients"
     )
     redox: Annotated[str, Choice(("held", "coupled"))] = Field(

@@ -8,6 +8,7 @@ import numpy as np
 
 from gossan.base.errors import SolveError
 from gossan.base.outcome import SENTENCES, SOLVED
+from gossan.chemistry.redox import ELECTRON, WATER
 from gossan.chemistry.system import LN10, System
 
 START_STRENGTH = 0.1  # mol/kg, where a cold start begins
@@ -30,18 +31,28 @@ class Equilibrium:
     solved: np.ndarray  # (component, cell) mol/kg: dissolved after the last solve
     steps: np.ndarray  # (cell,) Newton steps; 0 where the last answer still held
     given: np.ndarray  # (open gas, cell) what the last solve took from each open gas
+    seen: np.ndarray  # (species, cell) mol/kg: what SIT's sums were taken with; no rows under other laws
 
     def log10_activity(self) -> np.ndarray:
         """(species, cell): log10 of the activity of every species, -inf where a component is absent."""
         return log10_activity(self.system, self.ln_activity)
 
+    def ln_gamma(self) -> np.ndarray:
+        """(species, cell): ln of the activity coefficients."""
+        return self.system.activity.ln_gamma(self.ionic_strength, self.seen[: len(self.system.species)])
+
     def molality(self) -> np.ndarray:
         """(species, cell): mol per kg of water."""
-        ln_gamma = self.system.activity.ln_gamma(self.ionic_strength)
-        found = np.exp(LN10 * self.log10_activity() - ln_gamma)
-        if self.system.electron >= 0:
-            found[self.system.electron] = 0.0  # e^- has an activity and is nowhere
+        system = self.system
+        found = np.exp(LN10 * self.log10_activity() - self.ln_gamma())
+        for name in (ELECTRON, WATER):
+            if name in system.basis:
+                found[system.basis.index(name)] = 0.0  # it has an activity and is no solute
         return found
+
+    def water_activity(self) -> np.ndarray:
+        """(cell,): activity of water; under SIT what the solve went by, else an estimate beside it."""
+        return np.exp(self.system.activity.ln_water(self.ionic_strength, self.molality()))
 
     def held(self) -> np.ndarray:
         """(basis, cell): mol per kg of water dissolved of each valence, in all its species."""
@@ -107,6 +118,7 @@ class Solver:
             solved=np.full((len(system.components), cells), np.nan),
             steps=np.zeros(cells, np.int64),
             given=np.zeros((len(system.open_gases), cells)),
+            seen=np.zeros((len(system.matrices.interaction), cells)),
         )
         return self.settled(start, kilograms, amount, solid, upper, cold=True)
 
@@ -141,22 +153,23 @@ class Solver:
         amount, solid, upper = (np.array(a, float, order="C") for a in (amount, solid, upper))
         kilograms = np.ascontiguousarray(kilograms, float)
         presence, ln_activity = start.presence.copy(), start.ln_activity.copy()
-        ionic_strength, solved = start.ionic_strength.copy(), start.solved.copy()
+        ionic_strength, solved, seen = start.ionic_strength.copy(), start.solved.copy(), start.seen.copy()
         cells = amount.shape[1]
         outcome, steps = np.zeros(cells, np.int64), np.zeros(cells, np.int64)
         given = np.zeros((len(system.open_gases), cells))
         failed = settle_cells(
             system.matrices, self._bench, kilograms, amount, solid, upper, presence, ln_activity,
-            ionic_strength, solved, given, skip, COLD if cold else WARM, outcome, steps, 0, cells,
+            ionic_strength, solved, given, seen, skip, COLD if cold else WARM, outcome, steps, 0, cells,
         )  # fmt: skip
         if failed:
             arrays = (
-                kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, given
+                kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, given, seen
             )  # fmt: skip
             self._rescue(arrays, outcome, steps)
         return replace(
             start, system=system, amount=amount, solid=solid, presence=presence, ln_activity=ln_activity,
             ionic_strength=ionic_strength, solved=solved, steps=steps, given=given,
+            seen=seen,
         )  # fmt: skip
 
     def _rescue(self, arrays: tuple[np.ndarray, ...], outcome: np.ndarray, steps: np.ndarray) -> None:

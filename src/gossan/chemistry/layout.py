@@ -8,6 +8,7 @@ from gossan.chemistry.activity import Activity
 from gossan.chemistry.kernel.matrices import Matrices, padded
 from gossan.chemistry.redox import Basis
 
+REACH_OF_WATER = 0.1  # kg/mol: any solute lowers ln of water's activity by 0.018, which may count a few times
 NONE = -1e6  # ln K of a species that does not exist: its molality vanishes
 
 
@@ -27,7 +28,7 @@ def matrices_of(
     formation (species, basis), ln_k (species,): of what has a name; hidden: more of them, neutral, without
     solid (row, basis), solid_ln_k (row,): minerals, then couples, then open gases; minerals: how many
     """
-    components = len(basis.components)
+    components, valences = len(basis.components), len(basis.valences)
     count = padded(len(formation) + len(hidden))
 
     def filled(values: np.ndarray, filling: float = 0.0) -> np.ndarray:
@@ -40,16 +41,23 @@ def matrices_of(
     constants = np.concatenate([ln_k, [constant for _, constant in hidden]])
     if basis.electron >= 0:
         constants[basis.electron] = NONE  # it is counted, but there is none of it
+    if basis.water:
+        constants[len(basis.names) - 1] = NONE  # it has an activity, and is not a solute
     neutral = np.concatenate([law.neutral, np.ones(len(hidden))])
     # a valence in terms of what it is counted as: its own tie undone
-    ties = slice(minerals, minerals + len(basis.valences))
+    ties = slice(minerals, minerals + valences)
+    own = slice(components, components + valences)
     valence_ln_k = solid_ln_k[ties]
     supplied = np.ascontiguousarray(solid @ basis.conserved)
+    interaction = np.zeros((0, 0))
+    if law.interacts:
+        interaction = np.zeros((count, count))
+        interaction[: len(formation), : len(formation)] = law.interaction
     return Matrices(
         stoichiometry=filled(rows).T.copy(),
         ln_k=filled(constants, NONE),
         conserved=filled(rows @ basis.conserved).T.copy(),
-        conserved_ln_k=filled(constants + rows[:, components:] @ valence_ln_k, NONE),
+        conserved_ln_k=filled(constants + rows[:, own] @ valence_ln_k, NONE),
         charge_squared=filled(law.charge_squared),
         neutral=filled(neutral),
         size=filled(law.size),
@@ -58,12 +66,15 @@ def matrices_of(
         solid=np.ascontiguousarray(solid),
         solid_ln_k=solid_ln_k,
         supplied=supplied,
-        supplied_ln_k=solid_ln_k - solid[:, components:] @ valence_ln_k,
+        supplied_ln_k=solid_ln_k - solid[:, own] @ valence_ln_k,
         minerals=minerals,
         first=basis.first,
         carrier=_carriers(supplied[minerals + len(basis.valences) :], basis.electron),
         signed=0,
         electron=basis.electron,
+        given=int(basis.water),
+        interaction=interaction,
+        reach=np.abs(interaction).max(axis=0, initial=0.0) + (REACH_OF_WATER if law.interacts else 0.0),
     )
 
 
@@ -72,7 +83,7 @@ def with_minerals(matrices: Matrices, solid: np.ndarray, ln_k: np.ndarray, conse
 
     solid (mineral, basis), ln_k (mineral,) of dissolution; conserved (basis, component)
     """
-    components = conserved.shape[1]
+    own = slice(conserved.shape[1], conserved.shape[1] + len(matrices.first))
     couples = slice(matrices.minerals, matrices.minerals + len(matrices.first))
     rows = np.vstack([solid, matrices.solid[couples]])
     constants = np.concatenate([ln_k, matrices.solid_ln_k[couples]])
@@ -80,7 +91,7 @@ def with_minerals(matrices: Matrices, solid: np.ndarray, ln_k: np.ndarray, conse
         solid=rows,
         solid_ln_k=constants,
         supplied=rows @ conserved,
-        supplied_ln_k=constants - rows[:, components:] @ matrices.solid_ln_k[couples],
+        supplied_ln_k=constants - rows[:, own] @ matrices.solid_ln_k[couples],
         minerals=len(solid),
         carrier=np.zeros(0, np.int64),
     )

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import numpy as np
+
 from gossan.base.wrong import Wrong
 from gossan.chemistry.equilibrium import Equilibrium
 from gossan.chemistry.reading import Reading
@@ -64,7 +66,7 @@ def oxygen(found: float, temperature: float) -> list[str]:
 def poise(reading: Reading, found: Equilibrium, pe: float) -> list[str]:
     """Warn of a pe that nothing in the report says: every element stands in one valence alone."""
     report, system = reading.report, found.system
-    said = any(report.dissolved.get(name) for name in system.basis[len(system.components) :])
+    said = any(report.dissolved.get(name) for name in system.valences)
     carried = [found.system.gas_stoichiometry[system.gases.index(name)] for name in report.gases]
     carried += [system.matrices.solid[system.minerals.index(name)] for name in report.minerals]
     if report.says_pe or said or any(row @ system.conserved[:, system.electron] for row in carried):
@@ -92,7 +94,9 @@ def reacted(reading: Reading, found: Equilibrium, pe: float) -> list[str]:
     """Say which valences that the report names do not last beside its others, or at its pe."""
     system, report = reading.system, reading.report
     count = len(system.components)
-    coupled = {name for b, name in enumerate(system.basis) if b >= count or system.conserved[count:, b].any()}
+    counted = np.any(system.conserved[count:] != 0.0, axis=0).tolist()
+    coupled = {name for name, others in zip(system.components, counted, strict=True) if others}
+    coupled |= set(system.valences)
     coupled -= {PROTON, ELECTRON, str(report.balance_on), *report.undivided}
     told = []
     for name, named, left in zip(system.basis, reading.totals, valence_totals(found), strict=True):

@@ -82,7 +82,7 @@ class Reading:
         """The activity coefficient of dissolved oxygen in a water, 1 where the report gives none."""
         if self.report.oxygen is None:
             return 1.0
-        return float(np.exp(self.system.activity.ln_gamma(found.ionic_strength)[self.index("O2"), 0]))
+        return float(np.exp(found.ln_gamma()[self.index("O2"), 0]))
 
     def at_ph(self, totals: np.ndarray, ph: float) -> Equilibrium:
         """The water of these totals (basis,) at a pH, and at the report's pe where it says one."""

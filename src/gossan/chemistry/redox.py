@@ -9,7 +9,7 @@ import numpy as np
 
 from gossan.constants.entries import Component, Gas, Mineral, Species, Table
 
-PROTON, ELECTRON = "H^+", "e^-"
+PROTON, ELECTRON, WATER = "H^+", "e^-", "H2O"
 WATERS_OWN = ("O2", "H2")  # made of water alone: there whenever electrons are
 
 
@@ -17,18 +17,21 @@ WATERS_OWN = ("O2", "H2")  # made of water alone: there whenever electrons are
 class Basis:
     """The conserved components of a system, and the valences that couples tie to them.
 
-    names: components (H^+ first, e^- last where anything is coupled), then the coupled valences
+    names: components (H^+ first, e^- last where anything is coupled), then the coupled valences, then water
+    where the law of activities says how active it is
     """
 
     components: tuple[str, ...]
     valences: tuple[str, ...]
     conserved: np.ndarray  # (basis, component): what of each component one of the basis is counted as
     first: np.ndarray  # (valence,) int64: the component that a valence is counted as; -1 for water's own
+    hydration: np.ndarray  # (valence,) mol of H2O that go into one, beside what it is counted as
+    water: bool  # whether water is in the basis
 
     @property
     def names(self) -> tuple[str, ...]:
         """All of them, in order."""
-        return self.components + self.valences
+        return (*self.components, *self.valences, *([WATER] if self.water else []))
 
     @property
     def electron(self) -> int:
@@ -37,18 +40,21 @@ class Basis:
 
     def ties(self) -> np.ndarray:
         """(valence, basis): a valence less what it is counted as, in the manner of a solid that dissolves."""
-        count = len(self.components)
-        rows = np.zeros((len(self.valences), len(self.names)))
-        rows[:, :count] = -self.conserved[count:]
-        rows[:, count:] = np.eye(len(self.valences))
+        count, valences = len(self.components), len(self.valences)
+        rows = np.zeros((valences, len(self.names)))
+        rows[:, :count] = -self.conserved[count : count + valences]
+        rows[:, count : count + valences] = np.eye(valences)
+        if self.water:
+            rows[:, -1] = -self.hydration
         return rows
 
 
-def basis_of(table: Table, wanted: Iterable[str], coupled: Collection[str]) -> Basis:
+def basis_of(table: Table, wanted: Iterable[str], coupled: Collection[str], water: bool = False) -> Basis:
     """Sort what waters and solids hold into conserved components and coupled valences.
 
     wanted   names of components that are there, in any valence
     coupled  names of the held components to couple; those whose element is not there are left out
+    water    whether the activity of water is other than 1
     """
     tied = [name for name in table.components if name in coupled and table.components[name].half_reaction]
     there = {PROTON}
@@ -59,7 +65,8 @@ def basis_of(table: Table, wanted: Iterable[str], coupled: Collection[str]) -> B
     if coupled:
         components.append(ELECTRON)
     place = {name: k for k, name in enumerate(components)}
-    conserved = np.vstack([np.eye(len(components)), np.zeros((len(valences), len(components)))])
+    conserved = np.vstack([np.eye(len(components)), np.zeros((len(valences) + water, len(components)))])
+    hydration = np.zeros(len(valences))
     first = np.full(len(valences), -1, np.int64)
     for v, name in enumerate(valences):
         half = table.components[name].half_reaction
@@ -69,7 +76,8 @@ def basis_of(table: Table, wanted: Iterable[str], coupled: Collection[str]) -> B
             if ion != PROTON:
                 first[v] = place[ion]
         conserved[len(components) + v, place[ELECTRON]] = half.electrons
-    return Basis(tuple(components), valences, conserved, first)
+        hydration[v] = half.water
+    return Basis(tuple(components), valences, conserved, first, hydration, water)
 
 
 def _firsts(table: Table, name: str) -> list[str]:

@@ -8,16 +8,18 @@ from dataclasses import dataclass
 import numpy as np
 
 from gossan.base.notation import molar_mass
-from gossan.chemistry.activity import DAVIES, Activity, activity_model
+from gossan.chemistry.activity import DAVIES, SIT, Activity, activity_model
 from gossan.chemistry.kernel.matrices import Matrices
 from gossan.chemistry.layout import matrices_of
-from gossan.chemistry.redox import ELECTRON, PROTON, WATERS_OWN, Basis, basis_of, is_made_of
+from gossan.chemistry.pairs import held_complexes, interaction_matrix
+from gossan.chemistry.redox import ELECTRON, PROTON, WATER, WATERS_OWN, Basis, basis_of, is_made_of
 from gossan.constants.entries import Component, Constant, Gas, Mineral, Reaction, Species, Table
 from gossan.constants.temperature import log10_k_at
 from gossan.constants.water import debye_huckel, density
 
 # e^- as an ion of the basis: it is counted and has an activity, and is not in the water
 ELECTRONS = Component(ELECTRON, -1, ion_size=Constant(4e-10, None, "m", "kielland1937", True, "not used"))
+NO_IONS = {ELECTRON: ELECTRONS, WATER: Component(WATER, 0)}
 LN10 = np.log(10.0)
 
 
@@ -26,8 +28,8 @@ class System:
     """Names, stoichiometry and constants of a chemical system; nothing in it ever changes.
 
     Axes: component, what is conserved and carried (H^+ first; e^- last where anything is coupled); basis, the
-    components and then the valences that are coupled; species (the basis first, in the same order);
-    mineral, limited gases among them; gas.
+    components, the valences that are coupled, and under SIT water; species (the basis first, in the same
+    order); mineral, limited gases among them; gas.
     """
 
     temperature: float  # K
@@ -61,6 +63,11 @@ class System:
     def gas_supply(self) -> np.ndarray:
         """(open gas, component): what one molecule of an open gas gives, as it is counted."""
         return self.matrices.supplied[len(self.matrices.supplied) - len(self.open_gases) :]
+
+    @property
+    def valences(self) -> tuple[str, ...]:
+        """The members of the basis that couples tie to components."""
+        return self.basis[len(self.components) :][: len(self.matrices.first)]
 
     @property
     def electron(self) -> int:
@@ -97,7 +104,7 @@ def build_system(
                 None is the default list
     dissolving  minerals that are there at the start and may only dissolve, unless listed above
     temperature K
-    activity    "davies", "debye-hueckel" or "ideal"
+    activity    "davies", "debye-hueckel", "sit" or "ideal"
     excluded    species and minerals to leave out
     coupled     names of held components, such as "Fe^3+", that are at redox equilibrium with the first ion of
                 their element
@@ -106,8 +113,11 @@ def build_system(
     """
     open_gases, limited_gases = open_gases or {}, limited_gases or {}
     gaseous = [name for gas in (*open_gases, *limited_gases) for name in table.gases[gas].reaction.components]
-    basis = basis_of(table, {*components, *gaseous}, coupled)
+    interacting = activity == SIT
+    basis = basis_of(table, {*components, *gaseous}, coupled, water=interacting)
     names = basis.names
+    if interacting:
+        excluded = {*excluded, *held_complexes(table)}
     if minerals is None:
         minerals = [name for name, mineral in table.minerals.items() if mineral.forms]
     forming = [name for name in minerals if name not in excluded]
@@ -130,10 +140,12 @@ def build_system(
     def ln_k_of(entries: Iterable[Component | Species | Mineral | Gas]) -> np.ndarray:
         return LN10 * np.array([log10_k_at(entry, temperature) for entry in entries])
 
-    ions = [table.components.get(name, ELECTRONS) for name in names]
+    ions = [NO_IONS.get(name) or table.components[name] for name in names]
+    species = (*names, *(entry.name for entry in complexes))
     charge = np.array([ion.charge for ion in ions] + [entry.charge for entry in complexes], float)
     sizes = [ion.ion_size for ion in ions] + [entry.ion_size for entry in complexes]
-    law = activity_model(activity, *debye_huckel(temperature), charge, sizes)
+    pairs = interaction_matrix(table, species) if interacting else None
+    law = activity_model(activity, *debye_huckel(temperature), charge, sizes, pairs)
     held = [table.gases[name] for name in open_gases]
     limited = [table.gases[name] for name in limited_gases]
     pressures = np.log(np.array([*limited_gases.values(), *open_gases.values()], float))
@@ -160,7 +172,7 @@ def build_system(
         activity=law,
         components=basis.components,
         basis=names,
-        species=(*names, *(entry.name for entry in complexes)),
+        species=species,
         minerals=(*(mineral.name for mineral in solids), *(f"{gas.name}(g)" for gas in limited)),
         gases=tuple(gas.name for gas in gases),
         open_gases=tuple(open_gases),
@@ -196,6 +208,8 @@ def _waters_own(table: Table, basis: Basis, temperature: float) -> list[tuple[np
             assert half is not None
             row = np.zeros(len(basis.names))
             row[0], row[basis.electron] = half.components[PROTON], half.electrons
+            if basis.water:
+                row[-1] = half.water
             found.append((row, LN10 * log10_k_at(table.components[name], temperature)))
     return found
 
@@ -208,5 +222,7 @@ def _rows(reactions: Iterable[Reaction], place: dict[str, int]) -> np.ndarray:
             row[place[name]] = coefficient
         if reaction.electrons:
             row[place[ELECTRON]] = reaction.electrons
+        if WATER in place:
+            row[place[WATER]] = reaction.water
         rows.append(row)
     return np.array(rows).reshape(-1, len(place))

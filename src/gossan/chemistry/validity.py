@@ -43,7 +43,7 @@ def _ranges(table: Table, system: System) -> Iterator[tuple[str, tuple[float, fl
         for name in names:
             if name in group:
                 yield name, group[name].valid
-    for name in system.basis[len(system.components) :]:
+    for name in system.valences:
         half = table.components[name].half_valid
         if half:
             yield name, half

@@ -11,8 +11,9 @@ from gossan.chemistry.activity import DAVIES
 from gossan.chemistry.balance import balanced
 from gossan.chemistry.charge import charge_error_percent
 from gossan.chemistry.equilibrium import Equilibrium, pe_of
+from gossan.chemistry.pairs import estimated_pairs
 from gossan.chemistry.reading import Reading
-from gossan.chemistry.redox import ELECTRON
+from gossan.chemistry.redox import ELECTRON, WATER
 from gossan.chemistry.report import LabReport
 from gossan.chemistry.reservoir import held_to, saturated, under_gas
 from gossan.chemistry.system import PROTON, System
@@ -47,7 +48,8 @@ class Water:
     def valences(self) -> dict[str, float]:
         """Total dissolved by valence, mol per kg of water; H^+ as an excess over water, without e^-."""
         held = dict(zip(self.system.basis, valence_totals(self.equilibrium).tolist(), strict=True))
-        held.pop(ELECTRON, None)
+        for name in (ELECTRON, WATER):
+            held.pop(name, None)
         return held
 
     @property
@@ -118,7 +120,7 @@ def read_water(
         found = _saturated(report, found)
     if found.system.electron >= 0:
         warnings += plausible.poise(reading, found, _pe(found))
-    warnings += _strength(found)
+    warnings += _strength(found) + _pairs(found, table)
     return Water(report.name, found, percent, tuple(warnings), reported_pe)
 
 
@@ -161,6 +163,14 @@ def _strength(found: Equilibrium) -> list[str]:
     return [
         f"ionic strength {strength:.3g} mol/kg: the {law.name} law is meant for waters up to {law.valid_to:g}"
     ]
+
+
+def _pairs(found: Equilibrium, table: Table) -> list[str]:
+    """Say which interactions between the main ions are estimates."""
+    if not found.system.activity.interacts:
+        return []
+    named = estimated_pairs(table, found.system.species, found.molality()[:, 0])
+    return [f"interaction coefficients estimated, not known: {', '.join(named)}"] if named else []
 
 
 def _ph(found: Equilibrium) -> float:

@@ -69,6 +69,7 @@ def attempt(
         ionic_strength=found.ionic_strength,
         presence=found.presence,
         solved=found.solved,
+        seen=found.seen,
         still=waters.still_after(stage),
         passed=added(state.passed, passed[:, problem.gates].T),
         made=added(state.made, waters.made(stage)),

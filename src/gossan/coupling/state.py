@@ -17,10 +17,11 @@ class StillWater:
     sorbed: np.ndarray  # (sorbate, still) mol m-3 of bulk, likewise
     water: np.ndarray  # (still,) immobile water per bulk, m3 m-3
     swelling: np.ndarray  # (still,) s-1, water per bulk that the last step's solids pushed out
-    ln_activity: np.ndarray  # these four as in State
+    ln_activity: np.ndarray  # these five as in State
     ionic_strength: np.ndarray
     presence: np.ndarray
     solved: np.ndarray
+    seen: np.ndarray
 
 
 @dataclass(frozen=True, slots=True)
@@ -44,6 +45,7 @@ class State:
     ionic_strength: np.ndarray  # (cell,) mol per kg of water
     presence: np.ndarray  # (mineral, cell) int8: 0 absent, 1 present, 2 full (may dissolve only, none lost)
     solved: np.ndarray  # (component, cell) mol per kg of water, dissolved after the last solve: the skip rule
+    seen: np.ndarray  # (species, cell) mol per kg of water: what SIT's sums were taken with; else no rows
     still: StillWater | None  # the immobile water, where a layer has some
     # since time 0
     passed: np.ndarray  # (gate, solute, 2) mol m-2 through the inlet, the outlet, then each port

@@ -119,6 +119,7 @@ class Waters:
             ionic_strength=found.ionic_strength,
             presence=found.presence,
             solved=found.solved,
+            seen=found.seen,
         )
 
     def still_pores_changed(self, stage: Stage) -> float:
@@ -207,6 +208,7 @@ def equilibrium_of(problem: Problem, water: State | StillWater) -> Equilibrium:
         solved=water.solved,
         steps=np.zeros(len(water.water), np.int64),
         given=np.zeros((len(problem.system.open_gases), len(water.water))),
+        seen=water.seen,
     )
 
 

@@ -138,7 +138,7 @@ def faces_of(transport: Transport, water: np.ndarray, darcy_flux: np.ndarray) ->
 
 
 def outlet_rise(last: float, before: float, layer: float) -> float:
-    """The rise from the last cell's mean to an outlet without gradient (equations.md, 67).
+    """The rise from the last cell's mean to an outlet without gradient (equations.md, 68).
 
     last, before  m, lengths of the last two cells; layer m, D / velocity: how thick the layer is in which the
                   gradient vanishes

@@ -70,7 +70,7 @@ class Grid:
 
 
 def grid_of(layers: Sequence[Layer]) -> Grid:
-    """Cut layers into cells, each layer by its growth; where layers meet there is a face (equations.md, 75).
+    """Cut layers into cells, each layer by its growth; where layers meet there is a face (equations.md, 76).
 
     >>> grid = grid_of([Layer("sand", 1.0, 2), Layer("gate", 0.7, 3, growth=2.0)])
     >>> grid.edges.round(3).tolist(), grid.layer.tolist()

@@ -6,7 +6,7 @@ import math
 
 
 def growing(length: float, first: float, last: float) -> tuple[int, float]:
-    """The fewest cells from a first to a last length that fill a layer, and their growth (equations.md, 75).
+    """The fewest cells from a first to a last length that fill a layer, and their growth (equations.md, 76).
 
     length, first, last  m, > 0
     Returns   cells, growth: `grid_of` makes the first and the last cell at most as long as asked, and in

@@ -11,7 +11,7 @@ def exchanged(
     transfer: np.ndarray, dt: float, difference: np.ndarray, arriving: np.ndarray,
     capacity: np.ndarray, still_capacity: np.ndarray,
 ) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
-    """What goes from flowing into immobile water in dt, at capacities that stay (equations.md, 71).
+    """What goes from flowing into immobile water in dt, at capacities that stay (equations.md, 57).
 
     transfer    (still,) s-1, per bulk volume, >= 0; dt s
     difference  (solute, still) mol m-3, flowing less immobile concentration at the start

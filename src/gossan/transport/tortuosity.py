@@ -26,7 +26,7 @@ class Tortuosity:
 
 
 def millington_quirk(porosity: np.ndarray) -> np.ndarray:
-    """The factor for pores between grains, full of water (equations.md, 68).
+    """The factor for pores between grains, full of water (equations.md, 69).
 
     porosity  (cell,), 1, in (0, 1]
     Returns   (cell,), 1
@@ -40,7 +40,7 @@ def millington_quirk(porosity: np.ndarray) -> np.ndarray:
 
 
 def archie(porosity: np.ndarray, exponent: float) -> np.ndarray:
-    """The factor from electrical conduction, whose formation factor is n^-exponent (equations.md, 69).
+    """The factor from electrical conduction, whose formation factor is n^-exponent (equations.md, 70).
 
     porosity  (cell,), 1, in (0, 1]
     exponent  1, >= 1: about 1.3 in loose sand, 1.8 to 2.0 in sandstone, up to 3 in clay
@@ -54,7 +54,7 @@ def archie(porosity: np.ndarray, exponent: float) -> np.ndarray:
 
 
 def bruggeman(porosity: np.ndarray) -> np.ndarray:
-    """The factor of a bed of grains of all sizes: n^(3/2) / n (equations.md, 70).
+    """The factor of a bed of grains of all sizes: n^(3/2) / n (equations.md, 71).
 
     porosity  (cell,), 1, in (0, 1]
     Returns   (cell,), 1
@@ -65,7 +65,7 @@ def bruggeman(porosity: np.ndarray) -> np.ndarray:
 
 
 def boudreau(porosity: np.ndarray) -> np.ndarray:
-    """The factor of fine-grained sediments: 1 / (1 - ln n^2) (equations.md, 71).
+    """The factor of fine-grained sediments: 1 / (1 - ln n^2) (equations.md, 72).
 
     porosity  (cell,), 1, in (0, 1]
     Returns   (cell,), 1
@@ -76,7 +76,7 @@ def boudreau(porosity: np.ndarray) -> np.ndarray:
 
 
 def weissberg(porosity: np.ndarray) -> np.ndarray:
-    """The most that a bed of spheres, placed at random, leaves: 1 / (1 - ln(n) / 2) (equations.md, 72).
+    """The most that a bed of spheres, placed at random, leaves: 1 / (1 - ln(n) / 2) (equations.md, 73).
 
     porosity  (cell,), 1, in (0, 1]
     Returns   (cell,), 1
@@ -87,7 +87,7 @@ def weissberg(porosity: np.ndarray) -> np.ndarray:
 
 
 def maxwell(porosity: np.ndarray) -> np.ndarray:
-    """The factor of spheres far apart: 2 / (3 - n) (equations.md, 73).
+    """The factor of spheres far apart: 2 / (3 - n) (equations.md, 74).
 
     porosity  (cell,), 1, in (0, 1]
     Returns   (cell,), 1
@@ -98,7 +98,7 @@ def maxwell(porosity: np.ndarray) -> np.ndarray:
 
 
 def iversen_joergensen(porosity: np.ndarray, exponent: float) -> np.ndarray:
-    """The factor measured in sea beds: 1 / (1 + m (1 - n)) (equations.md, 74).
+    """The factor measured in sea beds: 1 / (1 + m (1 - n)) (equations.md, 75).
 
     porosity  (cell,), 1, in (0, 1]
     exponent  1, m: 2 in sands, 3 in muds

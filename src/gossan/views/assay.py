@@ -68,6 +68,11 @@ class WaterAssay:
         return self.water.pe
 
     @property
+    def water_activity(self) -> float:
+        """Activity of the water itself."""
+        return float(self.water.equilibrium.water_activity()[0])
+
+    @property
     def Eh(self) -> float:
         """The same as a potential against the hydrogen electrode, V."""
         return potential_of_pe(self.pe, self.temperature)
@@ -125,10 +130,10 @@ class WaterAssay:
         count = len(system.components)
         found: dict[str, float] = {}
         for k, first in enumerate(system.components):
-            others = [name for v, name in enumerate(system.basis[count:], count) if system.conserved[v, k]]
+            others = [name for v, name in enumerate(system.valences, count) if system.conserved[v, k]]
             if others and first not in (PROTON, ELECTRON):
                 found |= {name: held[name] for name in (first, *others)}
-        return found | {name: held[name] for name in system.basis[count:]}
+        return found | {name: held[name] for name in system.valences}
 
     @property
     def species(self) -> dict[str, tuple[float, float]]:
@@ -253,6 +258,7 @@ def _json(one: WaterAssay) -> dict[str, Any]:
         "Eh_V": one.Eh,
         "temperature_K": one.temperature,
         "ionic_strength": one.ionic_strength,
+        "water_activity": one.water_activity,
         "charge_error_percent": one.charge_error_percent,
         "dissolved": one.dissolved,
         "valences": one.valences,

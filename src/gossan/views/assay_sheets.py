@@ -33,6 +33,7 @@ def _facts(one: WaterAssay) -> tuple[tuple[str, str], ...]:
         *_redox(one),
         ("temperature", f"{one.temperature - KELVIN:.1f} degC"),
         ("ionic strength", f"{one.ionic_strength:.4g} mol/kg"),
+        ("activity of water", f"{one.water_activity:.4f}"),
         ("charge error", f"{one.charge_error_percent:+.1f} % of the report: {one.acceptance}"),
         ("balanced on", balance),
     )

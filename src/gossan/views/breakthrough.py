@@ -51,7 +51,8 @@ def breakthrough(
         if bound.quantity == PH:
             ph.axhspan(bound.low, bound.high, color="#e9e4d6", zorder=0, label="limits")
     for ax in (linear, major, ph):
-        ax.legend(loc="center left", bbox_to_anchor=(1.01, 0.5))
+        if ax.get_legend_handles_labels()[0]:
+            ax.legend(loc="center left", bbox_to_anchor=(1.01, 0.5))
     style.at_least_spanning(ph, style.PH_SPAN)
     ph.set_ylabel(axis_label("ports/NAME", "pH"))
     ph.set_xlabel(axis_label("ports/NAME", "time", time))

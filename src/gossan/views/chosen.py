@@ -25,7 +25,7 @@ def metals(result: Result, bounds: list[Bound] | None = None) -> list[str]:
 
 def majors(result: Result, watched: list[str]) -> list[str]:
     """The other solutes, protons left out."""
-    rest = [name for name in result.axes.component if name not in watched and name != "H^+"]
+    rest = [name for name in result.axes.component if name not in watched and name not in ("H^+", "e^-")]
     return _largest(result, rest)
 
 

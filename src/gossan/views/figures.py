@@ -10,12 +10,15 @@ from gossan.views import chosen
 from gossan.views.bed_figures import books, pores
 from gossan.views.breakthrough import breakthrough
 from gossan.views.limits import Bound
-from gossan.views.profile_figures import dissolved_profiles, solid_profiles
+from gossan.views.profile_figures import dissolved_profiles, retained_profiles, solid_profiles
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
-__all__ = ["all_figures", "books", "breakthrough", "dissolved_profiles", "pores", "solid_profiles"]
+__all__ = [
+    "all_figures", "books", "breakthrough", "dissolved_profiles", "pores", "retained_profiles",
+    "solid_profiles",
+]  # fmt: skip
 
 
 def all_figures(
@@ -30,5 +33,7 @@ def all_figures(
     yield "dissolved", dissolved_profiles(result, bounds, masses)
     if chosen.minerals(result):
         yield "minerals", solid_profiles(result)
+    if result.axes.parts:
+        yield "retention", retained_profiles(result, bounds, masses)
     yield "pores", pores(result)
     yield "ledger", books(result)

@@ -82,7 +82,9 @@ def plan_of(case: Case) -> Plan:
     steps = max(math.ceil(lasts / _step(problem)), records)
     each = _seconds_per_step(problem)
     # once for the column, which holds all that its waters hold, and not again for each of them
-    validity = validity_note(case.table, problem.system, problem.system.temperature)
+    temperature = problem.feeds.temperature
+    extremes = dict.fromkeys((float(temperature.min()), float(temperature.max())))
+    validity = [validity_note(case.table, problem.system, each) for each in extremes]
     return Plan(
         case=case,
         problem=problem,
@@ -94,7 +96,7 @@ def plan_of(case: Case) -> Plan:
         steps=steps,
         seconds=None if each is None else steps * each,
         warnings=_told({name: one.said for name, one in assay(case).waters.items()}),
-        column_warnings=tuple(filter(None, [validity])),
+        column_warnings=tuple(filter(None, validity)),
     )
 
 

@@ -33,6 +33,7 @@ def _facts(plan: Plan) -> tuple[tuple[str, str], ...]:
     feeds = problem.feeds
     held = "at the start; it follows the " + ("conductivity" if feeds.head_at_start else "feed")
     held = "held" if feeds.flux_is_steady else held
+    residence = time_text(plan.residence) if plan.darcy_flux > 0.0 else "none at the start: nothing flows"
     seconds = "not known"
     if plan.seconds is not None:
         seconds = f"about {time_words(plan.seconds)}, from its first steps"
@@ -41,7 +42,7 @@ def _facts(plan: Plan) -> tuple[tuple[str, str], ...]:
         ("cells", f"{len(problem.grid.width)}"),
         ("pore volume", f"{1e3 * problem.pore_volume:.4g} L per m2 of cross-section"),
         ("Darcy flux", f"{86400 * plan.darcy_flux:.4g} m/d, {held}"),
-        ("residence time", time_text(plan.residence)),
+        ("residence time", residence),
         ("duration", duration),
         ("steps", f"about {plan.steps}, or more where accuracy = {run.accuracy:g} needs shorter ones"),
         ("wall clock", seconds),

@@ -18,6 +18,7 @@ if TYPE_CHECKING:
 
 PANEL_HEIGHT = 1.75  # inches
 HEAD_HEIGHT = 1.1
+MOST_PANELS = 12
 
 
 @style.in_style
@@ -47,6 +48,27 @@ def solid_profiles(result: Result) -> Figure:
     solid = result.profiles.solid.values
     panels = [(name, solid[:, minerals.index(name)]) for name in chosen.minerals(result)]
     return _panels(result, panels, "profiles of minerals: " + axis_label("profiles", "solid"))
+
+
+@style.in_style
+def retained_profiles(
+    result: Result, bounds: list[Bound] | None = None, masses: dict[str, float] | None = None
+) -> Figure:
+    """What isotherms hold, and watched solutes in immobile water; NaN, and no line, where there is none."""
+    panels: list[tuple[str, np.ndarray]] = []
+    names = list(result.axes.component)
+    if "sorbed" in result.profiles:
+        sorbed = result.profiles.sorbed.values
+        unit = result.profiles.sorbed.unit
+        panels += [(f"{printed_ion(name)} sorbed\n({unit} of bulk)", sorbed[:, k])
+                   for k, name in enumerate(names) if sorbed[:, k].any()]
+    if "immobile_dissolved" in result.profiles:
+        beside = result.profiles.immobile_dissolved.values
+        for name in chosen.metals(result, bounds):
+            scale = solute_scale(name, masses)
+            values = beside[:, names.index(name)] * scale.factor
+            panels.append((f"{printed_ion(name)}, immobile\n({scale.unit})", values))
+    return _panels(result, panels[:MOST_PANELS], "profiles of what the bed holds back")
 
 
 def _panels(result: Result, panels: list[tuple[str, np.ndarray]], says: str) -> Figure:

@@ -34,6 +34,7 @@ class Block:
         self.ionic_strength = np.full(cells, 0.1)
         self.solved = np.full((COMPONENTS, cells), np.nan)
         self.given = np.zeros((0, cells))  # of open gases
+        self.seen = np.zeros((0, cells))  # of interactions
         self.outcome, self.steps = np.full(cells, -1), np.full(cells, -1)
 
     STATE = ("amount", "solid", "presence", "ln_activity", "ionic_strength", "solved")
@@ -41,8 +42,8 @@ class Block:
     def settle(self, skip=NO_SKIP, start=COLD, first=0, last=None):
         return settle_cells(
             MATRICES, bench_of(MINE), self.kilograms, self.amount, self.solid, self.upper, self.presence,
-            self.ln_activity, self.ionic_strength, self.solved, self.given, skip, start, self.outcome,
-            self.steps, first, len(self.kilograms) if last is None else last,
+            self.ln_activity, self.ionic_strength, self.solved, self.given, self.seen, skip, start,
+            self.outcome, self.steps, first, len(self.kilograms) if last is None else last,
         )  # fmt: skip
 
     def copies(self):

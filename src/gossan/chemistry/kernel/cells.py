@@ -15,7 +15,7 @@ REMAINDER = 1e-6  # of what solids took: below, subtraction has lost more digits
 @kernel
 def settle_cells(
     matrices, bench, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength,
-    solved, given, skip, start, outcome, steps, first, last,
+    solved, given, seen, skip, start, outcome, steps, first, last,
 ):
     """Equilibrate cells first to last (equations.md, 7-18); returns how many failed.
 
@@ -25,6 +25,7 @@ def settle_cells(
     solved (component, cell) mol/kg: what was dissolved after the last solve; a cell whose dissolved
         amounts all stand within skip of it (relative) is left alone
     given (open gas, cell) mol m-3 of bulk that each gave, overwritten
+    seen (species, cell) mol/kg, the molalities that the sums of SIT were taken with; (0, cell) without it
     start: WARM, COLD (from nothing) or MARKED (warm, with the marks as they stand)
     outcome (cell,) int64 and steps (cell,) int64 are overwritten
     All state arrays are changed in place, a failed cell's are left as they were.
@@ -60,6 +61,8 @@ def settle_cells(
             bench.ln_activity[k] = ln_activity[k, i]
         for k in range(components):
             bench.abundance[k] = abs(solved[k, i])
+        for s in range(seen.shape[0]):
+            bench.seen[s] = seen[s, i]
         outcome[i], strength, steps[i] = settle(
             matrices, bench, bench.dissolved, bench.solid, bench.upper, bench.presence,
             ionic_strength[i], start == COLD,
@@ -68,6 +71,8 @@ def settle_cells(
             failed += 1
             continue
         ionic_strength[i] = strength
+        for s in range(seen.shape[0]):
+            seen[s, i] = bench.seen[s]
         for k in range(ln_activity.shape[0]):
             ln_activity[k, i] = bench.ln_activity[k]
         for k in range(components):
@@ -91,7 +96,7 @@ def settle_cells(
         # What little is left in the water is known from speciation, to its last digit; by subtraction from
         # what the solids hold it would be noise.
         for k in range(components):
-            pivot = components == ln_activity.shape[0] and GONE < bench.place[k] < 0
+            pivot = matrices.first.shape[0] == 0 and GONE < bench.place[k] < 0
             if pivot or abs(amount[k, i]) < REMAINDER * bench.right[k]:
                 amount[k, i] = row_dot(matrices.conserved, k, bench.molality) * weight
             solved[k, i] = amount[k, i] / weight

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 
 from gossan.base.jit import kernel
-from gossan.chemistry.kernel.activity import activity_coefficients
+from gossan.chemistry.kernel.interaction import bare_coefficients, coefficients
 from gossan.chemistry.kernel.nullspace import NOWHERE
 from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponentials
 
@@ -20,16 +20,13 @@ MOST_OXIDISED, MOST_REDUCED = -22.0 * math.log(10.0), 15.0 * math.log(10.0)  # l
 @kernel(inner=True)
 def survey(matrices, bench, ionic_strength):
     """Fill bench.molality, sums and abundance from all ln activities; returns the ionic strength made."""
-    return survey_of(matrices, matrices.stoichiometry, matrices.ln_k, bench, ionic_strength)
+    coefficients(matrices, bench, ionic_strength)
+    return survey_of(matrices, matrices.stoichiometry, matrices.ln_k, bench)
 
 
 @kernel(inner=True)
-def survey_of(matrices, stoichiometry, ln_k, bench, ionic_strength):
-    """As survey, for species formed by these (component or basis, species) and ln_k (species,)."""
-    activity_coefficients(
-        matrices.model, matrices.debye_hueckel, matrices.charge_squared, matrices.neutral, matrices.size,
-        ionic_strength, bench.ln_gamma, bench.slope,
-    )  # fmt: skip
+def survey_of(matrices, stoichiometry, ln_k, bench):
+    """As survey, by bench.ln_gamma, for species formed by these (component or basis, species) and ln_k."""
     exponent, ln_gamma = bench.exponent, bench.ln_gamma
     for s in range(exponent.shape[0]):
         exponent[s] = ln_k[s] - ln_gamma[s]
@@ -54,7 +51,7 @@ def add_up(stoichiometry, bench):
 @kernel(inner=True)
 def valences_follow(matrices, bench):
     """Set the ln activities of the coupled valences from those of the conserved components."""
-    components = matrices.conserved.shape[0]
+    components, last = matrices.conserved.shape[0], matrices.stoichiometry.shape[0] - 1
     for v in range(matrices.first.shape[0]):
         row, valence = matrices.minerals + v, components + v
         first = matrices.first[v]
@@ -65,6 +62,8 @@ def valences_follow(matrices, bench):
         for k in range(components):
             if matrices.solid[row, k] != 0.0:
                 value -= matrices.solid[row, k] * bench.ln_activity[k]
+        if matrices.given:
+            value -= matrices.solid[row, last] * bench.ln_activity[last]
         bench.ln_activity[valence] = value
 
 
@@ -138,7 +137,8 @@ def continued_fraction(matrices, bench, dissolved, passes):
     stoichiometry, ln_k = matrices.conserved, matrices.conserved_ln_k
     made = 0.0
     for _ in range(passes):
-        made = survey_of(matrices, stoichiometry, ln_k, bench, 0.0)
+        bare_coefficients(matrices, bench, 0.0)
+        made = survey_of(matrices, stoichiometry, ln_k, bench)
         # a component of crowded species moves less: all components of a species move at once
         share = bench.share
         for s in range(share.shape[0]):

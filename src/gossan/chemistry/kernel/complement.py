@@ -13,6 +13,7 @@ import numpy as np
 
 from gossan.base.jit import kernel
 from gossan.base.outcome import CYCLING, DIVERGED, ITERATIONS, LACKING, SINGULAR, SOLVED
+from gossan.chemistry.kernel.activity import SIT
 from gossan.chemistry.kernel.cold import ABSENT, LITTLE, approach, survey
 from gossan.chemistry.kernel.easing import ease, nearer, overfull
 from gossan.chemistry.kernel.marks import fill_totals, lacking, mark, set_totals, weigh
@@ -33,6 +34,7 @@ from gossan.chemistry.kernel.nullspace import (
     reduce_totals,
     scarcer_free,
 )
+from gossan.chemistry.kernel.paired import paired_step, see, see_again, see_ahead, unseen
 
 SETTLED = 1e-6  # a last step below this leaves an error of about its square
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
@@ -69,7 +71,11 @@ def begin(matrices, bench, dissolved, solid, upper, presence):
             bench.total[k] = LITTLE
     ionic_strength = approach(matrices, bench, dissolved)
     set_totals(matrices, bench, dissolved, solid, upper, presence)
-    survey(matrices, bench, ionic_strength)
+    if matrices.model == SIT:
+        see(bench, 0.0)
+    made = survey(matrices, bench, ionic_strength)
+    if matrices.model == SIT:
+        see(bench, ionic_strength / made if made > ionic_strength else 1.0)
     return ionic_strength
 
 
@@ -142,7 +148,11 @@ def close_balances(matrices, bench, active, free, solid, upper, presence, ionic_
             made = molalities(matrices, bench, free, ionic_strength)
             mismatch = balances(bench, free)
             last, best, factor, mode, near, worse, slow = 1.0, math.inf, 1.0, FAR, NEAR, math.inf, 0
-        done = last < SETTLED or (mismatch < EXACT and abs(made - ionic_strength) < 1e-13 * made + 1e-30)
+        done = last < SETTLED or (
+            mismatch < EXACT
+            and abs(made - ionic_strength) < 1e-13 * made + 1e-30
+            and (matrices.model != SIT or unseen(matrices, bench) < 1e-13)
+        )
         if left == 0.0 and (done or (mismatch < LOOK and not looked)):
             looked = True
             pivots_follow(matrices, bench, active, free)
@@ -158,7 +168,10 @@ def close_balances(matrices, bench, active, free, solid, upper, presence, ionic_
             near *= 0.1  # the near step was not near enough
         worse = math.inf
         if mismatch < near:
-            found, rise = near_step(matrices, bench, free, rise)
+            if matrices.model == SIT:
+                found, rise = paired_step(matrices, bench, free, rise, ionic_strength)
+            else:
+                found, rise = near_step(matrices, bench, free, rise)
             mode, worse = FAR, mismatch
         if not found:
             merit, lost = far_merit(bench, free), 0.0
@@ -167,6 +180,8 @@ def close_balances(matrices, bench, active, free, solid, upper, presence, ionic_
             if merit > best + lost:
                 # the step went too far: back by half of it, or over to the way that always descends
                 ionic_strength = before
+                if matrices.model == SIT:
+                    see_again(bench)
                 if factor > LEAST_SHARE:
                     take_back(bench, free, 0.5)
                     factor *= 0.5
@@ -192,6 +207,14 @@ def close_balances(matrices, bench, active, free, solid, upper, presence, ionic_
         risen = risen_strength(ionic_strength, share * rise)
         move = abs(risen - ionic_strength) / (ionic_strength + 1e-6)
         before, ionic_strength = ionic_strength, risen
+        if matrices.model == SIT:
+            if not found:
+                share = 0.0 if mode == CONVEX else 1.0
+                fill = risen / made if made > risen else 1.0
+                for s in range(bench.seen.shape[0]):
+                    bench.seen_step[s] = fill * bench.molality[s] - bench.seen[s]
+            sums = see_ahead(matrices, bench, share)
+            move = sums if sums > move else move
         last = 1.0
         if found:
             last = largest if largest > move else move

@@ -5,10 +5,11 @@ from __future__ import annotations
 import math
 
 from gossan.base.jit import kernel
-from gossan.chemistry.kernel.activity import SIT_HELD_FROM, SIT_SIZE
+from gossan.chemistry.kernel.activity import SIT, SIT_HELD_FROM, SIT_SIZE, activity_coefficients
 
 MOLAR_MASS = 0.0180153  # kg/mol of water; IUPAC's atomic weights, good to the last digit
 TRACE = 1e-18  # mol/kg: what there is less of pulls at nothing
+DRIEST = -1.0  # ln of an activity of water; far from the answer the sums may claim less
 
 
 @kernel
@@ -47,4 +48,28 @@ def ln_water_activity(debye_hueckel, molality, sums, ionic_strength):
         pairs += molality[s] * sums[s]
     crowd = 1.0 + SIT_SIZE * math.sqrt(share * ionic_strength)
     cloud = 2.0 * debye_hueckel / SIT_SIZE**3 * (crowd - 2.0 * math.log(crowd) - 1.0 / crowd)
-    return -MOLAR_MASS * (share * (all_of_it + 0.5 * pairs) - cloud)
+    value = -MOLAR_MASS * (share * (all_of_it + 0.5 * pairs) - cloud)
+    return value if value > DRIEST else DRIEST
+
+
+@kernel(inner=True)
+def bare_coefficients(matrices, bench, ionic_strength):
+    """Fill bench.ln_gamma and slope by what depends on the ionic strength alone."""
+    activity_coefficients(
+        matrices.model, matrices.debye_hueckel, matrices.charge_squared, matrices.neutral, matrices.size,
+        ionic_strength, bench.ln_gamma, bench.slope,
+    )  # fmt: skip
+
+
+@kernel(inner=True)
+def coefficients(matrices, bench, ionic_strength):
+    """Fill bench.ln_gamma and slope; under SIT also bench.pull and the activity of water, from bench.seen."""
+    bare_coefficients(matrices, bench, ionic_strength)
+    if matrices.model == SIT:
+        ln_gamma, pull = bench.ln_gamma, bench.pull
+        interaction_sums(matrices.interaction, bench.seen, held_share(ionic_strength), pull)
+        for s in range(ln_gamma.shape[0]):
+            ln_gamma[s] += pull[s]
+        bench.ln_activity[bench.ln_activity.shape[0] - 1] = ln_water_activity(
+            matrices.debye_hueckel, bench.seen, pull, ionic_strength
+        )

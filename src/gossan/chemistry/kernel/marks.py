@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from gossan.base.jit import kernel
 from gossan.chemistry.kernel.cold import ABSENT, add_up, level, valences_follow
-from gossan.chemistry.kernel.nullspace import GONE, NOWHERE
+from gossan.chemistry.kernel.nullspace import GIVEN, GONE, NOWHERE
 
 OWED = 1e-12  # mol/kg: an absent component may be negative by what rounding leaves of 100 mol/kg, no more
 SLACK = 1e-11  # ln of a saturation ratio that counts as none: between rounding and what is asked for
@@ -54,6 +54,8 @@ def set_totals(matrices, bench, dissolved, solid, upper, presence):
                 held = True
         if not held:
             bench.place[k] = GONE
+    if matrices.given:
+        bench.place[bench.place.shape[0] - 1] = GIVEN
     for row in range(matrices.minerals, matrices.solid.shape[0]):
         bench.tied[row] = 1
     for v in range(matrices.first.shape[0]):

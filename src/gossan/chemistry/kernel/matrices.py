@@ -13,9 +13,9 @@ class Matrices(NamedTuple):
     """A chemical system at one temperature, as the kernels read it.
 
     Species stand innermost, the basis first, padded at the end by species that do not exist: no
-    stoichiometry, no charge and a constant of nothing.  The basis is the conserved components and then the
-    coupled valences.  Rows are the minerals, and then what always holds, the ties: one for each couple, in
-    the order of the valences, and one for each open gas.
+    stoichiometry, no charge and a constant of nothing.  The basis is the conserved components, then the
+    coupled valences, and under SIT water.  Rows are the minerals, and then what always holds, the ties: one
+    for each couple, in the order of the valences, and one for each open gas.
     """
 
     stoichiometry: np.ndarray  # (basis, species) of formation
@@ -25,7 +25,7 @@ class Matrices(NamedTuple):
     charge_squared: np.ndarray  # (species,)
     neutral: np.ndarray  # (species,) 1 for a dissolved molecule without charge, else 0
     size: np.ndarray  # (species,) ion size times Debye-Hueckel B, (kg/mol)^0.5
-    model: int  # activity model: 0 ideal, 1 Davies, 2 extended Debye-Hueckel
+    model: int  # activity model: 0 ideal, 1 Davies, 2 extended Debye-Hueckel, 3 SIT
     debye_hueckel: float  # A on the natural scale, (kg/mol)^0.5
     solid: np.ndarray  # (row, basis) what one formula dissolves to
     solid_ln_k: np.ndarray  # (row,) of dissolution
@@ -36,6 +36,9 @@ class Matrices(NamedTuple):
     carrier: np.ndarray  # (open gas,) int64: the component whose total it leaves open, e^- for O2 and H2
     signed: int  # H^+, whose total may be negative
     electron: int  # e^-, whose total may be negative too; -1 where nothing is coupled
+    given: int  # 1 under SIT: the last of the basis is water, of which the law gives the activity; else 0
+    interaction: np.ndarray  # (species, species) kg/mol on the natural scale; (0, 0) but under SIT
+    reach: np.ndarray  # (species,) kg/mol: the most that so much of it changes any exponent by; the same
 
 
 class Bench(NamedTuple):
@@ -83,6 +86,17 @@ class Bench(NamedTuple):
     gained: np.ndarray  # (row,) what a mineral, or an open gas, gained in this solve, mol/kg
     reach: np.ndarray  # (row,) the most of a mineral its components allow, mol/kg
     saturation: np.ndarray  # (mineral,) ln of activity product over K
+    # interactions; with any other law than SIT none of it is used
+    seen: np.ndarray  # (species,) mol/kg: the molalities that the sums are taken with
+    seen_before: np.ndarray  # (species,) the same before the last step
+    seen_step: np.ndarray  # (species,) the step itself
+    pull: np.ndarray  # (species,) the sums: what ln_gamma gains
+    chosen: np.ndarray  # (species,) int64: whose molalities are unknowns of the step
+    steep: np.ndarray  # (species + 2, species) slopes of ln molalities against ionic strength and chosen ones
+    sides: np.ndarray  # (species + 1, basis) the same of the balances
+    weights: np.ndarray  # (species + 1, basis) slopes of ionic strength and chosen ones against ln activities
+    border: np.ndarray  # (species + 1, species + 1) what is left when the balances are eliminated
+    ahead: np.ndarray  # (species + 1,) its right side and its answer
 
 
 def padded(species: int) -> int:
@@ -96,6 +110,7 @@ def bench(matrices: Matrices) -> Bench:
     components, minerals = matrices.conserved.shape[0], matrices.minerals
     rows = max(matrices.solid.shape[0], 1)
     both = basis + rows
+    ions = matrices.interaction.shape[0]
 
     def real(*shape):
         return np.zeros(shape)
@@ -141,4 +156,14 @@ def bench(matrices: Matrices) -> Bench:
         gained=real(rows),
         reach=real(rows),
         saturation=real(rows),
+        seen=real(ions),
+        seen_before=real(ions),
+        seen_step=real(ions),
+        pull=real(ions),
+        chosen=whole(ions),
+        steep=real(ions + 2, ions),
+        sides=real(ions + 1, basis),
+        weights=real(ions + 1, basis),
+        border=real(ions + 1, ions + 1),
+        ahead=real(ions + 1),
     )

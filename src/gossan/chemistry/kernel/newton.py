@@ -5,8 +5,8 @@ from __future__ import annotations
 import math
 
 from gossan.base.jit import kernel
-from gossan.chemistry.kernel.activity import activity_coefficients
 from gossan.chemistry.kernel.dense import factor_cholesky, solve_cholesky, solve_general
+from gossan.chemistry.kernel.interaction import coefficients
 from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponentials, four_row_dots, row_dot
 
 SLIGHT = 1e-290  # keeps a ratio of sums finite
@@ -15,14 +15,11 @@ SLIGHT = 1e-290  # keeps a ratio of sums finite
 @kernel(inner=True)
 def molalities(matrices, bench, free, ionic_strength):
     """Fill bench.molality from the free ln activities; returns the ionic strength these species make."""
-    activity_coefficients(
-        matrices.model, matrices.debye_hueckel, matrices.charge_squared, matrices.neutral, matrices.size,
-        ionic_strength, bench.ln_gamma, bench.slope,
-    )  # fmt: skip
+    coefficients(matrices, bench, ionic_strength)
     exponent, reduced_ln_k, ln_gamma = bench.exponent, bench.reduced_ln_k, bench.ln_gamma
     for s in range(exponent.shape[0]):
         exponent[s] = reduced_ln_k[s] - ln_gamma[s]
-    for j in range(free):
+    for j in range(free + matrices.given):
         add_row(exponent, bench.ln_activity[bench.free[j]], bench.reduced, j)
     exponentials(exponent, bench.bits, bench.molality)
     return 0.5 * dot(matrices.charge_squared, bench.molality)

@@ -18,6 +18,7 @@ from gossan.base.jit import kernel
 from gossan.chemistry.kernel.vectors import add_row
 
 GONE = -99  # place of a component that is absent
+GIVEN = -98  # place of water where its activity is given
 NOWHERE = -1e6  # ln activity of an absent component: whatever is made of it vanishes
 SIGNED_LAST = 1e6  # H^+ is scarce in neutral water, yet what a new precipitate leaves scarce is its metal
 NOTHING = 1e-11  # stoichiometry below this is a rounding remainder
@@ -44,6 +45,8 @@ def eliminate(matrices, bench, presence, entering):
             place[k] = f
             bench.free[f] = k
             f += 1
+    if matrices.given:
+        bench.free[f] = place.shape[0] - 1  # beside the free ones: its activity counts, its balance does not
     return n, f
 
 
@@ -55,7 +58,7 @@ def tie_all(matrices, bench, presence, entering):
     """
     place = bench.place
     for k in range(place.shape[0]):
-        if place[k] != GONE:
+        if place[k] > GIVEN:
             place[k] = 0
     n = np.int64(0)
     for row in range(matrices.minerals, matrices.solid.shape[0]):
@@ -172,7 +175,7 @@ def reduce_species(matrices, bench, active, free):
             add_row(reduced_ln_k, NOWHERE, stoichiometry, k)
     for r in range(active):
         add_row(reduced_ln_k, pivot_constant(matrices, bench, active, r), stoichiometry, bench.pivot[r])
-    for j in range(free):
+    for j in range(free + matrices.given):
         k = bench.free[j]
         for s in range(species):
             reduced[j, s] = stoichiometry[k, s]
@@ -216,7 +219,7 @@ def pivots_follow(matrices, bench, active, free):
     """Set the ln activities of the pivots from those of the free components."""
     for r in range(active):
         value = pivot_constant(matrices, bench, active, r)
-        for j in range(free):
+        for j in range(free + matrices.given):
             value -= bench.rows[r, bench.free[j]] * bench.ln_activity[bench.free[j]]
         bench.ln_activity[bench.pivot[r]] = value
 

@@ -7,6 +7,7 @@ import math
 from gossan.base.jit import kernel
 from gossan.chemistry.kernel.cold import approach, survey_of, valences_follow
 from gossan.chemistry.kernel.dense import solve_general
+from gossan.chemistry.kernel.interaction import bare_coefficients
 from gossan.chemistry.kernel.marks import set_totals
 from gossan.chemistry.kernel.nullspace import GONE, NOWHERE
 from gossan.chemistry.kernel.vectors import row_dot
@@ -35,7 +36,8 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
     are left near the answer, to be settled from there; returns (found, ionic strength).
     Source: Kraeutle (2011), Adv. Water Resour. 34, 137-151, for the method; Billups (1995) for two bounds.
     amount, reach (row,) are working space.  Everything is counted in conserved components: where couples
-    cancel that costs digits, not the marks.
+    cancel that costs digits, not the marks.  Interactions of ions are left out, and the activity of water is
+    1: the marks are settled with them afterwards.
     """
     components, minerals = dissolved.shape[0], solid.shape[0]
     gases = matrices.minerals + matrices.first.shape[0]  # the first row of an open gas
@@ -59,7 +61,8 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
         amount[row], reach[row] = 0.0, 1.0
     matrix, right, stoichiometry = bench.matrix, bench.right, matrices.conserved
     for step in range(LIMIT):
-        made = survey_of(matrices, stoichiometry, matrices.conserved_ln_k, bench, ionic_strength)
+        bare_coefficients(matrices, bench, ionic_strength)
+        made = survey_of(matrices, stoichiometry, matrices.conserved_ln_k, bench)
         for i in range(n):
             right[i] = 0.0
             for j in range(n):
@@ -159,6 +162,8 @@ def find_minerals(matrices, bench, dissolved, solid, upper, presence, amount, re
 def find_minerals_in(matrices, bench, kilograms, amount, solid, upper, presence, ln_activity, ionic_strength):
     """Mark the minerals present in one cell (arrays as in settle_cells, one cell long), in place."""
     minerals = solid.shape[0]
+    for k in range(ln_activity.shape[0]):
+        bench.ln_activity[k] = 0.0
     for k in range(amount.shape[0]):
         bench.dissolved[k] = amount[k, 0] / kilograms[0]
     for m in range(minerals):

@@ -236,7 +236,7 @@ def outlet_share(dissolved, inflow, start, end, slopes, outlet):
 
 @kernel(inner=True)
 def leave(dissolved, inflow, bounds, flux, conductance, slopes, outlet, dt, passed):
-    """What passes the outlet (equations.md, 67), with the water and by dispersion to what lies beyond."""
+    """What passes the outlet (equations.md, 68), with the water and by dispersion to what lies beyond."""
     cells = dissolved.shape[1]
     for g in range(bounds.shape[0] - 1):
         start, end = bounds[g], bounds[g + 1]
