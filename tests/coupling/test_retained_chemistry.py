@@ -61,7 +61,7 @@ def test_immobile_water_with_a_mineral_against_brute_force(tmp_path):
     problem, _ = started(salt_column(tmp_path, immobile, run='max_courant = 0.02'), tmp_path)
     problem = replace(problem, transport=replace(problem.transport, limiter=LIMITERS["none"]))
     run = walk(problem)
-    flux = problem.inlet_flux
+    flux = 0.1 / DAY
     coarse, fine = (np.array(brute_force(flux, 6.0, steps)) for steps in (8000, 16000))
     exact = 2.0 * fine - coarse
     state, sodium = run.last, problem.solutes.index("Na^+")

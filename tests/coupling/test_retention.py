@@ -163,7 +163,7 @@ def test_nothing_falls_below_nothing_or_rises_above_what_there_was(text):
     run = walk(text)
     problem = run.problem
     tracers = slice(problem.chemical, None)
-    most = (problem.inflow.max(axis=0) + problem.initial.dissolved.max(axis=1))[tracers].sum()
+    most = (problem.feeds.inflow.max(axis=(0, 1)) + problem.initial.dissolved.max(axis=1))[tracers].sum()
     for state in run.records:
         waters = [state.dissolved[tracers]] + ([state.still.dissolved[tracers]] if state.still else [])
         for dissolved in waters:

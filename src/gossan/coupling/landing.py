@@ -36,6 +36,7 @@ def land(
     solver: Solver,
     begun: State | StillWater,
     start: Equilibrium,
+    guess: np.ndarray,
     isotherms: Isotherms | None,
     kept: Kept | None,
     moved: np.ndarray,
@@ -44,6 +45,7 @@ def land(
     """Let decay, isotherms and chemistry act on what transport and exchange have left in a water.
 
     begun     what the step began with; start the equilibrium from which to go on
+    guess     (sorbate, cell) mol m-3 of bulk, what may come to be sorbed
     moved     (solute, cell) mol m-3 of bulk, dissolved after transport and exchange; changed in place
     water     (cell,) m3 m-3 after transport and exchange
     Raises    SolveError where a cell finds no equilibrium
@@ -53,7 +55,7 @@ def land(
     if isotherms is not None or kept is not None:
         sorbed = sorbed.copy()
         made = _tracers(problem, begun, isotherms, kept, moved, sorbed, water)
-    found = react(problem, solver, start, isotherms, moved[:chemical], sorbed, begun.solid, water)
+    found = react(problem, solver, start, isotherms, moved[:chemical], sorbed, guess, begun.solid, water)
     moved[:chemical] = found.amount
     freed = -problem.volume_of_water * (problem.system.mineral_water @ (found.solid - begun.solid))
     return Landed(moved, sorbed, made, found, water + freed, freed)

@@ -22,12 +22,13 @@ ROUNDS = 100  # halving a bracket alone takes half as many
 
 def react(
     problem: Problem, solver: Solver, start: Equilibrium, isotherms: Isotherms | None,
-    moved: np.ndarray, sorbed: np.ndarray, solid: np.ndarray, water: np.ndarray,
+    moved: np.ndarray, sorbed: np.ndarray, guess: np.ndarray, solid: np.ndarray, water: np.ndarray,
 ) -> Equilibrium:
     """Equilibrate what transport left in every cell; amounts are per bulk.
 
     moved   (component, cell) mol m-3 of bulk, dissolved; solid (mineral, cell)
     sorbed  (sorbate, cell) mol m-3 of bulk; those of components are changed in place
+    guess   (sorbate, cell) what they may come to where minerals hold the component, too
     Raises  SolveError naming the cell
     """
     upper = np.where(problem.system.may_form[:, None], UNBOUNDED, solid)
@@ -35,7 +36,8 @@ def react(
     rows = np.flatnonzero(problem.sorbates < problem.chemical)
     if isotherms is None or not len(rows):
         return solver.settled(start, kilograms, moved, solid, upper, skip=SKIP)
-    bed = _Bed(solver, isotherms.of(rows), moved, solid, upper, water, kilograms, sorbed[rows])
+    bed = _Bed(solver, isotherms.of(rows), moved, solid, upper, water, kilograms, sorbed[rows],
+               guess[rows])
     found, sorbed[rows] = bed.settled(start)
     return found
 
@@ -52,6 +54,7 @@ class _Bed:
     water: np.ndarray
     kilograms: np.ndarray
     sorbed: np.ndarray  # (sorbate, cell) before
+    guess: np.ndarray  # (sorbate, cell)
 
     def settled(self, start: Equilibrium) -> tuple[Equilibrium, np.ndarray]:
         """The equilibrium, and the sorbed amounts that isotherm and chemistry agree to (equations.md, 58).
@@ -64,7 +67,8 @@ class _Bed:
         formulas = self.solver.system.mineral_stoichiometry[:, self.laws.solutes]
         there = np.abs(formulas.T) @ self.solid
         free, held = shared_out(self.laws, moved + self.sorbed, self.water)
-        free, held = np.where(there > 0.0, moved, free), np.where(there > 0.0, self.sorbed, held)
+        free = np.where(there > 0.0, moved + (self.sorbed - self.guess), free)
+        held = np.where(there > 0.0, self.guess, held)
         found = self._tried(start, free, SKIP)
         wish = self._wished(found, held)
         open_ = np.flatnonzero(~_small(held, wish).all(axis=0))

@@ -69,16 +69,20 @@ class Waters:
             moved[:, beside.cells] -= exchange
         moved[np.abs(moved) < NO_ATOM] = 0.0
         start = before.flowing.found if before else equilibrium_of(problem, state)
+        guess = before.flowing.sorbed if before else state.sorbed
         laws = problem.flowing_isotherms
-        flowing = land(problem, self.solver, state, start, laws, self.kept, moved, self.water)
+        flowing = land(problem, self.solver, state, start, guess, laws, self.kept, moved, self.water)
         if beside is None or exchange is None:
             return Stage(flowing)
         still = beside.still
         moved = still.dissolved * still.water + exchange
         moved[np.abs(moved) < NO_ATOM] = 0.0
         start = before.still.found if before and before.still else equilibrium_of(problem, still)
+        guess = before.still.sorbed if before and before.still else still.sorbed
         laws = problem.still_isotherms
-        landed = land(problem, self.solver, still, start, laws, self.kept, moved, beside.still_water)
+        landed = land(
+            problem, self.solver, still, start, guess, laws, self.kept, moved, beside.still_water
+        )
         return Stage(flowing, landed, arriving, exchange)
 
     def difference(self, first: Stage, passed: np.ndarray, more: np.ndarray) -> np.ndarray:
@@ -173,10 +177,10 @@ class Beside:
     def _within(self, moved: np.ndarray, passed: np.ndarray) -> np.ndarray:
         """The exchange, held back to what the giving water has; one share for all components of a group."""
         problem = self.problem
-        flowing, still = np.maximum(moved, 0.0), self.still.dissolved * self.still.water
+        flowing, still = moved.copy(), self.still.dissolved * self.still.water
         flowing[problem.sorbates] += self.sorbed
         still[problem.sorbates] += self.still.sorbed
-        room = np.where(passed > 0.0, flowing, still)
+        room = np.maximum(np.where(passed > 0.0, flowing, still), 0.0)
         signed = np.isin(np.arange(len(passed)), problem.system.signed)
         over = (np.abs(passed) > room) & ~signed[:, None]
         if not over.any():
