@@ -30,6 +30,7 @@ from gossan.coupling.state import State, state_of
 from gossan.store.file import Axes
 from gossan.store.read import Result, open_result
 from gossan.store.write import ResultWriter
+from gossan.transport.faces import Faces, faces_of
 from gossan.transport.step import passages
 
 CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
@@ -240,11 +241,10 @@ class _Run:
         drive = Drive(self.problem, state)
         inflow = drive.inflow
         darcy_flux, _ = drive.flow(settled_dt(state), 0.0)
-        through = passages(
-            self.problem.transport, state.dissolved, state.water, darcy_flux, inflow, 1.0
-        ).passed
+        faces = faces_of(self.problem.transport, state.water, darcy_flux)
+        through = passages(faces, state.dissolved, inflow, 1.0).passed
         for index, port in enumerate(self.problem.ports):
-            values = port_of(self.problem, state, port, index, darcy_flux, through)
+            values = port_of(self.problem, state, port, index, faces, inflow, through)
             self.writer.port(port.name, state.time, values)
         ledger = self.books.closed(state)
         names = ("entered", "left", "stored", "made", "error", "water_error", "charge_error")
@@ -299,23 +299,22 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
 
 
 def port_of(
-    problem: Problem, state: State, port: Port, index: int, darcy_flux: np.ndarray, through: np.ndarray
+    problem: Problem, state: State, port: Port, index: int, faces: Faces, inflow: np.ndarray,
+    through: np.ndarray,
 ) -> dict[str, Any]:
     """What a port shows (equations.md, 45).
 
-    through (solute, face) mol m-2 s-1 is what passes every face at this instant
+    inflow (solute,) mol m-3; through (solute, face) mol m-2 s-1 is what passes every face at this instant
     """
-    flux = darcy_flux[port.face]
-    grid = problem.grid
-    before, after = max(port.face - 1, 0), min(port.face, len(grid.width) - 1)
-    share = grid.width[before] / (grid.width[before] + grid.width[after])
-    resident = (1.0 - share) * state.dissolved[:, before] + share * state.dissolved[:, after]
+    flux, before = faces.darcy_flux[port.face], max(port.face - 1, 0)
+    passing = through[:, port.face]
     return {
         "pore_volumes": pore_volumes(problem, state),
         "darcy_flux": flux,
         "pH": -state.ln_activity[0, before] / LN10,
         "pe": pe_of(problem.system, state.ln_activity)[before],
-        "dissolved": through[:, port.face] / flux if flux != 0.0 else np.full(len(through), np.nan),
-        "resident": resident,
+        # flux-averaged; where no water passes there is none
+        "dissolved": passing / flux if flux != 0.0 else np.full(len(through), np.nan),
+        "resident": faces.resident(state.dissolved, inflow, passing, port.face),
         "passed": state.passed[2 + index].sum(axis=-1),
     }

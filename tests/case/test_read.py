@@ -5,6 +5,7 @@ import subprocess
 import sys
 import tomllib
 
+import numpy as np
 import pytest
 from pydantic import ValidationError
 
@@ -48,7 +49,9 @@ def test_the_defaults_are_the_contracts():
     assert (case.run.accuracy, case.run.max_courant) == (1e-3, 0.5)
     assert (case.run.profiles_every, case.run.ports_every) == (None, None)
     assert layer.diffusion.si == 1e-9
-    assert layer.diffusion_factor == pytest.approx(0.40 ** (1 / 3), rel=1e-15)
+    assert layer.tortuosity is None
+    assert (case.flow.outlet, case.flow.outlet_water, case.flow.outlet_gradient) == ("zero-gradient", "", {})
+    assert case.run.limiter == "van-leer"
     assert layer.grain_density.si == 2650.0
     assert layer.clogging.law == "kozeny-carman"
     assert layer.conductivity is None
@@ -85,7 +88,20 @@ def test_pore_volumes_become_seconds_under_a_held_flux():
 )
 def test_cell_gives_the_fewest_cells_no_longer_than_it(size, count):
     case = case_from_text(SMALL.replace("cells = 10", f'cell = "{size}"'))
-    assert case.layers[0].cell_count == count
+    assert case.layers[0].mesh == (count, 1.0)
+
+
+def test_cells_may_grow():
+    """One centimetre at most at the inlet, four at the end, in the fewest cells."""
+    case = case_from_text(SMALL.replace("cells = 10", 'cell = {first = "1 cm", last = "4 cm"}'))
+    cells, growth = case.layers[0].mesh
+    widths = growth ** np.arange(cells)
+    widths /= widths.sum()
+    assert 0.009 < widths[0] <= 0.01
+    assert widths[-1] == pytest.approx(4 * widths[0])
+    fewer = 4 ** (np.arange(cells - 1) / (cells - 2))
+    assert 0.01 * fewer.sum() < 1.0
+    assert case_from_text(SMALL).layers[0].mesh == (10, 1.0)
 
 
 def test_every_water_alone_is_a_case_for_assay():

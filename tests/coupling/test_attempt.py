@@ -14,6 +14,8 @@ from gossan.chemistry.equilibrium import Solver
 from gossan.coupling.attempt import attempt
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State
+from gossan.transport.faces import Faces, faces_of
+from gossan.transport.step import DAMPING
 
 STEPS = (12, 24, 48, 96)
 EXACT = 768  # steps of the reference: its error is 1/64 of the finest, 1/8 where the order is the first
@@ -21,7 +23,7 @@ EXACT = 768  # steps of the reference: its error is 1/64 of the finest, 1/8 wher
 BEHIND = {"Na": 0.3027756377319946, "K": 3.5, "Cl": 3.302775637731995, "NO3": 0.5}
 AHEAD = {"Na": 1.0, "K": 0.5, "Cl": 1.0, "NO3": 0.5}
 # dispersivity, weight of the end in an implicit step
-EXPLICIT, IMPLICIT, VERY_IMPLICIT = ("2 cm", None), ("5 cm", 0.5), ("20 cm", 0.5)
+EXPLICIT, IMPLICIT, VERY_IMPLICIT = ("2 cm", None), ("5 cm", DAMPING), ("20 cm", DAMPING)
 
 
 def salty(folder, coupling: str, dispersivity: str) -> tuple[Problem, State]:
@@ -47,13 +49,19 @@ def salty(folder, coupling: str, dispersivity: str) -> tuple[Problem, State]:
     )  # fmt: skip
 
 
+def faces(problem: Problem, state: State) -> Faces:
+    """At the state's moment, under the held flux."""
+    darcy_flux = np.full(len(state.water) + 1, problem.feeds.darcy_flux[0, 0])
+    return faces_of(problem.transport, state.water, darcy_flux)
+
+
 def marched(problem: Problem, state: State, steps: int, theta: float | None) -> tuple[np.ndarray, float]:
     """Totals (solute, cell) after a tenth of a pore volume in equal steps, and the sum of their estimates."""
-    flux = np.full(len(problem.grid.width) + 1, problem.feeds.darcy_flux[0, 0])
     dt = 0.1 * problem.pore_volume / problem.feeds.darcy_flux[0, 0] / steps
     solver = Solver(problem.system)
     for _ in range(steps):
-        state = attempt(problem, solver, state, flux, problem.feeds.inflow[0, 0], dt, theta).state
+        inflow, now = problem.feeds.inflow[0, 0], faces(problem, state)
+        state = attempt(problem, solver, state, now, inflow, dt, theta).state
     held = state.dissolved * state.water
     return held + problem.system.mineral_stoichiometry.T @ state.solid, state.splitting_error
 
@@ -80,20 +88,20 @@ def test_two_stage_is_second_order_in_time(tmp_path, dispersivity, theta):
     assert (np.array(told) > 0.9 * np.array(found)).all()
 
 
-@pytest.mark.parametrize(("dispersivity", "theta"), [EXPLICIT, IMPLICIT, VERY_IMPLICIT])
+@pytest.mark.parametrize(("dispersivity", "theta"), [EXPLICIT, ("5 cm", 1.0), ("20 cm", 1.0)])
 def test_lie_is_first_order_and_its_estimate_follows_the_error(tmp_path, dispersivity, theta):
     found, told = errors(tmp_path, "lie", dispersivity, theta)
     assert observed_order(STEPS, found) == pytest.approx(1.1, abs=0.15)  # the reference is no better than 1/8
     ratio = np.array(told) / np.array(found)
     assert ratio.min() > 1.0
-    assert ratio.max() < 4.0
+    assert ratio.max() < (8.0 if theta else 4.0)  # backward Euler, against a second order that halves it
 
 
 def test_nothing_that_was_given_is_changed(tmp_path):
     problem, state = salty(tmp_path, "two-stage", "2 cm")
     before = {name: np.array(getattr(state, name), copy=True) for name in State.__slots__}
-    flux = np.full(len(problem.grid.width) + 1, problem.feeds.darcy_flux[0, 0])
-    attempt(problem, Solver(problem.system), state, flux, problem.feeds.inflow[0, 0], 600.0, None)
+    solver, now = Solver(problem.system), faces(problem, state)
+    attempt(problem, solver, state, now, problem.feeds.inflow[0, 0], 600.0, None)
     for name, values in before.items():
         assert np.array_equal(values, getattr(state, name)), name
 
@@ -101,11 +109,11 @@ def test_nothing_that_was_given_is_changed(tmp_path):
 def test_a_step_tried_twice_gives_the_same_bits(tmp_path):
     """Also after the solver has worked on something else: what it keeps for itself must not matter."""
     problem, state = salty(tmp_path, "two-stage", "2 cm")
-    flux = np.full(len(problem.grid.width) + 1, problem.feeds.darcy_flux[0, 0])
-    solver = Solver(problem.system)
-    one = attempt(problem, solver, state, flux, problem.feeds.inflow[0, 0], 600.0, None)
-    attempt(problem, solver, one.state, flux, problem.feeds.inflow[0, 0] * 0.5, 1200.0, 0.5)
-    two = attempt(problem, solver, state, flux, problem.feeds.inflow[0, 0], 600.0, None)
+    solver, now = Solver(problem.system), faces(problem, state)
+    inflow = problem.feeds.inflow[0, 0]
+    one = attempt(problem, solver, state, now, inflow, 600.0, None)
+    attempt(problem, solver, one.state, faces(problem, one.state), 0.5 * inflow, 1200.0, DAMPING)
+    two = attempt(problem, solver, state, now, inflow, 600.0, None)
     for name in State.__slots__:
         a, b = (np.asarray(getattr(trial.state, name)) for trial in (one, two))
         assert a.tobytes() == b.tobytes(), name

@@ -4,21 +4,32 @@ from __future__ import annotations
 
 import numpy as np
 
+SHORT = 1e-10  # a cut rise ends so much short of its bound, that rounding may not pass it
 
-def allowed(left, right, value, limiter):
-    """The share of the mean slope that a limiter allows between two one-sided ones (rises to the face)."""
-    if abs(left) + abs(right) <= 1e-10 * abs(value):
-        return 1.0  # rounding
-    if left * right <= 0.0 or limiter == "none":
+
+def allowed(left, right, limiter):
+    """The share of the mean slope that a limiter allows between two one-sided ones (rises to the faces)."""
+    if limiter == "none":
+        return 1.0
+    if left * right <= 0.0 or limiter == "upwind":
         return 0.0
     harmonic = 2 * left * right / (left + right)
     lesser = np.sign(left) * min(abs(left), abs(right))
     return (harmonic if limiter == "van-leer" else lesser) / (0.5 * (left + right))
 
 
-def passed(dissolved, inflow, groups, darcy_flux, conductance, bias, lean_left, lean_right, uneven,
-           limiter, dt):
-    """Amounts through every face, (solute, face) mol m-2; groups is a list of lists of solutes."""
+def flat(left, right, value):
+    """Whether what changes is rounding."""
+    return abs(left) + abs(right) <= 1e-10 * abs(value)
+
+
+def passed(dissolved, inflow, groups, darcy_flux, conductance, slopes, uneven, limiter, outlet, dt):
+    """Amounts through every face, (solute, face) mol m-2.
+
+    groups a list of lists of solutes; slopes a dict of lean_left, lean_right, rise_left, rise_right, kept
+    uneven set of cells whose neighbours differ; outlet a dict of rise, half, reach, spread, held, beyond and
+    gradient
+    """
     solutes, cells = dissolved.shape
     out = np.zeros((solutes, cells + 1))
     for group in groups:
@@ -30,60 +41,83 @@ def passed(dissolved, inflow, groups, darcy_flux, conductance, bias, lean_left, 
                     carried = q * (inflow[k] if q > 0 else c[0])
                     out[k, 0] = dt * (carried + conductance[0] * (inflow[k] - c[0]))
                 elif face == cells:
-                    out[k, cells] = dt * q * c[-1]
+                    value = outlet_value(dissolved, inflow, group, k, q, slopes, limiter, outlet)
+                    out[k, cells] = dt * (q * value + conductance[cells] * (c[-1] - outlet["beyond"][k])
+                                          - outlet["spread"] * outlet["gradient"][k])
                 else:
                     i = face - 1
-                    value = c[face] if q < 0 else c[i] + rise(dissolved, inflow, group, k, i, bias, lean_left,
-                                                               lean_right, uneven, limiter)
+                    value = c[face] if q < 0 else c[i] + rise(dissolved, inflow, group, k, i, slopes, uneven,
+                                                              limiter)
                     out[k, face] = dt * (q * value + conductance[face] * (c[i] - c[face]))
     return out
 
 
-def rise(dissolved, inflow, group, k, i, bias, lean_left, lean_right, uneven, limiter):
+def differences(dissolved, inflow, k, i):
+    """To the neighbour upstream, or what flows in, and from it to the one downstream."""
+    before = dissolved[k, i - 1] if i > 0 else inflow[k]
+    return dissolved[k, i] - before, dissolved[k, i + 1] - dissolved[k, i]
+
+
+def rise(dissolved, inflow, group, k, i, slopes, uneven, limiter):
     """From the centre of cell i to its downstream face, solute k, under the strictest limit of its group."""
-
-    def differences(solute):
-        before = dissolved[solute, i - 1] if i > 0 else inflow[solute]
-        return dissolved[solute, i] - before, dissolved[solute, i + 1] - dissolved[solute, i]
-
     special = i in uneven
-    share = 1.0
+    weights = slopes["rise_left"][i], slopes["rise_right"][i]
+    limits, cuts = [1.0], []
     for other in group:
-        drop, climb = differences(other)
-        left, right = (lean_left[i] * drop, lean_right[i] * climb) if special else (drop / 2, climb / 2)
-        value = dissolved[other, i]
-        limit = allowed(left, right, value, limiter)
-        if limit < 1.0 or abs(left) + abs(right) > 1e-10 * abs(value):
-            if special:  # stay between the neighbours
-                middle = abs(left + right) / 2
-                if limit * middle > min(abs(drop), abs(climb)) > 0:
-                    limit = (1 - 1e-10) * min(abs(drop), abs(climb)) / middle
-            elif limit > 0:  # the same for the biased mean, were the steeper side the downstream one
-                less, more = sorted((abs(left), abs(right)))
-                steepest = ((1 - bias[i]) * less + (1 + bias[i]) * more) / 2
-                limit = min(limit, 2 * less / steepest)
-        share = min(share, limit)
-    drop, climb = differences(k)
-    if special:
-        return share * (lean_left[i] * drop + lean_right[i] * climb) / 2
-    return share * ((1 - bias[i]) * drop + (1 + bias[i]) * climb) / 4
+        drop, climb = differences(dissolved, inflow, other, i)
+        leans = (slopes["lean_left"][i], slopes["lean_right"][i]) if special else (0.5, 0.5)
+        left, right = leans[0] * drop, leans[1] * climb
+        if special and flat(left, right, dissolved[other, i]):
+            continue
+        if not special and flat(drop, climb, dissolved[other, i]):
+            continue
+        limits.append(allowed(left, right, limiter))
+        less, more = sorted((abs(drop), abs(climb)))
+        # no further than to the nearer neighbour, for the steepest profile that is as uneven
+        whole = (weights[0] * abs(drop) + weights[1] * abs(climb) if special
+                 else weights[0] * less + weights[1] * more)
+        cuts.append(less / whole if whole > 0 else np.inf)
+    share = min(limits)
+    if limiter != "none":
+        # unlike neighbours: the solute with the least room; alike: the least even one has it
+        share = min([share, *((1.0 - SHORT * special) * cut for cut in cuts if cut < share)])
+    drop, climb = differences(dissolved, inflow, k, i)
+    return share * slopes["kept"][i] * (weights[0] * drop + weights[1] * climb)
 
 
-def dispersed(surplus, dissolved, swelling, storage, conductance, dt):
-    """What a surplus changes and disperses, by a dense matrix: (solute, cell) and (solute, face)."""
+def outlet_value(dissolved, inflow, group, k, q, slopes, limiter, outlet):
+    """What stands at the outlet's face: the last cell's value and the rise that the cell before allows."""
+    cells = dissolved.shape[1]
+    if q < 0 and outlet["held"]:
+        return outlet["beyond"][k]
+    value = dissolved[k, -1] + outlet["gradient"][k] * outlet["half"]
+    if cells == 1 or q <= 0 or outlet["rise"] == 0:
+        return value
+    share = 0.0 if limiter == "upwind" else 1.0
+    for other in group:
+        drop, climb = differences(dissolved, inflow, other, cells - 2)
+        left, right = slopes["lean_left"][cells - 2] * drop, slopes["lean_right"][cells - 2] * climb
+        if not flat(left, right, dissolved[other, cells - 2]):
+            share = min(share, allowed(left, right, limiter))
+        full = outlet["rise"] * climb
+        # towards nil, and beyond it
+        if limiter != "none" and full * dissolved[other, -1] <= 0 and abs(full) > 0:
+            least = abs(dissolved[other, -1]) / abs(full)
+            share = (1.0 - SHORT) * least if least < share else share
+    last = dissolved[k, -1] - dissolved[k, -2] - outlet["gradient"][k] * outlet["reach"]
+    return value + share * outlet["rise"] * slopes["kept"][cells - 1] * last
+
+
+def dispersed(surplus, dissolved, swelling, storage, conductance, implicit_flux, dt):
+    """What a surplus changes and passes on, by a dense matrix: (solute, cell) and (solute, face)."""
     cells = storage.size
-    matrix = np.diag(storage.astype(float))
+    through = np.zeros((cells + 1, cells))  # what passes a face for a unit of change in a cell
     for face in range(cells + 1):
-        through = np.zeros(cells)
         if face > 0:
-            through[face - 1] += dt * conductance[face]
+            through[face, face - 1] = dt * (conductance[face] + implicit_flux[face])
         if face < cells:
-            through[face] -= dt * conductance[face]
-        if face > 0:
-            matrix[face - 1] += through
-        if face < cells:
-            matrix[face] -= through
+            through[face, face] = -dt * conductance[face]
+    matrix = np.diag(storage.astype(float)) + through[1:] - through[:-1]
     right = surplus[:, :-1] - surplus[:, 1:] - swelling * dissolved
     change = np.linalg.solve(matrix, right.T).T
-    edged = np.hstack([np.zeros((len(change), 1)), change, np.zeros((len(change), 1))])
-    return change, dt * conductance * (edged[:, :-1] - edged[:, 1:])
+    return change, change @ through.T

@@ -7,7 +7,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from gossan.transport.step import Transport, corrected, courant, passages
+from gossan.transport.faces import Faces, Transport, faces_of
+from gossan.transport.step import DAMPING, corrected, passages
 
 
 @dataclass
@@ -21,41 +22,51 @@ class Column:
     time: float = 0.0
     passed: np.ndarray | None = None
 
+    @property
+    def faces(self) -> Faces:
+        """At this moment."""
+        return faces_of(self.transport, self.water, self.darcy_flux)
+
+    @property
+    def explicit_limit(self) -> float:
+        """The longest explicit step, s."""
+        return self.faces.explicit_limit
+
+    def at_courant(self, number: float) -> float:
+        """The step, s, that has this Courant number."""
+        return number / self.faces.fastest
+
     def step(self, inflow: np.ndarray, dt: float, theta: float | None) -> None:
         """One two-stage step."""
         width = self.transport.grid.width
         amount = self.water * self.dissolved
-        first = passages(self.transport, self.dissolved, self.water, self.darcy_flux, inflow, dt, theta)
+        first = passages(self.faces, self.dissolved, inflow, dt, theta)
         predicted = (amount + net(first.passed) / width) / self.water
-        passed = corrected(self.transport, first, self.dissolved, predicted)
+        passed = corrected(first, self.dissolved, predicted)
         self.dissolved = (amount + net(passed) / width) / self.water
         self.passed = passed if self.passed is None else self.passed + passed
         self.time += dt
 
     def flux_averaged(self, inflow: np.ndarray) -> np.ndarray:
         """What a port at each face would meet at this moment, (solute, face) mol m-3."""
-        first = passages(self.transport, self.dissolved, self.water, self.darcy_flux, inflow, 1e-9)
-        return first.explicit / (self.darcy_flux * 1e-9)
+        return passages(self.faces, self.dissolved, inflow, 1.0).passed / self.darcy_flux
+
+    def resident(self, inflow: np.ndarray, face: int) -> np.ndarray:
+        """What stands in the pores at a face, (solute,) mol m-3."""
+        through = passages(self.faces, self.dissolved, inflow, 1.0).passed[:, face]
+        return self.faces.resident(self.dissolved, inflow, through, face)
 
     def run_to(self, time: float, inflow: np.ndarray, dt: float, implicit: bool = False) -> None:
-        """Even steps of at most dt to a time; if implicit, two halves by backward Euler replace the first."""
+        """Even steps of at most dt to a time."""
         steps = max(1, int(np.ceil((time - self.time) / dt - 1e-9)))
         length = (time - self.time) / steps
-        if implicit:
-            self.step(inflow, length / 2, 1.0)
-            self.step(inflow, length / 2, 1.0)
-        for _ in range(implicit, steps):
-            self.step(inflow, length, 0.5 if implicit else None)
+        for _ in range(steps):
+            self.step(inflow, length, DAMPING if implicit else None)
 
 
 def net(passed: np.ndarray) -> np.ndarray:
     """In less out, (solute, cell) mol m-2."""
     return passed[:, :-1] - passed[:, 1:]
-
-
-def step_at_courant(transport: Transport, water: np.ndarray, darcy_flux: np.ndarray, number: float) -> float:
-    """The step, s, that has this Courant number."""
-    return number / courant(transport, water, darcy_flux, 1.0)
 
 
 def started(

@@ -10,6 +10,10 @@ import numpy as np
 from scipy.interpolate import CubicSpline
 from tests.support.columns import Walk, column, walk
 
+from gossan.coupling.drive import Drive
+from gossan.transport.faces import faces_of
+from gossan.transport.step import passages
+
 DAY = 86400.0
 POROSITY, GRAIN_DENSITY = 0.3, 2500.0
 DRY = GRAIN_DENSITY * (1.0 - POROSITY)  # kg m-3
@@ -88,9 +92,14 @@ class Profiles:
         return float(CubicSpline(problem.grid.centres, values)(x))
 
     def outlet(self, days: float, name: str = "a") -> float:
-        """What leaves at that time: the concentration of the last cell, whose gradient is nothing."""
+        """What leaves at that time: the concentration at the last face."""
         state = next(s for s in self.walk.records if abs(s.time - days * DAY) < 1.0)
-        return float(state.dissolved[self.walk.problem.solutes.index(name), -1])
+        problem = self.walk.problem
+        drive = Drive(problem, state)
+        flux, _ = drive.flow(1.0, 0.0)
+        faces = faces_of(problem.transport, state.water, flux)
+        passed = passages(faces, state.dissolved, drive.inflow, 1.0).passed
+        return float(passed[problem.solutes.index(name), -1] / flux[-1])
 
     def front(self, value: float, days: float, name: str = "a") -> float:
         """Where a falling profile passes a value, m."""

@@ -1,8 +1,9 @@
 """What the transport kernels cost, as ratios inside one process: python tools/bench/transport.py
 
-Explicit transport against a copy of the concentrations; implicit dispersion against scipy's banded solver
-with one right-hand side per solute. The least of many turns, each kernel next to its yardstick, so that a
-busy machine disturbs both alike. With --cold, also how long the kernels take to compile.
+Explicit transport against a copy of the concentrations, between equal cells and growing ones; implicit steps
+against scipy's banded solver with one right-hand side per solute. The least of many turns, each kernel next
+to its yardstick, so that a busy machine disturbs both alike. Then a whole march against the method of lines
+with scipy's stiff integrator, at equal error. With --cold, also how long the kernels take to compile.
 """
 
 from __future__ import annotations
@@ -17,14 +18,17 @@ from collections.abc import Callable
 
 import numpy as np
 from scipy.linalg import solve_banded
+from tools.bench.lines import print_lines
 
+from gossan.transport.faces import faces_of, transport_of
 from gossan.transport.grid import Layer, grid_of
-from gossan.transport.kernel.advect import BLOCK, carry
-from gossan.transport.kernel.disperse import LANES, factor, spread, sweep
-from gossan.transport.step import Passages, Transport, passages, transport_of
+from gossan.transport.kernel.advect import BLOCK, ROWS, carry
+from gossan.transport.kernel.disperse import LANES, factor, spread, sweep, sweep_back
+from gossan.transport.step import DAMPING, Passages, passages
 
 SOLUTES = 11
 FLUX = 1e-6  # m/s
+SIZES = (100, 300, 1_000, 3_000, 10_000, 30_000, 100_000)
 
 
 def least(*calls: Callable[[], object], turns: int = 60, work: float = 0.01) -> list[float]:
@@ -45,23 +49,22 @@ def least(*calls: Callable[[], object], turns: int = 60, work: float = 0.01) -> 
     return best
 
 
-def column(cells: int) -> tuple[Transport, np.ndarray, np.ndarray, np.ndarray, Passages]:
-    """A column with eleven solutes of one group, somewhere in the middle of a run."""
-    grid = grid_of([Layer("sand", 1.0, cells, dispersivity=0.02)])
+def column(cells: int, growth: float = 1.0) -> tuple[np.ndarray, Passages]:
+    """Eleven solutes of one group, somewhere in the middle of a run, and a first stage of them."""
+    grid = grid_of([Layer("sand", 1.0, cells, dispersivity=0.02, growth=growth)])
     transport = transport_of(grid, np.zeros(SOLUTES, dtype=np.int64))
     dissolved = np.random.default_rng(1).random((SOLUTES, cells))
-    water, darcy_flux, inflow = np.full(cells, 0.4), np.full(cells + 1, FLUX), np.ones(SOLUTES)
-    dt = 0.5 * 0.4 / cells / FLUX
-    first = passages(transport, dissolved, water, darcy_flux, inflow, dt, 0.5)
-    return transport, dissolved, water, darcy_flux, first
+    faces = faces_of(transport, np.full(cells, 0.4), np.full(cells + 1, FLUX))
+    return dissolved, passages(faces, dissolved, np.ones(SOLUTES), 0.5 / faces.fastest, DAMPING)
 
 
-def explicit_against_copy(cells: int) -> tuple[float, float]:
+def explicit_against_copy(cells: int, growth: float = 1.0) -> tuple[float, float]:
     """Seconds of one explicit evaluation, and of a copy."""
-    transport, dissolved, _, darcy_flux, at = column(cells)
-    out, copy, scratch = np.empty_like(at.passed), np.empty_like(dissolved), np.empty((6, BLOCK + 1))
+    dissolved, at = column(cells, growth)
+    faces, bounds = at.faces, at.faces.transport.bounds
+    out, copy, scratch = np.empty_like(at.passed), np.empty_like(dissolved), np.empty((ROWS, BLOCK + 1))
     kernel_time, copy_time = least(
-        lambda: carry(dissolved, at.inflow, transport.bounds, darcy_flux, at.conductance, at.bias, at.slopes,
+        lambda: carry(dissolved, at.inflow, bounds, faces.darcy_flux, faces.conductance, at.slopes, at.outlet,
                       at.dt, scratch, out),
         lambda: np.copyto(copy, dissolved),
     )
@@ -70,19 +73,21 @@ def explicit_against_copy(cells: int) -> tuple[float, float]:
 
 def implicit_against_banded(cells: int) -> tuple[float, float, float, float]:
     """Seconds of the solve with its passages, its substitutions alone, of factoring, and of scipy's solve."""
-    transport, dissolved, water, _, at = column(cells)
-    assert at.elimination is not None
-    made, still, storage = at.elimination, np.zeros(cells), water * transport.grid.width
+    dissolved, at = column(cells)
+    faces, made, still = at.faces, at.elimination, np.zeros(cells)
+    assert made is not None
     surplus, out = at.explicit.copy(), at.passed.copy()
     bands = np.zeros((3, cells))
-    bands[0, 1:] = bands[2, :-1] = -made.hold[1:-1]
-    bands[1] = storage + made.hold[:-1] + made.hold[1:]
+    bands[0, 1:], bands[2, :-1] = -made.up[1:-1], -made.down[1:-1]
+    bands[1] = faces.storage + made.up[:-1] + made.down[1:]
     right = np.ascontiguousarray((surplus[:, :-1] - surplus[:, 1:]).T)
     rows = np.zeros((LANES, cells))
     solve, alone, prepare, banded = least(
-        lambda: spread(dissolved, still, surplus, made.hold, made.inverse, made.lower, made.upper, rows, out),
-        lambda: sweep(rows, made.lower, made.upper),
-        lambda: factor(storage, at.conductance, at.dt, made.hold, made.inverse, made.lower, made.upper),
+        lambda: spread(dissolved, still, surplus, made.down, made.up, made.inverse, made.lower, made.upper,
+                       rows, out),
+        lambda: (sweep(rows, made.lower, 0, cells), sweep_back(rows, made.upper, 0, cells)),
+        lambda: factor(faces.storage, faces.conductance, np.zeros(cells + 1), at.dt, made.down, made.up,
+                       made.inverse, made.lower, made.upper),
         lambda: solve_banded((1, 1), bands, right),
         turns=20,
     )
@@ -106,23 +111,29 @@ def main() -> None:
     """Print the tables."""
     parser = argparse.ArgumentParser(description=__doc__.splitlines()[0])
     parser.add_argument("--cold", action="store_true", help="time the first compilation too")
+    parser.add_argument("--lines", action="store_true", help="only the march against the method of lines")
     asked = parser.parse_args()
-    print(f"explicit, {SOLUTES} solutes of one group   ns per cell and solute")
-    print(f"{'cells':>8} {'kernel':>8} {'copy':>8} {'times copy':>11}")
-    for cells in (200, 1_000, 10_000, 100_000):
-        here, copy = explicit_against_copy(cells)
-        unit = 1e9 / (cells * SOLUTES)
-        print(f"{cells:8} {here * unit:8.2f} {copy * unit:8.2f} {here / copy:11.2f}")
-    print(f"\nimplicit, {SOLUTES} solutes   ns per cell and solute; factoring is done once for both stages")
-    head = f"{'cells':>8} {'solve':>8} {'sweeps':>8} {'factor':>8} {'banded':>8}"
-    print(head + "   times faster: sweeps, solve, all")
-    for cells in (200, 1_000, 10_000, 100_000):
-        solve, alone, prepare, banded = implicit_against_banded(cells)
-        unit = 1e9 / (cells * SOLUTES)
-        print(
-            f"{cells:8} {solve * unit:8.2f} {alone * unit:8.2f} {prepare * unit:8.2f} {banded * unit:8.2f}"
-            f" {banded / alone:24.1f} {banded / solve:6.1f} {banded / (solve + prepare):4.1f}"
-        )
+    if not asked.lines:
+        print(f"explicit, {SOLUTES} solutes of one group   ns per cell and solute")
+        print(f"{'cells':>8} {'kernel':>8} {'growing':>8} {'copy':>8}   times copy: equal cells, growing")
+        for cells in SIZES:
+            here, copy = explicit_against_copy(cells)
+            growing, _ = explicit_against_copy(cells, 10.0 ** (1.0 / cells))
+            unit = 1e9 / (cells * SOLUTES)
+            print(f"{cells:8} {here * unit:8.2f} {growing * unit:8.2f} {copy * unit:8.2f}"
+                  f" {here / copy:21.2f} {growing / copy:8.2f}")
+        print(f"\nimplicit, {SOLUTES} solutes   ns per cell and solute; factored once for both stages")
+        head = f"{'cells':>8} {'solve':>8} {'sweeps':>8} {'factor':>8} {'banded':>8}"
+        print(head + "   times faster: sweeps, solve, all")
+        for cells in SIZES:
+            solve, alone, prepare, banded = implicit_against_banded(cells)
+            unit = 1e9 / (cells * SOLUTES)
+            print(
+                f"{cells:8} {solve * unit:8.2f} {alone * unit:8.2f} {prepare * unit:8.2f}"
+                f" {banded * unit:8.2f} {banded / alone:24.1f} {banded / solve:6.1f}"
+                f" {banded / (solve + prepare):4.1f}"
+            )
+    print_lines()
     if asked.cold:
         print(f"\ncompiled and stepped in {cold():.1f} s, nothing cached")
 

@@ -26,6 +26,8 @@ KINDS: dict[str, tuple[str, tuple[str, ...]]] = {
     "K": ("a temperature", ("12 degC", "285.15 K")),
     "kg/m3": ("a mass per volume", ("24 mg/L", "3 ug/L", "2650 kg/m3", "2.65 g/cm3")),
     "mol/m3": ("moles per volume", ("0.4 mmol/L", "1 mol/m3", "5 umol/L")),
+    "kg/m4": ("a mass per volume and length", ("5 mg/L/m",)),
+    "mol/m4": ("moles per volume and length", ("0.1 mmol/L/m",)),
     "eq/m3": ("equivalents per volume", ("2.1 meq/L",)),
     "kg/kg": ("a mass per mass", ("0.8 wt%", "3 g/kg", "24 mg/kg")),
     "mol/kg": ("moles per mass", ("0.5 umol/g", "0.4 mmol/kg", "1 mol/kg")),

@@ -26,7 +26,8 @@ from gossan.coupling.pace import Pace
 from gossan.coupling.problem import Port, Problem
 from gossan.coupling.schedule import Schedule
 from gossan.transport import clogging, grid
-from gossan.transport.step import transport_of
+from gossan.transport.faces import transport_of
+from gossan.transport.tortuosity import Tortuosity
 
 SYSTEMS = 256  # temperatures whose chemistry is kept: those of a year in steps of a day and a half
 
@@ -44,6 +45,8 @@ def build(case: Case) -> Problem:
     feed = course(case, series)
     told = case.model_copy(update={"waters": {**case.waters, **waters_of_rows(case, series)}})
     used = dict.fromkeys([layer.water for layer in case.layers]) | waters_entering(feed)
+    if case.flow.outlet == "concentration":
+        used[case.flow.outlet_water] = None
     waters = read_waters(told, list(used))
     solids = [_starting_solids(layer, table) for layer in case.layers]
     system_at = lru_cache(maxsize=SYSTEMS)(partial(_system, case, table, waters, solids))
@@ -64,7 +67,14 @@ def build(case: Case) -> Problem:
     return Problem(
         system=system,
         tracers=tracers,
-        transport=transport_of(cells, _groups(chemical, len(tracers)), case.flow.inlet),
+        transport=transport_of(
+            cells,
+            _groups(chemical, len(tracers)),
+            case.flow.inlet,
+            case.run.limiter,
+            composition[case.flow.outlet_water] if case.flow.outlet == "concentration" else None,
+            _gradients(case, chemical) if case.flow.outlet == "gradient" else None,
+        ),
         feeds=feeds_of(feed, composition),
         system_at=system_at,
         conductivity=np.array(
@@ -97,11 +107,20 @@ def _cut(layer: Layer) -> grid.Layer:
     return grid.Layer(
         name=layer.name,
         length=layer.length.si,
-        cells=layer.cell_count,
+        cells=layer.mesh[0],
+        growth=layer.mesh[1],
         dispersivity=layer.dispersivity.si,
         diffusion=layer.diffusion.si,
-        tortuosity=float("nan") if layer.tortuosity is None else layer.tortuosity,
+        tortuosity=_tortuosity(layer),
     )
+
+
+def _tortuosity(layer: Layer) -> Tortuosity:
+    said = layer.tortuosity
+    if said is None:
+        return Tortuosity()
+    numbers = {"exponent": said.exponent, "factor": said.factor}
+    return Tortuosity(said.law, **{name: number for name, number in numbers.items() if number is not None})
 
 
 def _clogging(layer: Layer) -> clogging.Clogging:
@@ -178,6 +197,20 @@ def _composition(case: Case, name: str, water: Water, system: System) -> np.ndar
     said = case.waters[name].tracers
     density = water.system.water_density
     return np.array(chemical + [_tracer(case, tracer, said, density) for tracer in case.tracer_names])
+
+
+def _gradients(case: Case, chemical: int) -> np.ndarray:
+    """(solute,) mol m-4 at the outlet."""
+    assert case.flow is not None
+    found = np.zeros(chemical + len(case.tracer_names))
+    for name, gradient in case.flow.outlet_gradient.items():
+        of_mole = 1.0
+        if gradient.unit == "kg/m4":
+            molar_mass = case.tracers[name].molar_mass
+            assert molar_mass is not None
+            of_mole = molar_mass.si
+        found[chemical + case.tracer_names.index(name)] = gradient.si / of_mole
+    return found
 
 
 def _counted(water: Water, system: System) -> np.ndarray:

@@ -7,13 +7,15 @@ from collections.abc import Iterable
 
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
-from gossan.case.check_waters import mineral_named
+from gossan.case.check_waters import check_tracer, mineral_named, tracer_names
+from gossan.case.column_kinds import Growing
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.model import MOST_CELLS, Layer
 from gossan.constants.entries import Table
 
 ROUND_OFF = 1e-9  # lengths and shares that differ by less than this are the same
+MOST_GROWTH = 1.5  # of a cell's length over its neighbour's, within a layer that grows
 
 
 def check_layers(draft: Draft, table: Table) -> None:
@@ -75,12 +77,25 @@ def _check_cells(draft: Draft, layer: Layer, path: Path) -> None:
     elif len(given) == 2:
         draft.fault((*path, "cell"), "stands beside cells: the same fact twice", "keep one of the two")
     elif layer.cell is not None and layer.length is not None:
-        if layer.cell.si > layer.length.si * (1 + ROUND_OFF):
-            wrong = f'is "{layer.cell}", longer than the layer ("{layer.length}")'
-            draft.fault((*path, "cell"), wrong, f'at most "{layer.length}"')
-        elif layer.length.si / layer.cell.si > MOST_CELLS:
-            wrong = f'is "{layer.cell}", {layer.length.si / layer.cell.si:.3g} cells in "{layer.length}"'
-            draft.fault((*path, "cell"), wrong, f"at most {MOST_CELLS} cells are possible")
+        _check_cell_lengths(draft, layer, (*path, "cell"))
+
+
+def _check_cell_lengths(draft: Draft, layer: Layer, at: Path) -> None:
+    assert layer.cell is not None
+    cells = (layer.cell.first, layer.cell.last) if isinstance(layer.cell, Growing) else (layer.cell,)
+    for cell in cells:
+        if cell.si > layer.length.si * (1 + ROUND_OFF):
+            wrong = f'is "{cell}", longer than the layer ("{layer.length}")'
+            draft.fault(at, wrong, f'at most "{layer.length}"')
+            return
+        if layer.length.si / cell.si > MOST_CELLS:
+            wrong = f'is "{cell}", {layer.length.si / cell.si:.3g} cells in "{layer.length}"'
+            draft.fault(at, wrong, f"at most {MOST_CELLS} cells are possible")
+            return
+    count, growth = layer.mesh
+    if max(growth, 1.0 / growth) > MOST_GROWTH * (1 + ROUND_OFF):
+        wrong = f'goes from "{cells[0]}" to "{cells[-1]}" in {count} cells, by a factor of {growth:.3g} each'
+        draft.fault(at, wrong, f"at most {MOST_GROWTH:g}, or profiles lose their accuracy: bring them closer")
 
 
 def _check_solids(draft: Draft, table: Table, layer: Layer, path: Path) -> None:
@@ -102,6 +117,33 @@ def _check_solids(draft: Draft, table: Table, layer: Layer, path: Path) -> None:
     if layer.porosity is not None and of_bulk > (1 - layer.porosity) * (1 + ROUND_OFF):
         wrong = f"add up to {100 * of_bulk:.4g} vol% of the bulk, with a porosity of {layer.porosity:g}"
         draft.fault((*path, "minerals"), wrong, f"at most {100 * (1 - layer.porosity):.4g} vol% is solid")
+
+
+def check_outlet(draft: Draft) -> None:
+    """What the kind of outlet needs, and nothing that belongs to another kind."""
+    flow, given = draft.case.flow, draft.at(("flow",))
+    if flow is None:
+        return
+    needed = {
+        "concentration": ("outlet_water", '"river"'),
+        "gradient": ("outlet_gradient", '{bromide = "-5 mg/L/m"}'),
+    }
+    for kind, (key, example) in needed.items():
+        if flow.outlet == kind and key not in given:
+            draft.fault(("flow", key), f'is missing: outlet = "{kind}" needs it', f"write {key} = {example}")
+        elif flow.outlet not in (kind, None) and key in given:
+            cure = f'write outlet = "{kind}", or leave it out'
+            draft.fault(("flow", key), f'goes with outlet = "{kind}"', cure)
+    if "outlet_water" in given:
+        check_water_name(draft, flow.outlet_water, ("flow", "outlet_water"))
+    tracers = tracer_names(draft)
+    for name, gradient in (flow.outlet_gradient or {}).items():
+        at: Path = ("flow", "outlet_gradient", name)
+        if name not in tracers:
+            wrong = "is no tracer; a gradient of ions would not balance their charges"
+            draft.fault(at, wrong, did_you_mean(name, tracers))
+        elif gradient is not None:
+            check_tracer(draft, name, gradient, at)
 
 
 def check_ports(draft: Draft) -> None:

@@ -157,3 +157,10 @@ def _check_tracer_name(draft: Draft, table: Table, name: str, at: Path) -> None:
 def _has_molar_mass(draft: Draft, name: str) -> bool:
     """Whether a tracer's molar mass is given (or was given wrongly, which has its own fault)."""
     return "molar_mass" in draft.at(("tracers", name))
+
+
+def tracer_names(draft: Draft) -> set[str]:
+    """The tracers that the case declares or a water names."""
+    waters = (draft.case.waters or {}).values()
+    named = {name for water in waters if water for name in water.tracers or {}}
+    return named | set(draft.case.tracers or {})

@@ -9,11 +9,17 @@ from pathlib import Path as FilePath
 
 from gossan.base.amounts import Amount
 from gossan.base.wrong import did_you_mean
-from gossan.case.check_column import check_layers, check_ports
+from gossan.case.check_column import check_layers, check_outlet, check_ports
 from gossan.case.check_flow import check_flow
 from gossan.case.check_redox import check_redox
 from gossan.case.check_retention import check_parents, check_sorption
-from gossan.case.check_waters import check_tracer, check_waters, mineral_named, solute_named
+from gossan.case.check_waters import (
+    check_tracer,
+    check_waters,
+    mineral_named,
+    solute_named,
+    tracer_names,
+)
 from gossan.case.draft import Draft
 from gossan.case.lines import Path
 from gossan.case.quantities import Range
@@ -31,6 +37,7 @@ def check_case(draft: Draft, table: Table, files: dict[str, str], folder: FilePa
     check_redox(draft, table)
     check_layers(draft, table)
     check_flow(draft, table, files, folder)
+    check_outlet(draft)
     check_chemistry(draft, table)
     check_ports(draft)
     check_parents(draft)
@@ -71,7 +78,7 @@ def check_chemistry(draft: Draft, table: Table) -> None:
 def check_limits(draft: Draft, table: Table) -> None:
     """Limits stand at ports that exist, for solutes that exist, once each."""
     ports = [port.name for port in draft.case.ports or () if port.name is not None]
-    tracers = _tracer_names(draft)
+    tracers = tracer_names(draft)
     for port, limits in (draft.case.limits or {}).items():
         if port not in (*ports, "outlet"):
             cure = did_you_mean(port, dict.fromkeys((*ports, "outlet")))
@@ -101,9 +108,3 @@ def check_limits(draft: Draft, table: Table) -> None:
                 draft.fault(at, wrong, "keep one of the two")
             if named:
                 seen[named.component] = key
-
-
-def _tracer_names(draft: Draft) -> set[str]:
-    waters = (draft.case.waters or {}).values()
-    named = {name for water in waters if water for name in water.tracers or {}}
-    return named | set(draft.case.tracers or {})

@@ -7,6 +7,7 @@ from typing import Annotated
 from pydantic import Field
 
 from gossan.base.amounts import Amount
+from gossan.case.column_kinds import Gradient
 from gossan.case.fields import Choice, Text
 from gossan.case.quantities import Quantity
 from gossan.case.table import TableOfCase
@@ -72,5 +73,16 @@ class Flow(TableOfCase):
     )
     inlet: Annotated[str, Choice(("flux", "concentration"))] = Field(
         default="flux", description='"flux" (third type) or "concentration" (first type)'
+    )
+    outlet: Annotated[str, Choice(("zero-gradient", "concentration", "gradient"))] = Field(
+        default="zero-gradient",
+        description="what holds at the end of the column: no gradient, the concentrations of `outlet_water`, "
+        "or the gradients of `outlet_gradient`",
+    )
+    outlet_water: Annotated[str, Text(example='"river"')] = Field(
+        default="", description="the water that stands beyond the outlet"
+    )
+    outlet_gradient: dict[str, Annotated[Amount, Gradient()]] = Field(
+        default={}, description="change of concentration along the flow at the outlet, by tracer"
     )
     feed: tuple[Feed, ...] = Field(default=(), description="what enters, in order of time")

@@ -13,8 +13,9 @@ from pydantic import Field, PrivateAttr
 
 from gossan.base.amounts import Amount, amount
 from gossan.base.errors import Fault, InputError
+from gossan.case.column_kinds import CellLength, Growing, Winding, WindingKind
 from gossan.case.feed import TEMPERATURE, Flow
-from gossan.case.fields import Choice, Flag, Names, NotLanded, Number, Text
+from gossan.case.fields import Choice, Flag, Later, Names, Number, Text
 from gossan.case.quantities import (
     Alkalinity,
     GasPressure,
@@ -33,11 +34,11 @@ from gossan.case.retention import Immobile, Sorption
 from gossan.case.table import TableOfCase
 from gossan.constants.entries import Table
 from gossan.constants.load import load_table
+from gossan.transport.growth import growing
 
 MOST_CELLS = 1_000_000  # of a layer; more is a slip of the unit of `cell`
 
 Name = Annotated[str, Text(is_name=True, example='"gate"')]
-Later = Annotated[Any, NotLanded()]
 PH = Annotated[float, Number("a pH", -2, 16, example="5.9")]
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
@@ -113,8 +114,9 @@ class Layer(TableOfCase):
     cells: Annotated[int | None, Number("a count of cells", 1, MOST_CELLS, whole=True, example="60")] = Field(
         default=None, description="how many cells; this or `cell`"
     )
-    cell: Annotated[Amount | None, Quantity(("m",), "a length of a cell", '"2 cm"', positive=True)] = Field(
-        default=None, description="the length of a cell at most: the layer is divided evenly"
+    cell: Annotated[Amount | Growing | None, CellLength()] = Field(
+        default=None,
+        description="the length of a cell at most; the layer is divided evenly, or by steady growth",
     )
     porosity: Annotated[float, POROSITY] = Field(
         description="water-filled fraction with the starting minerals in place"
@@ -126,8 +128,10 @@ class Layer(TableOfCase):
         default=amount("1e-9 m2/s", ("m2/s",)),
         description="in free water, one value for all dissolved components",
     )
-    tortuosity: Annotated[float | None, Number("a tortuosity", 0, 1, example="0.7")] = Field(
-        default=None, description="factor on diffusion; default porosity^(1/3)"
+    tortuosity: Annotated[Winding | None, WindingKind()] = Field(
+        default=None,
+        description="factor on diffusion; a law follows the porosity of the moment, a number stays; "
+        'default "millington-quirk", porosity^(1/3)',
     )
     conductivity: Annotated[
         Amount | None, Quantity(("m/s",), "a conductivity", '"25 m/d"', positive=True)
@@ -153,18 +157,14 @@ class Layer(TableOfCase):
     immobile: Immobile | None = Field(default=None, description="immobile water beside the flowing water")
 
     @property
-    def cell_count(self) -> int:
-        """Number of cells; with `cell`, the fewest that are no longer than it."""
+    def mesh(self) -> tuple[int, float]:
+        """Number of cells, the fewest that `cell` allows, and the length of each over that of the last."""
         if self.cells:
-            return self.cells
+            return self.cells, 1.0
         assert self.cell is not None
-        # a quotient that is whole but for rounding counts as whole
-        return max(1, math.ceil(self.length.si / self.cell.si * (1 - 1e-9)))
-
-    @property
-    def diffusion_factor(self) -> float:
-        """Tortuosity factor on free-water diffusion, 1."""
-        return self.porosity ** (1 / 3) if self.tortuosity is None else self.tortuosity
+        if isinstance(self.cell, Growing):
+            return growing(self.length.si, self.cell.first.si, self.cell.last.si)
+        return growing(self.length.si, self.cell.si, self.cell.si)
 
 
 class Tracer(TableOfCase):
@@ -236,6 +236,10 @@ class Run(TableOfCase):
     )
     max_courant: Annotated[float, Number("a Courant number", 0, 1, example="0.5")] = Field(
         default=0.5, description="cells that water may pass in a step"
+    )
+    limiter: Annotated[str, Choice(("van-leer", "minmod", "none", "upwind"))] = Field(
+        default="van-leer",
+        description='keeps fronts from overshooting; to compare: "none" (they do), "upwind" (they smear)',
     )
 
 

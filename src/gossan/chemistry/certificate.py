@@ -56,7 +56,7 @@ def certify(
     totals: np.ndarray | None = None,
     upper: np.ndarray | None = None,
 ) -> Certificate:
-    """Put an equilibrium back into its equations, in doubled precision (equations.md, 70 and 71).
+    """Put an equilibrium back into its equations, in doubled precision (equations.md, 79 and 80).
 
     kilograms (cell,) kg of water per unit that the amounts are per; default 1, for mol per kg of water
     totals    (component, cell) what was to be shared out, solids included, in the unit of the amounts;

@@ -12,7 +12,8 @@ from gossan.coupling.pores import pore_space
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State
 from gossan.coupling.waters import Waters
-from gossan.transport.step import Passages, corrected, courant, kept_positive, passages
+from gossan.transport.faces import LIMITERS, Faces
+from gossan.transport.step import Passages, corrected, kept_positive, passages
 
 # What is measured is how far first and second order are apart.  That is the error of the one-step scheme;
 # the two-stage one was at least 30 times nearer to the truth while dispersion was explicit, and lost its
@@ -32,22 +33,22 @@ class Trial:
 
 
 def attempt(
-    problem: Problem, solver: Solver, state: State, darcy_flux: np.ndarray, inflow: np.ndarray, dt: float,
+    problem: Problem, solver: Solver, state: State, faces: Faces, inflow: np.ndarray, dt: float,
     theta: float | None,
 ) -> Trial:
     """March one step of dt from a state.
 
-    darcy_flux (face,) m s-1 during the step; inflow (solute,) mol m-3
-    theta      None: explicit dispersion; else the weight of the end in an implicit one
+    faces      during the step; inflow (solute,) mol m-3
+    theta      None: explicit; else the weight of the end in an implicit step
     Raises     SolveError where a cell finds no equilibrium
     """
-    transport, width = problem.transport, problem.grid.width
-    waters = Waters(problem, solver, state, darcy_flux, dt)
+    width = problem.grid.width
+    waters = Waters(problem, solver, state, faces.darcy_flux, dt)
     made = waters.foreseen() if theta is not None else None
-    first = passages(transport, state.dissolved, state.water, darcy_flux, inflow, dt, theta, made)
+    first = passages(faces, state.dissolved, inflow, dt, theta, made)
     passed = _held_back(problem, state, first, waters.amount, first.passed)
     stage = waters.stage(passed)
-    whole = corrected(transport, first, state.dissolved, stage.flowing.dissolved)
+    whole = corrected(first, state.dissolved, stage.flowing.dissolved)
     size = _relative(waters.difference(stage, whole, whole - passed), _scale(problem, state, inflow))
     if problem.coupling == "two-stage":
         passed = _held_back(problem, state, first, waters.amount, whole)
@@ -73,26 +74,32 @@ def attempt(
         passed=added(state.passed, passed[:, problem.gates].T),
         made=added(state.made, waters.made(stage)),
         water_passed=added(
-            state.water_passed, dt * np.array([darcy_flux[0], darcy_flux[-1], float(freed @ width) / dt])
+            state.water_passed, dt * np.array([*faces.darcy_flux[[0, -1]], float(freed @ width) / dt])
         ),
         splitting_error=state.splitting_error + error,
     )
     change = float(np.max(np.abs(lost) / state.water)) if len(lost) else 0.0
     change = max(change, waters.still_pores_changed(stage))
-    return Trial(after, dt, error, change, courant(transport, state.water, darcy_flux, dt))
+    return Trial(after, dt, error, change, faces.fastest * dt)
 
 
 def _held_back(
     problem: Problem, state: State, first: Passages, amount: np.ndarray, passed: np.ndarray
 ) -> np.ndarray:
-    """Passages that take no more from a cell than it holds; explicit ones never do."""
-    if first.elimination is None:
+    """Passages that take no more from a cell than it holds; explicit, limited ones never do.
+
+    Without a limiter tracers may fall below nothing: to show that is what it is for.
+    """
+    unlimited = problem.transport.limiter == LIMITERS["none"]
+    if first.elimination is None and not unlimited:
         return passed
     total = amount.copy()
     total[problem.sorbates] += state.sorbed
     total[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
     positive = ~np.isin(np.arange(len(amount)), problem.system.signed)
-    return kept_positive(problem.transport, first, state.dissolved, state.water, total, passed, positive)
+    if unlimited:
+        positive[problem.chemical :] = False
+    return kept_positive(first, state.dissolved, total, passed, positive)
 
 
 def _scale(problem: Problem, state: State, inflow: np.ndarray) -> np.ndarray:
@@ -100,7 +107,9 @@ def _scale(problem: Problem, state: State, inflow: np.ndarray) -> np.ndarray:
 
     What can decay into a solute counts with it.
     """
-    scale = problem.stock + np.abs(state.passed[0, :, 0]) + np.abs(inflow) * problem.pore_volume
+    came = np.abs(state.passed[0, :, 0]) + np.maximum(-state.passed[1, :, 0], 0.0)  # and back, by diffusion
+    near = np.abs(inflow) + np.abs(problem.transport.beyond[0])
+    scale = problem.stock + came + near * problem.pore_volume
     if problem.decay is not None:
         members = problem.decay.solutes
         scale[members] += problem.decay.descent @ scale[members]

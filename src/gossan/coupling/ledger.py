@@ -40,7 +40,8 @@ class Books:
         made = state.made.sum(axis=-1)
         change = now - self.first
         open_ = entered - left - change + made
-        most = problem.stock + np.abs(entered) + np.abs(made)
+        back = np.maximum(-left, 0.0)  # what diffused in through the outlet
+        most = problem.stock + np.abs(entered) + back + np.abs(made)
         error = np.divide(open_, most, out=np.zeros_like(open_), where=most > 0.0)
         charge = problem.system.component_charge
         chemical = problem.chemical

@@ -17,14 +17,16 @@ from gossan.coupling.pores import pore_room
 from gossan.coupling.problem import Problem
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
-from gossan.transport.step import courant, explicit_limit
+from gossan.transport.faces import Faces, faces_of
+from gossan.transport.step import DAMPING
 
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
 INSTANT = 1e-9  # s: while nothing flows and this goes by, no solute gets anywhere
-# Explicit dispersion may cost so many times the steps; beyond, it is solved implicitly, which is as good for
-# tracers but only first order beside a front of what solids hold.
+# Explicit transport may cost so many times the steps; beyond, it is implicit, which is as good for tracers
+# but only first order beside a front of what solids hold.
 GAIN_OF_TRACERS, GAIN_OF_RETENTION = 3.0, 10.0
-DAMPED_STEPS = 2  # half steps of backward Euler after a switch of feed (Rannacher 1984, from memory)
+TURNED_BACK = "the flow has turned back at the inlet: solids push out more water than the head drives through"
+WEIGHT_OF_END = {"two-stage": DAMPING, "lie": 1.0}  # in an implicit step
 
 
 @dataclass(frozen=True, eq=False)
@@ -85,22 +87,26 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
     rejected = 0
     while True:
         darcy_flux, head = drive.flow(pace.dt, 0.0)
+        if darcy_flux[0] < 0.0 < head[0]:
+            raise SolveError(TURNED_BACK, 0, problem.grid.layers[0].name, 0.0, state.time)
         inlet = float(darcy_flux[0]), drive.rise(pace.dt)
         if drive.ramps:
             wish, _ = _fitted(problem, state, entered, inlet, pace.dt)
             darcy_flux, head = drive.flow(pace.dt, wish)
-        longest, implicit = longest_step(problem, state, darcy_flux)
-        theta = (1.0 if pace.afresh < DAMPED_STEPS else 0.5) if implicit else None
+        faces = faces_of(problem.transport, state.water, darcy_flux)
+        longest, implicit = longest_step(problem, faces)
+        theta = WEIGHT_OF_END[problem.coupling] if implicit else None
         dt, lands = _fitted(problem, state, entered, inlet, min(pace.dt, longest))
         if drive.ramps:
             darcy_flux, head = drive.flow(pace.dt, dt)
+            faces = faces_of(problem.transport, state.water, darcy_flux)
         try:
             begun, start = state, problem.at(drive.temperature, before)
             if start.system is not before.system:
                 begun = _settled_anew(start, solvers, state, drive.inflow)
             moment = problem.at(drive.temperature_after(dt, inlet), start)
             inflow = drive.mean_inflow(dt, inlet)
-            trial = attempt(moment, solvers.of(moment), begun, darcy_flux, inflow, dt, theta)
+            trial = attempt(moment, solvers.of(moment), begun, faces, inflow, dt, theta)
         except SolveError as error:
             failure, trial = error, None
         if trial is not None:
@@ -117,10 +123,6 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
         following = replace(following, dt=max(following.dt, pace.dt))  # a record cut it short, not its error
     now = pore_volumes(problem, trial.state)
     ended = _ended(problem, trial.state)
-    if Drive(problem, trial.state).piece > drive.piece:
-        following = Pace(0.5 * following.dt if implicit else following.dt)
-    else:
-        following = replace(following, afresh=pace.afresh + 1)
     return Stride(
         state=trial.state,
         pace=following,
@@ -141,7 +143,7 @@ def _settled_anew(problem: Problem, solvers: Solvers, state: State, inflow: np.n
 
     Raises   SolveError where a cell finds no equilibrium
     """
-    nothing = np.zeros(len(problem.grid.edges))
+    nothing = faces_of(problem.transport, state.water, np.zeros(len(problem.grid.edges)))
     trial = attempt(problem, solvers.of(problem), state, nothing, inflow, INSTANT, None)
     return at_once(trial.state, state)
 
@@ -152,18 +154,21 @@ def _due(schedule: Schedule, before: State, after: State, entered: float, now: f
     )
 
 
-def longest_step(problem: Problem, state: State, darcy_flux: np.ndarray) -> tuple[float, bool]:
-    """The longest step that Courant's number allows, and whether dispersion must be implicit in it."""
-    unit = courant(problem.transport, state.water, darcy_flux, 1.0)
-    by_courant = problem.max_courant / unit if unit > 0.0 else math.inf
-    by_dispersion = explicit_limit(problem.transport, state.water, darcy_flux)
+def longest_step(problem: Problem, faces: Faces) -> tuple[float, bool]:
+    """The longest step that stability and Courant's number allow, and whether it must be implicit.
+
+    Explicit wherever that does not cost GAIN times the steps of an implicit march. That one takes the time in
+    which water crosses an average cell: shorter cells than that, and dispersion, are then implicit.
+    """
+    by_courant = problem.max_courant / faces.fastest if faces.fastest > 0.0 else math.inf
+    explicit = min(by_courant, faces.explicit_limit)
+    still = faces.speed.min() == 0.0
+    implicit = math.inf if still else problem.max_courant * float(np.mean(1.0 / faces.speed))
     retained = bool(problem.system.minerals) or problem.isotherms is not None
     gain = GAIN_OF_RETENTION if retained else GAIN_OF_TRACERS
-    if by_dispersion * gain >= by_courant:
-        return min(by_courant, by_dispersion), False
-    if by_courant == math.inf:
-        return 1e3 * by_dispersion, True
-    return by_courant, True
+    if explicit * gain >= implicit:
+        return explicit, False
+    return implicit, True
 
 
 def _fitted(

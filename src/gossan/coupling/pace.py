@@ -11,10 +11,9 @@ PORES_FINE, PORES_BAD = 0.01, 0.05  # relative change of a cell's pores aimed at
 
 @dataclass(frozen=True, slots=True)
 class Pace:
-    """The length of step to try next, s; afresh counts the steps since the inflow last changed."""
+    """The length of step to try next, s."""
 
     dt: float
-    afresh: int = 0
 
     def after(self, dt: float, error: float, pore_change: float, accuracy: float, longest: float) -> Pace:
         """The pace after a trial of length dt, its error estimated (equations.md, 38).
@@ -27,7 +26,7 @@ class Pace:
             factor = min(factor, CAREFUL * (accuracy / error) ** 0.5)
         if pore_change > 0.0:
             factor = min(factor, CAREFUL * PORES_FINE / pore_change)
-        return Pace(min(dt * max(factor, LEAST_FACTOR), longest), self.afresh)
+        return Pace(min(dt * max(factor, LEAST_FACTOR), longest))
 
 
 def acceptable(error: float, pore_change: float, accuracy: float) -> bool:

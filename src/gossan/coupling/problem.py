@@ -15,8 +15,8 @@ from gossan.coupling.feeds import Feeds
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
 from gossan.transport.clogging import Clogging
+from gossan.transport.faces import Transport
 from gossan.transport.grid import Grid
-from gossan.transport.step import Transport
 
 CLOGGED = 1e-3  # porosity at which any cell counts as closed
 MOLAR_MASS_OF_WATER = 0.018015  # kg/mol; IUPAC standard atomic weights (2021)

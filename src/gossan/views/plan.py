@@ -19,6 +19,7 @@ from gossan.chemistry.validity import validity_note
 from gossan.coupling.drive import Drive
 from gossan.coupling.march import longest_step, march
 from gossan.coupling.problem import Problem
+from gossan.transport.faces import faces_of
 from gossan.views.assay import assay
 
 TRIED = 6  # first steps that are timed, and forgotten
@@ -101,7 +102,8 @@ def plan_of(case: Case) -> Plan:
 
 def _step(problem: Problem) -> float:
     """The length of step that Courant's number and the spread by dispersion allow at the start, s."""
-    return longest_step(problem, problem.initial, _first_flow(problem))[0]
+    faces = faces_of(problem.transport, problem.initial.water, _first_flow(problem))
+    return longest_step(problem, faces)[0]
 
 
 def _first_flow(problem: Problem) -> np.ndarray:

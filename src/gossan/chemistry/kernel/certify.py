@@ -1,4 +1,4 @@
-"""An answer put back into its equations with twice the digits (equations.md, 70 and 71).
+"""An answer put back into its equations with twice the digits (equations.md, 79 and 80).
 
 All that is asked of a cell is its ln activities, ionic strength, marks and amounts: how they were found
 plays no part, and nothing of the solve is used again.
@@ -241,7 +241,7 @@ def certify_cells(
     matrices, desk, tied, weight, total, held, ln_activity, ionic_strength, ln_gamma, balance, strength,
     saturation, error,
 ):
-    """Judge every cell of an answer (equations.md, 70 and 71).
+    """Judge every cell of an answer (equations.md, 79 and 80).
 
     tied (row, cell) int8: 1 where the row is saturated; rows are minerals, couples, open gases
     weight (cell,) kg of water per unit; total (component, cell) what is there, per unit; held (row, cell)

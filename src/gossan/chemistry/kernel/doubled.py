@@ -1,6 +1,6 @@
 """Numbers of twice the digits: a pair of doubles whose sum is meant, about 32 decimal digits.
 
-The high part is the double nearest to the sum.  Sums and products of doubles are exact (equations.md, 68) as
+The high part is the double nearest to the sum.  Sums and products of doubles are exact (equations.md, 77) as
 long as the compiler neither regroups nor fuses, which no kernel here allows it to.
 """
 
@@ -22,7 +22,7 @@ LEAST_EXPONENT = -600.0  # below, the low part of a result would leave the range
 
 @kernel(inner=True)
 def two_sum(a, b):
-    """a + b and what rounding lost of it (equations.md, 68)."""
+    """a + b and what rounding lost of it (equations.md, 77)."""
     high = a + b
     part = high - a
     return high, (a - (high - part)) + (b - part)
@@ -30,7 +30,7 @@ def two_sum(a, b):
 
 @kernel(inner=True)
 def two_product(a, b):
-    """a b and what rounding lost of it, |a|, |b| < 1e290 (equations.md, 68)."""
+    """a b and what rounding lost of it, |a|, |b| < 1e290 (equations.md, 77)."""
     high = a * b
     wide = SPLITTER * a  # in two halves of 26 bits, whose products are exact
     a_high = wide - (wide - a)
@@ -72,7 +72,7 @@ def over(a, a_low, b, b_low):
 
 @kernel(inner=True)
 def exponential(a, a_low):
-    """e^a of a pair, within 1e-30 of itself for |a| < 600; nothing below (equations.md, 69).
+    """e^a of a pair, within 1e-30 of itself for |a| < 600; nothing below (equations.md, 78).
 
     a = n ln 2 + 2^6 r with |r| < 0.0055; e^r - 1 by its series, then six times doubled:
     e^2r - 1 = (e^r - 1)^2 + 2 (e^r - 1).

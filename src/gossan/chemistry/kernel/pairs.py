@@ -1,4 +1,4 @@
-"""Rows that hold take the scarce out of the problem, in pairs of doubles (equations.md, 10 and 71)."""
+"""Rows that hold take the scarce out of the problem, in pairs of doubles (equations.md, 10 and 80)."""
 
 from __future__ import annotations
 
