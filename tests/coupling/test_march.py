@@ -6,7 +6,9 @@ import numpy as np
 import pytest
 from tests.support.columns import Walk, column, started, walk, watched
 
+from gossan.base.errors import SolveError
 from gossan.chemistry.equilibrium import mineral_saturation
+from gossan.coupling.drive import Drive
 from gossan.coupling.march import pore_volumes
 
 ACID_ON_CALCITE = """
@@ -140,6 +142,23 @@ def test_steps_meet_every_mark(every, duration, flow):
             records.append(clock)
     assert frames == pytest.approx(problem.frames.marks[1:], rel=1e-12)
     assert records == pytest.approx(problem.records.marks[1:], rel=1e-12)
+
+
+def test_a_flow_that_turns_back_is_no_flow_to_go_on_with(monkeypatch):
+    """Where solids push out more water than a head drives through, what comes in at the outlet is unknown."""
+    problem, _ = started(
+        column(SALT_ON_GYPSUM, minerals='gypsum = "0.1 wt%"', cells=3, flow='head_drop = "5 cm"',
+               layer='conductivity = "1 m/d"')
+    )  # fmt: skip
+    forward = Drive.flow
+
+    def back(drive, dt, span=None):
+        darcy_flux, head = forward(drive, dt, span)
+        return darcy_flux - 1.01 * darcy_flux[0], head
+
+    monkeypatch.setattr(Drive, "flow", back)
+    with pytest.raises(SolveError, match="turned back at the inlet"):
+        next(iter(watched(problem)))
 
 
 def totals(run: Walk) -> np.ndarray:

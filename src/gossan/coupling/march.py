@@ -25,6 +25,7 @@ INSTANT = 1e-9  # s: while nothing flows and this goes by, no solute gets anywhe
 # Explicit transport may cost so many times the steps; beyond, it is implicit, which is as good for tracers
 # but only first order beside a front of what solids hold.
 GAIN_OF_TRACERS, GAIN_OF_RETENTION = 3.0, 10.0
+GAIN_OF_SHORT_CELLS = 10.0  # implicit advection smears what crosses them: measured in docs/decisions.md
 TURNED_BACK = "the flow has turned back at the inlet: solids push out more water than the head drives through"
 WEIGHT_OF_END = {"two-stage": DAMPING, "lie": 1.0}  # in an implicit step
 
@@ -157,13 +158,14 @@ def _due(schedule: Schedule, before: State, after: State, entered: float, now: f
 def longest_step(problem: Problem, faces: Faces) -> tuple[float, bool]:
     """The longest step that stability and Courant's number allow, and whether it must be implicit.
 
-    Explicit wherever that does not cost GAIN times the steps of an implicit march. That one takes the time in
-    which water crosses an average cell: shorter cells than that, and dispersion, are then implicit.
+    Explicit wherever that does not cost GAIN times the steps (equations.md, 38). Where a few short cells
+    would ask for GAIN_OF_SHORT_CELLS times the steps, water may cross those, and an average cell counts.
     """
     by_courant = problem.max_courant / faces.fastest if faces.fastest > 0.0 else math.inf
     explicit = min(by_courant, faces.explicit_limit)
     still = faces.speed.min() == 0.0
-    implicit = math.inf if still else problem.max_courant * float(np.mean(1.0 / faces.speed))
+    average = math.inf if still else problem.max_courant * float(np.mean(1.0 / faces.speed))
+    implicit = average if average > GAIN_OF_SHORT_CELLS * by_courant else by_courant
     retained = bool(problem.system.minerals) or problem.isotherms is not None
     gain = GAIN_OF_RETENTION if retained else GAIN_OF_TRACERS
     if explicit * gain >= implicit:
