@@ -78,7 +78,7 @@ def test_every_usual_name_is_read():
         ("N", '"NO3" or "NH4"'),
         ("H", "the pH says it"),
         ("OH^-", "the pH says it"),
-        ("O2", "has not landed yet"),
+        ("O2", "write dissolved_oxygen"),
         ("Zm", "it holds Na, K, Ca"),
         ("Zn^3+", 'did you mean "Zn^2+"?'),
         ("sulfat", 'did you mean "sulfate"?'),
