@@ -11,7 +11,7 @@ from tests.support.salts import Salt, water, write_salts
 
 from gossan.chemistry.equilibrium import mineral_saturation
 from gossan.chemistry.isotherm import NO_ATOM, sorbed_at
-from gossan.transport.step import LIMITERS
+from gossan.transport.faces import LIMITERS
 
 FRACTION, SHARE, TRANSFER = 0.4, 0.25, 3e-7  # of pores, of solids, s-1
 CELLS, DAY = 8, 86400.0
@@ -59,7 +59,7 @@ def test_immobile_water_with_a_mineral_against_brute_force(tmp_path):
     """Both at first order in the cell, so that only errors in time remain, and those of the extrapolation."""
     immobile = f"immobile = {{fraction = {FRACTION}, transfer = \"{TRANSFER} 1/s\", solids = {SHARE}}}"
     problem, _ = started(salt_column(tmp_path, immobile, run='max_courant = 0.02'), tmp_path)
-    problem = replace(problem, transport=replace(problem.transport, limiter=LIMITERS["none"]))
+    problem = replace(problem, transport=replace(problem.transport, limiter=LIMITERS["upwind"]))
     run = walk(problem)
     flux = 0.1 / DAY
     coarse, fine = (np.array(brute_force(flux, 6.0, steps)) for steps in (8000, 16000))
