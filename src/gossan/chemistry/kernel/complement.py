@@ -139,9 +139,7 @@ def close_balances(matrices, bench, active, free, solid, upper, presence, ionic_
             break
         made = molalities(matrices, bench, free, ionic_strength)
         mismatch = balances(bench, free)
-        # without couples or gases no power of a species is so high that the walk would not find home
-        tied = matrices.solid.shape[0] > matrices.minerals
-        if (step == 0 and tied and overfull(bench, BRIM)) or (left > 0.0 and mismatch < NEAR):
+        if (step == 0 and overfull(bench, BRIM)) or (left > 0.0 and mismatch < NEAR):
             newton = 0
             if step == 0:
                 left = 1.0
