@@ -102,7 +102,7 @@ VARIABLES: tuple[Variable, ...] = (
     Variable("ledger", "stored", ("time", "component"), "mol m-2",
              "amount stored in the column less the amount at the start, per cross-section", "ledger"),
     Variable("ledger", "made", ("time", "component"), "mol m-2",
-             "amount made by decay and kinetic steps so far per cross-section of the column", "ledger"),
+             "amount made by decay or given by open gases so far per cross-section of the column", "ledger"),
     Variable("ledger", "error", ("time", "component"), "1",
              "entered - left - stored + made over the largest amount so far", "ledger"),
     Variable("ledger", "water_error", ("time",), "1", "error of the water balance", "ledger"),
