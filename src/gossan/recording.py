@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import json
 import signal
 import sys
 import threading
@@ -15,20 +16,24 @@ from typing import Any
 import numpy as np
 
 from gossan.base.errors import SolveError
+from gossan.case.bounds import PH
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
 from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation, pe_of
 from gossan.coupling.beyond import Beyond, watched
 from gossan.coupling.drive import Drive, pore_volumes, settled
+from gossan.coupling.follower import Follower
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Clogged, Stride, march
 from gossan.coupling.pace import Pace
 from gossan.coupling.pores import conductivity
 from gossan.coupling.problem import Port, Problem
+from gossan.coupling.shadow import Shadow, apart, shadow_from, shadow_of
 from gossan.coupling.state import State, state_of
+from gossan.coupling.watching import OFF, WHEN, nothing_seen, seen
 from gossan.store.file import Axes
-from gossan.store.read import Result, open_result
+from gossan.store.read import Crossing, Result, open_result
 from gossan.store.write import ResultWriter
 from gossan.transport.faces import Faces, faces_of
 from gossan.transport.step import passages
@@ -63,11 +68,11 @@ def run_case(case: Case, path: Path, *, overwrite: bool = False, progress: Progr
     """
     problem = build(case)
     state, pace = problem.initial, first_pace(problem)
+    shadow = shadow_of(problem, state) if problem.errors_carried else None
     writer = ResultWriter(
         path, axes_of(problem), case.title, case.text, CAUTION, overwrite, case.constants_text, case.files
     )
-    with writer:
-        run = _Run(problem, writer, progress)
+    with writer, _Run(problem, writer, progress, shadow) as run:
         run.beyond = watched(problem, state, run.beyond)
         run.frame(state)
         run.records(state)
@@ -82,10 +87,10 @@ def resume(path: Path, *, progress: Progress | None = None) -> Ending:
     """
     problem = build(case_of(open_result(path)))
     writer, parts = ResultWriter.resume(path)
-    with writer:
-        run = _Run(problem, writer, progress)
+    shadow = shadow_from(parts["shadow"]) if parts["shadow"] else None
+    with writer, _Run(problem, writer, progress, shadow) as run:
         state = state_of(parts["state"])
-        run.seen = parts["seen"]
+        run.seen, run.limits = parts["seen"], parts["limits"]
         run.beyond = Beyond(**parts["beyond"])
         return run.walk(state, Pace(**parts["pace"]))
 
@@ -139,18 +144,31 @@ def _parts(problem: Problem) -> Iterator[str]:
         yield "isotherms"
     if problem.stagnant is not None:
         yield "immobile"
+    if problem.errors_carried:
+        yield "errors"
 
 
 class _Run:
     """One run into one file."""
 
-    def __init__(self, problem: Problem, writer: ResultWriter, progress: Progress | None):
+    def __init__(
+        self, problem: Problem, writer: ResultWriter, progress: Progress | None, shadow: Shadow | None
+    ):
         self.problem, self.writer, self.progress = problem, writer, progress
+        self.follower = Follower(shadow, problem.system) if shadow else None
         self.books = Books(problem)
         self.steps: list[dict[str, float]] = []
         self.seen = {"frame": -1.0, "records": -1.0}  # times of the last ones, s
+        self.limits = nothing_seen(len(problem.watched))
         self.beyond = Beyond()
         self.asked_to_stop = False
+
+    def __enter__(self) -> _Run:
+        return self
+
+    def __exit__(self, *_: Any) -> None:
+        if self.follower:
+            self.follower.close()
 
     def walk(self, state: State, pace: Pace) -> Ending:
         """March to the end, recording; an interrupt is heard between two steps, never within one."""
@@ -169,6 +187,11 @@ class _Run:
                 now = wall.monotonic()
                 self.step(stride, now - last)
                 last = now
+                self.limits = seen(
+                    stride.turn.problem, self.limits, state, stride.state, stride.turn.faces.darcy_flux
+                )
+                if self.follower:
+                    self.follower.follow(stride)
                 self.beyond = watched(self.problem, stride.state, self.beyond)
                 if stride.frame_due:
                     self.frame(stride.state)
@@ -202,9 +225,27 @@ class _Run:
                 self.records(state)
             if state.time > self.seen["frame"]:
                 self.frame(state)
-        figures = {"wall_clock_seconds": wall.monotonic() - began, "warnings": self.beyond.told(self.problem)}
+        said = [self.beyond.told(self.problem), self.follower.shadow().told() if self.follower else ""]
+        warnings = "\n".join(filter(None, said))
+        figures = {
+            "wall_clock_seconds": wall.monotonic() - began,
+            "warnings": warnings,
+            "crossings": self.crossings(),
+        }
         self.writer.finish(ending.status, parts, ending.reason, figures, counts)
         return ending
+
+    def crossings(self) -> str:
+        """When each limit was first exceeded, by port and quantity, as JSON (docs/result-file.md)."""
+        shadows = self.follower.shadow().seen if self.follower else np.full_like(self.limits, np.nan)
+        found: dict[str, dict[str, Crossing]] = {}
+        for limit, own, other in zip(self.problem.watched, self.limits, shadows, strict=True):
+            if own[WHEN] == own[WHEN]:
+                quantity = self.problem.solutes[limit.solute] if limit.solute >= 0 else PH
+                beside = float(other[WHEN]) if other[WHEN] == other[WHEN] else None
+                when = float(own[WHEN]), float(own[OFF]), beside
+                found.setdefault(self.problem.ports[limit.port].name, {})[quantity] = when
+        return json.dumps(found)
 
     def share(self, state: State) -> float:
         """The share of the run that is done."""
@@ -218,7 +259,11 @@ class _Run:
 
     def parts(self, state: State, pace: Pace) -> dict[str, Any]:
         """All that the run needs to go on from here."""
-        return {"state": state, "pace": pace, "seen": dict(self.seen), "beyond": self.beyond}
+        shadow = self.follower.shadow() if self.follower else None
+        return {
+            "state": state, "pace": pace, "seen": dict(self.seen), "beyond": self.beyond, "shadow": shadow,
+            "limits": self.limits,
+        }  # fmt: skip
 
     def step(self, stride: Stride, seconds: float) -> None:
         self.steps.append(
@@ -238,17 +283,19 @@ class _Run:
 
     def records(self, state: State) -> None:
         self.seen["records"] = state.time
-        drive = Drive(self.problem, state)
-        inflow = drive.inflow
-        darcy_flux, _ = drive.flow(settled_dt(state), 0.0)
-        faces = faces_of(self.problem.transport, state.water, darcy_flux)
-        through = passages(faces, state.dissolved, inflow, 1.0).passed
-        for index, port in enumerate(self.problem.ports):
-            values = port_of(self.problem, state, port, index, faces, inflow, through)
-            self.writer.port(port.name, state.time, values)
+        problem, values = self.problem, ports_of(self.problem, state)
         ledger = self.books.closed(state)
         names = ("entered", "left", "stored", "made", "error", "water_error", "charge_error")
-        self.writer.ledger(state.time, {name: getattr(ledger, name) for name in names})
+        row = {name: getattr(ledger, name) for name in names}
+        if self.follower:
+            shadow = self.follower.shadow().state
+            row["splitting_error"] = apart(problem, state, shadow, Drive(problem, state).inflow)
+            for here, beside in zip(values, ports_of(problem, shadow), strict=True):
+                here["dissolved_error"] = here["dissolved"] - beside["dissolved"]
+                here["pH_error"] = here["pH"] - beside["pH"]
+        for port, shown in zip(problem.ports, values, strict=True):
+            self.writer.port(port.name, state.time, shown)
+        self.writer.ledger(state.time, row)
 
 
 @contextmanager
@@ -296,6 +343,19 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
         "head": head,
         "temperature": system.temperature,
     }
+
+
+def ports_of(problem: Problem, state: State) -> list[dict[str, Any]]:
+    """What every port shows at a state."""
+    drive = Drive(problem, state)
+    inflow = drive.inflow
+    darcy_flux, _ = drive.flow(settled_dt(state), 0.0)
+    faces = faces_of(problem.transport, state.water, darcy_flux)
+    through = passages(faces, state.dissolved, inflow, 1.0).passed
+    return [
+        port_of(problem, state, port, index, faces, inflow, through)
+        for index, port in enumerate(problem.ports)
+    ]
 
 
 def port_of(

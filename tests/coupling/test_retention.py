@@ -16,6 +16,7 @@ from gossan.chemistry.equilibrium import Solver
 from gossan.chemistry.isotherm import sorbed_at
 from gossan.coupling.attempt import attempt
 from gossan.coupling.problem import Problem
+from gossan.coupling.splitting import Turn
 from gossan.coupling.state import State
 from gossan.transport.faces import faces_of
 from gossan.transport.step import DAMPING
@@ -80,7 +81,7 @@ def marched(problem: Problem, state: State, steps: int, theta: float | None) -> 
     for _ in range(steps):
         dt = 0.2 * 86400.0 / steps
         faces = faces_of(problem.transport, state.water, flux)
-        state = attempt(problem, solver, state, faces, inflow, dt, theta).state
+        state = attempt(Turn(problem, solver, state, faces, inflow, dt, theta)).state
     return totals(problem, state)
 
 

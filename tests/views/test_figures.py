@@ -7,10 +7,10 @@ import numpy as np
 import pytest
 from tests.support.small_cases import GYPSUM
 
+from gossan.case.bounds import bounds_of
 from gossan.case.read import case_from_text
 from gossan.recording import run
 from gossan.views import figures
-from gossan.views.limits import bounds_of
 
 
 @pytest.fixture(scope="module")

@@ -6,9 +6,11 @@ import numpy as np
 import pytest
 from tests.support.small_cases import GYPSUM
 
+from gossan.case.bounds import bounds_of
 from gossan.case.read import case_from_text
 from gossan.constants.water import density
-from gossan.views.limits import bounds_of, first_outside, verdicts
+from gossan.views.crossing import first_outside
+from gossan.views.limits import verdicts
 
 INF = np.inf
 

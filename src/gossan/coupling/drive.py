@@ -65,13 +65,16 @@ class Drive:
         feeds = self.problem.feeds
         return any(feeds.slope(values, self.piece) for values in (feeds.darcy_flux, feeds.head_drop))
 
-    def flow(self, dt: float, span: float | None = None) -> tuple[np.ndarray, np.ndarray]:
+    def flow(
+        self, dt: float, span: float | None = None, water: np.ndarray | None = None
+    ) -> tuple[np.ndarray, np.ndarray]:
         """Darcy flux (face,) m s-1 and head (face,) m, the mean over the next span, s; 0 for this instant.
 
-        dt  s, within which water in excess of the pores leaves; also the span, where none is given
+        dt     s, within which water in excess of the pores leaves; also the span, where none is given
+        water  (cell,) all water per bulk, which conductivities follow; default the state's
         """
         span = dt if span is None else span
-        return flow(self.problem, self.state, dt, self._push(0.5 * span))
+        return flow(self.problem, self.state, dt, self._push(0.5 * span), water)
 
     def rise(self, dt: float) -> float:
         """How fast the Darcy flux through the inlet changes, m s-2; dt as in `flow`."""

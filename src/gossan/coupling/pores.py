@@ -51,17 +51,21 @@ def conductivity(problem: Problem, water: np.ndarray) -> np.ndarray:
     return problem.conductivity * left
 
 
-def flow(problem: Problem, state: State, dt: float, push: Push) -> tuple[np.ndarray, np.ndarray]:
+def flow(
+    problem: Problem, state: State, dt: float, push: Push, water: np.ndarray | None = None
+) -> tuple[np.ndarray, np.ndarray]:
     """Darcy flux and head at every face for the coming step: (face,) m s-1, (face,) m.
 
     What the solids pushed out in the last step they are taken to push out in this one, and what is now in
     excess of the pores leaves within dt: so water and pores agree to second order in dt and never drift.
+    water  (cell,) all there is per bulk, which conductivities follow; default the state's
     """
     excess = (state.water - pore_space(problem, state.solid)) / dt + state.swelling
     if state.still is not None:
         excess = problem.whole(excess, squeezed(problem, state.still, dt))
     made_up = np.concatenate([[0.0], np.cumsum(excess * problem.grid.width)])
-    conductivities = np.maximum(conductivity(problem, problem.water(state)), NEARLY_CLOSED)
+    water = problem.water(state) if water is None else water
+    conductivities = np.maximum(conductivity(problem, water), NEARLY_CLOSED)
     if push.head_drop == push.head_drop:
         return flow_of_head(push.head_drop, conductivities, problem.grid.width, made_up)
     return flow_of_flux(push.darcy_flux, conductivities, problem.grid.width, made_up)

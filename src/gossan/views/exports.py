@@ -6,10 +6,11 @@ import math
 from collections.abc import Callable, Iterator
 from typing import Any
 
+from gossan.case.bounds import bounds_of
 from gossan.recording import case_of
 from gossan.store.layout import variable, variables
 from gossan.store.read import Group, Result
-from gossan.views.limits import bounds_of, verdicts
+from gossan.views.limits import verdicts
 
 Row = list[Any]
 

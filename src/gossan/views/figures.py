@@ -5,11 +5,11 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
+from gossan.case.bounds import Bound
 from gossan.store.read import Result
 from gossan.views import chosen
 from gossan.views.bed_figures import books, pores
 from gossan.views.breakthrough import breakthrough
-from gossan.views.limits import Bound
 from gossan.views.profile_figures import dissolved_profiles, retained_profiles, solid_profiles
 
 if TYPE_CHECKING:
@@ -26,7 +26,7 @@ def all_figures(
 ) -> Iterator[tuple[str, Figure]]:
     """Every figure that a result has something for, with a name for its file.
 
-    bounds  limits to draw (`limits.bounds_of`); masses  kg/mol by tracer
+    bounds  limits to draw (`case.bounds.bounds_of`); masses  kg/mol by tracer
     """
     for port in result.ports:
         yield f"breakthrough-{port}", breakthrough(result, port, bounds, masses)
