@@ -90,7 +90,7 @@ def build(case: Case) -> Problem:
         coupling=case.run.coupling,
         accuracy=case.run.accuracy,
         max_courant=case.run.max_courant,
-        decay=decay_of(case, chemical),
+        decay=decay_of(case, cells, chemical),
         isotherms=isotherms,
         stagnant=stagnant,
     )

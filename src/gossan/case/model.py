@@ -41,6 +41,7 @@ MOST_CELLS = 1_000_000  # of a layer; more is a slip of the unit of `cell`
 Name = Annotated[str, Text(is_name=True, example='"gate"')]
 PH = Annotated[float, Number("a pH", -2, 16, example="5.9")]
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
+HALF_LIFE = Quantity(("s",), "a half-life", '"40 d"', positive=True)
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
 
 
@@ -168,6 +169,9 @@ class Layer(TableOfCase):
     surface: Later = Field(default=None, description="hydrous ferric oxide with strong and weak sites")
     sorption: dict[str, Sorption] = Field(default={}, description="an isotherm per component or tracer")
     immobile: Immobile | None = Field(default=None, description="immobile water beside the flowing water")
+    half_life: dict[str, Annotated[Amount, HALF_LIFE]] = Field(
+        default={}, description="by tracer: its half-life in this layer, in place of the tracer's own"
+    )
 
     @property
     def mesh(self) -> tuple[int, float]:
@@ -186,8 +190,10 @@ class Tracer(TableOfCase):
     molar_mass: Annotated[
         Amount | None, Quantity(("kg/mol",), "a molar mass", '"79.9 g/mol"', positive=True)
     ] = Field(default=None, description="needed where amounts of it are in mass")
-    half_life: Annotated[Amount | None, Quantity(("s",), "a half-life", '"40 d"', positive=True)] = Field(
-        default=None, description="first-order decay, in flowing and immobile water and where it is sorbed"
+    half_life: Annotated[Amount | None, HALF_LIFE] = Field(
+        default=None,
+        description="first-order decay, in flowing and immobile water and where it is sorbed; a layer may "
+        "have another (`[layers.half_life]`)",
     )
     parent: Annotated[str, Text(example='"nitrate"')] = Field(
         default="", description="the tracer that decays into this one, mole for mole"

@@ -53,7 +53,7 @@ def pore_room(problem: Problem, state: State, push: Push) -> np.ndarray:
 
 
 def share_to_close(room: np.ndarray, beyond: np.ndarray) -> float:
-    """The share of a step after which the first pore closes, by straight lines (equations.md, 83).
+    """The share of a step after which the first pore closes, by straight lines (equations.md, 84).
 
     room, beyond  (cell,) m3 m-3, what was left before the step, > LANDING, and after it, somewhere < 0
     """
@@ -91,7 +91,7 @@ def flow(problem: Problem, state: State, dt: float, push: Push) -> tuple[np.ndar
 def _flow_of_head(
     problem: Problem, head_drop: float, conductivities: np.ndarray, made_up: np.ndarray
 ) -> tuple[np.ndarray, np.ndarray]:
-    """Flux and head under a held head; where the bed has closed nothing enters (equations.md, 82).
+    """Flux and head under a held head; where the bed has closed nothing enters (equations.md, 83).
 
     Solids that go on growing there would push water back through the inlet, more than the head drives in.
     That little leaves by the outlet instead, and the heads are those of still water.

@@ -71,7 +71,7 @@ def threshold(porosity: np.ndarray, initial: np.ndarray, exponent: float, critic
 def bodies_and_throats(
     porosity: np.ndarray, initial: np.ndarray, critical: float, bodies: float
 ) -> np.ndarray:
-    """The same for wide and narrow tubes in series, whose narrow ones close first (equations.md, 81).
+    """The same for wide and narrow tubes in series, whose narrow ones close first (equations.md, 82).
 
     porosity, initial  (cell,), 1, as in `kozeny_carman`
     critical           1, in [0, initial): the porosity at which the throats are full
