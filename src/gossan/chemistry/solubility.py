@@ -206,7 +206,7 @@ class _Water:
         return float(self._with(ln_metal).amount[self.metal, 0])
 
     def _at_least(self, ln_metal: float) -> float:
-        """The metal and its hydroxides, without what ligands hold; where that is too much, no solve is lost."""
+        """The metal and its hydroxides alone: where that is too much already, no solve is needed."""
         ln_activity = self.bare.copy()
         ln_activity[self.metal] = ln_metal
         ln_activity[self.valences] = ln_metal + self.apart

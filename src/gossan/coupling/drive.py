@@ -60,6 +60,11 @@ class Drive:
         return self._number(self.problem.feeds.temperature, 0.0)
 
     @property
+    def push(self) -> Push:
+        """What drives the water at this instant."""
+        return self._push(0.0)
+
+    @property
     def ramps(self) -> bool:
         """Whether the flow changes by itself within a step."""
         feeds = self.problem.feeds

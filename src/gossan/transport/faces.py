@@ -66,13 +66,16 @@ class Faces:
         """(solute,) mol m-3 in the pore water at a face (equations.md, 45).
 
         dissolved (solute, cell), inflow (solute,) mol m-3; through (solute,) mol m-2 s-1, what passes there.
-        Between unlike cells the value lies where both half cells pass the same by dispersion; a third-type
-        inflow stands D / velocity before the inlet; at the outlet it is what leaves.
+        Between cells the value lies where both half cells pass the same by dispersion, between layers it is
+        read downstream; a third-type inflow stands D / velocity before the inlet; at the outlet it is what
+        leaves.
         """
         transport, last = self.transport, self.storage.size
         if face == 0:
             return dissolved[:, 0] - self.lean_left[0] * (dissolved[:, 0] - inflow)
         here = dissolved[:, face - 1]
+        if self._behind_a_layer(face):
+            return self._between(dissolved, through, face)
         if face < last:
             return here + self.lean_right[face - 1] * (dissolved[:, face] - here)
         if transport.held_outlet:
@@ -80,6 +83,28 @@ class Faces:
         if self.darcy_flux[last] > 0.0:
             return (through + self.outlet_spread * transport.beyond[1]) / self.darcy_flux[last]
         return here + 0.5 * transport.grid.width[-1] * transport.beyond[1]
+
+    def _behind_a_layer(self, face: int) -> bool:
+        """Whether a face has another layer before it, and two cells of one behind it that disperse."""
+        layer = self.transport.grid.layer
+        if face + 1 >= layer.size or layer[face - 1] == layer[face] or layer[face] != layer[face + 1]:
+            return False
+        return bool(self.conductance[face] > 0.0 and self.darcy_flux[face] >= 0.0)
+
+    def _between(self, dissolved: np.ndarray, through: np.ndarray, face: int) -> np.ndarray:
+        """(solute,) mol m-3 between two layers (equations.md, 81).
+
+        Before the face the profile may bend as sharply as D / velocity of that layer; behind it, it does not.
+        """
+        width = self.transport.grid.width
+        first, second = width[face], width[face + 1]
+        spread = 0.5 * first * self.conductance[face] / self.lean_left[face]
+        ratio = ((first + second) ** 3 - first**3) / (second * first**2)
+        lever = (0.5 * ratio - 1.0) * first - 0.5 * second
+        here, behind = dissolved[:, face - 1], dissolved[:, face]
+        value = spread * (ratio * behind - dissolved[:, face + 1]) + lever * through
+        value /= spread * (ratio - 1.0) + lever * self.darcy_flux[face]
+        return np.clip(value, np.minimum(here, behind), np.maximum(here, behind))
 
 
 def transport_of(
