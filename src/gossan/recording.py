@@ -50,7 +50,7 @@ class Ending:
     """How a run ended."""
 
     status: str  # "finished", "stopped" or "failed"
-    reason: str
+    reason: str  # "clogged" where a closed cell was the end
     detail: str = ""  # the reason in a sentence
     error: SolveError | None = None
 
@@ -187,9 +187,11 @@ class _Run:
                     ending = Ending("stopped", "interrupted")
                     break
         except Clogged as clogged:
-            where = float(self.problem.grid.centres[clogged.cell])
-            detail = f"clogged at x = {where:.4g} m after {clogged.time / 86400:.6g} d"
-            ending = Ending("stopped", "clogged", detail)
+            grid = self.problem.grid
+            layer, x = grid.layers[grid.layer[clogged.cell]].name, grid.centres[clogged.cell]
+            detail = f"clogged in layer {layer}, x = {x:.4g} m, after {clogged.time / 86400:.6g} d"
+            ending = Ending("finished", "clogged", detail)
+            self.last(state)
         except SolveError as error:
             error.kept = str(self.writer.path)
             ending = Ending("failed", str(error), str(error), error)
@@ -197,14 +199,17 @@ class _Run:
         self.writer.flush()
         counts, parts = dict(self.writer.counts), self.parts(state, pace)
         if ending.status != "finished":
-            # to be seen, but a run never stopped has none here: who goes on drops them
-            if state.time > self.seen["records"]:
-                self.records(state)
-            if state.time > self.seen["frame"]:
-                self.frame(state)
+            self.last(state)  # to be seen, but a run never stopped has none here: who goes on drops it
         figures = {"wall_clock_seconds": wall.monotonic() - began, "warnings": self.beyond.told(self.problem)}
         self.writer.finish(ending.status, parts, ending.reason, figures, counts)
         return ending
+
+    def last(self, state: State) -> None:
+        """Record a state at which no record falls due."""
+        if state.time > self.seen["records"]:
+            self.records(state)
+        if state.time > self.seen["frame"]:
+            self.frame(state)
 
     def share(self, state: State) -> float:
         """The share of the run that is done."""

@@ -146,10 +146,10 @@ def stopping(error: BaseException, after: int):
     return march
 
 
-def test_a_clogged_column_stops_with_exit_code_3(case_file, capsys, monkeypatch):
+def test_a_clogged_column_is_done(case_file, capsys, monkeypatch):
     monkeypatch.setattr("gossan.recording.march", stopping(Clogged(3, 100.0), 20))
     code, found = run_json(capsys, str(case_file), "-o", str(case_file.with_suffix(".h5")))
-    assert (code, found["status"], found["reason"]) == (3, "stopped", "clogged")
+    assert (code, found["status"], found["reason"]) == (0, "finished", "clogged")
 
 
 def test_numerics_that_give_up_are_exit_code_4_and_name_the_place(case_file, capsys, monkeypatch):

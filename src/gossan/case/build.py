@@ -81,7 +81,7 @@ def build(case: Case) -> Problem:
         conductivity=np.array(
             [layer.conductivity.si if layer.conductivity else np.nan for layer in case.layers]
         )[cells.layer],
-        clogging=tuple(_clogging(layer) for layer in case.layers),
+        clogging=tuple(clogging_of(layer) for layer in case.layers),
         porosity=porosity,
         initial=initial_state(case, system, cells, composition, solids, len(ports), stagnant, isotherms),
         end=Schedule(np.array([case.run.duration.si]), by_volume),
@@ -124,12 +124,15 @@ def _tortuosity(layer: Layer) -> Tortuosity:
     return Tortuosity(said.law, **{name: number for name, number in numbers.items() if number is not None})
 
 
-def _clogging(layer: Layer) -> clogging.Clogging:
+def clogging_of(layer: Layer) -> clogging.Clogging:
+    """The law that a layer says its conductivity follows."""
     said = layer.clogging
     return clogging.Clogging(
         law=said.law,
         exponent=said.exponent or 0.0,
         critical_porosity=said.critical_porosity or 0.0,
+        pore_bodies=said.pore_bodies,
+        residual=said.residual or 0.0,
     )
 
 

@@ -103,6 +103,19 @@ class Clogging(TableOfCase):
     critical_porosity: Annotated[
         float | None, Number("a critical porosity", 0, 1, is_open=True, is_share=True, example="0.05")
     ] = Field(default=None, description="of threshold, which needs it: no flow below")
+    pore_bodies: Annotated[
+        float | None, Number("a share of the way", 0, 1, is_open=True, is_share=True, example="0.8")
+    ] = Field(
+        default=None,
+        description="of threshold, instead of an exponent: wide pores and throats in turn, of which the "
+        "throats close at `critical_porosity`; the share of the way that is wide",
+    )
+    residual: Annotated[
+        float | None, Number("a share of the conductivity", 0, 1, is_open=True, is_share=True, example="1e-4")
+    ] = Field(
+        default=None,
+        description="share of the starting conductivity that is left where the law leaves less; default none",
+    )
 
 
 class Layer(TableOfCase):

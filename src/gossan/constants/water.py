@@ -37,7 +37,7 @@ def density(temperature_k: float) -> float:
 
 
 def viscosity(temperature_k: float) -> float:
-    """Viscosity of pure water at 1 bar, in Pa s (equations.md, 82).
+    """Viscosity of pure water at 1 bar, in Pa s (equations.md, 85).
 
     temperature_k  K, from 273.15 to 373.15
     Raises   ValueError outside of that
@@ -53,7 +53,7 @@ def viscosity(temperature_k: float) -> float:
 
 
 def fluidity_ratio(temperature_k: float, reference: float) -> float:
-    """Weight over viscosity of water, as a multiple of that at a reference (equations.md, 82).
+    """Weight over viscosity of water, as a multiple of that at a reference (equations.md, 85).
 
     temperature_k, reference  K, from 273.15 to 373.15
     Returns  what a bed's hydraulic conductivity is multiplied by
@@ -66,7 +66,7 @@ def fluidity_ratio(temperature_k: float, reference: float) -> float:
 
 
 def diffusion_ratio(temperature_k: float, reference: float) -> float:
-    """How fast solutes diffuse in water, as a multiple of that at a reference (equations.md, 82).
+    """How fast solutes diffuse in water, as a multiple of that at a reference (equations.md, 85).
 
     temperature_k, reference  K, from 273.15 to 373.15
     Valid    for ions within about 12 % over 25 K; the law is that of large round particles

@@ -62,6 +62,11 @@ class Drive:
         return self._number(self.problem.feeds.temperature, 0.0)
 
     @property
+    def push(self) -> Push:
+        """What drives the water at this instant."""
+        return self._push(0.0)
+
+    @property
     def ramps(self) -> bool:
         """Whether flow, or how well the bed conducts, changes by itself within a step."""
         feeds = self.problem.feeds

@@ -18,7 +18,7 @@ from gossan.transport.clogging import Clogging
 from gossan.transport.faces import Transport
 from gossan.transport.grid import Grid
 
-CLOGGED = 1e-3  # porosity at which any cell counts as closed
+CLOGGED = 1e-3  # porosity at which any cell counts as full
 MOLAR_MASS_OF_WATER = 0.018015  # kg/mol; IUPAC standard atomic weights (2021)
 
 
@@ -174,8 +174,8 @@ class Problem:
 
     @cached_property
     def closing(self) -> np.ndarray:
-        """(cell,) porosity at which a cell counts as closed: next to none, or its law's critical one."""
-        critical = np.array([c.critical_porosity if c.law == "threshold" else 0.0 for c in self.clogging])
+        """(cell,) porosity at which a cell lets no water through: next to none, or its law's critical one."""
+        critical = np.array([clogging.closes_at for clogging in self.clogging])
         return np.maximum(CLOGGED, critical[self.grid.layer] * (1.0 + 1e-9))
 
     @cached_property
