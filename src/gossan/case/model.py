@@ -140,7 +140,8 @@ class Layer(TableOfCase):
     )
     diffusion: Annotated[Amount, Quantity(("m2/s",), "a diffusion coefficient", '"1e-9 m2/s"', 0.0)] = Field(
         default=amount("1e-9 m2/s", ("m2/s",)),
-        description="in free water, one value for all dissolved components",
+        description="in free water, one value for all dissolved components, at the case's temperature: it "
+        "follows that of the feed, as temperature over viscosity of water",
     )
     tortuosity: Annotated[Winding | None, WindingKind()] = Field(
         default=None,
@@ -151,7 +152,8 @@ class Layer(TableOfCase):
         Amount | None, Quantity(("m/s",), "a conductivity", '"25 m/d"', positive=True)
     ] = Field(
         default=None,
-        description="saturated hydraulic conductivity at the starting porosity; needed with `head_drop`",
+        description="saturated hydraulic conductivity at the starting porosity and the case's temperature: "
+        "it follows that of the feed, as density over viscosity of water; needed with `head_drop`",
     )
     grain_density: Annotated[
         Amount,

@@ -9,6 +9,7 @@ import numpy as np
 
 from gossan.case.model import Case
 from gossan.constants.potential import potential_of_pe
+from gossan.constants.water import fluidity_ratio
 from gossan.recording import case_of
 from gossan.store.read import Result
 from gossan.views.limits import Verdict, bounds_of, tracer_masses, verdicts
@@ -119,9 +120,15 @@ def _stocks(result: Result, width: np.ndarray) -> list[Stock]:
 
 
 def fractions_left(result: Result) -> np.ndarray:
-    """(time, x): conductivity over that of the start; NaN where none was given."""
+    """(time, x): conductivity over that of the start, as if at one temperature; NaN where none was given.
+
+    What clogs a bed is told apart from cold water, which comes and goes.
+    """
+    temperature = result.profiles.temperature.values
+    warmth = {each: fluidity_ratio(each, float(temperature[0])) for each in set(temperature.tolist())}
     conductivity = result.profiles.conductivity.values
-    return conductivity / conductivity[0]
+    left = conductivity / conductivity[0]
+    return left / np.array([[warmth[each]] for each in temperature.tolist()])
 
 
 def _conductivity(result: Result) -> Conductivity:
