@@ -225,7 +225,8 @@ def test_names_are_in_plain_form():
 
 @pytest.mark.parametrize(("said", "meant"), [
     ("zinc", "Zn^2+"), ("Zn", "Zn^2+"), ("Zn2+", "Zn^2+"), ("Zn+2", "Zn^2+"), ("SO42-", "SO4^2-"),
-    ("SO4", "SO4^2-"), ("sulfate", "SO4^2-"), ("S(-II)", "HS^-"), ("Fe(III)", "Fe^3+"), ("Fe+3", "Fe^3+"), ("Cu(I)", "Cu^+"),
+    ("SO4", "SO4^2-"), ("sulfate", "SO4^2-"), ("S(-II)", "HS^-"), ("Fe(III)", "Fe^3+"), ("Fe+3", "Fe^3+"),
+    ("Cu(I)", "Cu^+"),
     ("H2S(g)", "H2S"), ("HSO4-", "HSO4^-"), ("ZnOH+", "ZnOH^+"), ("S", "sulfur"),
 ])  # fmt: skip
 def test_what_people_type_is_found(said, meant):

@@ -8,7 +8,7 @@ from gossan.base.notation import charge_of, normal_ion, parse_formula
 from gossan.base.wrong import Wrong, did_you_mean
 from gossan.constants.couples import couple_named
 from gossan.constants.entries import Component, Gas, Interaction, Mineral, Species, Table
-from gossan.constants.names import component_named
+from gossan.constants.names import component_named, is_bare_element
 
 GAS = "(g)"
 # a charge as it is often typed: Zn2+ and SO42-, Zn+2 and SO4-2
@@ -97,12 +97,13 @@ def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, 
     found: list[Component | Species | Mineral | Gas] = [
         group[each] for each in dict.fromkeys((ion, *_typed(name))) for group in groups if each in group
     ]
+    if is_bare_element(name):
+        found += _in_a_laboratory(table, name)  # Zn is the ion first, and the metal
     try:
         found.append(find_mineral(table, name))
     except UnknownName as unknown:
         found += _with_formula(table, name)
-        if not found:
-            found += _in_a_laboratory(table, name)
+        found = found or [*_in_a_laboratory(table, name)]
         if not found:
             known = [each for group in groups for each in group]
             near = did_you_mean(ion, known, quote="") or unknown.right
