@@ -30,7 +30,7 @@ from gossan.coupling.state import State, state_of
 from gossan.store.file import Axes
 from gossan.store.read import Result, open_result
 from gossan.store.write import ResultWriter
-from gossan.transport.faces import Faces, faces_of
+from gossan.transport.faces import Faces
 from gossan.transport.step import passages
 
 CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
@@ -246,7 +246,7 @@ class _Run:
         drive = Drive(self.problem, state)
         inflow = drive.inflow
         darcy_flux, _ = drive.flow(settled_dt(state), 0.0)
-        faces = faces_of(self.problem.transport, state.water, darcy_flux)
+        faces = drive.faces(darcy_flux)
         through = passages(faces, state.dissolved, inflow, 1.0).passed
         for index, port in enumerate(self.problem.ports):
             values = port_of(self.problem, state, port, index, faces, inflow, through)
@@ -293,7 +293,7 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
         "saturation": mineral_saturation(system, state.ln_activity),
         "activity": activity,
         "porosity": problem.water(state),
-        "conductivity": conductivity(problem, problem.water(state)),
+        "conductivity": conductivity(problem, problem.water(state), system.temperature),
         "pH": -state.ln_activity[0] / LN10,
         "pe": pe_of(system, state.ln_activity),
         "ionic_strength": state.ionic_strength,

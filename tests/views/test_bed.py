@@ -16,7 +16,10 @@ from gossan.views.summary import run_json, summary_of
 DAY = 86400.0
 
 
-def bed(porosity, laws=(Clogging("power", 3.0),), clean=(1e-4, 1e-4), layer=(0, 0), time=(0.0, 10.0)) -> Bed:
+CUBE = (Clogging("power", 3.0),)
+
+
+def bed(porosity, laws=CUBE, clean=(1e-4, 1e-4), layer=(0, 0), time=(0.0, 10.0)) -> Bed:
     return Bed(
         time=np.array(time), x=np.array([0.05, 0.2]), porosity=np.array(porosity), first=np.full(2, 0.4),
         clean=np.array(clean), width=np.array([0.1, 0.2]), layer=np.array(layer), laws=laws,
@@ -55,8 +58,10 @@ def test_the_band_is_the_column_by_other_laws():
     assert left["kozeny-carman"] == pytest.approx(0.75**3 * (0.6 / 0.7) ** 2, rel=1e-13)
     assert left["power 3"] == pytest.approx(0.75**3, rel=1e-13)
     assert left["power 8"] == pytest.approx(0.75**8, rel=1e-13)
-    assert left["threshold"] == pytest.approx(((0.75 - CRITICAL_SHARE) / (1 - CRITICAL_SHARE)) ** 3, rel=1e-13)
-    assert found.column.last == pytest.approx(0.3 / (0.1 / 0.75**5 + 0.2), rel=1e-13), "the case's own, beside it"
+    open_share = (0.75 - CRITICAL_SHARE) / (1 - CRITICAL_SHARE)
+    assert left["threshold"] == pytest.approx(open_share**3, rel=1e-13)
+    own = 0.3 / (0.1 / 0.75**5 + 0.2)
+    assert found.column.last == pytest.approx(own, rel=1e-13)
     assert found.has_band
     assert not bed([[0.4, 0.4], [0.3999, 0.3999]]).has_band
 
@@ -110,7 +115,8 @@ def test_head_is_lost_where_the_column_closes(clogged):
     assert halfway.loss[0, 1] == pytest.approx(whole.loss[:2, 1].mean(), rel=1e-12)
     summary = summary_of(clogged)
     ratio = whole.whole[-1] / whole.whole[0]
-    assert ratio == pytest.approx(1.0 / summary.bed.column.last, rel=0.1), "but for the tenth that solids push out"
+    # but for the tenth that solids push out on top of what enters
+    assert ratio == pytest.approx(1.0 / summary.bed.column.last, rel=0.1)
 
 
 def test_machines_are_told_the_same(clogged):

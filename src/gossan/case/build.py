@@ -77,6 +77,7 @@ def build(case: Case) -> Problem:
         ),
         feeds=feeds_of(feed, composition),
         system_at=system_at,
+        reference_temperature=case.temperature.si,
         conductivity=np.array(
             [layer.conductivity.si if layer.conductivity else np.nan for layer in case.layers]
         )[cells.layer],

@@ -94,13 +94,13 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
         if drive.ramps:
             wish, _ = _fitted(problem, state, entered, inlet, pace.dt)
             darcy_flux, head = drive.flow(pace.dt, wish)
-        faces = faces_of(problem.transport, state.water, darcy_flux)
+        faces = drive.faces(darcy_flux)
         longest, implicit = longest_step(problem, faces)
         theta = WEIGHT_OF_END[problem.coupling] if implicit else None
         dt, lands = _fitted(problem, state, entered, inlet, min(pace.dt, longest))
         if drive.ramps:
             darcy_flux, head = drive.flow(pace.dt, dt)
-            faces = faces_of(problem.transport, state.water, darcy_flux)
+            faces = drive.faces(darcy_flux, dt)
         try:
             begun, start = state, problem.at(drive.temperature, before)
             if start.system is not before.system:

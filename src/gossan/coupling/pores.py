@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from gossan.constants.water import fluidity_ratio
 from gossan.coupling.feeds import Push
 from gossan.coupling.problem import CLOGGED, Problem
 from gossan.coupling.state import State, StillWater
@@ -66,10 +67,13 @@ def is_held(value: float) -> bool:
     return value == value
 
 
-def conductivity(problem: Problem, water: np.ndarray) -> np.ndarray:
-    """(cell,) m s-1: saturated hydraulic conductivity of the bed; water (cell,), all there is per bulk."""
+def conductivity(problem: Problem, water: np.ndarray, temperature: float) -> np.ndarray:
+    """(cell,) m s-1: saturated hydraulic conductivity of the bed.
+
+    water (cell,), all there is per bulk; temperature K
+    """
     left = conductivity_left(problem.clogging, problem.grid.layer, water, problem.porosity)
-    return problem.conductivity * left
+    return problem.conductivity * (left * fluidity_ratio(temperature, problem.reference_temperature))
 
 
 def flow(problem: Problem, state: State, dt: float, push: Push) -> tuple[np.ndarray, np.ndarray]:
@@ -82,7 +86,7 @@ def flow(problem: Problem, state: State, dt: float, push: Push) -> tuple[np.ndar
     if state.still is not None:
         excess = problem.whole(excess, squeezed(problem, state.still, dt))
     made_up = np.concatenate([[0.0], np.cumsum(excess * problem.grid.width)])
-    conductivities = np.maximum(conductivity(problem, problem.water(state)), NEARLY_CLOSED)
+    conductivities = np.maximum(conductivity(problem, problem.water(state), push.temperature), NEARLY_CLOSED)
     if is_held(push.head_drop):
         return _flow_of_head(problem, push.head_drop, conductivities, made_up)
     return flow_of_flux(push.darcy_flux, conductivities, problem.grid.width, made_up)

@@ -50,6 +50,7 @@ class Problem:
     transport: Transport
     feeds: Feeds
     system_at: Callable[[float], System]  # the same substances at another temperature, K
+    reference_temperature: float  # K, at which conductivity and diffusion in the water are as given
     conductivity: np.ndarray  # (cell,) m s-1 of the clean bed, NaN where it is not known
     clogging: tuple[Clogging, ...]  # of each layer
     porosity: np.ndarray  # (cell,) water-filled fraction at the start, immobile water included

@@ -141,21 +141,25 @@ def transport_of(
     )
 
 
-def faces_of(transport: Transport, water: np.ndarray, darcy_flux: np.ndarray) -> Faces:
+def faces_of(
+    transport: Transport, water: np.ndarray, darcy_flux: np.ndarray, warmth: float = 1.0
+) -> Faces:
     """The faces at one moment: conductances, slopes that follow from them, how fast cells are crossed.
 
     water (cell,) m3 m-3, > 0; darcy_flux (face,) m s-1
+    warmth  1, diffusion in the water over that of the grid: what temperature makes of it
     """
     grid = transport.grid
+    diffusion = grid.diffusion * warmth
     conductance, lean_left, lean_right = np.empty_like(darcy_flux), np.empty_like(water), np.empty_like(water)
     factor = winding(grid.tortuosity, grid.layer, water)
-    conduct(darcy_flux, water, grid.width, grid.dispersivity, factor, grid.diffusion, transport.first_type,
+    conduct(darcy_flux, water, grid.width, grid.dispersivity, factor, diffusion, transport.first_type,
             transport.held_outlet, conductance, lean_left, lean_right)
     storage = water * grid.width
     speed = np.maximum(np.abs(darcy_flux[:-1]), np.abs(darcy_flux[1:])) / storage
     flux = max(float(darcy_flux[-1]), 0.0)
     mean = 0.5 * abs(float(darcy_flux[-2] + darcy_flux[-1]))
-    spread = float(grid.dispersivity[-1] * mean + water[-1] * factor[-1] * grid.diffusion[-1])
+    spread = float(grid.dispersivity[-1] * mean + water[-1] * factor[-1] * diffusion[-1])
     rise = 0.0
     if flux > 0.0 and not transport.held_outlet and grid.width.size > 1:
         rise = outlet_rise(float(grid.width[-1]), float(grid.width[-2]), spread / flux)

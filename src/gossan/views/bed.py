@@ -90,7 +90,7 @@ class Bed:
 
     @cached_property
     def column(self) -> Left:
-        """What is left of the whole column, its cells in series (equations.md, 85)."""
+        """What is left of the whole column, its cells in series (equations.md, 86)."""
         return self._told(partial(self._series, self.laws))
 
     @cached_property

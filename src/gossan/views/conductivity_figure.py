@@ -16,7 +16,7 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-LEAST_DRAWN, OFF_THE_PAGE = 1e-4, 1e-9  # of the conductivity: where the axis ends, and what nothing is drawn as
+LEAST_DRAWN, OFF_THE_PAGE = 1e-4, 1e-9  # of the conductivity: where the axis ends; what nothing is drawn as
 
 
 def is_worth_a_figure(result: Result) -> bool:
