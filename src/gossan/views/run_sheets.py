@@ -11,6 +11,7 @@ from gossan.views.sheet import Sheet
 from gossan.views.summary import Stock, Summary
 
 MOST_FILLERS = 3
+NARROW = 0.95  # of its conductivity: a cell that keeps more is no bottleneck
 SAME = 1e-3  # heads that stay within this share are told once, as the start and the end
 
 
@@ -86,7 +87,7 @@ def _bed(summary: Summary) -> Sheet:
     else:
         place = f"in layer {found.layer}, x = {found.at:.4g} m"
         rows.append(("least conductivity", f"{_percent(found.fraction)} % of the start, {place}"))
-        if found.filled_by:
+        if found.filled_by and found.fraction < NARROW:
             rows.append(("what grew there", _shares(found.filled_by)))
     if bed.in_series:
         rows.append(("of the whole column", f"{_percent(bed.column.last)} % of the start at the end"))
@@ -105,8 +106,8 @@ def _matters(found: HeadLoss) -> bool:
 
 
 def _shares(shares: dict[str, float]) -> str:
-    told = [f"{name} ({100.0 * share:.3g} %)" for name, share in list(shares.items())[:MOST_FILLERS]]
-    return ", ".join(told) + " of the volume that grew" if len(shares) > 1 else next(iter(shares))
+    told = [f"{name} {100.0 * share:.3g} %" for name, share in list(shares.items())[:MOST_FILLERS]]
+    return ", ".join(told) + ", by volume" if len(shares) > 1 else next(iter(shares))
 
 
 def _percent(fraction: float) -> str:
