@@ -60,7 +60,7 @@ def run(args: argparse.Namespace) -> int:
 
 
 def _constants(args: argparse.Namespace, table: Table, temperature: float | None) -> int:
-    from gossan.constants.find import UnknownName, find, find_interaction
+    from gossan.constants.find import UnknownName, find, find_pair
     from gossan.views import constants_sheets as views
 
     if args.name is None:
@@ -68,20 +68,13 @@ def _constants(args: argparse.Namespace, table: Table, temperature: float | None
             groups = (table.components, table.species, table.minerals, table.gases)
             entries = [each for group in groups for each in group.values()]
             listed = [views.entry_json(each, table, temperature) for each in entries]
-            listed += [views.interaction_json(each, table) for each in table.interactions.values()]
+            listed += [views.entry_json(each, table) for each in table.interactions.values()]
             shell.print_json(listed)
         else:
             shell.print_sheets(views.list_sheets(table))
         return DONE
     try:
-        if "/" in args.name:
-            pair = find_interaction(table, args.name)
-            if args.json:
-                shell.print_json([views.interaction_json(pair, table)])
-            else:
-                shell.print_sheets([views.interactions_sheet([pair], table)])
-            return DONE
-        found = find(table, args.name)
+        found = (find_pair(table, args.name),) if "/" in args.name else find(table, args.name)
     except UnknownName as unknown:
         raise GossanError(str(unknown)) from None
     if args.json:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from typing import Any
 
+from gossan.constants.couples import PROTON
 from gossan.constants.entries import (
     Alternative,
     Component,
@@ -63,8 +64,13 @@ def interactions_sheet(interactions: Iterable[Interaction], table: Table) -> She
     return Sheet("Interactions of ions", heads, rows, wraps=True, note="25 degC, for activity = \"sit\"")
 
 
-def entry_sheets(entry: Entry, table: Table, temperature: float | None = None) -> Iterator[Sheet]:
+def entry_sheets(
+    entry: Entry | Interaction, table: Table, temperature: float | None = None
+) -> Iterator[Sheet]:
     """All that is known of one entry; its log10 K also at a temperature (K) that is asked for."""
+    if isinstance(entry, Interaction):
+        yield interactions_sheet([entry], table)
+        return
     yield Sheet(f"{entry.name}, {kind_of(entry)}", ("", ""), tuple(_facts(entry, table)), left=2, wraps=True)
     if constant_of(entry):
         shown = sorted({*(celsius + KELVIN for celsius in SHOWN_AT), temperature or REFERENCE})
@@ -74,9 +80,22 @@ def entry_sheets(entry: Entry, table: Table, temperature: float | None = None) -
     if entry.alternatives:
         others = tuple(_alternative(other, table) for other in entry.alternatives)
         yield Sheet("Published values not chosen", ("value", "status", "source"), others, 0, True)
+    if isinstance(entry, Component):
+        yield from _holding(entry, table)
     paired = [each for pair, each in table.interactions.items() if entry.name in pair]
     if paired and isinstance(entry, (Component, Species)):
         yield interactions_sheet(paired, table)
+
+
+def _holding(component: Component, table: Table) -> Iterator[Sheet]:
+    """What else the table has of a component."""
+    rows = []
+    for kind, group in (("species", table.species), ("minerals", table.minerals), ("gases", table.gases)):
+        names = [entry.name for entry in group.values() if component.name in entry.reaction.components]
+        if names:
+            rows.append((kind, ", ".join(names)))
+    if rows and component.name != PROTON:
+        yield Sheet(f"Made with {component.name}", ("", ""), tuple(rows), left=1, wraps=True)
 
 
 def _alternative(other: Alternative, table: Table) -> tuple[str, str, str]:
@@ -173,7 +192,7 @@ def _seen(known: Constant | Alternative) -> str:
     return "from memory" if known.from_memory else "seen"
 
 
-def interaction_json(interaction: Interaction, table: Table) -> dict[str, Any]:
+def _interaction_json(interaction: Interaction, table: Table) -> dict[str, Any]:
     """One interaction coefficient as data, kg/mol at 25 degC."""
     found = interaction.coefficient
     return {
@@ -187,8 +206,12 @@ def interaction_json(interaction: Interaction, table: Table) -> dict[str, Any]:
     }
 
 
-def entry_json(entry: Entry, table: Table, temperature: float | None = None) -> dict[str, Any]:
+def entry_json(
+    entry: Entry | Interaction, table: Table, temperature: float | None = None
+) -> dict[str, Any]:
     """One entry as data: log10 K at 25 degC and by temperature (K), uncertainty, source, status."""
+    if isinstance(entry, Interaction):
+        return _interaction_json(entry, table)
     constant, valid = constant_of(entry), valid_of(entry)
     shown = sorted({*(celsius + KELVIN for celsius in SHOWN_AT), temperature or REFERENCE})
     reaction = entry.half_reaction if isinstance(entry, Component) else entry.reaction
