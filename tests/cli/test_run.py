@@ -29,8 +29,8 @@ def test_json_is_what_the_contract_says(case_file, capsys):
     code, found = run_json(capsys, str(case_file), "-o", str(out))
     assert code == 0
     assert set(found) == {
-        "status", "reason", "ports", "conductivity", "warnings", "ledger_error", "splitting_error", "steps",
-        "seconds", "file",
+        "status", "reason", "ports", "conductivity", "head_loss", "capacity", "warnings", "ledger_error",
+        "splitting_error", "steps", "seconds", "file",
     }  # fmt: skip
     assert (found["status"], found["reason"], found["file"]) == ("finished", None, str(out))
     outlet = found["ports"]["outlet"]

@@ -271,11 +271,12 @@ def test_breakthrough_of_a_finite_column(peclet):
 
 
 @pytest.mark.parametrize(
-    ("velocity", "rate", "falls", "dispersivity", "thickness"),
-    [(0.3, 1.0, 100, 0.05, 1.5826), (0.3, 1.0, 100, 0.1, 1.7460), (0.6, 1.0, 100, 0.1, 3.1651),
-     (0.3, 0.5, 500, 0.1, 4.2713)],
+    ("velocity", "rate", "falls", "dispersivity", "thickness", "residence"),
+    [(0.3, 1.0, 100, 0.0, 1.3816, 4.605), (0.3, 1.0, 100, 0.05, 1.5826, 5.275),
+     (0.3, 1.0, 100, 0.1, 1.7460, 5.820), (0.6, 1.0, 100, 0.1, 3.1651, 5.275),
+     (0.3, 0.5, 500, 0.1, 4.2713, 14.238)],
 )  # fmt: skip
-def test_thickness_that_holds_a_first_order_limit(velocity, rate, falls, dispersivity, thickness):
+def test_thickness_that_holds_a_first_order_limit(velocity, rate, falls, dispersivity, thickness, residence):
     """Where C = C0/100: C/C0 = exp(x v/(2 D) (1 - sqrt(1 + 4 k D/v^2))), held inlet, no end."""
     length = 1.6 * thickness
     found = profiles([Solute(rate=rate)], velocity=velocity, dispersivity=dispersivity, length=length,
@@ -283,7 +284,9 @@ def test_thickness_that_holds_a_first_order_limit(velocity, rate, falls, dispers
     state = found.walk.last
     values = np.log(state.dissolved[found.walk.problem.solutes.index("a")] * falls)
     centres = found.walk.problem.grid.centres
-    assert float(np.interp(0.0, -values, centres)) == pytest.approx(thickness, rel=1e-3)
+    found_at = float(np.interp(0.0, -values, centres))
+    assert found_at == pytest.approx(thickness, rel=1e-3)
+    assert found_at / velocity == pytest.approx(residence, rel=1e-3)
 
 
 def test_porosity_is_what_the_tables_take():
