@@ -43,7 +43,8 @@ def test_what_solids_free_of_water_is_no_fault_of_the_solve():
 
 
 def test_immobile_water_is_certified_too():
-    beside = 'immobile = {fraction = 0.3, transfer = "1e-6 1/s"}\nsorption.Ca = {law = "linear", kd = "1 L/kg"}'
+    beside = 'immobile = {fraction = 0.3, transfer = "1e-6 1/s"}\n'
+    beside += 'sorption.Ca = {law = "linear", kd = "1 L/kg"}'
     text = column(WATERS, minerals='calcite = "0.1 wt%"', duration="0.5 PV", cells=8, layer=beside)
     done = walk(text)
     assert done.last.still is not None
