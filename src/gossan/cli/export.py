@@ -11,7 +11,7 @@ from pathlib import Path
 from gossan.base.errors import DONE, ResultError
 from gossan.cli import shell
 
-WHAT = ("ports", "profiles", "ledger", "limits")
+WHAT = ("ports", "profiles", "ledger", "limits", "bed")
 LAYOUT = """\
 ports     a row per port and record: time, pore volumes, Darcy flux, pH, then
           `dissolved Zn^2+ (mol m-3)` (flux-averaged), `resident ...`, `passed ...`
@@ -20,6 +20,8 @@ profiles  in long form, a row per frame and cell: time, x, layer, then all that
           `activity ...` (log10), porosity, conductivity, pH, ionic strength
 ledger    a row per record: entered, left, stored, made and error of every solute
 limits    a row per limit: when it was first exceeded, the last and the worst value
+bed       a row per frame: loss of head over each layer and the column, conductivity
+          left of the first to fall of all cells and of the column, also by other laws
 
 Units stand in the heads, decimals have a point, times are in s; a field is empty
 where there is nothing to say."""
