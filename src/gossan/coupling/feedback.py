@@ -10,7 +10,6 @@ from gossan.base.errors import SolveError
 from gossan.coupling.attempt import Trial, attempt
 from gossan.coupling.drive import Drive
 from gossan.coupling.splitting import AT_REST, Turn
-from gossan.transport.faces import faces_of
 
 ROUNDS = 30  # where pores change by one per cent each round leaves about a hundredth of the last one's change
 
@@ -18,7 +17,7 @@ ROUNDS = 30  # where pores change by one per cent each round leaves about a hund
 def fed_back(drive: Drive, turn: Turn, trial: Trial) -> tuple[Turn, Trial, np.ndarray]:
     """Try a step anew with the flow, and the conductances, of the middle of the step that it leads to.
 
-    Water then leaves as solids push it out in this very step, not as they did in the last (equations.md, 84).
+    Water then leaves as solids push it out in this very step, not as they did in the last (equations.md, 92).
     Returns  turn, trial and head (face,) m once the water of no cell changes any more
     Raises   SolveError where it goes on to change, or a cell finds no equilibrium
     """
@@ -30,8 +29,9 @@ def fed_back(drive: Drive, turn: Turn, trial: Trial) -> tuple[Turn, Trial, np.nd
             still = replace(still, swelling=after.still.swelling)
         begun = replace(state, swelling=after.swelling, still=still)
         middle = 0.5 * (problem.water(state) + problem.water(after))
-        darcy_flux, head = replace(drive, state=begun).flow(dt, dt if drive.ramps else 0.0, middle)
-        faces = faces_of(problem.transport, 0.5 * (state.water + after.water), darcy_flux)
+        span = dt if drive.ramps else 0.0
+        darcy_flux, head = replace(drive, state=begun).flow(dt, span, middle)
+        faces = drive.faces(darcy_flux, span, 0.5 * (state.water + after.water))
         turn = replace(turn, state=begun, faces=faces)
         again = attempt(turn)
         change = np.abs(again.state.water - after.water) / state.water
