@@ -124,8 +124,7 @@ def strang(turn: Turn) -> Taken:
         ahead = resting, half
         begun = resting.after(half)
     if problem.decay is not None:
-        of_half = problem.decay.over(0.5 * dt)
-        kept = replace(of_half, first=of_half.whole, late=of_half.early)  # all has arrived before it decays
+        kept = problem.decay.over(0.5 * dt).arrived()
     waters = Waters(problem, turn.solver, begun, turn.faces.darcy_flux, dt, 0.5 * dt, kept)
     first = passages(turn.faces, begun.dissolved, turn.inflow, dt, turn.theta)
     alone = (waters.amount + net(first.passed) / problem.grid.width) / waters.water

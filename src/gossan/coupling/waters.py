@@ -7,7 +7,7 @@ from typing import Any
 
 import numpy as np
 
-from gossan.chemistry.decay import Kept
+from gossan.chemistry.decay import KeptByCell
 from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.coupling.landing import Landed, land
 from gossan.coupling.pores import squeezed
@@ -34,7 +34,7 @@ class Waters:
 
     def __init__(
         self, problem: Problem, solver: Solver, state: State, darcy_flux: np.ndarray, dt: float,
-        rates: float | None = None, kept: Kept | None = None,
+        rates: float | None = None, kept: KeptByCell | None = None,
     ):  # fmt: skip
         """Take up the waters of a state.
 
