@@ -14,6 +14,7 @@ from gossan.coupling.splitting import SCHEMES, Taken, Turn
 from gossan.coupling.state import State
 from gossan.transport.faces import faces_of
 
+ROUNDING = 1e-12  # of the most there is of any solute
 INSTANT = 1e-9  # s: while nothing flows and this goes by, no solute gets anywhere
 
 
@@ -94,7 +95,8 @@ def _pore_change(turn: Turn, after: State) -> float:
 def scale_of(problem: Problem, state: State, inflow: np.ndarray) -> np.ndarray:
     """(solute,) mol m-2: what an error is measured against, the most that was ever there to be wrong.
 
-    What can decay into a solute counts with it.
+    What can decay into a solute counts with it. What is rounding beside the other solutes, such as the excess
+    of H+ in salts of strong acids and bases, counts no less than that rounding.
     """
     came = np.abs(state.passed[0, :, 0]) + np.maximum(-state.passed[1, :, 0], 0.0)  # and back, by diffusion
     near = np.abs(inflow) + np.abs(problem.transport.beyond[0])
@@ -102,7 +104,7 @@ def scale_of(problem: Problem, state: State, inflow: np.ndarray) -> np.ndarray:
     if problem.decay is not None:
         members = problem.decay.solutes
         scale[members] += problem.decay.descent @ scale[members]
-    return scale
+    return np.maximum(scale, ROUNDING * scale.max(initial=0.0))
 
 
 def relative(difference: np.ndarray, scale: np.ndarray) -> float:

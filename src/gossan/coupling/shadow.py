@@ -97,7 +97,7 @@ def _walked(shadow: Shadow, stride: Stride, solvers: Solvers, turning: bool) -> 
         jump = stride.jump
         state = settled_anew(replace(jump, state=state, solver=solvers.of(jump.problem)))
     turn = replace(turn, state=state, solver=solvers.of(turn.problem))
-    if not turning:
+    if not turning and turn.theta is None:
         try:
             return _carried(turn, stride.trial.taken, _missed(shadow, stride))
         except SolveError:
