@@ -18,18 +18,20 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
+from gossan.chemistry.certificate import Certificate
 from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation, pe_of
 from gossan.coupling.beyond import Beyond, watched
+from gossan.coupling.certify import certify_state, diluted_since
 from gossan.coupling.drive import Drive, pore_volumes, settled
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Clogged, Stride, march
 from gossan.coupling.pace import Pace
 from gossan.coupling.pores import conductivity
 from gossan.coupling.problem import Port, Problem
-from gossan.coupling.state import State, state_of
+from gossan.coupling.state import State, StillWater, state_of
 from gossan.store.file import Axes
 from gossan.store.read import Result, open_result
-from gossan.store.write import ResultWriter
+from gossan.store.write import ResultWriter, last_parts
 from gossan.transport.faces import Faces
 from gossan.transport.step import passages
 
@@ -95,6 +97,36 @@ def case_of(result: Result) -> Case:
     return case_from_text(
         result.case, str(result.path), constants=result.constants or None, files=result.files
     )
+
+
+@dataclass(frozen=True)
+class Certified:
+    """The certificates of one of a column's waters at its last checkpoint."""
+
+    water: str  # "flowing" or "immobile"
+    time: float  # s
+    cells: np.ndarray  # (water's cell,) int: which cells of the column
+    certificate: Certificate
+    diluted: np.ndarray  # (water's cell,) relative: by water that solids freed or bound after the solve
+
+
+def certified(result: Result) -> list[Certified]:
+    """How well every cell at a result's last checkpoint meets its equations, worked out with 32 digits.
+
+    Raises   ResultError where the file has no whole checkpoint
+    """
+    problem = build(case_of(result))
+    state = state_of(last_parts(result.path)["state"])
+    moment = settled(problem, state)
+    waters: list[tuple[str, State | StillWater, np.ndarray]] = [
+        ("flowing", state, np.arange(len(state.water)))
+    ]
+    if state.still is not None and problem.stagnant is not None:
+        waters.append(("immobile", state.still, problem.stagnant.cells))
+    return [
+        Certified(name, state.time, cells, certify_state(moment, water), diluted_since(moment, water))
+        for name, water, cells in waters
+    ]
 
 
 def run(case: Case, out: str | Path | None = None, progress: bool = False, overwrite: bool = False) -> Result:

@@ -6,7 +6,7 @@ import math
 from collections.abc import Callable, Iterator
 from typing import Any
 
-from gossan.recording import case_of
+from gossan.recording import case_of, certified
 from gossan.store.layout import variable, variables
 from gossan.store.read import Group, Result
 from gossan.views.limits import bounds_of, verdicts
@@ -57,8 +57,26 @@ def limit_rows(result: Result) -> Iterator[Row]:
                    verdict.first_exceeded, verdict.pore_volumes, verdict.error, verdict.last, verdict.peak]
 
 
+def certificate_rows(result: Result) -> Iterator[Row]:
+    """Every cell's certificate at the last checkpoint: residuals in doubled precision and errors of ln a."""
+    for index, found in enumerate(certified(result)):
+        judged = found.certificate
+        system = judged.system
+        named = system.species[: len(judged.ln_activity)]
+        if index == 0:
+            yield [variable("profiles", "time").header, variable("profiles", "x").header, "layer", "water",
+                   "ionic_strength", "minerals present", "minerals absent", "minerals full", "diluted since",
+                   *(f"balance {name}" for name in system.components),
+                   *(f"ln_activity {name}" for name in named)]
+        for i, cell in enumerate(found.cells):
+            yield [found.time, result.axes.x[cell], result.axes.layer[cell], found.water,
+                   judged.ionic_strength[i], judged.present[i], judged.absent[i], judged.full[i],
+                   found.diluted[i], *judged.balance[:, i], *judged.ln_activity[:, i]]
+
+
 WHAT: dict[str, Callable[[Result], Iterator[Row]]] = {
     "ports": port_rows, "profiles": profile_rows, "ledger": ledger_rows, "limits": limit_rows,
+    "certificate": certificate_rows,
 }  # fmt: skip
 
 
