@@ -200,6 +200,18 @@ log10_k = {value = 0.4, sd = 0.2, source = "judgement"}
     assert ":3: species.ZnNO3^+.reaction is not balanced" in capsys.readouterr().err
 
 
+def test_doubts_are_told_in_words(capsys):
+    """Sources by their authors, not by keys of the table; what an enthalpy is known to."""
+    assert main(["constants", "HSO4-"]) == 0
+    printed = " ".join(capsys.readouterr().out.split())
+    assert "enthalpy 16.1 ± 3.2 kJ/mol" in printed
+    assert "22.4 kJ/mol from the formation enthalpies of Cox, Wagman & Medvedev (1989)" in printed
+    assert main(["constants", "NO2-"]) == 0
+    printed = capsys.readouterr().out
+    assert "the redox table of Stumm & Morgan (1996) and" in printed
+    assert "stumm1996" not in printed
+
+
 def test_solubility_of_the_solids_of_a_metal(capsys):
     asked = ["constants", "Zn", "--solubility", "--sulfide", "0.033 g/L", "--with", "SO4=10 mmol/L"]
     assert main(asked) == 0

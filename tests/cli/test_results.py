@@ -53,6 +53,14 @@ def test_limit_rows_hold_one_limit_each(finished, capsys):
     assert rows[2]["first exceeded (s)"] == ""
 
 
+def test_bed_rows_hold_heads_and_what_is_left(finished, capsys):
+    rows = rows_of(capsys, finished, "bed")
+    head = open_result(finished).profiles.head.values
+    assert [float(row["head loss of the column (m)"]) for row in rows] == head[:, 0].tolist()
+    assert rows[0]["head loss of sand (m)"] == rows[0]["head loss of the column (m)"]
+    assert float(rows[0]["left of the column"]) == 1.0 == float(rows[0]["left by power 8"])
+
+
 def test_certificate_rows_judge_every_cell_of_the_last_state(finished, capsys):
     rows = rows_of(capsys, finished, "certificate")
     profiles = open_result(finished).profiles

@@ -11,7 +11,7 @@ from tests.support.salts import Salt, water, write_salts
 
 from gossan.coupling.drive import Drive
 from gossan.coupling.march import Clogged, Stride, march
-from gossan.coupling.pores import LANDING, flow, pore_space, share_to_close
+from gossan.coupling.pores import LANDING, flow, pore_room, pore_space, share_to_close
 from gossan.coupling.problem import CLOGGED, Problem
 
 FLUX, HEAD = 'darcy_flux = "8 cm/d"', 'head_drop = "5 cm"\ninlet = "concentration"'
@@ -59,6 +59,18 @@ def test_a_held_flux_ends_on_the_closing_of_a_pore(tmp_path, law, closes_at):
     assert (room[:-1] > LANDING).all()
     assert (clogged.cell, clogged.time) == (0, strides[-1].state.time)
     assert np.isfinite(strides[-1].head).all()
+
+
+def test_immobile_pores_close_as_well(tmp_path):
+    """Whichever of the two waters loses its room first ends the run, and neither has less than none."""
+    law = '{law = "kozeny-carman"}\nimmobile = {fraction = 0.3, transfer = "1e-5 1/s"}'
+    problem = closing(tmp_path, FLUX, law)
+    strides, clogged = walked(problem)
+    assert clogged is not None
+    push = Drive(problem, problem.initial).push
+    room = np.array([pore_room(problem, stride.state, push) for stride in strides])
+    assert room.min() >= 0.0
+    assert 0.0 <= room[-1].min() <= LANDING < room[:-1].min()
 
 
 def test_a_step_is_cut_by_straight_lines():

@@ -9,7 +9,8 @@ from tests.support.salts import Salt, water, write_salts
 
 import gossan
 from gossan.transport.clogging import Clogging
-from gossan.views.bed import CRITICAL_SHARE, Bed, head_loss_of
+from gossan.views.bed import CRITICAL_SHARE, SPOKEN, Bed, head_loss_of
+from gossan.views.figures import all_figures
 from gossan.views.run_sheets import run_sheets
 from gossan.views.summary import run_json, summary_of
 
@@ -134,6 +135,13 @@ def test_machines_are_told_the_same(clogged):
     heads = told["head_loss"]
     assert heads["time_s"][-1] == summary.time
     assert heads["whole_m"][-1] == pytest.approx(heads["layers_m"]["bed"][-1] + heads["layers_m"]["salt"][-1])
+
+
+def test_the_figure_shows_every_law_and_every_layer(clogged):
+    figure = dict(all_figures(clogged))["conductivity"]
+    names = {text.get_text() for ax in figure.axes for text in ax.get_legend().get_texts()}
+    assert {"as the case says", *SPOKEN.values()} | {"layer bed", "layer salt", "whole column"} == names
+    assert [ax.get_yscale() for ax in figure.axes] == ["log", "log"]
 
 
 def test_people_are_told_the_same(clogged):

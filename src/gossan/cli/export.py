@@ -12,7 +12,7 @@ from gossan.base.errors import DONE, ResultError
 from gossan.cli import shell
 from gossan.cli.compiling import announce_compiling
 
-WHAT = ("ports", "profiles", "ledger", "limits", "certificate")
+WHAT = ("ports", "profiles", "ledger", "limits", "bed", "certificate")
 LAYOUT = """\
 ports     a row per port and record: time, pore volumes, Darcy flux, pH, then
           `dissolved Zn^2+ (mol m-3)` (flux-averaged), `resident ...`, `passed ...`
@@ -21,6 +21,8 @@ profiles  in long form, a row per frame and cell: time, x, layer, then all that
           `activity ...` (log10), porosity, conductivity, pH, ionic strength
 ledger    a row per record: entered, left, stored, made and error of every solute
 limits    a row per limit: when it was first exceeded, the last and the worst value
+bed       a row per frame: loss of head over each layer and the column, conductivity
+          left of the first to fall of all cells and of the column, also by other laws
 certificate
           a row per cell at the last checkpoint: what its equilibrium misses its
           equations by, worked out anew with 32 digits: `balance ...` as a share of

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable, Iterator
 from typing import Any
 
@@ -57,7 +58,7 @@ def interactions_sheet(interactions: Iterable[Interaction], table: Table) -> She
     """Interaction coefficients of ions."""
     rows = tuple(
         (each.name, f"{each.coefficient.value:g}", _sd(each.coefficient), _seen(each.coefficient),
-         _with_note(each.coefficient.note, table.sources[each.coefficient.source]))
+         _with_note(each.coefficient.note, each.coefficient.source, table))
         for each in interactions
     )  # fmt: skip
     heads = ("ions", "kg/mol", "sd", "status", "source")
@@ -99,7 +100,7 @@ def _holding(component: Component, table: Table) -> Iterator[Sheet]:
 
 
 def _alternative(other: Alternative, table: Table) -> tuple[str, str, str]:
-    return f"{other.value:g}", _seen(other), _with_note(other.note, table.sources[other.source])
+    return f"{other.value:g}", _seen(other), _with_note(other.note, other.source, table)
 
 
 def constant_of(entry: Entry) -> Constant | None:
@@ -116,8 +117,19 @@ def _range(valid: tuple[float, float] | None) -> str:
     return f"{valid[0] - KELVIN:.4g} to {valid[1] - KELVIN:.4g}" if valid else "-"
 
 
-def _with_note(note: str, source: str) -> str:
-    return f"{note}; {source}" if note else source
+def _cited(note: str, table: Table) -> str:
+    """A note in which keys of sources have become authors and years."""
+
+    def author(key: re.Match[str]) -> str:
+        source = table.sources.get(key[0], "")
+        return source.partition(")")[0] + ")" if re.match(r"[^(]*\(\d{4}\)", source) else key[0]
+
+    return re.sub(r"\b[a-z_]+\d{4}[a-z]?\b", author, note)
+
+
+def _with_note(note: str, key: str, table: Table) -> str:
+    source = table.sources[key]
+    return f"{_cited(note, table)}; {source}" if note else source
 
 
 def _reading(entry: Entry) -> str:
@@ -146,13 +158,13 @@ def _facts(entry: Entry, table: Table) -> Iterator[tuple[str, str]]:
         yield "source", table.sources[constant.source]
         yield "status", _status(constant)
         if constant.note:
-            yield "of the constant", constant.note
+            yield "of the constant", _cited(constant.note, table)
         yield "temperature", _temperature(entry, table)
         yield "valid", f"{_range(valid_of(entry))} degC"
     for what, found, factor, unit in _measures(entry):
         yield what, f"{found.value * factor:.4g} {unit}; {table.sources[found.source]}; {_status(found)}"
     if entry.note:
-        yield "note", entry.note
+        yield "note", _cited(entry.note, table)
 
 
 def _measures(entry: Entry) -> Iterator[tuple[str, Constant, float, str]]:
@@ -170,8 +182,9 @@ def _temperature(entry: Entry, table: Table) -> str:
     fit = entry.half_fit if isinstance(entry, Component) else entry.fit
     if not enthalpy:
         return "no enthalpy is known of the reaction above: its value at 25 degC is used throughout"
-    said = f"enthalpy {enthalpy.value / 1e3:.4g} kJ/mol of the reaction above"
-    said += f"; {table.sources[enthalpy.source]}; {_status(enthalpy)}"
+    sd = f" ± {enthalpy.sd / 1e3:.2g}" if enthalpy.sd is not None else ""
+    said = f"enthalpy {enthalpy.value / 1e3:.4g}{sd} kJ/mol of the reaction above; "
+    said += f"{_with_note(enthalpy.note, enthalpy.source, table)}; {_status(enthalpy)}"
     curved = fit and (fit.linear or fit.log10 or fit.inverse_square)
     return f"{said}. The constant follows an equation; this is its slope at 25 degC" if curved else said
 

@@ -9,6 +9,7 @@ from typing import Any
 from gossan.recording import case_of, certified
 from gossan.store.layout import variable, variables
 from gossan.store.read import Group, Result
+from gossan.views.bed import bed_of, head_loss_of
 from gossan.views.limits import bounds_of, verdicts
 
 Row = list[Any]
@@ -57,6 +58,23 @@ def limit_rows(result: Result) -> Iterator[Row]:
                    verdict.first_exceeded, verdict.pore_volumes, verdict.error, verdict.last, verdict.peak]
 
 
+def bed_rows(result: Result) -> Iterator[Row]:
+    """Loss of head and what is left of the conductivity at every frame, as shares of that at the start."""
+    bed, heads = bed_of(result, case_of(result)), head_loss_of(result)
+    columns: list[tuple[str, Any]] = [(variable("profiles", "time").header, bed.time)]
+    if heads:
+        columns += [(f"head loss of {name} (m)", heads.loss[:, i]) for i, name in enumerate(heads.layers)]
+        columns.append(("head loss of the column (m)", heads.whole))
+    if bed.known:
+        columns.append(("left of the least cell", bed.least_cell.through_time))
+    if bed.in_series:
+        columns.append(("left of the column", bed.column.through_time))
+        columns += [(f"left by {name}", left.through_time) for name, left in bed.band.items()]
+    yield [head for head, _ in columns]
+    for frame in range(len(bed.time)):
+        yield [values[frame] for _, values in columns]
+
+
 def certificate_rows(result: Result) -> Iterator[Row]:
     """Every cell's certificate at the last checkpoint: residuals in doubled precision and errors of ln a."""
     for index, found in enumerate(certified(result)):
@@ -76,6 +94,7 @@ def certificate_rows(result: Result) -> Iterator[Row]:
 
 WHAT: dict[str, Callable[[Result], Iterator[Row]]] = {
     "ports": port_rows, "profiles": profile_rows, "ledger": ledger_rows, "limits": limit_rows,
+    "bed": bed_rows,
     "certificate": certificate_rows,
 }  # fmt: skip
 
