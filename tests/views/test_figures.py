@@ -124,6 +124,7 @@ def test_drawing_leaves_the_settings_of_matplotlib_alone(result):
 def test_a_run_that_has_only_begun_can_be_drawn(result, tmp_path):
     """One frame, one record, no steps."""
     from gossan.case.build import build, first_pace
+    from gossan.coupling.shadow import shadow_of
     from gossan.observing import axes_of
     from gossan.recording import CAUTION, _Run
     from gossan.store.read import open_result
@@ -131,8 +132,11 @@ def test_a_run_that_has_only_begun_can_be_drawn(result, tmp_path):
 
     case = case_from_text(GYPSUM)
     problem = build(case)
-    with ResultWriter(tmp_path / "begun.h5", axes_of(problem), case.title, case.text, CAUTION) as writer:
-        run = _Run(problem, writer, None, None)
+    shadow = shadow_of(problem, problem.initial)
+    with (
+        ResultWriter(tmp_path / "begun.h5", axes_of(problem), case.title, case.text, CAUTION) as writer,
+        _Run(problem, writer, None, shadow) as run,
+    ):
         run.frame(problem.initial)
         run.records(problem.initial)
         writer.checkpoint({"state": problem.initial, "pace": first_pace(problem)})

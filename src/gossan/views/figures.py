@@ -34,7 +34,7 @@ def all_figures(
     yield "dissolved", dissolved_profiles(result, bounds, masses)
     if chosen.minerals(result):
         yield "minerals", solid_profiles(result)
-    if result.axes.parts:
+    if result.axes.parts & {"isotherms", "immobile"}:
         yield "retention", retained_profiles(result, bounds, masses)
     yield "pores", pores(result)
     if is_worth_a_figure(result):
