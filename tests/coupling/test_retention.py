@@ -97,6 +97,18 @@ def test_two_stage_is_second_order_in_time(name, theta):
     assert errors[-1] < 5e-5 * np.abs(exact).max()
 
 
+@pytest.mark.parametrize(("name", "coupling"), [
+    ("decay", "strang"), ("chain", "strang"), ("exchange", "strang"), ("all", "iterated"),
+])  # fmt: skip
+def test_other_schemes_are_second_order_where_rates_are_slow(name, coupling):
+    """Explicit: rates of 1 to 8 per day against steps of 1 to 4 minutes."""
+    problem, state = smooth(name, coupling)
+    exact = marched(problem, state, 3 * EXACT, None)
+    errors = [float(np.abs(marched(problem, state, 3 * n, None) - exact).max()) for n in STEPS]
+    assert observed_order(STEPS, errors) >= 1.8
+    assert errors[-1] < 5e-5 * np.abs(exact).max()
+
+
 def test_an_endless_transfer_is_no_immobile_water():
     """The same bits of physics: one water of the whole porosity, to the rounding of the exchange."""
     case = {"velocity": 1.0, "dispersivity": 0.02, "length": 1.0, "cells": 50, "days": 0.8}
@@ -166,7 +178,7 @@ def columns(draw) -> str:
         days=3.0, every=0.5, inlet=draw(st.sampled_from(["flux", "concentration"])),
         pulse=draw(st.sampled_from([None, 1.2])),
         immobile=immobile, accuracy=draw(st.sampled_from([1e-3, 0.5])),
-        coupling=draw(st.sampled_from(["two-stage", "lie"])),
+        coupling=draw(st.sampled_from(["two-stage", "lie", "strang", "iterated"])),
     )  # fmt: skip
 
 

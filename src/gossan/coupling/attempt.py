@@ -31,7 +31,7 @@ class Trial:
 
 
 def attempt(turn: Turn) -> Trial:
-    """March one step by the scheme of its problem.
+    """March one step by the scheme of its problem, and estimate its error (equations.md, 37).
 
     Raises   SolveError where a cell finds no equilibrium, or the scheme no agreement
     """

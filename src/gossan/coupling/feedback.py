@@ -17,7 +17,7 @@ ROUNDS = 30  # where pores change by one per cent each round leaves about a hund
 def fed_back(drive: Drive, turn: Turn, trial: Trial) -> tuple[Turn, Trial, np.ndarray]:
     """Try a step anew with the flow, and the conductances, of the middle of the step that it leads to.
 
-    Water then leaves as solids push it out in this very step, not as they did in the last (equations.md, 92).
+    Water then leaves as solids push it out in this very step, not as they did in the last (equations.md, 89).
     Returns  turn, trial and head (face,) m once the water of no cell changes any more
     Raises   SolveError where it goes on to change, or a cell finds no equilibrium
     """

@@ -1,6 +1,6 @@
 """A second column beside the first that carries on what each step has missed.
 
-How far the two are apart is the error of the first in time and splitting (equations.md, 93).
+How far the two are apart is the error of the first in time and splitting (equations.md, 90).
 """
 
 from __future__ import annotations
@@ -110,7 +110,7 @@ def _walked(shadow: Shadow, stride: Stride, solvers: Solvers, turning: bool) -> 
 
 
 def _missed(shadow: Shadow, stride: Stride) -> np.ndarray:
-    """(solute, face) mol m-2 that passed too little in the column's step (equations.md, 93)."""
+    """(solute, face) mol m-2 that passed too little in the column's step (equations.md, 90)."""
     scheme, missed = SCHEMES[stride.turn.problem.coupling], stride.trial.taken.missed
     if scheme.order == 2:
         missed = missed - (stride.trial.dt / shadow.dt) ** 2 * shadow.missed

@@ -95,7 +95,7 @@ def two_stage(turn: Turn) -> Taken:
 
 
 def iterated(turn: Turn) -> Taken:
-    """The same until both ends agree: transport and reactions are not split at all (equations.md, 90).
+    """The same until both ends agree: transport and reactions are not split at all (equations.md, 87).
 
     Raises   SolveError where they come to no agreement
     """
@@ -114,7 +114,7 @@ def iterated(turn: Turn) -> Taken:
 
 
 def strang(turn: Turn) -> Taken:
-    """Rates for half the step, transport alone, rates for the other half, equilibrium (equations.md, 91)."""
+    """Rates for half the step, transport alone, rates for the other half, equilibrium (equations.md, 88)."""
     problem, state, dt = turn.problem, turn.state, turn.dt
     plain = turn.first(turn.waters())
     ahead, begun, kept = None, state, None
@@ -153,7 +153,7 @@ class Scheme:
     share    of the difference between orders one and two: what an explicit step is taken to err by
     order    in time where nothing is sharp
     missed   what passes too little in a step: so much of that difference, or where the order is the second of
-             how it changes from step to step (equations.md, 93)
+             how it changes from step to step (equations.md, 90)
     """
 
     take: Callable[[Turn], Taken]

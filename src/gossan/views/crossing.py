@@ -42,7 +42,7 @@ def first_outside(
 def error_of_steps(
     time: np.ndarray, values: np.ndarray, errors: np.ndarray, low: float, high: float, when: float
 ) -> float:
-    """By how much when, s, may be off because of what the steps missed, s (equations.md, 93).
+    """By how much when, s, may be off because of what the steps missed, s (equations.md, 90).
 
     errors  (record,) of the values, with their signs
     Returns SURE times how much later or earlier the values less their errors leave the range; inf where they
