@@ -142,5 +142,6 @@ def mark(drop, add, solid, presence, bench):
     if drop >= 0:
         presence[drop] = 0 if solid[drop] + bench.gained[drop] < 0.0 else 2
     if add >= 0:
+        bench.exit[1] = presence[add]
         presence[add] = 1
     return add
