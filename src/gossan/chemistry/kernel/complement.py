@@ -114,15 +114,15 @@ def take_back(bench, free, shrink):
 
 
 @kernel(inner=True, forceinline=True)
-def risen_strength(ionic_strength, rise):
-    """The ionic strength after a step, at most five times more or less, and one that a water can have."""
+def risen_strength(ionic_strength, rise, brim):
+    """The ionic strength after a step, at most five times more or less, and no more than brim."""
     risen = ionic_strength + rise
     if risen > 5.0 * ionic_strength:
         risen = 5.0 * ionic_strength
     if risen < 0.2 * ionic_strength:
         risen = 0.2 * ionic_strength
     risen = risen if risen > 1e-12 else 1e-12
-    return risen if risen < BRIM else BRIM
+    return risen if risen < brim else brim
 
 
 @kernel(inner=True, forceinline=True)
@@ -175,7 +175,8 @@ def close_balances(
             if drop >= 0 or (add >= 0 and abs(bench.saturation[add]) > 0.1):
                 return CYCLING, ionic_strength, steps, drop, add, first
         steps += 1
-        rise = made - ionic_strength if made < BRIM else 0.0
+        brim = BRIM if mismatch > LOOK else math.inf  # where the balances all but close, it is what it is
+        rise = made - ionic_strength if made < brim else 0.0
         found = False
         if mismatch > worse:
             near *= 0.1  # the near step was not near enough
@@ -233,7 +234,7 @@ def close_balances(
         largest, share = take_step(bench, free, newton)
         if not largest < 1e30:
             return DIVERGED, ionic_strength, steps, drop, add, first
-        risen = risen_strength(ionic_strength, share * rise)
+        risen = risen_strength(ionic_strength, share * rise, brim)
         move = abs(risen - ionic_strength) / (ionic_strength + 1e-6)
         before, ionic_strength = ionic_strength, risen
         if matrices.model == SIT:
