@@ -89,7 +89,10 @@ def settle_cells(
                 gained = upper[m, i] - solid[m, i]
                 solid[m, i] = upper[m, i]
             else:
-                solid[m, i] += gained
+                # what rounding let pass the bounds stays in the water
+                after = min(max(solid[m, i] + gained, 0.0), upper[m, i])
+                gained = after - solid[m, i]
+                solid[m, i] = after
             take(matrices, bench, amount, m, i, gained)
         for g in range(gases):
             given[g, i] = -bench.gained[endless + g] * weight

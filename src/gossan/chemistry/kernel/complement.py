@@ -41,11 +41,13 @@ from gossan.chemistry.kernel.paired import paired_step, see, see_again, see_ahea
 SETTLED = 1e-7
 EXACT = 8e-16  # the balances agree to the last digit: no step can improve on it
 NEAR = 0.3  # mismatch below which the balances' own Newton step converges
+BLOWN = 10.0  # mismatch after a near step that is taken back: two balances said nearly the same
 LOOK = 1e-2  # mismatch below which wrong marks already show
 NEWTON_LIMIT = 300  # steps for one set of marks, or for one stage on the way to it
 STAGES = 10  # times as many steps are for all of them
 BRIM = 100.0  # mol/kg: no water holds more; far from the answer the sums may claim it
 CHOICES = 5  # of pivots once the answer shows what is scarce
+ROUNDING = 4e-16  # relative: marks that go round must not hang on the last digit of a total
 REVIEW = 25  # far steps after which the pivots are looked at again
 CROWDED = 1e4  # mol/kg: from there on a far step may only lead back; at infinity all sides look even
 DOUBTS = 20  # choices of pivots where the walk came to a stop
@@ -139,7 +141,7 @@ def close_balances(
     drop, add, first = -1, -1, -1
     last, best, factor, before, most = 1.0, math.inf, 1.0, ionic_strength, math.inf
     mode, near, worse, slow = FAR, NEAR, math.inf, 0
-    looked = patient
+    looked, review = patient, REVIEW
     steps, left = 0, 0.0
     newton = -1  # of this stage
     for step in range(STAGES * NEWTON_LIMIT):
@@ -158,7 +160,7 @@ def close_balances(
             made = molalities(matrices, bench, free, ionic_strength)
             mismatch = balances(bench, free)
             last, best, factor, mode, near, worse, slow = 1.0, math.inf, 1.0, FAR, NEAR, math.inf, 0
-            most = math.inf
+            most, review = math.inf, REVIEW
         done = last < SETTLED or (
             mismatch < EXACT
             and abs(made - ionic_strength) < 1e-13 * made + 1e-30
@@ -169,7 +171,9 @@ def close_balances(
         if left == 0.0 and (done or absurd or (mismatch < LOOK and not looked)):
             looked = True
             pivots_follow(matrices, bench, active, free)
-            drop, add, first = weigh(matrices, bench, active, solid, upper, presence)
+            drop, add, first = weigh(
+                matrices, bench, active, solid, upper, presence, ROUNDING if patient else 0.0
+            )
             if done:
                 return SOLVED, ionic_strength, steps, drop, add, first
             if drop >= 0 or (add >= 0 and abs(bench.saturation[add]) > 0.1):
@@ -180,7 +184,7 @@ def close_balances(
         found = False
         if mismatch > worse:
             near *= 0.1  # the near step was not near enough
-            if mismatch > NEAR and doubts > 0:
+            if mismatch > BLOWN and doubts > 0:
                 ionic_strength = before
                 if matrices.model == SIT:
                     see_again(bench)
@@ -197,9 +201,6 @@ def close_balances(
                 found, rise = near_step(matrices, bench, free, rise)
             mode, worse = FAR, mismatch
         if not found:
-            if newton % REVIEW == REVIEW - 1 and doubts > 0:
-                if unfit(matrices, bench, active, free, ionic_strength, left):
-                    return UNFIT, ionic_strength, steps, drop, add, first
             merit, lost, whole = far_merit(bench, free), 0.0, fullness(bench)
             if mode == CONVEX:
                 merit, lost = dual_energy(bench, free)
@@ -224,6 +225,10 @@ def close_balances(
                     mode, slow = CONVEX, 0
                     merit, lost = dual_energy(bench, free)
             best, factor, most = merit, 1.0, whole
+            if newton >= review and doubts > 0 and whole <= CROWDED:
+                review += REVIEW
+                if unfit(matrices, bench, active, free, ionic_strength, left):
+                    return UNFIT, ionic_strength, steps, drop, add, first
             going = far_step(bench, free) if mode == FAR else convex_step(bench, free)
             if not going:
                 if doubts > 0 and unfit(matrices, bench, active, free, ionic_strength, left):
