@@ -10,6 +10,7 @@ from gossan.chemistry.kernel.vectors import row_dot
 
 WARM, COLD, MARKED = 0, 1, 2
 REMAINDER = 1e-6  # of what solids took: below, subtraction has lost more digits than the balances have
+ROUNDED = 1e-14  # of the largest total: no more of it than its rounding is trimmed
 BESIDE = 1e-5  # of the largest total: of less, the rounding of that total shows among the digits asked for
 
 
@@ -122,14 +123,18 @@ def take(matrices, bench, amount, row, i, gained):
 def trim(matrices, bench, amount, solid, upper, presence, i, weight):
     """Correct the solids that hold scarce components by what the largest total's rounding left there.
 
-    bench.right holds what solids took of each component, without its sign.  A solid that gained its zinc as the
-    rest of five moles of sulfide is off by the sulfide's last digit, and zinc's own balance shows it.
+    bench.right holds what solids took of each component, without its sign.  A solid that gained its zinc as
+    the rest of five moles of sulfide is off by the sulfide's last digit, and zinc's own balance shows it
+    (equations.md, 18).
     """
     components = amount.shape[0]
-    largest = 0.0
+    largest, taken = 0.0, 0.0
     for k in range(components):
+        taken = max(taken, bench.right[k])
         bench.weight[k] = abs(amount[k, i]) + bench.right[k]
         largest = max(largest, bench.weight[k])
+    if taken == 0.0:
+        return
     for k in range(components):
         if k == matrices.signed or k == matrices.electron or not 0.0 < bench.weight[k] < BESIDE * largest:
             continue
@@ -146,6 +151,6 @@ def trim(matrices, bench, amount, solid, upper, presence, i, weight):
             continue
         over = amount[k, i] - row_dot(matrices.conserved, k, bench.molality) * weight
         gained = over / matrices.supplied[holder, k]
-        if abs(gained) < REMAINDER * solid[holder, i] and solid[holder, i] + gained < upper[holder, i]:
+        if abs(over) < ROUNDED * largest and 0.0 <= solid[holder, i] + gained < upper[holder, i]:
             solid[holder, i] += gained
             take(matrices, bench, amount, holder, i, gained)

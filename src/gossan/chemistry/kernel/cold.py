@@ -117,7 +117,7 @@ def approach(matrices, bench, dissolved):
         bench.ln_activity[sought] = 0.5 * (low + high)
     carriers_follow(matrices, bench)
     for k in range(components):
-        if k == signed or k == electron or k == sought:
+        if k == matrices.signed or k == matrices.electron or k == sought:
             continue
         if bench.total[k] > ABSENT:
             level(matrices, bench, k, dissolved[k])
@@ -145,7 +145,7 @@ def approach(matrices, bench, dissolved):
 
 @kernel(inner=True)
 def continued_fraction(matrices, bench, dissolved, sought, passes, most):
-    """Bring the balances of all but e^-, what gases hold and what is sought nearer; returns the ionic strength.
+    """Bring the balances of all but e^-, what gases hold and what is sought nearer; returns ionic strength.
 
     passes, and as many more, up to most, as one of the balances is off by the factor e^OFF.
     """
@@ -159,7 +159,8 @@ def continued_fraction(matrices, bench, dissolved, sought, passes, most):
         worst = 0.0
         bare_coefficients(matrices, bench, 0.0)
         made = survey_of(matrices, stoichiometry, ln_k, bench)
-        # a component of crowded species moves less: all components of a species move at once, but what is held
+        # a component of crowded species moves less: all components of a species move at once, but for
+        # what is held
         share = bench.share
         for s in range(share.shape[0]):
             share[s] = 0.0

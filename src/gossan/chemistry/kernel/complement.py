@@ -47,6 +47,7 @@ NEWTON_LIMIT = 300  # steps for one set of marks, or for one stage on the way to
 STAGES = 10  # times as many steps are for all of them
 BRIM = 100.0  # mol/kg: no water holds more; far from the answer the sums may claim it
 CHOICES = 5  # of pivots once the answer shows what is scarce
+SWIFT = 10  # steps within which a warm water settles: it is spared what only the wayward need
 ROUNDING = 4e-16  # relative: marks that go round must not hang on the last digit of a total
 REVIEW = 25  # far steps after which the pivots are looked at again
 CROWDED = 1e4  # mol/kg: from there on a far step may only lead back; at infinity all sides look even
@@ -167,7 +168,7 @@ def close_balances(
             and (matrices.model != SIT or unseen(matrices, bench) < 1e-13)
         )
         # balances that close at a thousand kilograms of solutes do so for marks that are no water's
-        absurd = mismatch < LOOK and not fullness(bench) <= CROWDED
+        absurd = mismatch < LOOK and newton > SWIFT and not fullness(bench) <= CROWDED
         if left == 0.0 and (done or absurd or (mismatch < LOOK and not looked)):
             looked = True
             pivots_follow(matrices, bench, active, free)

@@ -33,7 +33,7 @@ class Matrices(NamedTuple):
     supplied_ln_k: np.ndarray  # (row,) of dissolution to conserved components
     minerals: int  # how many of the rows are minerals
     first: np.ndarray  # (couple,) int64: the component that a valence is counted as; -1: water's own
-    carrier: np.ndarray  # (open gas,) int64: the component that follows from its pressure, e^- of one that carries any
+    carrier: np.ndarray  # (open gas,) int64: the component that follows from its pressure; e^- if it has any
     signed: int  # H^+, whose total may be negative
     electron: int  # e^-, whose total may be negative too; -1 where nothing is coupled
     given: int  # 1 under SIT: the last of the basis is water, of which the law gives the activity; else 0
