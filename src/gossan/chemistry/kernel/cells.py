@@ -91,9 +91,11 @@ def settle_cells(
                 solid[m, i] = upper[m, i]
             else:
                 # what rounding let pass the bounds stays in the water
-                after = min(max(solid[m, i] + gained, 0.0), upper[m, i])
-                gained = after - solid[m, i]
-                solid[m, i] = after
+                if solid[m, i] + gained < 0.0:
+                    gained = -solid[m, i]
+                elif solid[m, i] + gained > upper[m, i]:
+                    gained = upper[m, i] - solid[m, i]
+                solid[m, i] = min(solid[m, i] + gained, upper[m, i])
             take(matrices, bench, amount, m, i, gained)
         for g in range(gases):
             given[g, i] = -bench.gained[endless + g] * weight
