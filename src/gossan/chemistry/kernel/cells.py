@@ -10,6 +10,7 @@ from gossan.chemistry.kernel.vectors import row_dot
 
 WARM, COLD, MARKED = 0, 1, 2
 REMAINDER = 1e-6  # of what solids took: below, subtraction has lost more digits than the balances have
+SHOWN = 1e-11  # relative: what a balance may lack; to trim less would be to trim rounding
 ROUNDED = 1e-14  # of the largest total: no more of it than its rounding is trimmed
 BESIDE = 1e-5  # of the largest total: of less, the rounding of that total shows among the digits asked for
 
@@ -153,6 +154,7 @@ def trim(matrices, bench, amount, solid, upper, presence, i, weight):
             continue
         over = amount[k, i] - row_dot(matrices.conserved, k, bench.molality) * weight
         gained = over / matrices.supplied[holder, k]
-        if abs(over) < ROUNDED * largest and 0.0 <= solid[holder, i] + gained < upper[holder, i]:
+        shown = SHOWN * bench.weight[k] < abs(over) < ROUNDED * largest
+        if shown and 0.0 <= solid[holder, i] + gained < upper[holder, i]:
             solid[holder, i] += gained
             take(matrices, bench, amount, holder, i, gained)

@@ -230,6 +230,7 @@ def close_balances(
                 review += REVIEW
                 if unfit(matrices, bench, active, free, ionic_strength, left):
                     return UNFIT, ionic_strength, steps, drop, add, first
+                balances(bench, free)  # whose two sides the survey has overwritten
             going = far_step(bench, free) if mode == FAR else convex_step(bench, free)
             if not going:
                 if doubts > 0 and unfit(matrices, bench, active, free, ionic_strength, left):
