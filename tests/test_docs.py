@@ -181,6 +181,16 @@ def test_the_python_of_the_readme_prints_what_it_says(tmp_path, monkeypatch):
     assert doctest.DocTestRunner().run(session).failed == 0
 
 
+def test_the_python_of_the_first_steps_prints_what_it_says(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    start = ROOT / "docs" / "start.md"
+    Path("level.toml").write_text(blocks(start, "toml")[0], encoding="utf-8")
+    (block,) = blocks(start, "python")
+    session = doctest.DocTestParser().get_doctest(block, {}, "start.md", str(start), 0)
+    assert len(session.examples) > 3
+    assert doctest.DocTestRunner().run(session).failed == 0
+
+
 def test_the_faults_that_the_readme_shows_are_the_faults_that_are_found():
     shown = next(block for block in blocks(README, "") if block.startswith("gate.toml:4: "))
     slips = {'180 mg/L"': '180 mgg/L"', "porosity = 0.38": "porosity = 38", "dispersivity": "dispersivty"}

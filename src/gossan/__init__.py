@@ -16,7 +16,7 @@ _HOMES = {
     "run": ("gossan.recording", "run"),
     "open_result": ("gossan.store.read", "open_result"),
     "assay": ("gossan.views.assay", "assay"),
-    "equilibrate": ("gossan.chemistry.equilibrium", "equilibrate"),
+    "equilibrate": ("gossan.views.batch", "equilibrate"),
     "certify": ("gossan.chemistry.certificate", "certify"),
 }
 __all__ = ["__version__", "assay", "certify", "equilibrate", "load_case", "open_result", "run"]
@@ -24,10 +24,10 @@ __all__ = ["__version__", "assay", "certify", "equilibrate", "load_case", "open_
 if TYPE_CHECKING:
     from gossan.case.read import read_case as load_case
     from gossan.chemistry.certificate import certify
-    from gossan.chemistry.equilibrium import equilibrate
     from gossan.recording import run
     from gossan.store.read import open_result
     from gossan.views.assay import assay
+    from gossan.views.batch import equilibrate
 
 
 def __getattr__(name: str) -> Any:

@@ -18,19 +18,21 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
+from gossan.chemistry.certificate import Certificate
 from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation, pe_of
 from gossan.coupling.beyond import Beyond, watched
+from gossan.coupling.certify import certify_state, diluted_since
 from gossan.coupling.drive import Drive, pore_volumes, settled
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Clogged, Stride, march
 from gossan.coupling.pace import Pace
 from gossan.coupling.pores import conductivity
 from gossan.coupling.problem import Port, Problem
-from gossan.coupling.state import State, state_of
+from gossan.coupling.state import State, StillWater, state_of
 from gossan.store.file import Axes
 from gossan.store.read import Result, open_result
-from gossan.store.write import ResultWriter
-from gossan.transport.faces import Faces, faces_of
+from gossan.store.write import ResultWriter, last_parts
+from gossan.transport.faces import Faces
 from gossan.transport.step import passages
 
 CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
@@ -50,7 +52,7 @@ class Ending:
     """How a run ended."""
 
     status: str  # "finished", "stopped" or "failed"
-    reason: str
+    reason: str  # "clogged" where a closed cell was the end
     detail: str = ""  # the reason in a sentence
     error: SolveError | None = None
 
@@ -95,6 +97,36 @@ def case_of(result: Result) -> Case:
     return case_from_text(
         result.case, str(result.path), constants=result.constants or None, files=result.files
     )
+
+
+@dataclass(frozen=True)
+class Certified:
+    """The certificates of one of a column's waters at its last checkpoint."""
+
+    water: str  # "flowing" or "immobile"
+    time: float  # s
+    cells: np.ndarray  # (water's cell,) int: which cells of the column
+    certificate: Certificate
+    diluted: np.ndarray  # (water's cell,) relative: by water that solids freed or bound after the solve
+
+
+def certified(result: Result) -> list[Certified]:
+    """How well every cell at a result's last checkpoint meets its equations, worked out with 32 digits.
+
+    Raises   ResultError where the file has no whole checkpoint
+    """
+    problem = build(case_of(result))
+    state = state_of(last_parts(result.path)["state"])
+    moment = settled(problem, state)
+    waters: list[tuple[str, State | StillWater, np.ndarray]] = [
+        ("flowing", state, np.arange(len(state.water)))
+    ]
+    if state.still is not None and problem.stagnant is not None:
+        waters.append(("immobile", state.still, problem.stagnant.cells))
+    return [
+        Certified(name, state.time, cells, certify_state(moment, water), diluted_since(moment, water))
+        for name, water, cells in waters
+    ]
 
 
 def run(case: Case, out: str | Path | None = None, progress: bool = False, overwrite: bool = False) -> Result:
@@ -187,9 +219,11 @@ class _Run:
                     ending = Ending("stopped", "interrupted")
                     break
         except Clogged as clogged:
-            where = float(self.problem.grid.centres[clogged.cell])
-            detail = f"clogged at x = {where:.4g} m after {clogged.time / 86400:.6g} d"
-            ending = Ending("stopped", "clogged", detail)
+            grid = self.problem.grid
+            layer, x = grid.layers[grid.layer[clogged.cell]].name, grid.centres[clogged.cell]
+            detail = f"clogged in layer {layer}, x = {x:.4g} m, after {clogged.time / 86400:.6g} d"
+            ending = Ending("finished", "clogged", detail)
+            self.last(state)
         except SolveError as error:
             error.kept = str(self.writer.path)
             ending = Ending("failed", str(error), str(error), error)
@@ -197,14 +231,17 @@ class _Run:
         self.writer.flush()
         counts, parts = dict(self.writer.counts), self.parts(state, pace)
         if ending.status != "finished":
-            # to be seen, but a run never stopped has none here: who goes on drops them
-            if state.time > self.seen["records"]:
-                self.records(state)
-            if state.time > self.seen["frame"]:
-                self.frame(state)
+            self.last(state)  # to be seen, but a run never stopped has none here: who goes on drops it
         figures = {"wall_clock_seconds": wall.monotonic() - began, "warnings": self.beyond.told(self.problem)}
         self.writer.finish(ending.status, parts, ending.reason, figures, counts)
         return ending
+
+    def last(self, state: State) -> None:
+        """Record a state at which no record falls due."""
+        if state.time > self.seen["records"]:
+            self.records(state)
+        if state.time > self.seen["frame"]:
+            self.frame(state)
 
     def share(self, state: State) -> float:
         """The share of the run that is done."""
@@ -241,7 +278,7 @@ class _Run:
         drive = Drive(self.problem, state)
         inflow = drive.inflow
         darcy_flux, _ = drive.flow(settled_dt(state), 0.0)
-        faces = faces_of(self.problem.transport, state.water, darcy_flux)
+        faces = drive.faces(darcy_flux)
         through = passages(faces, state.dissolved, inflow, 1.0).passed
         for index, port in enumerate(self.problem.ports):
             values = port_of(self.problem, state, port, index, faces, inflow, through)
@@ -288,7 +325,7 @@ def frame_of(problem: Problem, state: State) -> dict[str, Any]:
         "saturation": mineral_saturation(system, state.ln_activity),
         "activity": activity,
         "porosity": problem.water(state),
-        "conductivity": conductivity(problem, problem.water(state)),
+        "conductivity": conductivity(problem, problem.water(state), system.temperature),
         "pH": -state.ln_activity[0] / LN10,
         "pe": pe_of(system, state.ln_activity),
         "ionic_strength": state.ionic_strength,

@@ -22,6 +22,11 @@ FAULTS = [
     (TRACER, 'parent = "chloride"', 'is "chloride", but there is no [tracers.chloride]', "parent"),
     (TRACER, '[tracers.a]\n[tracers.b]\nparent = "a"', "which has no half_life and never decays", "parent"),
     (TRACER, 'half_life = "1 d"\nparent = "bromide"', "which comes from bromide itself", "parent"),
+    (LAYER, '[layers.half_life]\nbromine = "4 d"',
+     'half_life.bromine is no tracer, and only tracers decay: did you mean "bromide"?', "bromine"),
+    (LAYER, '[layers.half_life]\nZn = "4 d"', "Zn is no tracer, and only tracers decay", "Zn"),
+    (LAYER, "[layers.half_life]\nbromide = 4", "half_life.bromide is 4, a bare number", "bromide"),
+    (LAYER, '[layers.half_life]\nbromide = "0 d"', "a half-life is more than zero", "bromide"),
     (LAYER, '[layers.sorption.Zn]\nlaw = "linear"', "Zn.kd is missing: law = \"linear\" needs it",
      "[layers.sorption.Zn]"),
     (LAYER, '[layers.sorption.Zn]\nkd = "2 L/kg"', "sorption.Zn.law is missing", "[layers.sorption.Zn]"),
@@ -109,8 +114,30 @@ def test_the_words_of_an_isotherm_become_numbers_per_bulk(name, law, per_kg):
 def test_half_lives_and_parents_become_rates():
     decay = problem_of("").decay
     rate = math.log(2.0) / (2.0 * 86400.0)
-    assert decay.rates == pytest.approx(np.array([[-rate, 0.0], [rate, 0.0]]))
+    assert decay.rates == pytest.approx(np.array([[[-rate, 0.0], [rate, 0.0]]]))
     assert [problem_of("").solutes[row] for row in decay.solutes] == ["a", "b"]
+
+
+SECOND = """[[layers]]
+name = "second"
+length = "1 m"
+cells = 10
+porosity = 0.4
+dispersivity = "0 m"
+water = "pore"
+"""
+
+
+def test_a_layer_may_have_half_lives_of_its_own():
+    """Of a parent that decays nowhere else, of one that does: in both the daughter grows as it decays."""
+    for own, first in (("", 0.0), ('half_life = "2 d"\n', math.log(2.0) / (2.0 * 86400.0))):
+        text = column(WATERS.replace('half_life = "2 d"\n', own))
+        second = SECOND + '[layers.half_life]\na = "5 h"\n'
+        decay = build(case_of(text.replace("[flow]", f"{second}[flow]"))).decay
+        rate = math.log(2.0) / (5.0 * 3600.0)
+        for cell, expected in ((0, first), (19, first), (20, rate), (29, rate)):
+            rates = decay.rates[decay.zone[cell]]
+            assert rates == pytest.approx(expected * np.array([[-1.0, 0.0], [1.0, 0.0]]))
 
 
 def test_immobile_water_takes_its_share_of_pores_and_solids():

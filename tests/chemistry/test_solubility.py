@@ -9,13 +9,14 @@ from tests.support.solutions import Solution, index
 
 from gossan.chemistry.solubility import MOST, least_soluble, metal_of, solubilities
 from gossan.constants.load import load_table
+from gossan.constants.temperature import log10_k_at
 
 TABLE = load_table()
 SULFIDIC = {"HS^-": 1e-4, "CO3^2-": 2e-3, "SO4^2-": 5e-3, "Cl^-": 1e-3}
 
 
-def by_name(pH, totals, celsius=25.0, minerals=None, table=TABLE):
-    return {row.mineral: row for row in solubilities(table, pH, totals, 273.15 + celsius, minerals)}
+def by_name(pH, totals, celsius=25.0, minerals=None, table=TABLE, pe=None):
+    return {row.mineral: row for row in solubilities(table, pH, totals, 273.15 + celsius, minerals, pe)}
 
 
 @pytest.mark.parametrize("pH", [4.0, 7.0, 10.0])
@@ -82,6 +83,69 @@ def test_solids_without_their_elements_say_so():
     assert not found["pyrite"].known
     assert isnan(found["smithsonite"].dissolved)
     assert by_name(7.0, {"HS^-": 1e-4, "Fe^2+": 1e-4})["chalcopyrite"].dissolved < 1e-12
+
+
+@pytest.mark.parametrize(
+    ("pH", "pe"), [(16.0, None), (16.0, -14.0), (14.0, -12.0), (14.0, 5.0), (-2.0, 20.0)]
+)
+def test_the_ends_of_the_scale_have_answers(pH, pe):
+    """Hydroxides of which there would be thousands of mol/kg are soluble, and no solve is lost on them."""
+    found = by_name(pH, {}, pe=pe)
+    assert found["amorphous zinc hydroxide"].soluble
+    assert sum(row.known for row in found.values()) > 20
+
+
+def log10_k(name):
+    return log10_k_at(TABLE.minerals[name], 298.15)
+
+
+def test_pyrite_and_sulfur_at_a_pe_by_hand():
+    """FeS2 + 2 H+ + 2 e- = Fe2+ + 2 HS-, and S + H+ + 2 e- = HS-, with H2S + HS- as dissolved sulfide.
+
+    At pH 5 and 1e-8 mol/kg of sulfide no complex of iron counts, and iron is all Fe(II).
+    """
+    pH, pe = 5.0, 0.0
+    acid = 10 ** log10_k_at(TABLE.species["H2S"], 298.15)  # H+ + HS- = H2S
+    bisulfide = 1e-8 / (1.0 + acid * 10**-pH)
+    found = by_name(pH, {"HS^-": 1e-8}, minerals=["pyrite", "sulfur"], pe=pe)
+    iron = log10_k("pyrite") - 2 * pH - 2 * pe - 2 * np.log10(bisulfide)
+    assert np.log10(found["pyrite"].dissolved) == pytest.approx(iron, abs=1e-3)
+    sulfide = 10 ** (log10_k("sulfur") - pH - 2 * pe) * (1.0 + acid * 10**-pH)
+    assert found["sulfur"].dissolved == pytest.approx(sulfide, rel=1e-6)
+    assert found["sulfur"].metal == "HS^-"
+
+
+def test_oxides_at_a_pe_count_both_valences_of_iron():
+    """Fe2O3 + 6 H+ = 2 Fe3+ + 3 H2O, and Fe2+ from Fe3+ + e-: at pH 4 and pe 8 iron is Fe^2+, 99.9 %."""
+    pH, pe = 4.0, 8.0
+    couple = TABLE.components["Fe^3+"].half_log10_k.value  # Fe2+ = Fe3+ + e-
+    held = by_name(pH, {}, minerals=["hematite", "magnetite"])
+    found = by_name(pH, {}, minerals=["hematite", "magnetite"], pe=pe)
+    ferrous = log10_k("hematite") / 2 - 3 * pH - couple - pe
+    assert np.log10(found["hematite"].dissolved) == pytest.approx(ferrous, abs=2e-3)
+    assert (held["hematite"].metal, found["hematite"].metal) == ("Fe^3+", "Fe^2+")
+    assert held["magnetite"].lacks == ("Fe^3+",)
+    # Fe3O4 + 8 H+ = Fe2+ + 2 Fe3+ + 4 H2O
+    ferrous = (log10_k("magnetite") - 8 * pH - 2 * (couple + pe)) / 3
+    assert np.log10(found["magnetite"].dissolved) == pytest.approx(ferrous, abs=2e-3)
+
+
+@pytest.mark.parametrize(("pH", "pe"), [(4.0, 12.0), (7.0, 2.0), (7.0, -3.0), (10.0, -5.0)])
+def test_water_of_these_totals_and_this_pe_is_in_equilibrium_with_the_solid(pH, pe):
+    """The definition, with couples solved by the program instead of reduced to the first ion."""
+    tried = 0
+    coupled = ("Fe^3+", "Cu^+", "Mn^3+")
+    for row in solubilities(TABLE, pH, SULFIDIC, pe=pe):
+        reaction = TABLE.minerals[row.mineral].reaction
+        sulfur = "HS^-" in reaction.components and reaction.electrons  # wants sulfate coupled too
+        if row.known and not row.soluble and row.metal in ("Fe^2+", "Cu^2+", "Mn^2+") and not sulfur:
+            totals = {**SULFIDIC, row.metal: row.dissolved}
+            water = Solution(
+                totals, pH=pH, pe=pe, indexed=(row.mineral,), activity="ideal", coupled=coupled
+            ).equilibrium()  # fmt: skip
+            assert index(row.mineral)(water) == pytest.approx(0.0, abs=1e-7), row.mineral
+            tried += 1
+    assert tried > 10
 
 
 def test_what_dissolves_without_end_has_no_number():

@@ -303,11 +303,17 @@ def test_the_report_s_temperature_is_that_of_the_constants():
 @pytest.mark.parametrize(
     ("activity", "strength", "told"),
     [("davies", 0.49, False), ("davies", 0.51, True), ("debye-hueckel", 0.09, False),
-     ("debye-hueckel", 0.11, True), ("ideal", 2.0, False)],
+     ("debye-hueckel", 0.11, True), ("ideal", 2.0, False), ("sit", 3.4, False), ("sit", 3.6, True)],
 )  # fmt: skip
 def test_a_water_outside_the_law_s_range_draws_a_warning(activity, strength, told):
     water = read({"Na^+": strength, "Cl^-": strength}, pH=7.0, activity=activity)
     assert any("ionic strength" in warning for warning in water.warnings) == told
+
+
+def test_a_strong_acid_salt_of_aluminium_is_told_to_be_out_of_range():
+    """1 mol/kg of AlCl3 has I = 6: its coefficient comes out a third too low there, and the water says so."""
+    water = read({"Al^3+": 1.0, "Cl^-": 3.0}, pH=2.5, balance_on="Cl^-", activity="sit")
+    assert "ionic strength 6 mol/kg: the sit law is meant for waters up to 3.5" in water.warnings
 
 
 def test_excluded_species_are_not_there():

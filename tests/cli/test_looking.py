@@ -200,11 +200,23 @@ log10_k = {value = 0.4, sd = 0.2, source = "judgement"}
     assert ":3: species.ZnNO3^+.reaction is not balanced" in capsys.readouterr().err
 
 
+def test_doubts_are_told_in_words(capsys):
+    """Sources by their authors, not by keys of the table; what an enthalpy is known to."""
+    assert main(["constants", "HSO4-"]) == 0
+    printed = " ".join(capsys.readouterr().out.split())
+    assert "enthalpy 16.1 ± 3.2 kJ/mol" in printed
+    assert "22.4 kJ/mol from the formation enthalpies of Cox, Wagman & Medvedev (1989)" in printed
+    assert main(["constants", "NO2-"]) == 0
+    printed = capsys.readouterr().out
+    assert "the redox table of Stumm & Morgan (1996) and" in printed
+    assert "stumm1996" not in printed
+
+
 def test_solubility_of_the_solids_of_a_metal(capsys):
     asked = ["constants", "Zn", "--solubility", "--sulfide", "0.033 g/L", "--with", "SO4=10 mmol/L"]
     assert main(asked) == 0
     printed = capsys.readouterr().out
-    for word in ("pH 7, 25 degC", "sphalerite", "least soluble", "ideal", "no CO3^2- is given", "electrons"):
+    for word in ("pH 7, 25 degC", "sphalerite", "least soluble", "ideal", "for want of", "pe or Eh"):
         assert word in printed
     assert "covellite" not in printed
     found = as_json(capsys, *asked)
@@ -223,12 +235,44 @@ def test_solubility_of_all_solids_in_the_cold_warns_of_constants(capsys):
     printed = capsys.readouterr()
     assert "at 5 degC" in printed.err
     assert "used outside the temperatures" in printed.err
-    for word in ("pH 9, 5 degC", "zincite", "no HS^- is given", "<1e-12"):
+    for word in ("pH 9, 5 degC", "zincite", "HS^-, pe or Eh", "<1e-12"):
         assert word in printed.out
+
+
+def test_solubility_at_a_pe(capsys):
+    """pe and Eh are the same water, and with either no solid waits for electrons."""
+    asked = ["constants", "Fe", "--solubility", "--sulfide", "1e-4 mol/L"]
+    at_pe = as_json(capsys, *asked, "--pe", "-3")
+    at_potential = as_json(capsys, *asked, "--Eh", "-177.48 mV")  # 3 times 59.16 mV
+    assert at_pe["pe"] == -3.0
+    assert at_potential["pe"] == pytest.approx(-3.0, abs=1e-3)
+    assert at_pe["Eh_V"] == pytest.approx(-0.17748, abs=1e-5)
+    iron = {each["mineral"]: each for each in at_pe["solids"]}
+    assert {"pyrite", "hematite", "magnetite", "mackinawite"} <= set(iron)
+    assert {each["metal"] for each in at_pe["solids"]} == {"Fe^2+"}
+    assert [name for name, each in iron.items() if each["least_soluble"]] == ["pyrite"]
+    for each in at_potential["solids"]:
+        assert not each["needs_electrons"]
+    assert as_json(capsys, *asked)["pe"] is None
+    assert main([*asked, "--pe", "-3"]) == 0
+    assert "pH 7, pe -3 (Eh -177 mV), 25 degC" in capsys.readouterr().out
+    assert main([*asked, "--pe", "-8"]) == 0
+    assert "hydrogen would have" in capsys.readouterr().err
+
+
+def test_a_solid_without_a_number_says_what_it_wants(capsys):
+    assert main(["constants", "pyrite", "--solubility"]) == 0
+    printed = capsys.readouterr().out
+    assert printed.startswith("Without a number at pH 7, 25 degC")
+    assert "HS^-, pe or Eh  pyrite" in printed
 
 
 @pytest.mark.parametrize(("arguments", "said"), [
     (["--pH", "7"], "add --solubility"),
+    (["--pe", "2"], "add --solubility"),
+    (["--solubility", "--pe", "2", "--Eh", "0.1 V"], "keep one of them"),
+    (["--solubility", "--Eh", "310"], 'did you mean "310 mV"?'),
+    (["--solubility", "--pe", "30"], "oxygen would have"),
     (["--solubility", "--pH", "17"], "a pH is between -2 and 16"),
     (["--solubility", "--sulfide", "much"], "not an amount in water"),
     (["--solubility", "--sulfide", "1e-4 mol"], "where an amount in water is needed"),

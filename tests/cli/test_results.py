@@ -53,6 +53,38 @@ def test_limit_rows_hold_one_limit_each(finished, capsys):
     assert rows[2]["first exceeded (s)"] == ""
 
 
+def test_bed_rows_hold_heads_and_what_is_left(finished, capsys):
+    rows = rows_of(capsys, finished, "bed")
+    head = open_result(finished).profiles.head.values
+    assert [float(row["head loss of the column (m)"]) for row in rows] == head[:, 0].tolist()
+    assert rows[0]["head loss of sand (m)"] == rows[0]["head loss of the column (m)"]
+    assert float(rows[0]["left of the column"]) == 1.0 == float(rows[0]["left by power 8"])
+
+
+def test_certificate_rows_judge_every_cell_of_the_last_state(finished, capsys):
+    rows = rows_of(capsys, finished, "certificate")
+    profiles = open_result(finished).profiles
+    assert len(rows) == 8
+    assert {row["water"] for row in rows} == {"flowing"}
+    assert {float(row["time (s)"]) for row in rows} == {float(profiles.time.values[-1])}
+    # a hundred roundings
+    heads = ("ionic_strength", "minerals present", "minerals absent", "balance SO4^2-", "ln_activity Ca^2+")
+    for head in heads:
+        assert all(0.0 <= float(row[head]) < 1e-13 for row in rows), head
+    assert any(float(row["balance SO4^2-"]) > 0.0 for row in rows)
+
+
+def test_a_certificate_needs_a_checkpoint(finished, tmp_path, capsys):
+    import h5py
+
+    bare = tmp_path / "bare.h5"
+    bare.write_bytes(finished.read_bytes())
+    with h5py.File(bare, "a") as file:
+        del file["checkpoint"]
+    assert main(["export", str(bare), "certificate"]) == 2
+    assert "no whole checkpoint" in capsys.readouterr().err
+
+
 def test_export_writes_a_file(finished, tmp_path, capsys):
     out = tmp_path / "ports.csv"
     assert main(["export", str(finished), "ports", "-o", str(out)]) == 0

@@ -31,7 +31,8 @@ def test_background_salts_are_understood():
 
 def test_complexes_that_a_coefficient_holds_are_named():
     assert TABLE.interactions["Na^+", "SO4^2-"].holds == ("NaSO4^-",)
-    assert TABLE.interactions["Zn^2+", "Cl^-"].holds == ()
+    assert TABLE.interactions["Zn^2+", "Cl^-"].holds == ("ZnCl2", "ZnCl3^-")
+    assert TABLE.interactions["Cd^2+", "Cl^-"].holds == ()
     for (first, second), interaction in TABLE.interactions.items():
         for name in interaction.holds:
             assert set(TABLE.species[name].reaction.components) - {"H^+"} <= {first, second, "CO3^2-"}

@@ -8,7 +8,7 @@ from math import log10
 import pytest
 
 from gossan.base.notation import charge_of, molar_mass, parse_formula, split_ion
-from gossan.constants.find import UnknownName, find, find_interaction, find_mineral
+from gossan.constants.find import UnknownName, find, find_interaction, find_mineral, find_pair
 from gossan.constants.load import load_table
 from gossan.constants.temperature import log10_k_at
 
@@ -221,3 +221,26 @@ def test_names_are_in_plain_form():
     for name in (*TABLE.components, *TABLE.species):
         assert split_ion(name)[1] == charge_of(name)
         assert name.isascii()
+
+
+@pytest.mark.parametrize(("said", "meant"), [
+    ("zinc", "Zn^2+"), ("Zn", "Zn^2+"), ("Zn2+", "Zn^2+"), ("Zn+2", "Zn^2+"), ("SO42-", "SO4^2-"),
+    ("SO4", "SO4^2-"), ("sulfate", "SO4^2-"), ("S(-II)", "HS^-"), ("Fe(III)", "Fe^3+"), ("Fe+3", "Fe^3+"),
+    ("Cu(I)", "Cu^+"),
+    ("H2S(g)", "H2S"), ("HSO4-", "HSO4^-"), ("ZnOH+", "ZnOH^+"), ("S", "sulfur"),
+])  # fmt: skip
+def test_what_people_type_is_found(said, meant):
+    assert find(TABLE, said)[0].name == meant
+
+
+def test_a_gas_of_its_own_name_is_the_gas_alone():
+    assert [type(entry).__name__ for entry in find(TABLE, "CO2(g)")] == ["Gas"]
+
+
+def test_couples_are_found_where_no_ions_interact():
+    for said in ("Fe(II)/Fe(III)", "Fe2+/Fe3+", "Fe^3+/Fe^2+"):
+        assert find_pair(TABLE, said).name == "Fe^3+"
+    assert find_pair(TABLE, "sulfate/sulfide").name == "HS^-"
+    assert find_pair(TABLE, "Zn2+/SO42-").name == find_pair(TABLE, "sulfate/zinc").name == "Zn^2+/SO4^2-"
+    with pytest.raises(UnknownName, match="no interaction coefficient of a and b"):
+        find_pair(TABLE, "a/b")

@@ -117,6 +117,19 @@ def test_no_transfer_is_flowing_porosity_alone():
     assert (aside.walk.last.still.dissolved[-1] == 0.2).all()
 
 
+def test_immobile_water_decays_by_the_half_life_of_its_layer():
+    """Still water, no exchange, no diffusion to speak of: what three days leave in both waters."""
+    text = tracer_column([Solute(initial=1.0, rate=0.1)], velocity=0.0, dispersivity=0.0, length=0.4, cells=4,
+                         days=3.0, immobile=IMMOBILE.replace("TRANSFER", "0 1/s"))  # fmt: skip
+    layer = text[text.index("[[layers]]") : text.index("[flow]")]
+    second = layer.replace('"bed"', '"second"') + '[layers.half_life]\na = "1 d"\n'
+    text = text.replace("[flow]", f"{second}[flow]").replace('"0 m2/s"', '"1e-30 m2/s"')
+    run = walk(text)
+    expected = np.repeat([np.exp(-0.1 * 3.0), 0.5**3], 4)
+    assert run.dissolved("a") == pytest.approx(expected, rel=1e-12)
+    assert run.last.still.dissolved[-1] == pytest.approx(expected, rel=1e-12)
+
+
 def test_a_short_life_and_a_long_step_leave_nothing_below_nothing():
     """Half-lives of minutes in steps of hours: what decays first is taken first, and the books close."""
     solutes = [Solute(rate=1e4, initial=1.0), Solute("b", 0.0, rate=5e3, parent="a"),

@@ -20,7 +20,10 @@ from scipy.interpolate import CubicSpline
 from scipy.special import erfc, erfcx
 from tests.support.columns import Walk, case_of, column, walk
 
+import gossan
 from gossan.case.waters import read_waters
+from gossan.constants.water import fluidity_ratio
+from gossan.views.bed import bed_of
 
 DAY = 86400.0
 POROSITY = 0.3
@@ -244,3 +247,70 @@ def test_gypsum_dissolves_as_much_as_each_season_lets_it():
     ]
     assert np.ptp(expected) > 1.0, "the seasons differ"
     assert outlet == pytest.approx(expected, rel=1e-9)
+
+
+# mPa s by the IAPWS formulation of 2008 and kg/m3 at 1 bar, CRC Handbook of Chemistry and Physics
+VISCOSITY, DENSITY = {10: 1.3059, 20: 1.0016, 30: 0.7972}, {10: 999.70, 20: 998.21, 30: 995.65}
+
+
+def seasons(celsius: tuple[int, ...], days: float) -> str:
+    """A feed whose entries last so many days each."""
+    return ", ".join(
+        f'{{from = "{days * i} d", water = "feed", temperature = "{t} degC"}}' for i, t in enumerate(celsius)
+    )
+
+
+def test_the_flow_under_a_held_head_follows_the_viscosity(tmp_path):
+    """K = 10 m/d at 20 degC, 0.03 m over 1 m: 0.3 m/d; what enters in a season of a day, and its record."""
+    celsius = (20, 10, 30)
+    text = column(
+        WATERS, feed=seasons(celsius, 1.0), layer='conductivity = "10 m/d"', flow='head_drop = "0.03 m"',
+        dispersivity="1 cm", duration="3 d", run='ports_every = "1 d"\nprofiles_every = "0.5 d"',
+    )  # fmt: skip
+    text = 'temperature = "20 degC"\n' + text
+    result = gossan.run(case_of(text), tmp_path / "seasons.h5")
+    entered = np.diff(result.ports["outlet"].pore_volumes.values) * 0.4  # m of water in a pore volume
+    expected = [0.3 * DENSITY[t] / DENSITY[20] * VISCOSITY[20] / VISCOSITY[t] for t in celsius]
+    assert entered == pytest.approx(expected, rel=2e-4)  # the digits of the viscosities
+    conductivity = result.profiles.conductivity.values[1::2, 0]  # in the middle of each season
+    assert conductivity == pytest.approx(np.array(expected) / 0.03 / DAY, rel=2e-4)
+    head = result.profiles.head.values[1::2]
+    assert head[:, 0] == pytest.approx(0.03)
+    assert head[:, 10] == pytest.approx(0.015)
+    cells = bed_of(result, case_of(text)).cells
+    assert cells == pytest.approx(np.ones((7, 20)), rel=1e-12), "cold water does not clog"
+
+
+def test_a_front_in_still_water_spreads_as_warm_as_it_is():
+    """1e-9 m2/s at 20 degC, 60 d each at 20, 10 and 30 degC: an error function of the sum of D t."""
+    celsius = (20, 10, 30)
+    factors = [(273.15 + t) / 293.15 * VISCOSITY[20] / VISCOSITY[t] for t in celsius]
+    spread = 1e-9 * sum(factors) * 60.0 * DAY
+    text = column(
+        WATERS, feed=seasons(celsius, 60.0), cells=200, length="0.6 m", diffusion="1e-9 m2/s",
+        layer="tortuosity = 1.0", flow='darcy_flux = "0 m/d"\ninlet = "concentration"', duration="180 d",
+        run='ports_every = "180 d"\nprofiles_every = "60 d"',
+    )  # fmt: skip
+    run = walk('temperature = "20 degC"\n' + text)
+    x = np.linspace(0.02, 0.4, 39)
+    assert np.abs(read(run, x) - erfc(x / (2.0 * sqrt(spread)))).max() < CLOSE
+    told = erfc(x / (2.0 * sqrt(1e-9 * 180.0 * DAY)))
+    assert np.abs(read(run, x) - told).max() > 5 * CLOSE, "the seasons make a difference"
+
+
+def test_a_temperature_that_rises_evenly_drives_ever_more_water_in():
+    """From 10 to 30 degC in four days: the volume is the integral of the conductivity, to second order."""
+    text = column(
+        WATERS,
+        feed='{from = "0 d", water = "feed", temperature = "10 degC"}, '
+        '{from = "0.0001 d", water = "feed", temperature = "30 degC", over = "4 d"}',
+        layer='conductivity = "10 m/d"', flow='head_drop = "0.03 m"', dispersivity="1 cm", cells=40,
+        duration="4.0001 d", run='ports_every = "4.0001 d"\nprofiles_every = "4.0001 d"',
+    )  # fmt: skip
+    run = walk('temperature = "20 degC"\n' + text)
+
+    def flux(days: float) -> float:
+        return 0.3 * fluidity_ratio(283.15 + 5.0 * max(days - 1e-4, 0.0), 293.15)
+
+    entered = float(run.last.water_passed[0].sum())
+    assert entered == pytest.approx(quad(flux, 0.0, 4.0001, epsabs=1e-12)[0], rel=2e-6)

@@ -17,7 +17,8 @@ import pytest
 from tests.support.agreement import Check, Within
 from tests.support.sums import log10_sum
 
-from gossan.constants.temperature import GAS_CONSTANT
+from gossan.constants.load import load_table
+from gossan.constants.temperature import GAS_CONSTANT, log10_k_at
 
 FARADAY = 96485.33212  # C/mol
 VOLTS_PER_PE = GAS_CONSTANT * 298.15 * log(10.0) / FARADAY
@@ -78,3 +79,19 @@ CHECKS = [
 @pytest.mark.parametrize("check", CHECKS, ids=str)
 def test_redox_constants(check):
     check.judge()
+
+
+@pytest.mark.parametrize("celsius", [0.0, 5.0, 50.0])
+def test_one_enthalpy_serves_for_oxygen_from_0_to_50_degrees(celsius):
+    """Against the gas with heat capacities of 25 degC: O2 29.4, water 75.3, H+ 0 J/mol/K (wagman1982).
+
+    They bend log10 K by ΔCp/R ln10 (T0/T - 1 - ln T0/T); the gas's solubility follows its own curve.
+    """
+    kelvin, table = 273.15 + celsius, load_table()
+    ratio = 298.15 / kelvin
+    enthalpy = 2 * 285.83e3
+    gas = -83.105 + enthalpy / (GAS_CONSTANT * log(10.0)) * (1 / 298.15 - 1 / kelvin)
+    gas += (29.4 - 2 * 75.3) / (GAS_CONSTANT * log(10.0)) * (ratio - 1 - log(ratio))
+    bent = gas + log10_k_at(table.gases["O2"], kelvin)
+    assert log10_k_at(table.components["O2"], kelvin) == pytest.approx(bent, abs=0.03)
+    assert log10_k_at(table.components["O2"], 298.15) == pytest.approx(-83.105 - 2.894, abs=0.03)

@@ -9,7 +9,7 @@ from tests.support.small_cases import GYPSUM
 
 from gossan.case.read import case_from_text
 from gossan.recording import run
-from gossan.views import figures
+from gossan.views import figures, style
 from gossan.views.limits import bounds_of
 
 
@@ -66,7 +66,7 @@ def test_profiles_are_drawn_at_six_times_first_and_last_among_them(drawn):
     names = names_in(drawn["minerals"])
     assert len(names) == 6
     assert "after 0 h" in names
-    assert "after 19.2 h" in names
+    assert "19.2 h" in names
 
 
 def test_nothing_is_clipped(drawn):
@@ -138,3 +138,20 @@ def test_a_run_that_has_only_begun_can_be_drawn(result, tmp_path):
     begun = open_result(tmp_path / "begun.h5")
     for _, figure in figures.all_figures(begun, bounds_of(case)):
         figure.canvas.draw()
+
+
+@style.in_style
+def _with_times(labels: list[str]):
+    figure, grid = style.sheet_of_paper(2, 2, 5.0)
+    for number, label in enumerate(labels):
+        style.time_line(grid[0, 0], np.arange(3.0), np.arange(3.0), number, len(labels), label)
+    style.headed(figure, "A title", "profiles", "A caution.", legend_of=grid[0, 0])
+    figure.canvas.draw()
+    return figure
+
+
+def test_the_times_of_a_long_run_fit_into_one_row():
+    """Six times of as many figures as are printed: the row ends within the page."""
+    figure = _with_times(["after 0 d", "218.7 d", "437.5 d", "656.2 d", "874.9 d", "1093 d"])
+    (row,) = figure.legends
+    assert row.get_window_extent().x1 < figure.bbox.x1

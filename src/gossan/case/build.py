@@ -49,7 +49,7 @@ def build(case: Case) -> Problem:
         used[case.flow.outlet_water] = None
     waters = read_waters(told, list(used))
     solids = [_starting_solids(layer, table) for layer in case.layers]
-    system_at = lru_cache(maxsize=SYSTEMS)(partial(_system, case, table, waters, solids))
+    system_at = lru_cache(maxsize=SYSTEMS)(partial(system_of, case, table, waters, solids))
     system = system_at(feed.pieces[0].first.temperature)
     gases = {f"{gas}(g)": held.amount.si for gas, held in case.chemistry.gases.items() if held.amount}
     solids = [{**solid, **gases} for solid in solids]
@@ -77,10 +77,11 @@ def build(case: Case) -> Problem:
         ),
         feeds=feeds_of(feed, composition),
         system_at=system_at,
+        reference_temperature=case.temperature.si,
         conductivity=np.array(
             [layer.conductivity.si if layer.conductivity else np.nan for layer in case.layers]
         )[cells.layer],
-        clogging=tuple(_clogging(layer) for layer in case.layers),
+        clogging=tuple(clogging_of(layer) for layer in case.layers),
         porosity=porosity,
         initial=initial_state(case, system, cells, composition, solids, len(ports), stagnant, isotherms),
         end=Schedule(np.array([case.run.duration.si]), by_volume),
@@ -90,7 +91,7 @@ def build(case: Case) -> Problem:
         coupling=case.run.coupling,
         accuracy=case.run.accuracy,
         max_courant=case.run.max_courant,
-        decay=decay_of(case, chemical),
+        decay=decay_of(case, cells, chemical),
         isotherms=isotherms,
         stagnant=stagnant,
     )
@@ -123,12 +124,15 @@ def _tortuosity(layer: Layer) -> Tortuosity:
     return Tortuosity(said.law, **{name: number for name, number in numbers.items() if number is not None})
 
 
-def _clogging(layer: Layer) -> clogging.Clogging:
+def clogging_of(layer: Layer) -> clogging.Clogging:
+    """The law that a layer says its conductivity follows."""
     said = layer.clogging
     return clogging.Clogging(
         law=said.law,
         exponent=said.exponent or 0.0,
         critical_porosity=said.critical_porosity or 0.0,
+        pore_bodies=said.pore_bodies,
+        residual=said.residual or 0.0,
     )
 
 
@@ -158,10 +162,10 @@ def _moles_of_solid(solid: Solid, mineral: Mineral, layer: Layer) -> float:
     return amount.si * per_bulk * solid.reactive
 
 
-def _system(
+def system_of(
     case: Case, table: Table, waters: dict[str, Water], solids: list[dict[str, float]], temperature: float
 ) -> System:
-    """The system, at a temperature in K, of all that is in the waters and solids of the column."""
+    """The system, at a temperature in K, of all that is in waters and solids (by mineral, mol) of a case."""
     components = {name for water in waters.values() for name in water.valences}
     dissolving = list(dict.fromkeys(name for layer in solids for name in layer))
     for name in dissolving:
@@ -193,7 +197,7 @@ def _system(
 
 def _composition(case: Case, name: str, water: Water, system: System) -> np.ndarray:
     """(solute,) mol per m3 of water, as the laboratory counts its litres."""
-    chemical = (_counted(water, system) * water.system.water_density).tolist()
+    chemical = (counted_in(water, system) * water.system.water_density).tolist()
     said = case.waters[name].tracers
     density = water.system.water_density
     return np.array(chemical + [_tracer(case, tracer, said, density) for tracer in case.tracer_names])
@@ -213,7 +217,7 @@ def _gradients(case: Case, chemical: int) -> np.ndarray:
     return found
 
 
-def _counted(water: Water, system: System) -> np.ndarray:
+def counted_in(water: Water, system: System) -> np.ndarray:
     """(component,) mol per kg of a water, in what the column conserves.
 
     A water that couples the same valences has its totals. One that holds apart what the column couples, or

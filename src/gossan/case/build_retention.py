@@ -17,21 +17,31 @@ from gossan.coupling.problem import Stagnant
 from gossan.transport.grid import Grid
 
 
-def decay_of(case: Case, chemical: int) -> Decay | None:
+def decay_of(case: Case, grid: Grid, chemical: int) -> Decay | None:
     """Half-lives and parents of the tracers, which stand behind so many components (equations.md, 53)."""
+    by_layer = np.array([_rates(case, layer) for layer in case.layers])
+    members = np.flatnonzero((by_layer != 0.0).any(axis=(0, 2)))
+    if not len(members):
+        return None
+    rates, zone = np.unique(by_layer[:, members][:, :, members], axis=0, return_inverse=True)
+    return Decay(chemical + members, np.ascontiguousarray(rates), zone.ravel()[grid.layer])
+
+
+def _rates(case: Case, layer: Layer) -> np.ndarray:
+    """(tracer, tracer) s-1 in a layer, as `Decay` has them of its members."""
     names = case.tracer_names
     rates = np.zeros((len(names), len(names)))
     for row, name in enumerate(names):
         tracer = case.tracers.get(name)
-        if tracer and tracer.half_life:
-            rates[row, row] = -math.log(2.0) / tracer.half_life.si
+        half_life = layer.half_life.get(name) or (tracer.half_life if tracer else None)
+        if half_life:
+            rates[row, row] = -math.log(2.0) / half_life.si
     for row, name in enumerate(names):
         tracer = case.tracers.get(name)
         if tracer and tracer.parent:
             parent = names.index(tracer.parent)
             rates[row, parent] = -rates[parent, parent]
-    members = np.flatnonzero((rates != 0.0).any(axis=1))
-    return Decay(chemical + members, rates[np.ix_(members, members)]) if len(members) else None
+    return rates
 
 
 def stagnant_of(case: Case, grid: Grid) -> Stagnant | None:

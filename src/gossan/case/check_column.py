@@ -45,7 +45,13 @@ def _check_clogging(draft: Draft, layer: Layer, path: Path) -> None:
         return
     law = layer.clogging.law
     path = (*path, "clogging")
-    needed = {"exponent": "3.0"} | ({"critical_porosity": "0.05"} if law == "threshold" else {})
+    tubes = law == "threshold" and "pore_bodies" in draft.at(path)
+    needed = {} if tubes else {"exponent": "3.0"}
+    if law == "threshold":
+        needed["critical_porosity"] = "0.05"
+    if tubes and "exponent" in draft.at(path):
+        wrong = "stands beside exponent: two laws for one layer"
+        draft.fault((*path, "pore_bodies"), wrong, "keep one of the two")
     for name, example in needed.items():
         if name not in draft.at(path):
             draft.fault((*path, name), f'is missing: law = "{law}" needs it', f"write {name} = {example}")

@@ -20,9 +20,20 @@ EXAMPLES = {
 OF_MASS = ("kg/kg", "kg/m3", "m3/kg")  # units of an isotherm, kd apart, that count the solute by its mass
 
 
+def check_half_lives(draft: Draft) -> None:
+    """The half-lives of a layer are of tracers."""
+    tracers = _tracers(draft)
+    for index, layer in enumerate(draft.case.layers or ()):
+        for key in layer.half_life or {}:
+            if key not in tracers:
+                cure = did_you_mean(key, tracers) or f"write [tracers.{key}]"
+                draft.fault(("layers", index, "half_life", key), "is no tracer, and only tracers decay", cure)
+
+
 def check_parents(draft: Draft) -> None:
-    """A parent is a tracer with a half-life, and nothing comes from itself."""
+    """A parent is a tracer that decays somewhere, and nothing comes from itself."""
     tracers = draft.case.tracers or {}
+    decaying = {key for layer in draft.case.layers or () for key in layer.half_life or {}}
     for name, tracer in tracers.items():
         parent = tracer.parent if tracer else ""
         if not parent:
@@ -31,7 +42,7 @@ def check_parents(draft: Draft) -> None:
         if parent not in tracers:
             cure = did_you_mean(parent, tracers) or f"write [tracers.{parent}]"
             draft.fault(at, f'is "{parent}", but there is no [tracers.{parent}]', cure)
-        elif "half_life" not in draft.at(("tracers", parent)):
+        elif "half_life" not in draft.at(("tracers", parent)) and parent not in decaying:
             cure = f'write half_life = "40 d" below [tracers.{parent}]'
             draft.fault(at, f'is "{parent}", which has no half_life and never decays', cure)
         elif name in _forebears(tracers, name):

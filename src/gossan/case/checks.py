@@ -12,7 +12,7 @@ from gossan.base.wrong import did_you_mean
 from gossan.case.check_column import check_layers, check_outlet, check_ports
 from gossan.case.check_flow import check_flow
 from gossan.case.check_redox import check_redox
-from gossan.case.check_retention import check_parents, check_sorption
+from gossan.case.check_retention import check_half_lives, check_parents, check_sorption
 from gossan.case.check_waters import (
     check_tracer,
     check_waters,
@@ -40,6 +40,7 @@ def check_case(draft: Draft, table: Table, files: dict[str, str], folder: FilePa
     check_outlet(draft)
     check_chemistry(draft, table)
     check_ports(draft)
+    check_half_lives(draft)
     check_parents(draft)
     check_sorption(draft, table)
     check_limits(draft, table)

@@ -41,6 +41,9 @@ MOST_CELLS = 1_000_000  # of a layer; more is a slip of the unit of `cell`
 Name = Annotated[str, Text(is_name=True, example='"gate"')]
 PH = Annotated[float, Number("a pH", -2, 16, example="5.9")]
 POROSITY = Number("a porosity", 0, 1, is_open=True, is_share=True, example="0.38")
+POTENTIAL = Quantity(("V",), "a redox potential", '"310 mV"', -3.0, 3.0,
+                     says="a redox potential of water is between -3 and 3 V")  # fmt: skip
+HALF_LIFE = Quantity(("s",), "a half-life", '"40 d"', positive=True)
 INTERVAL = Quantity(("s", "PV"), "a duration", '"60 d"', positive=True)
 
 
@@ -48,11 +51,9 @@ class Water(TableOfCase):
     """A laboratory report, as the laboratory writes it; without analysis it is pure water."""
 
     pH: PH = Field(default=7.0, description="pH; with `balance_on = \"pH\"` a first guess")
-    Eh: Annotated[
-        Amount | None,
-        Quantity(("V",), "a redox potential", '"310 mV"', -3.0, 3.0,
-                 says="a redox potential of water is between -3 and 3 V"),
-    ] = Field(default=None, description="redox potential against the hydrogen electrode; or `pe`")
+    Eh: Annotated[Amount | None, POTENTIAL] = Field(
+        default=None, description="redox potential against the hydrogen electrode; or `pe`"
+    )
     pe: Annotated[float | None, Number("a pe", -50, 50, example="5.2")] = Field(
         default=None, description="-log10 of the electron's activity; or `dissolved_oxygen`"
     )
@@ -102,6 +103,19 @@ class Clogging(TableOfCase):
     critical_porosity: Annotated[
         float | None, Number("a critical porosity", 0, 1, is_open=True, is_share=True, example="0.05")
     ] = Field(default=None, description="of threshold, which needs it: no flow below")
+    pore_bodies: Annotated[
+        float | None, Number("a share of the way", 0, 1, is_open=True, is_share=True, example="0.8")
+    ] = Field(
+        default=None,
+        description="of threshold, instead of an exponent: wide pores and throats in turn, of which the "
+        "throats close at `critical_porosity`; the share of the way that is wide",
+    )
+    residual: Annotated[
+        float | None, Number("a share of the conductivity", 0, 1, is_open=True, is_share=True, example="1e-4")
+    ] = Field(
+        default=None,
+        description="share of the starting conductivity that is left where the law leaves less; default none",
+    )
 
 
 class Layer(TableOfCase):
@@ -126,7 +140,8 @@ class Layer(TableOfCase):
     )
     diffusion: Annotated[Amount, Quantity(("m2/s",), "a diffusion coefficient", '"1e-9 m2/s"', 0.0)] = Field(
         default=amount("1e-9 m2/s", ("m2/s",)),
-        description="in free water, one value for all dissolved components",
+        description="in free water, one value for all dissolved components, at the case's temperature: it "
+        "follows that of the feed, as temperature over viscosity of water",
     )
     tortuosity: Annotated[Winding | None, WindingKind()] = Field(
         default=None,
@@ -137,7 +152,8 @@ class Layer(TableOfCase):
         Amount | None, Quantity(("m/s",), "a conductivity", '"25 m/d"', positive=True)
     ] = Field(
         default=None,
-        description="saturated hydraulic conductivity at the starting porosity; needed with `head_drop`",
+        description="saturated hydraulic conductivity at the starting porosity and the case's temperature: "
+        "it follows that of the feed, as density over viscosity of water; needed with `head_drop`",
     )
     grain_density: Annotated[
         Amount,
@@ -155,6 +171,9 @@ class Layer(TableOfCase):
     surface: Later = Field(default=None, description="hydrous ferric oxide with strong and weak sites")
     sorption: dict[str, Sorption] = Field(default={}, description="an isotherm per component or tracer")
     immobile: Immobile | None = Field(default=None, description="immobile water beside the flowing water")
+    half_life: dict[str, Annotated[Amount, HALF_LIFE]] = Field(
+        default={}, description="by tracer: its half-life in this layer, in place of the tracer's own"
+    )
 
     @property
     def mesh(self) -> tuple[int, float]:
@@ -173,8 +192,10 @@ class Tracer(TableOfCase):
     molar_mass: Annotated[
         Amount | None, Quantity(("kg/mol",), "a molar mass", '"79.9 g/mol"', positive=True)
     ] = Field(default=None, description="needed where amounts of it are in mass")
-    half_life: Annotated[Amount | None, Quantity(("s",), "a half-life", '"40 d"', positive=True)] = Field(
-        default=None, description="first-order decay, in flowing and immobile water and where it is sorbed"
+    half_life: Annotated[Amount | None, HALF_LIFE] = Field(
+        default=None,
+        description="first-order decay, in flowing and immobile water and where it is sorbed; a layer may "
+        "have another (`[layers.half_life]`)",
     )
     parent: Annotated[str, Text(example='"nitrate"')] = Field(
         default="", description="the tracer that decays into this one, mole for mole"

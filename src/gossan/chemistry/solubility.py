@@ -13,12 +13,17 @@ from gossan.base.notation import parse_formula
 from gossan.base.wrong import Wrong
 from gossan.chemistry.activity import IDEAL
 from gossan.chemistry.equilibrium import Equilibrium
-from gossan.chemistry.reservoir import Condition, fixed_ph, held_to
+from gossan.chemistry.redox import ELECTRON
+from gossan.chemistry.reservoir import Condition, fixed_pe, fixed_ph, held_to
 from gossan.chemistry.system import LN10, PROTON, System, build_system
-from gossan.constants.entries import Mineral, Table
+from gossan.constants.couples import DIVIDED, partner
+from gossan.constants.entries import Mineral, Reaction, Table
+from gossan.constants.temperature import log10_k_at
 
 MOST = 1.0  # mol/kg: a solid that would leave more is called soluble, and no number is given
 PASSED_OVER = ("Na", "K")  # no metal that anybody asks for where a solid holds another
+TRACE = log(1e-60)  # ln activity of a metal that takes no ligand away, however strongly it is bound
+ENOUGH = 100.0  # ln mol/kg, far above MOST and far below what a number can hold
 SOLVED = 1e-9  # in ln of the ion activity product: far below what any constant is known to
 
 
@@ -32,7 +37,7 @@ class Solubility:
     low: float  # with the solid's constant one standard uncertainty lower
     high: float  # and higher
     lacks: tuple[str, ...]  # components of the solid whose amounts are not given
-    electrons: bool  # its reaction needs electrons: no solubility while valences are held
+    electrons: bool  # its reaction needs electrons, and no pe is given
 
     @property
     def known(self) -> bool:
@@ -51,6 +56,7 @@ def solubilities(
     totals: Mapping[str, float],
     temperature: float = 298.15,
     minerals: Iterable[str] | None = None,
+    pe: float | None = None,
 ) -> list[Solubility]:
     """Bring every solid, each alone, to equilibrium with water of this pH and these ligands.
 
@@ -58,26 +64,34 @@ def solubilities(
                  is not used
     temperature  K
     minerals     names; default all of the table
+    pe           of the water: gives the electrons of a solid's reaction and divides Fe, Mn and Cu, which are
+                 then counted in all their valences; sulfide, nitrate and the like stay as they are given
     Returns      one a solid, by metal in the order of the table, the least soluble first, then those without
                  a number
-    Valid        for traces: activities are ideal, each valence is held, and no other solid is there
+    Valid        for traces: activities are ideal, valences are held but for what is said of pe, and no other
+                 solid is there
     """
     by_metal: dict[str, list[Mineral]] = {}
     for name in table.minerals if minerals is None else minerals:
         mineral = table.minerals[name]
-        by_metal.setdefault(metal_of(mineral), []).append(mineral)
+        by_metal.setdefault(counted_as(table, mineral, pe), []).append(mineral)
     found = []
     for metal in sorted(by_metal, key=list(table.components).index):
-        rows = _of_one_metal(table, metal, by_metal[metal], pH, totals, temperature)
+        rows = _of_one_metal(table, metal, by_metal[metal], pH, totals, temperature, pe)
         found += sorted(rows, key=lambda row: (not row.known, row.dissolved))
     return found
 
 
-def system_of(
-    table: Table, metals: Iterable[str], totals: Iterable[str], minerals: Iterable[str], temperature: float
-) -> System:
-    """The system of these metals, what else is given, and these solids; activities are ideal."""
-    return build_system(table, [*metals, *totals], minerals, temperature=temperature, activity=IDEAL)
+def counted_as(table: Table, mineral: Mineral, pe: float | None) -> str:
+    """The component that a solid's metal is counted as: under a pe the first ion of its element.
+
+    >>> from gossan.constants.load import load_table
+    >>> table = load_table()
+    >>> [counted_as(table, table.minerals["hematite"], pe) for pe in (None, 4.0)]
+    ['Fe^3+', 'Fe^2+']
+    """
+    metal = metal_of(mineral)
+    return partner(table.components[metal]) if pe is not None and metal in DIVIDED else metal
 
 
 def metal_of(mineral: Mineral) -> str:
@@ -106,20 +120,24 @@ def least_soluble(rows: Iterable[Solubility], among: Iterable[str]) -> set[str]:
 
 def _of_one_metal(
     table: Table, metal: str, minerals: list[Mineral], pH: float, totals: Mapping[str, float],
-    temperature: float,
+    temperature: float, pe: float | None,
 ) -> list[Solubility]:
-    given = {PROTON, metal, *totals}
-    system = system_of(table, [metal], totals, [mineral.name for mineral in minerals], temperature)
-    dissolved = np.array([0.0 if name == metal else totals.get(name, 0.0) for name in system.components])
-    water = _Water(system, pH, dissolved, system.components.index(metal))
+    valences = [name for name in DIVIDED if pe is not None and partner(table.components[name]) == metal]
+    kept = {name: total for name, total in totals.items() if name not in (metal, *valences)}
+    given = {PROTON, metal, *valences, *kept}
+    system = build_system(
+        table, [metal, *kept], (), temperature=temperature, activity=IDEAL, coupled=valences
+    )  # fmt: skip
+    dissolved = np.array([kept.get(name, 0.0) for name in system.components])
+    water = _Water(system, pH, pe, dissolved, metal)
     rows = []
     for mineral in minerals:
         lacks = tuple(name for name in mineral.reaction.components if name not in given)
-        electrons = mineral.reaction.electrons != 0.0
+        electrons = pe is None and mineral.reaction.electrons != 0.0
         band = [np.nan] * 3
         if not lacks and not electrons:
-            sd = mineral.log10_k.sd or 0.0
-            band = [water.leaves(mineral.name, shift) for shift in (-sd, 0.0, sd)]
+            log10_k, sd = log10_k_at(mineral, temperature), mineral.log10_k.sd or 0.0
+            band = [water.leaves(mineral.reaction, log10_k + shift) for shift in (-sd, 0.0, sd)]
         rows.append(Solubility(mineral.name, metal, band[1], band[0], band[2], lacks, electrons))
     return rows
 
@@ -127,41 +145,57 @@ def _of_one_metal(
 class _Water:
     """Water of one pH and given ligands, to which a metal is added until a solid is in equilibrium."""
 
-    def __init__(self, system: System, pH: float, dissolved: np.ndarray, metal: int):
-        self.system, self.pH, self.dissolved, self.metal = system, pH, dissolved, metal
-        self.bare = held_to(system, dissolved, [fixed_ph(system, pH)]).ln_activity[:, 0]
+    def __init__(self, system: System, pH: float, pe: float | None, dissolved: np.ndarray, metal: str):
+        self.system, self.dissolved, self.pe = system, dissolved, pe
+        self.metal = system.basis.index(metal)
+        self.held = [fixed_ph(system, pH)]
+        if system.electron >= 0 and pe is not None:
+            self.held.append(fixed_pe(system, pe))
+        self.bare = held_to(system, dissolved, self.held).ln_activity[:, 0]
+        # at a pe the ln activities of the metal's other valences keep their distance from its own
+        self.valences = [system.basis.index(name) for name in system.valences]
+        self.apart = self._with(TRACE).ln_activity[self.valences, 0] - TRACE if self.valences else 0.0
+        own = [self.metal, *self.valences, *(system.basis.index(name) for name in (PROTON, ELECTRON)
+                                             if name in system.basis)]  # fmt: skip
+        alone = ~np.delete(system.stoichiometry != 0.0, own, axis=1).any(axis=1)
+        self.alone, self.alone_ln_k = system.stoichiometry[alone], system.ln_k[alone]
+        self.holds = (self.alone @ system.conserved)[:, self.metal]
 
-    def leaves(self, mineral: str, shift: float) -> float:
-        """Total metal (mol/kg) beside a solid whose log10 K is shifted; inf where it would exceed MOST.
+    def leaves(self, reaction: Reaction, log10_k: float) -> float:
+        """Total metal (mol/kg) beside a solid that dissolves by a reaction; inf where it would exceed MOST.
 
         The metal takes ligands away and so lowers what its solid feels of them: its activity is at least
         that beside untouched ligands, and is sought upwards from there.
         """
         try:
-            return self._leaves(mineral, shift)
+            return self._leaves(reaction, log10_k)
         except Wrong as wrong:
             if isinstance(wrong.__cause__, SolveError):
                 raise
             return inf  # it would take more than any water holds
 
-    def _leaves(self, mineral: str, shift: float) -> float:
+    def _leaves(self, reaction: Reaction, log10_k: float) -> float:
         from scipy.optimize import brentq
 
-        m = self.system.minerals.index(mineral)
-        row = self.system.mineral_stoichiometry[m]
-        ln_k = self.system.matrices.solid_ln_k[m] + shift * LN10
+        row = np.zeros(len(self.system.basis))
+        for name, times in reaction.components.items():
+            row[self.system.basis.index(name)] = times
+        ln_k = LN10 * (log10_k + reaction.electrons * (self.pe or 0.0))
+        ln_k -= float((row[self.valences] * self.apart).sum())
+        row[self.metal] += row[self.valences].sum()
+        row[self.valences] = 0.0
         others = np.where(np.arange(len(row)) == self.metal, 0.0, self.bare)
 
         def lacking(ln_metal: float) -> float:
             return float(row @ self._with(ln_metal).ln_activity[:, 0] - ln_k)
 
         low = (ln_k - row @ others) / row[self.metal]
-        if low > log(MOST):
+        if low > log(MOST) or self._at_least(low) > MOST:
             return inf
         if lacking(low) < -SOLVED:
             high = low + 1.0
             while lacking(high) < 0.0:
-                if self._total(high) > MOST:
+                if self._at_least(high) > MOST or self._total(high) > MOST:
                     return inf
                 low, high = high, high + 1.0
             low = brentq(lacking, low, high, xtol=SOLVED)
@@ -171,9 +205,17 @@ class _Water:
     def _total(self, ln_metal: float) -> float:
         return float(self._with(ln_metal).amount[self.metal, 0])
 
+    def _at_least(self, ln_metal: float) -> float:
+        """The metal and its hydroxides alone: where that is too much already, no solve is needed."""
+        ln_activity = self.bare.copy()
+        ln_activity[self.metal] = ln_metal
+        ln_activity[self.valences] = ln_metal + self.apart
+        ln_molality = self.alone @ ln_activity + self.alone_ln_k
+        return float(np.exp(np.minimum(ln_molality, ENOUGH)) @ self.holds)
+
     def _with(self, ln_metal: float) -> Equilibrium:
         """The water with the metal's activity held: as much dissolves as that takes (equations.md, 43)."""
-        formula = np.zeros(len(self.system.components))
+        formula = np.zeros(len(self.system.basis))
         formula[self.metal] = 1.0
         metal = Condition(f"an activity of {exp(ln_metal):.3g}", formula, ln_metal)
-        return held_to(self.system, self.dissolved, [fixed_ph(self.system, self.pH), metal])
+        return held_to(self.system, self.dissolved, [*self.held, metal])

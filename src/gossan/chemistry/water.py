@@ -120,7 +120,7 @@ def read_water(
         found = _saturated(report, found)
     if found.system.electron >= 0:
         warnings += plausible.poise(reading, found, _pe(found))
-    warnings += _strength(found) + _pairs(found, table)
+    warnings += beyond_strength(found) + _pairs(found, table)
     return Water(report.name, found, percent, tuple(warnings), reported_pe)
 
 
@@ -156,7 +156,8 @@ def _imbalance(report: LabReport, percent: float) -> list[str]:
     return []
 
 
-def _strength(found: Equilibrium) -> list[str]:
+def beyond_strength(found: Equilibrium) -> list[str]:
+    """Warn of an ionic strength beyond what the law of activities is meant for."""
     strength, law = float(found.ionic_strength[0]), found.system.activity
     if strength <= law.valid_to:
         return []

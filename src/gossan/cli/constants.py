@@ -33,6 +33,9 @@ def parser() -> argparse.ArgumentParser:
     water.add_argument("--solubility", action="store_true",
                        help="print it, by metal; with NAME only of that ion or solid")  # fmt: skip
     water.add_argument("--pH", type=float, metavar="PH", help="of the water (default 7)")
+    water.add_argument("--pe", type=float, metavar="PE", help="of the water, for solids whose reaction needs "
+                       "electrons; divides Fe, Mn and Cu (default: valences are held)")  # fmt: skip
+    water.add_argument("--Eh", metavar="EH", help='or its redox potential, "-150 mV"')
     water.add_argument("--sulfide", metavar="AMOUNT", help='total sulfide, "1e-4 mol/L" (default none)')
     water.add_argument("--carbonate", metavar="AMOUNT", help="total inorganic carbon (default none)")
     water.add_argument("--with", dest="others", action="append", default=[], metavar="ION=AMOUNT",
@@ -44,10 +47,11 @@ def run(args: argparse.Namespace) -> int:
     """Show constants; returns the exit code."""
     from gossan.constants.load import load_table
 
-    asked = args.pH is not None or args.sulfide or args.carbonate or args.others
+    redox = args.pe is not None or args.Eh
+    asked = args.pH is not None or redox or args.sulfide or args.carbonate or args.others
     if asked and not args.solubility:
-        raise _faulty("--pH, --sulfide, --carbonate and --with say what a solubility is wanted in",
-                      "add --solubility")  # fmt: skip
+        wrong = "--pH, --pe, --Eh, --sulfide, --carbonate and --with say what a solubility is wanted in"
+        raise _faulty(wrong, "add --solubility")
     table = load_table(Path(args.constants) if args.constants else None)
     temperature = _kelvin(args.temperature) if args.temperature else None
     if args.solubility:
@@ -56,7 +60,7 @@ def run(args: argparse.Namespace) -> int:
 
 
 def _constants(args: argparse.Namespace, table: Table, temperature: float | None) -> int:
-    from gossan.constants.find import UnknownName, find, find_interaction
+    from gossan.constants.find import UnknownName, find, find_pair
     from gossan.views import constants_sheets as views
 
     if args.name is None:
@@ -64,20 +68,13 @@ def _constants(args: argparse.Namespace, table: Table, temperature: float | None
             groups = (table.components, table.species, table.minerals, table.gases)
             entries = [each for group in groups for each in group.values()]
             listed = [views.entry_json(each, table, temperature) for each in entries]
-            listed += [views.interaction_json(each, table) for each in table.interactions.values()]
+            listed += [views.entry_json(each, table) for each in table.interactions.values()]
             shell.print_json(listed)
         else:
             shell.print_sheets(views.list_sheets(table))
         return DONE
     try:
-        if "/" in args.name:
-            pair = find_interaction(table, args.name)
-            if args.json:
-                shell.print_json([views.interaction_json(pair, table)])
-            else:
-                shell.print_sheets([views.interactions_sheet([pair], table)])
-            return DONE
-        found = find(table, args.name)
+        found = (find_pair(table, args.name),) if "/" in args.name else find(table, args.name)
     except UnknownName as unknown:
         raise GossanError(str(unknown)) from None
     if args.json:
@@ -96,6 +93,8 @@ def _solubility(args: argparse.Namespace, table: Table, temperature: float | Non
     pH = 7.0 if args.pH is None else args.pH
     if not LEAST_PH <= pH <= MOST_PH:
         raise _faulty(f"--pH is {pH:g}", f"a pH is between {LEAST_PH:g} and {MOST_PH:g}")
+    temperature = temperature or REFERENCE
+    pe = _pe(args, temperature)
     given = [pair for pair in (("HS", args.sulfide), ("CO3", args.carbonate)) if pair[1]]
     for text in args.others:
         ion, separated, amount = text.partition("=")
@@ -107,7 +106,7 @@ def _solubility(args: argparse.Namespace, table: Table, temperature: float | Non
     from gossan.views.solubility_sheets import solubility_sheets
 
     try:
-        found = work_out(table, pH, given, temperature or REFERENCE, args.name or "")
+        found = work_out(table, pH, given, temperature, args.name or "", pe)
     except Wrong as wrong:
         raise _faulty(f"the water {wrong.wrong}", wrong.right) from None
     except UnknownName as unknown:
@@ -115,10 +114,24 @@ def _solubility(args: argparse.Namespace, table: Table, temperature: float | Non
     if args.json:
         shell.print_json(found.to_json())
         return DONE
-    if found.validity:
-        shell.say(f"warning: {found.validity}")
+    for warning in found.warnings:
+        shell.say(f"warning: {warning}")
     shell.print_sheets(solubility_sheets(found))
     return DONE
+
+
+def _pe(args: argparse.Namespace, temperature: float) -> float | None:
+    from gossan.case.model import POTENTIAL
+    from gossan.constants.potential import pe_of_potential
+
+    if args.Eh is None:
+        return None if args.pe is None else float(args.pe)
+    if args.pe is not None:
+        raise _faulty("--pe and --Eh say the same twice", "keep one of them")
+    try:
+        return pe_of_potential(float(POTENTIAL.read(args.Eh).si), temperature)
+    except Wrong as wrong:
+        raise _faulty(f"--Eh {wrong.wrong}", wrong.right) from None
 
 
 def _kelvin(text: str) -> float:

@@ -10,8 +10,9 @@ from pathlib import Path
 
 from gossan.base.errors import DONE, ResultError
 from gossan.cli import shell
+from gossan.cli.compiling import announce_compiling
 
-WHAT = ("ports", "profiles", "ledger", "limits")
+WHAT = ("ports", "profiles", "ledger", "limits", "bed", "certificate")
 LAYOUT = """\
 ports     a row per port and record: time, pore volumes, Darcy flux, pH, then
           `dissolved Zn^2+ (mol m-3)` (flux-averaged), `resident ...`, `passed ...`
@@ -20,6 +21,15 @@ profiles  in long form, a row per frame and cell: time, x, layer, then all that
           `activity ...` (log10), porosity, conductivity, pH, ionic strength
 ledger    a row per record: entered, left, stored, made and error of every solute
 limits    a row per limit: when it was first exceeded, the last and the worst value
+bed       a row per frame: loss of head over each layer and the column, conductivity
+          left of the first to fall of all cells and of the column, also by other laws
+certificate
+          a row per cell at the last checkpoint: what its equilibrium misses its
+          equations by, worked out anew with 32 digits: `balance ...` as a share of
+          the largest term, ionic strength as a share, minerals in ln of saturation
+          ratio (present: away from 0; absent: above 0; full: below 0),
+          `ln_activity ...`, the estimated error of the ln activity; `diluted since`
+          is what water that solids freed or bound changed after the solve
 
 Units stand in the heads, decimals have a point, times are in s; a field is empty
 where there is nothing to say."""
@@ -43,7 +53,10 @@ def run(args: argparse.Namespace) -> int:
     from gossan.views.exports import WHAT as TABLES
     from gossan.views.exports import cell_text
 
-    rows = TABLES[args.what](open_result(args.file))
+    result = open_result(args.file)
+    if args.what == "certificate":
+        announce_compiling()
+    rows = TABLES[args.what](result)
     lines = _lines([cell_text(cell) for cell in row] for row in rows)
     if args.output is None:
         shell.write(lines)

@@ -110,6 +110,8 @@ def _told(args: argparse.Namespace, case: Case, path: Path, ending: Ending | Non
         shell.say(f"warning: {warning}")
     if ending is not None and ending.status != "finished":
         return _stopped(path, ending)
+    if ending is not None and ending.detail:
+        shell.say(f"ended: {ending.detail}")
     for verdict in summary.exceeded if args.enforce_limits else ():
         assert verdict.bound
         shell.say(f"limit exceeded: {verdict.quantity} at {verdict.port} (limit {verdict.bound.text})")

@@ -2,9 +2,17 @@
 
 from __future__ import annotations
 
+import re
+
 from gossan.base.notation import charge_of, normal_ion, parse_formula
-from gossan.base.wrong import did_you_mean
+from gossan.base.wrong import Wrong, did_you_mean
+from gossan.constants.couples import couple_named
 from gossan.constants.entries import Component, Gas, Interaction, Mineral, Species, Table
+from gossan.constants.names import component_named, is_bare_element
+
+GAS = "(g)"
+# a charge as it is often typed: Zn2+ and SO42-, Zn+2 and SO4-2
+CHARGE_LAST, SIGN_FIRST = re.compile(r"(.*[A-Za-z\d)])(\d)([+-])"), re.compile(r"(.*[A-Za-z\d)])([+-])(\d)")
 
 
 class UnknownName(LookupError):
@@ -51,7 +59,7 @@ def find_interaction(table: Table, pair: str) -> Interaction:
 
     Raises  UnknownName, with the pairs that the table has of the first ion
     """
-    ions = [_normal(ion) for ion in pair.split("/")]
+    ions = [_ion(table, ion) for ion in pair.split("/")]
     for both in (tuple(ions), tuple(reversed(ions))):
         if len(both) == 2 and both in table.interactions:
             return table.interactions[both]
@@ -60,23 +68,47 @@ def find_interaction(table: Table, pair: str) -> Interaction:
     raise UnknownName(f"the table has no interaction coefficient of {' and '.join(ions)}", right)
 
 
+def find_pair(table: Table, name: str) -> Interaction | Component:
+    """Find the interaction coefficient of two ions, or what a couple such as Fe(II)/Fe(III) holds apart.
+
+    Raises  UnknownName, with the pairs that the table has of the first ion
+    """
+    try:
+        return find_interaction(table, name)
+    except UnknownName:
+        sides = [_ion(table, side) for side in name.split("/")]
+        try:
+            return table.components[couple_named("/".join(sides), table)]
+        except Wrong:
+            pass
+        raise
+
+
 def find(table: Table, name: str) -> tuple[Component | Species | Mineral | Gas, ...]:
     """Find everything that bears a name: CO2 is a species and a gas, CaCO3 a species and three minerals.
 
+    A name that is nobody's own may be one that laboratories use: zinc, SO4, Fe(III), S(-II).
     Raises  UnknownName, with the nearest name
     """
     ion = _normal(name)
+    if ion.endswith(GAS) and ion.removesuffix(GAS) in table.gases:
+        return (table.gases[ion.removesuffix(GAS)],)
     groups = (table.components, table.species, table.gases)
-    found: list[Component | Species | Mineral | Gas] = [group[ion] for group in groups if ion in group]
+    found: list[Component | Species | Mineral | Gas] = [
+        group[each] for each in dict.fromkeys((ion, *_typed(name))) for group in groups if each in group
+    ]
+    if is_bare_element(name):
+        found += _in_a_laboratory(table, name)  # Zn is the ion first, and the metal
     try:
         found.append(find_mineral(table, name))
     except UnknownName as unknown:
         found += _with_formula(table, name)
+        found = found or [*_in_a_laboratory(table, name)]
         if not found:
             known = [each for group in groups for each in group]
-            raise UnknownName(
-                f"the table has no '{name}'", did_you_mean(ion, known, quote="") or unknown.right
-            ) from None
+            near = did_you_mean(ion, known, quote="") or unknown.right
+            near = near or "gossan constants lists all it has"
+            raise UnknownName(f"the table has no '{name}'", near) from None
     return tuple(found)
 
 
@@ -85,6 +117,33 @@ def _normal(ion: str) -> str:
         return normal_ion(ion)
     except ValueError:
         return ion.strip()
+
+
+def _ion(table: Table, text: str) -> str:
+    """An ion of a pair, however it is typed."""
+    known = [
+        each
+        for each in (_normal(text), *_typed(text))
+        if each in table.components or each in table.species
+    ]
+    called = known or [component.name for component in _in_a_laboratory(table, text)]
+    return called[0] if called else _normal(text)
+
+
+def _typed(name: str) -> list[str]:
+    """The ions that a charge without its ^ may mean."""
+    last, first = CHARGE_LAST.fullmatch(name.strip()), SIGN_FIRST.fullmatch(name.strip())
+    if last:
+        return [f"{last[1]}^{last[2]}{last[3]}"]
+    return [f"{first[1]}^{first[3]}{first[2]}"] if first else []
+
+
+def _in_a_laboratory(table: Table, name: str) -> list[Component]:
+    """The component that a laboratory means by a name."""
+    try:
+        return [table.components[component_named(name, table.components).component]]
+    except Wrong:
+        return []
 
 
 def _with_formula(table: Table, formula: str) -> list[Mineral]:

@@ -1,4 +1,4 @@
-"""Pure water against temperature: its density and its Debye-Hueckel parameters."""
+"""Pure water against temperature: its density, viscosity and Debye-Hueckel parameters."""
 
 from __future__ import annotations
 
@@ -13,6 +13,10 @@ PER_ANGSTROM = 1e10  # 1/m
 # Kell (1975), J. Chem. Eng. Data 20, 97-105: kg/m3 at 1 atm against degC; from memory
 _KELL = (999.83952, 16.945176, -7.9870401e-3, -46.170461e-6, 105.56302e-9, -280.54253e-12)
 _KELL_BELOW = 16.879850e-3
+
+# Huber, Perkins, Laesecke, Friend, Sengers, Assael, Metaxa, Vogel, Mares & Miyagawa (2009), J. Phys. Chem.
+# Ref. Data 38, 101-125, for 1 bar: factors in uPa s and powers of T / 300 K; from memory
+_HUBER = ((280.68, -1.9), (511.45, -7.7), (61.131, -19.6), (0.45903, -40.0))
 
 
 def density(temperature_k: float) -> float:
@@ -30,6 +34,48 @@ def density(temperature_k: float) -> float:
     for coefficient in reversed(_KELL):
         above = above * t + coefficient
     return above / (1.0 + _KELL_BELOW * t)
+
+
+def viscosity(temperature_k: float) -> float:
+    """Viscosity of pure water at 1 bar, in Pa s (equations.md, 85).
+
+    temperature_k  K, from 273.15 to 373.15
+    Raises   ValueError outside of that
+    Source   Huber et al. (2009), J. Phys. Chem. Ref. Data 38, 101-125: the short form of the IAPWS
+             formulation of 2008, from memory; its error there is below 1 %
+
+    >>> round(1e3 * viscosity(293.15), 4)
+    1.0016
+    """
+    _celsius(temperature_k, 0.0, 100.0)
+    share = temperature_k / 300.0
+    return 1e-6 * sum(factor * share**power for factor, power in _HUBER)
+
+
+def fluidity_ratio(temperature_k: float, reference: float) -> float:
+    """Weight over viscosity of water, as a multiple of that at a reference (equations.md, 85).
+
+    temperature_k, reference  K, from 273.15 to 373.15
+    Returns  what a bed's hydraulic conductivity is multiplied by
+
+    >>> round(fluidity_ratio(275.15, 295.15), 3)
+    0.572
+    """
+    thinner = viscosity(reference) / viscosity(temperature_k)
+    return density(temperature_k) / density(reference) * thinner if temperature_k != reference else 1.0
+
+
+def diffusion_ratio(temperature_k: float, reference: float) -> float:
+    """How fast solutes diffuse in water, as a multiple of that at a reference (equations.md, 85).
+
+    temperature_k, reference  K, from 273.15 to 373.15
+    Valid    for ions within about 12 % over 25 K; the law is that of large round particles
+    Source   Einstein (1905), Ann. Phys. 322, 549-560, with Stokes's law of drag; from memory
+
+    >>> round(diffusion_ratio(275.15, 295.15), 3)
+    0.533
+    """
+    return temperature_k / reference * viscosity(reference) / viscosity(temperature_k)
 
 
 def debye_huckel(temperature_k: float) -> tuple[float, float]:

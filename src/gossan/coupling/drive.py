@@ -8,10 +8,12 @@ from functools import cached_property
 
 import numpy as np
 
+from gossan.constants.water import diffusion_ratio
 from gossan.coupling.feeds import Push
 from gossan.coupling.pores import flow
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State
+from gossan.transport.faces import Faces, faces_of
 
 
 def pore_volumes(problem: Problem, state: State) -> float:
@@ -60,10 +62,16 @@ class Drive:
         return self._number(self.problem.feeds.temperature, 0.0)
 
     @property
+    def push(self) -> Push:
+        """What drives the water at this instant."""
+        return self._push(0.0)
+
+    @property
     def ramps(self) -> bool:
-        """Whether the flow changes by itself within a step."""
+        """Whether flow, or how well the bed conducts, changes by itself within a step."""
         feeds = self.problem.feeds
-        return any(feeds.slope(values, self.piece) for values in (feeds.darcy_flux, feeds.head_drop))
+        courses = (feeds.darcy_flux, feeds.head_drop, feeds.temperature)
+        return any(feeds.slope(values, self.piece) for values in courses)
 
     def flow(self, dt: float, span: float | None = None) -> tuple[np.ndarray, np.ndarray]:
         """Darcy flux (face,) m s-1 and head (face,) m, the mean over the next span, s; 0 for this instant.
@@ -73,11 +81,19 @@ class Drive:
         span = dt if span is None else span
         return flow(self.problem, self.state, dt, self._push(0.5 * span))
 
+    def faces(self, darcy_flux: np.ndarray, span: float = 0.0) -> Faces:
+        """The faces of the column, as warm as it is on the mean over the next span, s; 0 for this instant.
+
+        darcy_flux  (face,) m s-1
+        """
+        warmth = diffusion_ratio(self._push(0.5 * span).temperature, self.problem.reference_temperature)
+        return faces_of(self.problem.transport, self.state.water, darcy_flux, warmth)
+
     def rise(self, dt: float) -> float:
         """How fast the Darcy flux through the inlet changes, m s-2; dt as in `flow`."""
         if not self.ramps:
             return 0.0
-        # straight where the head changes as well, so that any span tells
+        # straight where a head changes, so that any span tells; nearly so where the temperature does
         first, mean = (float(self.flow(dt, span)[0][0]) for span in (0.0, dt))
         return (mean - first) / (0.5 * dt)
 
@@ -110,7 +126,8 @@ class Drive:
     def _push(self, later: float) -> Push:
         feeds = self.problem.feeds
         # flow changes between marks only where the clock is time: a share of a volume would need the flux
-        return Push(self._number(feeds.darcy_flux, later), self._number(feeds.head_drop, later))
+        courses = (feeds.darcy_flux, feeds.head_drop, feeds.temperature)
+        return Push(*(self._number(values, later) for values in courses))
 
     def _number(self, values: np.ndarray, later: float) -> float:
         feeds = self.problem.feeds

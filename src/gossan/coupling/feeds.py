@@ -13,10 +13,11 @@ from gossan.coupling.schedule import SAME, Schedule
 
 
 class Push(NamedTuple):
-    """How the water is driven; one of the two is held, the other NaN."""
+    """How the water is driven, and how warm it is; flux or head is held, the other NaN."""
 
     darcy_flux: float  # m s-1, through the inlet
     head_drop: float  # m, over the whole column
+    temperature: float  # K
 
 
 @dataclass(frozen=True, eq=False)

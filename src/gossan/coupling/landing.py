@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from gossan.chemistry.decay import Kept, decayed
+from gossan.chemistry.decay import KeptByCell, decayed
 from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.chemistry.isotherm import Isotherms, shared_out
 from gossan.coupling.problem import Problem
@@ -38,7 +38,7 @@ def land(
     start: Equilibrium,
     guess: np.ndarray,
     isotherms: Isotherms | None,
-    kept: Kept | None,
+    kept: KeptByCell | None,
     moved: np.ndarray,
     water: np.ndarray,
 ) -> Landed:
@@ -62,7 +62,7 @@ def land(
 
 
 def _tracers(
-    problem: Problem, begun: State | StillWater, isotherms: Isotherms | None, kept: Kept | None,
+    problem: Problem, begun: State | StillWater, isotherms: Isotherms | None, kept: KeptByCell | None,
     moved: np.ndarray, sorbed: np.ndarray, water: np.ndarray,
 ) -> np.ndarray | None:
     """Decay and sorption of the tracers; moved and sorbed are changed in place, what decay made returned."""

@@ -13,7 +13,7 @@ from gossan.chemistry.equilibrium import Solver
 from gossan.coupling.attempt import Trial, attempt
 from gossan.coupling.drive import Drive, at_once, pore_volumes, settled, time_to_pass
 from gossan.coupling.pace import Pace, acceptable
-from gossan.coupling.pores import pore_room
+from gossan.coupling.pores import LANDING, pore_room, share_to_close
 from gossan.coupling.problem import Problem
 from gossan.coupling.schedule import Schedule
 from gossan.coupling.state import State
@@ -44,7 +44,7 @@ class Stride:
 
 
 class Clogged(Exception):
-    """A cell has closed; not a fault: the run stops there, and says so."""
+    """A cell has closed; not a fault: the run has come to its end, and says so."""
 
     def __init__(self, cell: int, time: float):
         super().__init__(cell, time)
@@ -80,8 +80,8 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
     drive = Drive(problem, state)
     entered = pore_volumes(problem, state)
     before = settled(problem, state)
-    room = pore_room(problem, state)
-    if room.min() < 0.0:
+    room = pore_room(problem, state, drive.push)
+    if room.min() <= LANDING:
         raise Clogged(int(room.argmin()), state.time)
     shortest = SHORTEST * max(state.time, pace.dt)
     failure: SolveError | None = None
@@ -94,13 +94,13 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
         if drive.ramps:
             wish, _ = _fitted(problem, state, entered, inlet, pace.dt)
             darcy_flux, head = drive.flow(pace.dt, wish)
-        faces = faces_of(problem.transport, state.water, darcy_flux)
+        faces = drive.faces(darcy_flux)
         longest, implicit = longest_step(problem, faces)
         theta = WEIGHT_OF_END[problem.coupling] if implicit else None
         dt, lands = _fitted(problem, state, entered, inlet, min(pace.dt, longest))
         if drive.ramps:
             darcy_flux, head = drive.flow(pace.dt, dt)
-            faces = faces_of(problem.transport, state.water, darcy_flux)
+            faces = drive.faces(darcy_flux, dt)
         try:
             begun, start = state, problem.at(drive.temperature, before)
             if start.system is not before.system:
@@ -113,8 +113,12 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
         if trial is not None:
             following = pace.after(dt, trial.error, trial.pore_change, problem.accuracy, longest)
             if acceptable(trial.error, trial.pore_change, problem.accuracy):
-                break
-            pace = replace(following, dt=min(following.dt, 0.5 * dt))
+                beyond = pore_room(problem, trial.state, drive.push)
+                if beyond.min() >= 0.0:
+                    break
+                pace = replace(pace, dt=dt * share_to_close(room, beyond))
+            else:
+                pace = replace(following, dt=min(following.dt, 0.5 * dt))
         else:
             pace = replace(pace, dt=0.25 * dt)
         rejected += 1

@@ -18,7 +18,7 @@ from gossan.transport.clogging import Clogging
 from gossan.transport.faces import Transport
 from gossan.transport.grid import Grid
 
-CLOGGED = 1e-3  # porosity at which any cell counts as closed
+CLOGGED = 1e-3  # porosity at which any cell counts as full
 MOLAR_MASS_OF_WATER = 0.018015  # kg/mol; IUPAC standard atomic weights (2021)
 
 
@@ -50,6 +50,7 @@ class Problem:
     transport: Transport
     feeds: Feeds
     system_at: Callable[[float], System]  # the same substances at another temperature, K
+    reference_temperature: float  # K, at which conductivity and diffusion in the water are as given
     conductivity: np.ndarray  # (cell,) m s-1 of the clean bed, NaN where it is not known
     clogging: tuple[Clogging, ...]  # of each layer
     porosity: np.ndarray  # (cell,) water-filled fraction at the start, immobile water included
@@ -173,8 +174,8 @@ class Problem:
 
     @cached_property
     def closing(self) -> np.ndarray:
-        """(cell,) porosity at which a cell counts as closed: next to none, or its law's critical one."""
-        critical = np.array([c.critical_porosity if c.law == "threshold" else 0.0 for c in self.clogging])
+        """(cell,) porosity at which a cell lets no water through: next to none, or its law's critical one."""
+        critical = np.array([clogging.closes_at for clogging in self.clogging])
         return np.maximum(CLOGGED, critical[self.grid.layer] * (1.0 + 1e-9))
 
     @cached_property

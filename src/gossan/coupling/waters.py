@@ -53,7 +53,7 @@ class Waters:
             members = problem.decay.solutes
             stock = self.amount.copy()
             stock[problem.sorbates] += self.state.sorbed
-            made[members] += (self.kept.whole @ stock[members] - stock[members]) * width
+            made[members] += (self.kept.alone(stock[members]) - stock[members]) * width
         return made
 
     def stage(self, passed: np.ndarray, before: Stage | None = None) -> Stage:
@@ -80,9 +80,8 @@ class Waters:
         start = before.still.found if before and before.still else equilibrium_of(problem, still)
         guess = before.still.sorbed if before and before.still else still.sorbed
         laws = problem.still_isotherms
-        landed = land(
-            problem, self.solver, still, start, guess, laws, self.kept, moved, beside.still_water
-        )
+        kept = self.kept.at(beside.cells) if self.kept else None
+        landed = land(problem, self.solver, still, start, guess, laws, kept, moved, beside.still_water)
         return Stage(flowing, landed, arriving, exchange)
 
     def difference(self, first: Stage, passed: np.ndarray, more: np.ndarray) -> np.ndarray:

@@ -121,7 +121,7 @@ ATTRIBUTES: dict[str, str] = {
     "Conventions": f"`{CONVENTIONS}`",
     "title": "the title of the case",
     "status": "`running` (also in a file whose run was killed), `finished`, `stopped` or `failed`",
-    "reason": "why it stopped or failed; empty otherwise",
+    "reason": "why it stopped or failed; `clogged` where a closed cell ended a finished run; empty otherwise",
     "gossan_version": "the program that wrote the file",
     "case": "the whole TOML text of the case",
     "constants": "the whole text of the user's own constants; empty without",

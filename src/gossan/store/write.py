@@ -255,8 +255,18 @@ def _extend(target: h5py.File, datasets: file.Datasets, blocks: Mapping[str, dic
     target.flush()
 
 
+def last_parts(path: str | Path) -> dict[str, Any]:
+    """What the newest checkpoint of a file kept, which is left as it is: parts as in ResultWriter.checkpoint.
+
+    Works while another process writes the file. Raises ResultError where no whole checkpoint is to be had.
+    """
+    path = Path(path)
+    with _told(path), _opened(path) as old:
+        return _last_seen(path, old)[2].parts
+
+
 def _last_seen(path: Path, old: h5py.File) -> tuple[Axes, dict[str, str], Checkpoint]:
-    """A file's axes and attributes, and its own newest checkpoint, from beside it or within."""
+    """A file's axes and attributes, and its own newest checkpoint, from beside it or within it."""
     found = saved(path)
     try:
         attributes = {name: str(old.attrs[name]) for name in ATTRIBUTES}

@@ -15,6 +15,13 @@ class Clogging:
     law: str = "kozeny-carman"
     exponent: float = 3.0  # power and threshold
     critical_porosity: float = 0.0  # threshold
+    pore_bodies: float | None = None  # threshold: their share of the way, instead of an exponent
+    residual: float = 0.0  # of the clean conductivity, left however little the law leaves
+
+    @property
+    def closes_at(self) -> float:
+        """The porosity at which nothing flows any more, 0 where the law has none."""
+        return self.critical_porosity if self.law == "threshold" and not self.residual else 0.0
 
 
 def kozeny_carman(porosity: np.ndarray, initial: np.ndarray) -> np.ndarray:
@@ -61,6 +68,28 @@ def threshold(porosity: np.ndarray, initial: np.ndarray, exponent: float, critic
     return (np.maximum(porosity - critical, 0.0) / (initial - critical)) ** exponent
 
 
+def bodies_and_throats(
+    porosity: np.ndarray, initial: np.ndarray, critical: float, bodies: float
+) -> np.ndarray:
+    """The same for wide and narrow tubes in series, whose narrow ones close first (equations.md, 82).
+
+    porosity, initial  (cell,), 1, as in `kozeny_carman`
+    critical           1, in [0, initial): the porosity at which the throats are full
+    bodies             1, in (0, 1): share of the way that runs through the bodies
+    Returns            (cell,), 1; 0 from the critical porosity down
+    Source             Verma & Pruess (1988), J. Geophys. Res. 93, 1159-1173; from memory
+
+    >>> [round(float(bodies_and_throats(n, 0.5, 0.4, 0.8)), 3) for n in (0.5, 0.45, 0.4)]
+    [1.0, 0.269, 0.0]
+    """
+    open_part = np.maximum(porosity - critical, 0.0) / (initial - critical)
+    wider = critical / (bodies * (initial - critical))  # bodies over throats in the clean bed, less 1
+    way = open_part + wider
+    share = np.divide(open_part, way, out=np.ones_like(way), where=way > 0.0)
+    clean = 1.0 - bodies + bodies / (1.0 + wider) ** 2
+    return open_part**2 * clean / (1.0 - bodies + bodies * share**2)
+
+
 def conductivity_left(
     cloggings: Sequence[Clogging], layer: np.ndarray, porosity: np.ndarray, initial: np.ndarray
 ) -> np.ndarray:
@@ -73,6 +102,8 @@ def conductivity_left(
     for number, clogging in enumerate(cloggings):
         here = layer == number
         left[here] = _by_law(clogging, porosity[here], initial[here])
+        if clogging.residual:
+            left[here] = np.maximum(left[here], clogging.residual)
     return left
 
 
@@ -82,6 +113,8 @@ def _by_law(clogging: Clogging, porosity: np.ndarray, initial: np.ndarray) -> np
             return kozeny_carman(porosity, initial)
         case "power":
             return power(porosity, initial, clogging.exponent)
+        case "threshold" if clogging.pore_bodies is not None:
+            return bodies_and_throats(porosity, initial, clogging.critical_porosity, clogging.pore_bodies)
         case "threshold":
             return threshold(porosity, initial, clogging.exponent, clogging.critical_porosity)
         case "none":

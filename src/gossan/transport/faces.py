@@ -66,13 +66,16 @@ class Faces:
         """(solute,) mol m-3 in the pore water at a face (equations.md, 45).
 
         dissolved (solute, cell), inflow (solute,) mol m-3; through (solute,) mol m-2 s-1, what passes there.
-        Between unlike cells the value lies where both half cells pass the same by dispersion; a third-type
-        inflow stands D / velocity before the inlet; at the outlet it is what leaves.
+        Between cells the value lies where both half cells pass the same by dispersion, between layers it is
+        read downstream; a third-type inflow stands D / velocity before the inlet; at the outlet it is what
+        leaves.
         """
         transport, last = self.transport, self.storage.size
         if face == 0:
             return dissolved[:, 0] - self.lean_left[0] * (dissolved[:, 0] - inflow)
         here = dissolved[:, face - 1]
+        if self._behind_a_layer(face):
+            return self._between(dissolved, through, face)
         if face < last:
             return here + self.lean_right[face - 1] * (dissolved[:, face] - here)
         if transport.held_outlet:
@@ -80,6 +83,28 @@ class Faces:
         if self.darcy_flux[last] > 0.0:
             return (through + self.outlet_spread * transport.beyond[1]) / self.darcy_flux[last]
         return here + 0.5 * transport.grid.width[-1] * transport.beyond[1]
+
+    def _behind_a_layer(self, face: int) -> bool:
+        """Whether a face has another layer before it, and two cells of one behind it that disperse."""
+        layer = self.transport.grid.layer
+        if face + 1 >= layer.size or layer[face - 1] == layer[face] or layer[face] != layer[face + 1]:
+            return False
+        return bool(self.conductance[face] > 0.0 and self.darcy_flux[face] >= 0.0)
+
+    def _between(self, dissolved: np.ndarray, through: np.ndarray, face: int) -> np.ndarray:
+        """(solute,) mol m-3 between two layers (equations.md, 81).
+
+        Before the face the profile may bend as sharply as D / velocity of that layer; behind it, it does not.
+        """
+        width = self.transport.grid.width
+        first, second = width[face], width[face + 1]
+        spread = 0.5 * first * self.conductance[face] / self.lean_left[face]
+        ratio = ((first + second) ** 3 - first**3) / (second * first**2)
+        lever = (0.5 * ratio - 1.0) * first - 0.5 * second
+        here, behind = dissolved[:, face - 1], dissolved[:, face]
+        value = spread * (ratio * behind - dissolved[:, face + 1]) + lever * through
+        value /= spread * (ratio - 1.0) + lever * self.darcy_flux[face]
+        return np.clip(value, np.minimum(here, behind), np.maximum(here, behind))
 
 
 def transport_of(
@@ -116,21 +141,25 @@ def transport_of(
     )
 
 
-def faces_of(transport: Transport, water: np.ndarray, darcy_flux: np.ndarray) -> Faces:
+def faces_of(
+    transport: Transport, water: np.ndarray, darcy_flux: np.ndarray, warmth: float = 1.0
+) -> Faces:
     """The faces at one moment: conductances, slopes that follow from them, how fast cells are crossed.
 
     water (cell,) m3 m-3, > 0; darcy_flux (face,) m s-1
+    warmth  1, diffusion in the water over that of the grid: what temperature makes of it
     """
     grid = transport.grid
+    diffusion = grid.diffusion * warmth
     conductance, lean_left, lean_right = np.empty_like(darcy_flux), np.empty_like(water), np.empty_like(water)
     factor = winding(grid.tortuosity, grid.layer, water)
-    conduct(darcy_flux, water, grid.width, grid.dispersivity, factor, grid.diffusion, transport.first_type,
+    conduct(darcy_flux, water, grid.width, grid.dispersivity, factor, diffusion, transport.first_type,
             transport.held_outlet, conductance, lean_left, lean_right)
     storage = water * grid.width
     speed = np.maximum(np.abs(darcy_flux[:-1]), np.abs(darcy_flux[1:])) / storage
     flux = max(float(darcy_flux[-1]), 0.0)
     mean = 0.5 * abs(float(darcy_flux[-2] + darcy_flux[-1]))
-    spread = float(grid.dispersivity[-1] * mean + water[-1] * factor[-1] * grid.diffusion[-1])
+    spread = float(grid.dispersivity[-1] * mean + water[-1] * factor[-1] * diffusion[-1])
     rise = 0.0
     if flux > 0.0 and not transport.held_outlet and grid.width.size > 1:
         rise = outlet_rise(float(grid.width[-1]), float(grid.width[-2]), spread / flux)

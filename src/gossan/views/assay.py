@@ -18,7 +18,6 @@ from gossan.chemistry.certificate import Certificate, certify_water
 from gossan.chemistry.redox import ELECTRON, PROTON
 from gossan.chemistry.validity import validity_note
 from gossan.chemistry.water import REFUSE_PERCENT, WARN_PERCENT, Water
-from gossan.constants.entries import Table
 from gossan.constants.find import find_mineral
 from gossan.constants.oxygen import air_saturated
 from gossan.constants.potential import potential_of_pe
@@ -211,13 +210,23 @@ def assay(water: Case | str | Path | Mapping[str, Any], name: str | None = None,
     Raises    InputError
     """
     if isinstance(water, Mapping):
-        case = case_from_data({**settings, "waters": {name or "water": dict(water)}}, "assay")
+        case = case_of_water(water, name, settings)
     else:
         case = water if isinstance(water, Case) else read_case(water)
     names = None if name is None else [known_water(case, name)]
-    forms = _forms(case, case.table)
+    forms = named_forms(case)
     found = read_waters(case, names)
     return Assay({each: _worked_out(case, each, read, forms) for each, read in found.items()})
+
+
+def work_out(case: Case, name: str) -> WaterAssay:
+    """One water of a case; raises InputError."""
+    return assay(case, name)[name]
+
+
+def case_of_water(water: Mapping[str, Any], name: str | None, settings: Mapping[str, Any]) -> Case:
+    """A case of one water, given as the keys of its table, and other tables beside it."""
+    return case_from_data({**settings, "waters": {name or "water": dict(water)}}, "assay")
 
 
 def _worked_out(case: Case, name: str, water: Water, forms: frozenset[str]) -> WaterAssay:
@@ -234,9 +243,9 @@ def known_water(case: Case, name: str) -> str:
     return name
 
 
-def _forms(case: Case, table: Table) -> frozenset[str]:
+def named_forms(case: Case) -> frozenset[str]:
     """The minerals that a case lets form."""
-    chemistry = case.chemistry
+    chemistry, table = case.chemistry, case.table
     if chemistry.minerals is not None:
         listed = {find_mineral(table, name).name for name in chemistry.minerals}
     else:

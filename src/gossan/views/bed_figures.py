@@ -6,12 +6,13 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from gossan.recording import case_of
 from gossan.store.layout import variable
 from gossan.store.read import Result
 from gossan.views import chosen, style
+from gossan.views.bed import LEVELS, bed_of
 from gossan.views.profile_figures import along_column
 from gossan.views.scales import axis_label, length_scale, time_scale
-from gossan.views.summary import HALF, fractions_left
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
@@ -27,8 +28,8 @@ def pores(result: Result) -> Figure:
     time = time_scale(float(profiles.time.values[-1]))
     times = profiles.time.values * time.factor
     x = length_scale(float(result.axes.face[-1]))
-    left = fractions_left(result)
-    known = bool(np.isfinite(left).any())
+    bed = bed_of(result, case_of(result))
+    left, known = bed.cells, bed.known
     figure, grid = style.sheet_of_paper(2 if known else 1, 2, 5.2 if known else 3.1, sharex="col")
     quantities = [(profiles.porosity.values, "porosity")]
     if known:
@@ -44,7 +45,7 @@ def pores(result: Result) -> Figure:
         for ax in (along, through):
             style.at_least_spanning(ax, LEAST_SPAN)
     if known:
-        grid[1, 1].axhline(HALF, color=style.FAINT, linewidth=0.9, linestyle=(0, (1, 1)))
+        grid[1, 1].axhline(LEVELS["half"], color=style.FAINT, linewidth=0.9, linestyle=(0, (1, 1)))
     grid[-1, 0].set_xlabel(f"distance from the inlet ({x.unit})")
     grid[-1, 1].set_xlabel(axis_label("profiles", "time", time))
     grid[0, 1].legend(loc="best")

@@ -51,13 +51,20 @@ def _is_formula(name: str) -> bool:
 
 
 def minerals(result: Result, most: int = MOST_LINES) -> list[str]:
-    """The minerals that are ever there, those that change most first in the choice; in the file's order."""
+    """The minerals that are ever there; of too many, those whose amount in the column changes most.
+
+    Not what any one cell sees of them: a thin front that walks through the bed is less than what it takes up.
+    In the file's order.
+    """
     solid = result.profiles.solid.values
     if not solid.size:
         return []
-    largest, change = np.abs(solid).max(axis=(0, 2)), np.ptp(solid, axis=0).max(axis=-1)
+    largest = np.abs(solid).max(axis=(0, 2))
+    stock = solid @ np.diff(result.axes.face)
+    change = np.abs(stock - stock[0]).max(axis=0)
+    change[change <= NEVER * stock.max(initial=0.0)] = 0.0
     there = [m for m in range(solid.shape[1]) if largest[m] > NEVER * largest.max() and largest[m] > 0.0]
-    kept = sorted(there, key=lambda m: -change[m])[:most]
+    kept = sorted(there, key=lambda m: (-change[m], -largest[m]))[:most]
     return [result.axes.mineral[m] for m in sorted(kept)]
 
 

@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable, Iterator
 from typing import Any
 
+from gossan.constants.couples import PROTON
 from gossan.constants.entries import (
     Alternative,
     Component,
@@ -56,15 +58,20 @@ def interactions_sheet(interactions: Iterable[Interaction], table: Table) -> She
     """Interaction coefficients of ions."""
     rows = tuple(
         (each.name, f"{each.coefficient.value:g}", _sd(each.coefficient), _seen(each.coefficient),
-         _with_note(each.coefficient.note, table.sources[each.coefficient.source]))
+         _with_note(each.coefficient.note, each.coefficient.source, table))
         for each in interactions
     )  # fmt: skip
     heads = ("ions", "kg/mol", "sd", "status", "source")
     return Sheet("Interactions of ions", heads, rows, wraps=True, note="25 degC, for activity = \"sit\"")
 
 
-def entry_sheets(entry: Entry, table: Table, temperature: float | None = None) -> Iterator[Sheet]:
+def entry_sheets(
+    entry: Entry | Interaction, table: Table, temperature: float | None = None
+) -> Iterator[Sheet]:
     """All that is known of one entry; its log10 K also at a temperature (K) that is asked for."""
+    if isinstance(entry, Interaction):
+        yield interactions_sheet([entry], table)
+        return
     yield Sheet(f"{entry.name}, {kind_of(entry)}", ("", ""), tuple(_facts(entry, table)), left=2, wraps=True)
     if constant_of(entry):
         shown = sorted({*(celsius + KELVIN for celsius in SHOWN_AT), temperature or REFERENCE})
@@ -74,13 +81,26 @@ def entry_sheets(entry: Entry, table: Table, temperature: float | None = None) -
     if entry.alternatives:
         others = tuple(_alternative(other, table) for other in entry.alternatives)
         yield Sheet("Published values not chosen", ("value", "status", "source"), others, 0, True)
+    if isinstance(entry, Component):
+        yield from _holding(entry, table)
     paired = [each for pair, each in table.interactions.items() if entry.name in pair]
     if paired and isinstance(entry, (Component, Species)):
         yield interactions_sheet(paired, table)
 
 
+def _holding(component: Component, table: Table) -> Iterator[Sheet]:
+    """What else the table has of a component."""
+    rows = []
+    for kind, group in (("species", table.species), ("minerals", table.minerals), ("gases", table.gases)):
+        names = [entry.name for entry in group.values() if component.name in entry.reaction.components]
+        if names:
+            rows.append((kind, ", ".join(names)))
+    if rows and component.name != PROTON:
+        yield Sheet(f"Made with {component.name}", ("", ""), tuple(rows), left=1, wraps=True)
+
+
 def _alternative(other: Alternative, table: Table) -> tuple[str, str, str]:
-    return f"{other.value:g}", _seen(other), _with_note(other.note, table.sources[other.source])
+    return f"{other.value:g}", _seen(other), _with_note(other.note, other.source, table)
 
 
 def constant_of(entry: Entry) -> Constant | None:
@@ -97,8 +117,19 @@ def _range(valid: tuple[float, float] | None) -> str:
     return f"{valid[0] - KELVIN:.4g} to {valid[1] - KELVIN:.4g}" if valid else "-"
 
 
-def _with_note(note: str, source: str) -> str:
-    return f"{note}; {source}" if note else source
+def _cited(note: str, table: Table) -> str:
+    """A note in which keys of sources have become authors and years."""
+
+    def author(key: re.Match[str]) -> str:
+        source = table.sources.get(key[0], "")
+        return source.partition(")")[0] + ")" if re.match(r"[^(]*\(\d{4}\)", source) else key[0]
+
+    return re.sub(r"\b[a-z_]+\d{4}[a-z]?\b", author, note)
+
+
+def _with_note(note: str, key: str, table: Table) -> str:
+    source = table.sources[key]
+    return f"{_cited(note, table)}; {source}" if note else source
 
 
 def _reading(entry: Entry) -> str:
@@ -127,13 +158,13 @@ def _facts(entry: Entry, table: Table) -> Iterator[tuple[str, str]]:
         yield "source", table.sources[constant.source]
         yield "status", _status(constant)
         if constant.note:
-            yield "of the constant", constant.note
+            yield "of the constant", _cited(constant.note, table)
         yield "temperature", _temperature(entry, table)
         yield "valid", f"{_range(valid_of(entry))} degC"
     for what, found, factor, unit in _measures(entry):
         yield what, f"{found.value * factor:.4g} {unit}; {table.sources[found.source]}; {_status(found)}"
     if entry.note:
-        yield "note", entry.note
+        yield "note", _cited(entry.note, table)
 
 
 def _measures(entry: Entry) -> Iterator[tuple[str, Constant, float, str]]:
@@ -151,8 +182,9 @@ def _temperature(entry: Entry, table: Table) -> str:
     fit = entry.half_fit if isinstance(entry, Component) else entry.fit
     if not enthalpy:
         return "no enthalpy is known of the reaction above: its value at 25 degC is used throughout"
-    said = f"enthalpy {enthalpy.value / 1e3:.4g} kJ/mol of the reaction above"
-    said += f"; {table.sources[enthalpy.source]}; {_status(enthalpy)}"
+    sd = f" ± {enthalpy.sd / 1e3:.2g}" if enthalpy.sd is not None else ""
+    said = f"enthalpy {enthalpy.value / 1e3:.4g}{sd} kJ/mol of the reaction above; "
+    said += f"{_with_note(enthalpy.note, enthalpy.source, table)}; {_status(enthalpy)}"
     curved = fit and (fit.linear or fit.log10 or fit.inverse_square)
     return f"{said}. The constant follows an equation; this is its slope at 25 degC" if curved else said
 
@@ -173,7 +205,7 @@ def _seen(known: Constant | Alternative) -> str:
     return "from memory" if known.from_memory else "seen"
 
 
-def interaction_json(interaction: Interaction, table: Table) -> dict[str, Any]:
+def _interaction_json(interaction: Interaction, table: Table) -> dict[str, Any]:
     """One interaction coefficient as data, kg/mol at 25 degC."""
     found = interaction.coefficient
     return {
@@ -187,8 +219,12 @@ def interaction_json(interaction: Interaction, table: Table) -> dict[str, Any]:
     }
 
 
-def entry_json(entry: Entry, table: Table, temperature: float | None = None) -> dict[str, Any]:
+def entry_json(
+    entry: Entry | Interaction, table: Table, temperature: float | None = None
+) -> dict[str, Any]:
     """One entry as data: log10 K at 25 degC and by temperature (K), uncertainty, source, status."""
+    if isinstance(entry, Interaction):
+        return _interaction_json(entry, table)
     constant, valid = constant_of(entry), valid_of(entry)
     shown = sorted({*(celsius + KELVIN for celsius in SHOWN_AT), temperature or REFERENCE})
     reaction = entry.half_reaction if isinstance(entry, Component) else entry.reaction

@@ -6,9 +6,10 @@ import math
 from collections.abc import Callable, Iterator
 from typing import Any
 
-from gossan.recording import case_of
+from gossan.recording import case_of, certified
 from gossan.store.layout import variable, variables
 from gossan.store.read import Group, Result
+from gossan.views.bed import bed_of, head_loss_of
 from gossan.views.limits import bounds_of, verdicts
 
 Row = list[Any]
@@ -57,8 +58,44 @@ def limit_rows(result: Result) -> Iterator[Row]:
                    verdict.first_exceeded, verdict.pore_volumes, verdict.error, verdict.last, verdict.peak]
 
 
+def bed_rows(result: Result) -> Iterator[Row]:
+    """Loss of head and what is left of the conductivity at every frame, as shares of that at the start."""
+    bed, heads = bed_of(result, case_of(result)), head_loss_of(result)
+    columns: list[tuple[str, Any]] = [(variable("profiles", "time").header, bed.time)]
+    if heads:
+        columns += [(f"head loss of {name} (m)", heads.loss[:, i]) for i, name in enumerate(heads.layers)]
+        columns.append(("head loss of the column (m)", heads.whole))
+    if bed.known:
+        columns.append(("left of the least cell", bed.least_cell.through_time))
+    if bed.in_series:
+        columns.append(("left of the column", bed.column.through_time))
+        columns += [(f"left by {name}", left.through_time) for name, left in bed.band.items()]
+    yield [head for head, _ in columns]
+    for frame in range(len(bed.time)):
+        yield [values[frame] for _, values in columns]
+
+
+def certificate_rows(result: Result) -> Iterator[Row]:
+    """Every cell's certificate at the last checkpoint: residuals in doubled precision and errors of ln a."""
+    for index, found in enumerate(certified(result)):
+        judged = found.certificate
+        system = judged.system
+        named = system.species[: len(judged.ln_activity)]
+        if index == 0:
+            yield [variable("profiles", "time").header, variable("profiles", "x").header, "layer", "water",
+                   "ionic_strength", "minerals present", "minerals absent", "minerals full", "diluted since",
+                   *(f"balance {name}" for name in system.components),
+                   *(f"ln_activity {name}" for name in named)]
+        for i, cell in enumerate(found.cells):
+            yield [found.time, result.axes.x[cell], result.axes.layer[cell], found.water,
+                   judged.ionic_strength[i], judged.present[i], judged.absent[i], judged.full[i],
+                   found.diluted[i], *judged.balance[:, i], *judged.ln_activity[:, i]]
+
+
 WHAT: dict[str, Callable[[Result], Iterator[Row]]] = {
     "ports": port_rows, "profiles": profile_rows, "ledger": ledger_rows, "limits": limit_rows,
+    "bed": bed_rows,
+    "certificate": certificate_rows,
 }  # fmt: skip
 
 

@@ -9,6 +9,7 @@ from gossan.store.read import Result
 from gossan.views import chosen
 from gossan.views.bed_figures import books, pores
 from gossan.views.breakthrough import breakthrough
+from gossan.views.conductivity_figure import conductivity, is_worth_a_figure
 from gossan.views.limits import Bound
 from gossan.views.profile_figures import dissolved_profiles, retained_profiles, solid_profiles
 
@@ -16,8 +17,8 @@ if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
 __all__ = [
-    "all_figures", "books", "breakthrough", "dissolved_profiles", "pores", "retained_profiles",
-    "solid_profiles",
+    "all_figures", "books", "breakthrough", "conductivity", "dissolved_profiles", "pores",
+    "retained_profiles", "solid_profiles",
 ]  # fmt: skip
 
 
@@ -36,4 +37,6 @@ def all_figures(
     if result.axes.parts:
         yield "retention", retained_profiles(result, bounds, masses)
     yield "pores", pores(result)
+    if is_worth_a_figure(result):
+        yield "conductivity", conductivity(result)
     yield "ledger", books(result)

@@ -12,15 +12,14 @@ import numpy as np
 
 from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
-from gossan.case.entries import course
 from gossan.case.model import Case
 from gossan.case.waters import read_waters
 from gossan.chemistry.validity import validity_note
 from gossan.coupling.drive import Drive
-from gossan.coupling.march import longest_step, march
+from gossan.coupling.march import march
 from gossan.coupling.problem import Problem
-from gossan.transport.faces import faces_of
 from gossan.views.assay import assay
+from gossan.views.extent import extent_of
 
 TRIED = 6  # first steps that are timed, and forgotten
 WARMING = 2  # of them that are not counted: compiled code is being loaded
@@ -34,7 +33,7 @@ class Plan:
     problem: Problem
     darcy_flux: float  # m s-1 at the start
     residence: float  # s, of one pore volume at that flux
-    duration: float  # s, at that flux where the case counts pore volumes
+    duration: float  # s; under a held head as if no pore closed
     pore_volumes: float
     records: int
     steps: int
@@ -77,9 +76,7 @@ def plan_of(case: Case) -> Plan:
     assert case.run is not None
     flux = float(_first_flow(problem)[0])
     residence = problem.pore_volume / flux if flux > 0.0 else math.inf
-    lasts, volumes = _extent(case, residence)
-    records = len(problem.records.marks)
-    steps = max(math.ceil(lasts / _step(problem)), records)
+    extent = extent_of(problem)
     each = _seconds_per_step(problem)
     # once for the column, which holds all that its waters hold, and not again for each of them
     temperature = problem.feeds.temperature
@@ -90,36 +87,19 @@ def plan_of(case: Case) -> Plan:
         problem=problem,
         darcy_flux=flux,
         residence=residence,
-        duration=lasts,
-        pore_volumes=volumes,
-        records=records,
-        steps=steps,
-        seconds=None if each is None else steps * each,
+        duration=extent.seconds,
+        pore_volumes=extent.water / problem.pore_volume,
+        records=len(problem.records.marks),
+        steps=extent.steps,
+        seconds=None if each is None else extent.steps * each,
         warnings=_told({name: one.said for name, one in assay(case).waters.items()}),
         column_warnings=tuple(filter(None, validity)),
     )
 
 
-def _step(problem: Problem) -> float:
-    """The length of step that Courant's number and the spread by dispersion allow at the start, s."""
-    faces = faces_of(problem.transport, problem.initial.water, _first_flow(problem))
-    return longest_step(problem, faces)[0]
-
-
 def _first_flow(problem: Problem) -> np.ndarray:
     """(face,) m s-1 at the start."""
     return Drive(problem, problem.initial).flow(1.0)[0]
-
-
-def _extent(case: Case, residence: float) -> tuple[float, float]:
-    """Seconds and pore volumes of a run; under a held head at the first flux."""
-    assert case.run is not None
-    duration, laid = case.run.duration, course(case)
-    if laid.held_flux:
-        seconds = laid.seconds(duration)
-        return seconds, duration.si if duration.unit == "PV" else laid.volumes(seconds)
-    seconds = duration.si * residence if duration.unit == "PV" else duration.si
-    return seconds, seconds / residence
 
 
 def _seconds_per_step(problem: Problem) -> float | None:

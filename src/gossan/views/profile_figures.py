@@ -87,6 +87,7 @@ def _panels(result: Result, panels: list[tuple[str, np.ndarray]], says: str) -> 
     if len(panels) < rows * columns:  # rows > 1
         grid[-1, -1].set_visible(False)
         grid[-2, -1].tick_params(labelbottom=True)
+        grid[-2, -1].set_xlabel(f"distance from the inlet ({scale.unit})")
     says += style.layer_key(*chosen.layer_edges(result))
     style.headed(figure, result.title, says, result.caution, legend_of=grid.flat[0])
     return figure
@@ -99,7 +100,8 @@ def along_column(ax: Axes, result: Result, values: np.ndarray, named: bool) -> N
     time = time_scale(float(times[-1]))
     scale = length_scale(float(result.axes.face[-1]))
     for number, frame in enumerate(shown):
-        label = f"after {times[frame] * time.factor:.3g} {time.unit}"
+        label = f"{times[frame] * time.factor:.4g} {time.unit}"  # six of them stand in one row
+        label = label if number else f"after {label}"
         style.time_line(ax, result.axes.x * scale.factor, values[frame], number, len(shown), label)
     edges, names = chosen.layer_edges(result)
     style.layers_marked(ax, [edge * scale.factor for edge in edges], names, named)

@@ -6,6 +6,8 @@ import math
 from collections.abc import Mapping
 from dataclasses import dataclass
 
+import numpy as np
+
 from gossan.base.notation import molar_mass, split_ion
 from gossan.base.units import DAY, YEAR
 from gossan.store.layout import variable
@@ -43,6 +45,29 @@ def time_scale(seconds: float) -> Scale:
     if seconds < 3 * year:
         return Scale("d", 1.0 / day)
     return Scale("yr", 1.0 / year)
+
+
+MOST_TIMES = 12
+
+
+def round_times(end: float) -> np.ndarray:
+    """(time,) s: a few round times from 0 to an end, which is the last; year by year where it is in years.
+
+    >>> (round_times(8.0 * 31557600.0) / 31557600.0).round(6).tolist()
+    [0.0, 1.0, 2.0, 3.0, 4.0, 5.0, 6.0, 7.0, 8.0]
+    >>> (round_times(45.0 * 86400.0) / 86400.0).round(6).tolist()
+    [0.0, 5.0, 10.0, 15.0, 20.0, 25.0, 30.0, 35.0, 40.0, 45.0]
+    """
+    factor = time_scale(end).factor
+    span = end * factor
+    if span <= 0.0:
+        return np.zeros(1)
+    decade = 10.0 ** math.floor(math.log10(span / MOST_TIMES))
+    step = next(m * decade for m in (1.0, 2.0, 5.0, 10.0) if span / (m * decade) <= MOST_TIMES)
+    if time_scale(end).unit == "yr":
+        step = max(step, 1.0)
+    whole = step * np.arange(math.floor(span / step * (1.0 - 1e-9)) + 1)
+    return np.append(whole / factor, end)
 
 
 def time_text(seconds: float) -> str:

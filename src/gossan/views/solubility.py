@@ -8,11 +8,16 @@ from typing import Any
 
 from gossan.base.amounts import in_water
 from gossan.base.wrong import Wrong
-from gossan.chemistry.solubility import Solubility, least_soluble, metal_of, solubilities, system_of
+from gossan.chemistry.activity import IDEAL
+from gossan.chemistry.plausible import stability
+from gossan.chemistry.solubility import Solubility, counted_as, least_soluble, solubilities
+from gossan.chemistry.system import build_system
 from gossan.chemistry.validity import validity_note
+from gossan.constants.couples import DIVIDED
 from gossan.constants.entries import Mineral, Table
 from gossan.constants.find import find
 from gossan.constants.names import component_named, moles
+from gossan.constants.potential import potential_of_pe
 from gossan.constants.water import density
 
 LEAST, LEAST_FORMING = "least soluble", "least of those that may form"
@@ -27,7 +32,13 @@ class Solubilities:
     totals: Mapping[str, float]  # mol per kg of water by component
     temperature: float  # K
     table: Table
-    validity: str  # what is to be told of constants at this temperature, or ""
+    pe: float | None  # None: valences are held, and nothing gives or takes electrons
+    warnings: tuple[str, ...]  # of the water, and of constants at this temperature
+
+    @property
+    def Eh(self) -> float | None:
+        """The same as a potential against the hydrogen electrode, V."""
+        return None if self.pe is None else potential_of_pe(self.pe, self.temperature)
 
     def marks(self) -> dict[str, str]:
         """What distinguishes a solid among those of its metal."""
@@ -55,22 +66,26 @@ class Solubilities:
         ]
         return {
             "pH": self.pH,
+            "pe": self.pe,
+            "Eh_V": self.Eh,
             "temperature_K": self.temperature,
             "given_mol_kg": dict(self.totals),
             "activity": "ideal",
-            "warnings": [self.validity] if self.validity else [],
+            "warnings": list(self.warnings),
             "solids": solids,
         }
 
 
 def work_out(
-    table: Table, pH: float, given: Iterable[tuple[str, str]], temperature: float, name: str = ""
+    table: Table, pH: float, given: Iterable[tuple[str, str]], temperature: float, name: str = "",
+    pe: float | None = None,
 ) -> Solubilities:
     """Work out the solubilities of the solids of a name, or of all.
 
     given        what a laboratory calls a solute, and its amount as it writes it: ("HS", "3 mg/L")
     temperature  K
     name         a solid, a formula, or a metal; "" is all
+    pe           of the water; without it solids whose reaction needs electrons have no number
     Raises       Wrong: an unknown solute, no amount, a water that cannot be; UnknownName
     """
     totals: dict[str, float] = {}
@@ -79,14 +94,20 @@ def work_out(
         if component in totals:
             raise Wrong(f"gives {component} twice", "leave one of them out")
         totals[component] = total
-    rows = solubilities(table, pH, totals, temperature, solids_called(table, name) if name else None)
+    warnings = [] if pe is None else stability(pe, pH, temperature, table)
+    rows = solubilities(table, pH, totals, temperature, solids_called(table, name, pe) if name else None, pe)
     known = [row for row in rows if row.known]
-    metals, minerals = [row.metal for row in known], [row.mineral for row in known]
-    system = system_of(table, metals, totals, minerals, temperature)
-    return Solubilities(rows, pH, totals, temperature, table, validity_note(table, system, temperature))
+    metals = [row.metal for row in known]
+    coupled = () if pe is None else DIVIDED
+    system = build_system(
+        table, [*metals, *totals], (), temperature=temperature, activity=IDEAL, coupled=coupled
+    )  # fmt: skip
+    validity = validity_note(table, system, temperature, solids=[row.mineral for row in known])
+    warnings += [validity] if validity else []
+    return Solubilities(rows, pH, totals, temperature, table, pe, tuple(warnings))
 
 
-def solids_called(table: Table, name: str) -> list[str]:
+def solids_called(table: Table, name: str, pe: float | None = None) -> list[str]:
     """The solids of a metal, `Zn`, or else those that bear a name or formula.
 
     Raises  UnknownName; Wrong where the name is of something that is no solid
@@ -95,7 +116,7 @@ def solids_called(table: Table, name: str) -> list[str]:
         metal = component_named(name, table.components).component
     except Wrong:
         metal = ""
-    found = [mineral.name for mineral in table.minerals.values() if metal_of(mineral) == metal]
+    found = [mineral.name for mineral in table.minerals.values() if counted_as(table, mineral, pe) == metal]
     if not metal:
         found = [entry.name for entry in find(table, name) if isinstance(entry, Mineral)]
     if not found:

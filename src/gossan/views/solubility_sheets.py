@@ -14,8 +14,10 @@ from gossan.views.solubility import Solubilities
 
 NOTE = (
     "total metal beside each solid alone; from, to: with the solid's constant one sd lower and higher. "
-    "Activities are ideal, as at trace; valences are held: solids of Cu^2+ count no complexes of Cu^+"
+    "Activities are ideal, as at trace; "
 )
+HELD = "valences are held: solids of Cu^2+ count no complexes of Cu^+"
+AT_PE = "Fe, Mn and Cu count in all their valences at this pe; sulfide and all else stay as they are given"
 
 
 def solubility_sheets(found: Solubilities) -> Iterator[Sheet]:
@@ -27,13 +29,24 @@ def solubility_sheets(found: Solubilities) -> Iterator[Sheet]:
             metal = row.metal if row.metal != last else ""
             rows.append((metal, row.mineral, *_numbers(row, per_litre), marks.get(row.mineral, "")))
             last = row.metal
-    water = [f"pH {found.pH:g}", f"{found.temperature - KELVIN:.4g} degC"]
+    water = [f"pH {found.pH:g}"]
+    if found.pe is not None and found.Eh is not None:
+        water += [f"pe {found.pe:.4g} (Eh {1e3 * found.Eh:.0f} mV)"]
+    water += [f"{found.temperature - KELVIN:.4g} degC"]
     water += [f"{name} {total * per_litre:.3g} mol/L" for name, total in found.totals.items()]
-    heads = ("dissolved", "beside", "log10 mol/L", "mol/L", "from", "to", "")
-    yield Sheet(f"Solubility at {', '.join(water)}", heads, tuple(rows), left=2, wraps=True, note=NOTE)
-    unknown = tuple((row.metal, row.mineral, _why(row)) for row in found.rows if not row.known)
-    if unknown:
-        yield Sheet("Without a number", ("metal", "solid", "why"), unknown, left=3)
+    place = f"at {', '.join(water)}"
+    if rows:
+        heads = ("dissolved", "beside", "log10 mol/L", "mol/L", "from", "to", "")
+        note = NOTE + (HELD if found.pe is None else AT_PE)
+        yield Sheet(f"Solubility {place}", heads, tuple(rows), left=2, wraps=True, note=note)
+    missing: dict[str, list[str]] = {}
+    for row in found.rows:
+        if not row.known:
+            missing.setdefault(_wants(row), []).append(row.mineral)
+    if missing:
+        lines = tuple((why, ", ".join(solids)) for why, solids in missing.items())
+        title = "Without a number" if rows else f"Without a number {place}"
+        yield Sheet(title, ("for want of", "solids"), lines, left=1, wraps=True)
 
 
 def _numbers(row: Solubility, per_litre: float) -> tuple[str, ...]:
@@ -47,7 +60,6 @@ def _amount(molar: float) -> str:
     return BELOW_TRACE if molar < 1e-3 * TRACE else f"{molar:.2e}"
 
 
-def _why(row: Solubility) -> str:
-    if row.electrons:
-        return "its reaction needs electrons, and valences are held"
-    return f"no {' and no '.join(row.lacks)} is given"
+def _wants(row: Solubility) -> str:
+    """What would have to be given."""
+    return ", ".join([*row.lacks, *(["pe or Eh"] if row.electrons else [])])

@@ -114,7 +114,7 @@ def headed(figure: Figure, title: str, says: str, caution: str, legend_of: Axes 
     if legend_of:
         handles, labels = legend_of.get_legend_handles_labels()
         below = 1.0 - HEAD_HEIGHT / float(figure.get_size_inches()[1])
-        place: dict[str, Any] = {"loc": "upper left", "bbox_to_anchor": (0.0, below)}
+        place: dict[str, Any] = {"loc": "upper left", "bbox_to_anchor": (0.0, below), "handlelength": 2.8}
         figure.legend(handles, labels, ncols=len(labels), columnspacing=1.2, **place)
         text += "\n "  # room for that row
     figure.suptitle(text, x=0.01, ha="left", fontsize=9.5, color=INK)

@@ -7,22 +7,15 @@ from typing import Any
 
 import numpy as np
 
+from gossan.base.notation import molar_mass
 from gossan.case.model import Case
 from gossan.constants.potential import potential_of_pe
 from gossan.recording import case_of
 from gossan.store.read import Result
+from gossan.views.bed import Bed, Bottleneck, HeadLoss, bed_of, bottleneck_of, head_loss_of
+from gossan.views.bed_json import conductivity_json, head_loss_json
 from gossan.views.limits import Verdict, bounds_of, tracer_masses, verdicts
-
-HALF = 0.5  # of its first conductivity: where practice thinks of renewing a bed
-
-
-@dataclass(frozen=True, slots=True)
-class Conductivity:
-    """The least that any cell kept of its first conductivity; None where no conductivity was given."""
-
-    least_fraction: float | None = None
-    at: float | None = None  # m
-    half_at: float | None = None  # s, when a cell first fell to half
+from gossan.views.scales import round_times
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,6 +25,12 @@ class Stock:
     mineral: str
     first: float
     left: float
+    molar_mass: float  # kg/mol
+
+    @property
+    def used(self) -> float:
+        """mol per m2 that are gone; negative where it grew."""
+        return self.first - self.left
 
     @property
     def used_percent(self) -> float:
@@ -47,8 +46,9 @@ class Summary:
     verdicts: list[Verdict]
     tracer_masses: dict[str, float]
     redox: dict[str, tuple[float, float]]  # Eh in V at the start and the end by port, where pe is known
-    conductivity: Conductivity
-    head_loss: tuple[float, float] | None  # m, first and last
+    bed: Bed
+    bottleneck: Bottleneck | None  # None where no conductivity is given
+    head_loss: HeadLoss | None  # at a few round times, the start and the end
     flux: tuple[float, float]  # m s-1 at the inlet, first and last
     least_porosity: tuple[float, float]  # and where, m
     stocks: list[Stock]
@@ -80,24 +80,24 @@ def summary_of(result: Result, case: Case | None = None) -> Summary:
     errors = dict(zip(result.axes.component, largest.tolist(), strict=True))
     for name in ("water", "charge"):
         errors[name] = float(np.abs(ledger[f"{name}_error"].values).max(initial=0.0))
-    head = profiles.head.values
-    loss = head[:, 0] - head[:, -1]
+    time, bed = float(profiles.time.values[-1]), bed_of(result, case)
     flux = profiles.darcy_flux.values[:, 0]
     return Summary(
         result=result,
         verdicts=verdicts(result, bounds_of(case)),
         tracer_masses=tracer_masses(case),
         redox=_redox(result, case.temperature.si),
-        conductivity=_conductivity(result),
-        head_loss=(float(loss[0]), float(loss[-1])) if np.isfinite(loss[[0, -1]]).all() else None,
+        bed=bed,
+        bottleneck=bottleneck_of(result, case, bed),
+        head_loss=head_loss_of(result, round_times(time)),
         flux=(float(flux[0]), float(flux[-1])),
         least_porosity=(float(porosity.min()), float(result.axes.x[cell])),
-        stocks=_stocks(result, width),
+        stocks=_stocks(result, case, width),
         ledger=errors,
         splitting_error=float(np.sqrt(np.sum(steps.splitting_error.values**2))),
         steps=steps.count,
         seconds=float(steps.seconds.values.sum()),
-        time=float(profiles.time.values[-1]),
+        time=time,
     )
 
 
@@ -110,41 +110,18 @@ def _redox(result: Result, temperature: float) -> dict[str, tuple[float, float]]
     return found
 
 
-def _stocks(result: Result, width: np.ndarray) -> list[Stock]:
+def _stocks(result: Result, case: Case, width: np.ndarray) -> list[Stock]:
     first, last = (result.profiles.solid.values[i] @ width for i in (0, -1))
     return [
-        Stock(name, float(a), float(b))
+        Stock(name, float(a), float(b), _mass(name, case))
         for name, a, b in zip(result.axes.mineral, first, last, strict=True) if a > 0.0
     ]
 
 
-def fractions_left(result: Result) -> np.ndarray:
-    """(time, x): conductivity over that of the start; NaN where none was given."""
-    conductivity = result.profiles.conductivity.values
-    return conductivity / conductivity[0]
-
-
-def _conductivity(result: Result) -> Conductivity:
-    left = fractions_left(result)
-    if not np.isfinite(left).any():
-        return Conductivity()
-    frame, cell = np.unravel_index(int(np.nanargmin(left)), left.shape)
-    return Conductivity(
-        float(left[frame, cell]), float(result.axes.x[cell]),
-        _first_below(result.profiles.time.values, np.nanmin(left, axis=1), HALF),
-    )  # fmt: skip
-
-
-def _first_below(time: np.ndarray, values: np.ndarray, level: float) -> float | None:
-    """When values first fall to a level, on straight lines between frames."""
-    below = np.flatnonzero(values <= level)
-    if not len(below):
-        return None
-    i = int(below[0])
-    if i == 0:
-        return float(time[0])
-    share = (values[i - 1] - level) / (values[i - 1] - values[i])
-    return float(time[i - 1] + share * (time[i] - time[i - 1]))
+def _mass(mineral: str, case: Case) -> float:
+    """kg/mol; a gas of a limited amount stands among the minerals."""
+    known = case.table.minerals
+    return known[mineral].molar_mass if mineral in known else molar_mass(mineral.removesuffix("(g)"))
 
 
 def run_json(summary: Summary) -> dict[str, Any]:
@@ -160,13 +137,18 @@ def run_json(summary: Summary) -> dict[str, Any]:
             "last": verdict.last,
             "peak": verdict.peak,
         }
-    found = summary.conductivity
     return {
         "status": result.status,
         "reason": result.reason or None,
         "ports": ports,
-        "conductivity": {
-            "least_fraction": found.least_fraction, "at_m": found.at, "half_at_s": found.half_at
+        "conductivity": conductivity_json(summary.bed, summary.bottleneck),
+        "head_loss": head_loss_json(summary.head_loss),
+        "capacity": {
+            stock.mineral: {
+                "start_mol_m2": stock.first, "left_mol_m2": stock.left, "used_mol_m2": stock.used,
+                "used_kg_m2": stock.used * stock.molar_mass, "used_percent": stock.used_percent,
+            }
+            for stock in summary.stocks
         },
         "warnings": list(result.warnings),
         "ledger_error": summary.ledger_error,

@@ -121,15 +121,24 @@ def share_of(even, limiter):
 
 
 @kernel(inner=True)
+def parabola_of(limiter):
+    """`share_of` as base + even (once - twice even), to the same bits, for loops without a branch."""
+    base = 1.0 if limiter == UNLIMITED else 0.0
+    twice = 4.0 if limiter == VAN_LEER else 0.0
+    once = 2.0 if limiter == MINMOD else twice
+    return base, once, twice
+
+
+@kernel(inner=True)
 def weigh_even(lesser, whole, slopes, first, weight_left, weight_right):
     """The weights of both differences between equal cells; cut where the rise would pass the lesser one."""
-    rise_left, rise_right = slopes.rise_left[first:], slopes.rise_right[first:]
-    kept, limiter = slopes.kept[first:], slopes.limiter
+    rise_left, rise_right, kept = slopes.rise_left[first:], slopes.rise_right[first:], slopes.kept[first:]
+    base, once, twice = parabola_of(slopes.limiter)
     for i in range(lesser.shape[0]):
         even = lesser[i] / whole[i]
-        share = share_of(even, limiter)
+        share = base + even * (once - twice * even)
         cut = even / (rise_left[i] * even + rise_right[i] * (1.0 - even))
-        cut = 1.0 if limiter == UNLIMITED else cut
+        cut = cut if cut > base else base  # nothing is cut without a limiter
         share = kept[i] * (cut if cut < share else share)
         weight_left[i] = share * rise_left[i]
         weight_right[i] = share * rise_right[i]
@@ -138,14 +147,16 @@ def weigh_even(lesser, whole, slopes, first, weight_left, weight_right):
 @kernel(inner=True)
 def weigh_uneven(lesser, whole, room, climbed, slopes, first, weight_left, weight_right):
     """The same between unlike neighbours."""
-    limiter = slopes.limiter
+    rise_left, rise_right, kept = slopes.rise_left[first:], slopes.rise_right[first:], slopes.kept[first:]
+    base, once, twice = parabola_of(slopes.limiter)
     for i in range(lesser.shape[0]):
-        share = share_of(lesser[i] / whole[i], limiter)
-        if share * climbed[i] > room[i] and limiter != UNLIMITED:
-            share = (1.0 - FLAT) * room[i] / climbed[i]  # just short of it: rounding must not pass it
-        share *= slopes.kept[first + i]
-        weight_left[i] = share * slopes.rise_left[first + i]
-        weight_right[i] = share * slopes.rise_right[first + i]
+        even = lesser[i] / whole[i]
+        share = base + even * (once - twice * even)
+        short = (1.0 - FLAT) * room[i] / climbed[i]  # of passing it: rounding must not
+        longer = (share * climbed[i] > room[i]) & (base == 0.0)
+        share = kept[i] * (short if longer else share)
+        weight_left[i] = share * rise_left[i]
+        weight_right[i] = share * rise_right[i]
 
 
 @kernel(inner=True)
