@@ -68,7 +68,8 @@ def still(folder: Path) -> str:
         water("feed") + water("pore", Na=1.0, Cl=1.0), minerals='salt = "0.0009 mol/L"', porosity=0.3,
         cells=10, length="0.05 m", diffusion="1e-9 m2/s", layer="tortuosity = 1.0", duration="20 d",
         flow='darcy_flux = "0 m/d"\ninlet = "concentration"',
-        chemistry=write_salts(folder, Salt("salt", "Na", 1.0)), run="accuracy = 0.03",
+        chemistry=write_salts(folder, Salt("salt", "Na", 1.0)),
+        run='accuracy = 0.01\nports_every = "10 d"\nprofiles_every = "20 d"',
     )  # fmt: skip
 
 
