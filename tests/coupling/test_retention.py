@@ -109,6 +109,14 @@ def test_other_schemes_are_second_order_where_rates_are_slow(name, coupling):
     assert errors[-1] < 5e-5 * np.abs(exact).max()
 
 
+def test_strang_gains_nothing_where_all_is_at_equilibrium():
+    """A sorbed wave: transport alone moves it as if nothing held it, and errs by the first order."""
+    problem, state = smooth("freundlich", "strang")
+    exact = marched(problem, state, 3 * EXACT, None)
+    errors = [float(np.abs(marched(problem, state, 3 * n, None) - exact).max()) for n in STEPS]
+    assert observed_order(STEPS, errors) == pytest.approx(1.05, abs=0.15)
+
+
 def test_an_endless_transfer_is_no_immobile_water():
     """The same bits of physics: one water of the whole porosity, to the rounding of the exchange."""
     case = {"velocity": 1.0, "dispersivity": 0.02, "length": 1.0, "cells": 50, "days": 0.8}
