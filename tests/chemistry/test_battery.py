@@ -7,6 +7,7 @@ plain numpy, a convex minimum of Gibbs energy, cantera, Newton at 60 and 120 dig
 from __future__ import annotations
 
 from concurrent.futures import ThreadPoolExecutor
+from itertools import islice
 
 import numpy as np
 import pytest
@@ -141,6 +142,29 @@ def test_waters_from_hydrogen_to_oxygen(mix):
         pe = np.concatenate(report.pe)
         assert pe.min() < -10
         assert pe.max() > 20
+
+
+# of a mix of 20000 waters: its seed, number of the batch, numbers of waters that once were lost, and on what
+STRAYS = {
+    "coupled": [(900001, 1, [1369]), (910001, 4, [1438])],  # two balances that said nearly the same
+    "partial": [
+        (900003, 3, [111, 122, 486, 817, 852, 1542, 1566]),  # the same
+        (910001, 9, [216, 1206]),  # a mineral of no more than the last digit of the largest total
+    ],
+    # sulfide held by a gas beside sulfate: no start near enough
+    "open": [(900003, 2, [4, 26, 83, 110, 383, 546, 843, 1091, 1283, 1288])],
+    "bounded": [
+        (900001, 1, [1187, 1410]),  # a mineral that came back from full and pushed out the wrong one
+        (900001, 5, [1076, 1595]),  # far steps to ever larger waters
+    ],
+}
+
+
+@pytest.mark.parametrize("mix", STRAYS)
+def test_waters_that_once_were_lost(mix):
+    for seed, index, waters in STRAYS[mix]:
+        batch = next(islice(batches(mix, seed, 20000), index, None))
+        assert passed(solve(Batch(batch.name, batch.system, batch.totals[waters], batch.upper[waters])))
 
 
 @pytest.mark.parametrize("activity", ["ideal", "debye-hueckel"])

@@ -98,9 +98,17 @@ def with_minerals(matrices: Matrices, solid: np.ndarray, ln_k: np.ndarray, conse
 
 
 def _carriers(supplied: np.ndarray, electron: int) -> np.ndarray:
-    """(open gas,) the component that each open gas is known by: neither H^+ nor e^-, if there is another."""
+    """(open gas,) the component that each open gas is known by: e^- for one that carries any, never H^+.
+
+    e^- serves one gas alone, first one that has nothing else, as O2 or H2.
+    """
     others = np.abs(supplied)
     others[:, 0] = 0.0
     if electron >= 0:
-        others[:, electron] *= 1e-3  # the last choice
+        electrons = others[:, electron].copy()
+        others[:, electron] = 0.0
+        bearing = electrons > 0.0
+        if bearing.any():
+            first = int(np.argmax(bearing * np.where(others.any(axis=1), 1.0, 2.0)))
+            others[first, electron] = np.inf
     return others.argmax(axis=1).astype(np.int64)

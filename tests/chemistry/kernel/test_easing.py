@@ -8,7 +8,7 @@ import pytest
 from gossan.chemistry.equilibrium import Solver
 from gossan.chemistry.kernel.cold import survey
 from gossan.chemistry.kernel.complement import begin, reduce_all
-from gossan.chemistry.kernel.easing import ease, nearer, overfull
+from gossan.chemistry.kernel.easing import ease, fullness, nearer
 from gossan.chemistry.kernel.marks import set_totals
 from gossan.chemistry.kernel.matrices import bench
 from gossan.chemistry.kernel.newton import balances, molalities
@@ -57,7 +57,7 @@ def started(values: tuple[float, ...]):
 def test_the_walk_starts_where_the_water_is():
     matrices, space, strength, active, free, before = started(LOST[1])
     molalities(matrices, space, free, strength)
-    assert overfull(space, 100.0)
+    assert fullness(space) > 100.0
     ease(matrices, space, active)
     molalities(matrices, space, free, strength)
     there = before > 1e-200

@@ -10,6 +10,9 @@ from gossan.chemistry.kernel.vectors import row_dot
 
 WARM, COLD, MARKED = 0, 1, 2
 REMAINDER = 1e-6  # of what solids took: below, subtraction has lost more digits than the balances have
+SHOWN = 1e-11  # relative: what a balance may lack; to trim less would be to trim rounding
+ROUNDED = 1e-14  # of the largest total: no more of it than its rounding is trimmed
+BESIDE = 1e-5  # of the largest total: of less, the rounding of that total shows among the digits asked for
 
 
 @kernel
@@ -88,11 +91,17 @@ def settle_cells(
                 gained = upper[m, i] - solid[m, i]
                 solid[m, i] = upper[m, i]
             else:
-                solid[m, i] += gained
+                # what rounding let pass the bounds stays in the water
+                if solid[m, i] + gained < 0.0:
+                    gained = -solid[m, i]
+                elif solid[m, i] + gained > upper[m, i]:
+                    gained = upper[m, i] - solid[m, i]
+                solid[m, i] = min(solid[m, i] + gained, upper[m, i])
             take(matrices, bench, amount, m, i, gained)
         for g in range(gases):
             given[g, i] = -bench.gained[endless + g] * weight
             take(matrices, bench, amount, endless + g, i, -given[g, i])
+        trim(matrices, bench, amount, solid, upper, presence, i, weight)
         # What little is left in the water is known from speciation, to its last digit; by subtraction from
         # what the solids hold it would be noise.
         for k in range(components):
@@ -111,3 +120,41 @@ def take(matrices, bench, amount, row, i, gained):
             part = matrices.supplied[row, k] * gained
             amount[k, i] -= part
             bench.right[k] += abs(part)
+
+
+@kernel(inner=True)
+def trim(matrices, bench, amount, solid, upper, presence, i, weight):
+    """Correct the solids that hold scarce components by what the largest total's rounding left there.
+
+    bench.right holds what solids took of each component, without its sign.  A solid that gained its zinc as
+    the rest of five moles of sulfide is off by the sulfide's last digit, and zinc's own balance shows it
+    (equations.md, 18).
+    """
+    components = amount.shape[0]
+    largest, taken = 0.0, 0.0
+    for k in range(components):
+        taken = max(taken, bench.right[k])
+        bench.weight[k] = abs(amount[k, i]) + bench.right[k]
+        largest = max(largest, bench.weight[k])
+    if taken == 0.0:
+        return
+    for k in range(components):
+        if k == matrices.signed or k == matrices.electron or not 0.0 < bench.weight[k] < BESIDE * largest:
+            continue
+        holder = -1
+        for m in range(solid.shape[0]):
+            if presence[m, i] == 1 and matrices.supplied[m, k] != 0.0:
+                scarcest = True
+                for j in range(components):
+                    if matrices.supplied[m, j] != 0.0 and j != matrices.signed and j != matrices.electron:
+                        scarcest = scarcest and bench.weight[j] >= bench.weight[k]
+                if scarcest:
+                    holder = m
+        if holder < 0:
+            continue
+        over = amount[k, i] - row_dot(matrices.conserved, k, bench.molality) * weight
+        gained = over / matrices.supplied[holder, k]
+        shown = SHOWN * bench.weight[k] < abs(over) < ROUNDED * largest
+        if shown and 0.0 <= solid[holder, i] + gained < upper[holder, i]:
+            solid[holder, i] += gained
+            take(matrices, bench, amount, holder, i, gained)

@@ -12,8 +12,11 @@ from gossan.chemistry.kernel.vectors import add_row, both_sums, dot, exponential
 ABSENT = 1e-40  # mol/kg: less than one molecule in a lake; below, a component is left out of the solve
 LITTLE = 1e-12  # mol/kg: what a component starts from of which there is less
 PASSES = 12  # of the continued fraction in a cold start
-FEW_PASSES = 4  # of it after the activity of e^- has moved
+FEW_PASSES, MORE_PASSES = 4, 12  # of it after the activity of e^- has moved: at least, and at most
+OFF = 1.0  # ln of the ratio of the two sides of a balance that asks for more passes
 HALVINGS = 9  # of the range of ln activity of e^-, which is left known to a fifth
+MOST_ALKALINE, MOST_ACID = -16.0 * math.log(10.0), math.log(10.0)  # ln activity of H^+ in any water
+LEAST_CARRIED, MOST_CARRIED = -100.0 * math.log(10.0), math.log(100.0)  # the same of sulfate beside H2S
 MOST_OXIDISED, MOST_REDUCED = -22.0 * math.log(10.0), 15.0 * math.log(10.0)  # ln activity of e^- in any water
 
 
@@ -93,57 +96,77 @@ def approach(matrices, bench, dissolved):
 
     Damped continued fractions: every component is multiplied by the ratio of the two sides of its balance,
     all at once, the logarithm divided by how crowded its species are.  Where electrons are counted their
-    activity is halved in, between the most oxidised and the most reduced of waters.
+    activity is halved in, between the most oxidised and the most reduced of waters; beside an open gas
+    that holds electrons and something else, H2S, it follows from that, and the sulfate is halved in.
     Source: after Carrayrou, Mose & Behra (2002), AIChE J. 48, 894-904, who damp the ratio otherwise.
     """
     components = matrices.conserved.shape[0]
-    electron = matrices.electron
-    bench.ln_activity[matrices.signed] = math.log(1e-7)
-    counted = electron >= 0  # and not held by a gas
-    if counted:
-        bench.ln_activity[electron] = 0.5 * (MOST_OXIDISED + MOST_REDUCED)
+    electron, signed = matrices.electron, matrices.signed
+    sought, low, high = electron, MOST_OXIDISED, MOST_REDUCED
     for gas in range(matrices.carrier.shape[0]):
-        counted = counted and matrices.carrier[gas] != electron
+        if matrices.carrier[gas] == electron:
+            # its pressure ties e^- to what else it is made of: halve that in instead, if there is any
+            row, sought = matrices.minerals + matrices.first.shape[0] + gas, -1
+            for k in range(components):
+                if k != signed and k != electron and matrices.supplied[row, k] != 0.0:
+                    sought, low, high = k, LEAST_CARRIED, MOST_CARRIED
+    bench.ln_activity[signed] = math.log(1e-7)
+    if electron >= 0:
+        bench.ln_activity[electron] = 0.5 * (MOST_OXIDISED + MOST_REDUCED)
+    if sought >= 0:
+        bench.ln_activity[sought] = 0.5 * (low + high)
+    carriers_follow(matrices, bench)
     for k in range(components):
-        if k == matrices.signed or k == electron:
+        if k == matrices.signed or k == matrices.electron or k == sought:
             continue
         if bench.total[k] > ABSENT:
             level(matrices, bench, k, dissolved[k])
         else:
             bench.ln_activity[k] = NOWHERE
     carriers_follow(matrices, bench)
-    made = continued_fraction(matrices, bench, dissolved, PASSES)
-    if counted:
-        # the electrons that the species hold rise with the activity of e^-: halve it in
-        low, high = MOST_OXIDISED, MOST_REDUCED
+    made = continued_fraction(matrices, bench, dissolved, sought, PASSES, PASSES)
+    if sought >= 0:
+        # what the species hold of it rises with its activity: halve it in
         for _ in range(HALVINGS):
-            if bench.sums[electron] > with_gases(matrices, bench, dissolved, electron):
-                high = bench.ln_activity[electron]
+            if bench.sums[sought] > with_gases(matrices, bench, dissolved, sought):
+                high = bench.ln_activity[sought]
             else:
-                low = bench.ln_activity[electron]
-            bench.ln_activity[electron] = 0.5 * (low + high)
+                low = bench.ln_activity[sought]
+            bench.ln_activity[sought] = 0.5 * (low + high)
+            carriers_follow(matrices, bench)
             for k in range(components):
-                if k != matrices.signed and k != electron and bench.ln_activity[k] != NOWHERE:
+                if k != signed and k != electron and k != sought and bench.ln_activity[k] != NOWHERE:
                     level(matrices, bench, k, dissolved[k])
-            made = continued_fraction(matrices, bench, dissolved, FEW_PASSES)
+            carriers_follow(matrices, bench)
+            made = continued_fraction(matrices, bench, dissolved, sought, FEW_PASSES, MORE_PASSES)
     valences_follow(matrices, bench)
     return made if made < 1.0 else 1.0
 
 
 @kernel(inner=True)
-def continued_fraction(matrices, bench, dissolved, passes):
-    """Bring the balances of all but e^- and what gases hold nearer; returns the ionic strength."""
+def continued_fraction(matrices, bench, dissolved, sought, passes, most):
+    """Bring the balances of all but e^-, what gases hold and what is sought nearer; returns ionic strength.
+
+    passes, and as many more, up to most, as one of the balances is off by the factor e^OFF.
+    """
     components = matrices.conserved.shape[0]
     stoichiometry, ln_k = matrices.conserved, matrices.conserved_ln_k
     made = 0.0
-    for _ in range(passes):
+    worst = math.inf
+    for turn in range(most):
+        if turn >= passes and worst < OFF:
+            break
+        worst = 0.0
         bare_coefficients(matrices, bench, 0.0)
         made = survey_of(matrices, stoichiometry, ln_k, bench)
-        # a component of crowded species moves less: all components of a species move at once
+        # a component of crowded species moves less: all components of a species move at once, but for
+        # what is held
         share = bench.share
         for s in range(share.shape[0]):
             share[s] = 0.0
         for k in range(components):
+            if k == matrices.electron or k == sought:
+                continue
             for s in range(share.shape[0]):
                 share[s] += abs(stoichiometry[k, s]) * bench.molality[s]
         for k in range(components):
@@ -152,7 +175,7 @@ def continued_fraction(matrices, bench, dissolved, passes):
                 crowd += abs(stoichiometry[k, s]) * share[s]
             bench.weight[k] = crowd
         for k in range(components):
-            if bench.ln_activity[k] == NOWHERE or k == matrices.electron:
+            if bench.ln_activity[k] == NOWHERE or k == matrices.electron or k == sought:
                 continue
             total = dissolved[k] if dissolved[k] > LITTLE else LITTLE
             if k == matrices.signed:
@@ -162,6 +185,9 @@ def continued_fraction(matrices, bench, dissolved, passes):
             ratio = math.log((negative + 1e-300) / (positive + 1e-300))
             crowd = bench.weight[k] / bench.abundance[k] if bench.abundance[k] > 0.0 else 1.0
             bench.ln_activity[k] += ratio / crowd
+            worst = max(worst, abs(ratio))
+        hydrogen = bench.ln_activity[matrices.signed]
+        bench.ln_activity[matrices.signed] = min(max(hydrogen, MOST_ALKALINE), MOST_ACID)
         carriers_follow(matrices, bench)
     return made
 

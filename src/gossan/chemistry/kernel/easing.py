@@ -40,12 +40,12 @@ def ease(matrices, bench, active):
 
 
 @kernel(inner=True)
-def overfull(bench, most):
-    """Whether the species, charged or not, are more than this, mol/kg."""
+def fullness(bench):
+    """The sum of all species, charged or not, mol/kg."""
     whole = 0.0
     for s in range(bench.molality.shape[0]):
         whole += bench.molality[s]
-    return not whole <= most
+    return whole
 
 
 @kernel(inner=True)

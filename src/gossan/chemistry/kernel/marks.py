@@ -87,11 +87,12 @@ def lacking(bench):
 
 
 @kernel(inner=True, forceinline=True)
-def weigh(matrices, bench, active, solid, upper, presence):
+def weigh(matrices, bench, active, solid, upper, presence, rounding):
     """Fill the amounts gained and ln saturation ratios; returns the marks most at fault, -1 for none.
 
     Returns (mineral to drop or fill, mineral to add or loosen, the first at fault): the largest negative
     amount or excess, the largest contradiction of a saturation ratio, and the least index of all.
+    rounding: relative, of the totals that an amount is the difference of; by so much it may be negative.
     """
     add_up(matrices.stoichiometry, bench)
     drop, add, first = -1, -1, presence.shape[0]
@@ -120,15 +121,17 @@ def weigh(matrices, bench, active, solid, upper, presence):
         mineral = bench.active[m]
         if matrices.minerals <= mineral < matrices.minerals + matrices.first.shape[0]:
             continue  # a couple: what changed its valence stays dissolved
-        gained = 0.0
+        gained, size = 0.0, 0.0
         for r in range(active):
             p = bench.pivot[r]
             gained += bench.turns[r, m] * (bench.total[p] - bench.sums[p])
+            size += abs(bench.turns[r, m]) * (abs(bench.total[p]) + bench.abundance[p])
         bench.gained[mineral] = gained
         if mineral >= matrices.minerals:
             continue  # there is no end of an open gas
         amount = solid[mineral] + gained
         wrong = amount if amount < upper[mineral] - amount else upper[mineral] - amount
+        wrong += rounding * size
         if wrong < 0.0 and mineral < first:
             first = mineral
         if wrong < worst_amount:
@@ -142,5 +145,6 @@ def mark(drop, add, solid, presence, bench):
     if drop >= 0:
         presence[drop] = 0 if solid[drop] + bench.gained[drop] < 0.0 else 2
     if add >= 0:
+        bench.exit[1] = presence[add]
         presence[add] = 1
     return add

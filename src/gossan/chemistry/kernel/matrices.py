@@ -33,7 +33,7 @@ class Matrices(NamedTuple):
     supplied_ln_k: np.ndarray  # (row,) of dissolution to conserved components
     minerals: int  # how many of the rows are minerals
     first: np.ndarray  # (couple,) int64: the component that a valence is counted as; -1: water's own
-    carrier: np.ndarray  # (open gas,) int64: the component whose total it leaves open, e^- for O2 and H2
+    carrier: np.ndarray  # (open gas,) int64: the component that follows from its pressure; e^- if it has any
     signed: int  # H^+, whose total may be negative
     electron: int  # e^-, whose total may be negative too; -1 where nothing is coupled
     given: int  # 1 under SIT: the last of the basis is water, of which the law gives the activity; else 0
@@ -67,7 +67,7 @@ class Bench(NamedTuple):
     active: np.ndarray  # (row,) int64
     pivot: np.ndarray  # (row,) int64
     free: np.ndarray  # (basis,) int64
-    exit: np.ndarray  # (1,) int64: the mark of a mineral that had to make room
+    exit: np.ndarray  # (2,) int64: the mark of a mineral that had to make room; the one the entering had
     place: np.ndarray  # (basis,) int64: where one stands in free; -1 - row for a pivot; GONE
     reduced: np.ndarray  # (basis, species) stoichiometry in the free ones
     reduced_ln_k: np.ndarray  # (species,)
@@ -139,7 +139,7 @@ def bench(matrices: Matrices) -> Bench:
         active=whole(rows),
         pivot=whole(rows),
         free=whole(basis),
-        exit=whole(1),
+        exit=whole(2),
         place=whole(basis),
         reduced=real(basis, species),
         reduced_ln_k=real(species),

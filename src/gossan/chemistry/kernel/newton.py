@@ -151,7 +151,7 @@ def far_merit(bench, free):
     """The sum of squares of ln(positive / negative), which a good far step makes smaller."""
     merit = 0.0
     for j in range(free):
-        ratio = math.log((bench.negative[j] + SLIGHT) / (bench.positive[j] + SLIGHT))
+        ratio = math.log(bench.negative[j] + SLIGHT) - math.log(bench.positive[j] + SLIGHT)
         merit += ratio * ratio
     return merit
 
@@ -163,7 +163,7 @@ def far_step(bench, free):
     reduced, molality = bench.reduced, bench.molality
     for j in range(free):
         positive, negative = bench.positive[j] + SLIGHT, bench.negative[j] + SLIGHT
-        right[j] = math.log(negative / positive)
+        right[j] = math.log(negative) - math.log(positive)
         for s in range(molality.shape[0]):
             value = reduced[j, s] * molality[s]
             share[s] = value / (positive if value > 0.0 else negative)

@@ -77,9 +77,11 @@ def tie_all(matrices, bench, presence, entering):
         if tie(matrices, bench, entering, n):
             n += 1
         else:
-            out = leaving(bench, n)
+            out = leaving(bench, n, entering)
             if out < 0:
                 presence[entering] = 0
+            elif out == n:
+                presence[entering] = bench.exit[0]
             else:
                 presence[bench.active[out]] = bench.exit[0]
                 return -1
@@ -140,15 +142,21 @@ def tie(matrices, bench, mineral, n):
 
 
 @kernel(inner=True, forceinline=True)
-def leaving(bench, n):
-    """Which of n rows runs out (or fills up) first as a mineral made of them grows; -1 for none.
+def leaving(bench, n, entering):
+    """Which of n rows runs out (or fills up) first as a mineral made of them enters; -1 for none.
 
-    turns[n] holds the combination that undoes the growing one; the answer is a row, and bench.exit[0] the
-    mark that its mineral gets: 0 absent, 2 full.
+    turns[n] holds the combination that undoes the entering one, which grows from nothing or, where
+    bench.exit[1] says that it was full, shrinks.  The answer is a row, n where the entering one itself comes
+    to its other end first, and bench.exit[0] the mark that its mineral gets: 0 absent, 2 full.
     """
-    out, least = -1, 0.0
+    out, least, grows = -1, 0.0, 1.0
+    if bench.exit[1] == 2:
+        grows = -1.0
+    if bench.upper[entering] < 1e300:
+        out, least = n, bench.upper[entering]
+        bench.exit[0] = 2 if grows > 0.0 else 0
     for m in range(n):
-        spent = -bench.turns[n, m]
+        spent = -grows * bench.turns[n, m]
         mineral = bench.active[m]
         if mineral >= bench.solid.shape[0]:
             continue  # a tie always holds
@@ -255,13 +263,13 @@ def pivots_follow(matrices, bench, active, free):
 
 
 @kernel(inner=True, forceinline=True)
-def scarcer_free(matrices, bench, active, free):
-    """Whether a free one is so much scarcer than a pivot it is tied to that digits were lost on it."""
+def scarcer_free(matrices, bench, active, free, rung):
+    """Whether a free one is scarcer, by the factor rung, than a pivot it is tied to."""
     for r in range(active):
         pivot = bench.abundance[bench.pivot[r]]
         for j in range(free):
             k = bench.free[j]
             share = abs(bench.rows[r, k])
-            if k != matrices.signed and share != 0.0 and bench.abundance[k] * RUNG < share * pivot:
+            if k != matrices.signed and share != 0.0 and bench.abundance[k] * rung < share * pivot:
                 return True
     return False

@@ -14,7 +14,7 @@ from gossan.base.jit import kernel
 
 REGROUPED = {"reassoc", "contract"}
 
-LOWEST, HIGHEST = -690.0, 60.0  # exponents: e^60 mol/kg is far from any water and still far from overflow
+LOWEST, HIGHEST = -690.0, 300.0  # exponents: e^300 mol/kg still has a square, and far steps a slope
 PER_LN2 = 1.0 / math.log(2.0)
 LN2_HIGH = 0.693147180369123816490  # its last bits are zero: a product with a small integer is exact
 LN2_LOW = 1.90821492927058770002e-10  # the rest of ln 2
