@@ -23,7 +23,7 @@ from gossan.transport.faces import Faces
 
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
 # Explicit transport may cost so many times the steps; beyond, it is implicit, which is as good for tracers
-# but only first order beside a front of what solids hold.
+# but only first order beside a front of what solids hold: there its steps are so many times longer, no more.
 GAIN_OF_TRACERS, GAIN_OF_RETENTION = 3.0, 10.0
 GAIN_OF_SHORT_CELLS = 10.0  # implicit advection smears what crosses them: measured in docs/decisions.md
 TURNED_BACK = "the flow has turned back at the inlet: solids push out more water than the head drives through"
@@ -172,7 +172,7 @@ def longest_step(problem: Problem, faces: Faces) -> tuple[float, bool]:
     gain = GAIN_OF_RETENTION if retained else GAIN_OF_TRACERS
     if explicit * gain >= implicit:
         return explicit, False
-    return implicit, True
+    return (explicit * gain if retained else implicit), True
 
 
 def _fitted(
