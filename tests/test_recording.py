@@ -5,6 +5,7 @@ from __future__ import annotations
 import os
 import shutil
 import signal
+import threading
 from pathlib import Path
 
 import h5py
@@ -211,14 +212,19 @@ def test_the_first_frame_is_at_equilibrium_with_its_minerals_and_what_is_absent_
 # what a run that cannot end says, and leaves
 
 
+def alone() -> bool:
+    """Whether this is the column itself, and not what carries its errors."""
+    return threading.current_thread() is threading.main_thread()
+
+
 def failing(monkeypatch, calls: int, cell: int) -> None:
     """From so many solves of the march on, let chemistry find no equilibrium in a cell."""
     honest, count = Solver.settled, 0
 
     def settled(self, *arguments, **options):
         nonlocal count
-        count += "skip" in options  # only the march skips what has not changed
-        if count > calls:
+        count += "skip" in options and alone()  # only the march skips what has not changed
+        if count > calls and alone():
             raise SolveError("no luck", cell=cell)
         return honest(self, *arguments, **options)
 
@@ -250,8 +256,8 @@ def test_a_solve_that_fails_once_only_costs_a_shorter_step(tmp_path, monkeypatch
 
     def settled(self, *arguments, **options):
         nonlocal count
-        count += 1
-        if count == 40:
+        count += alone()
+        if count == 40 and alone():
             raise SolveError("no luck", cell=0)
         return honest(self, *arguments, **options)
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import json
 import signal
 import sys
 import threading
@@ -15,25 +16,25 @@ from typing import Any
 import numpy as np
 
 from gossan.base.errors import SolveError
+from gossan.case.bounds import PH
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
 from gossan.chemistry.certificate import Certificate
-from gossan.chemistry.equilibrium import LN10, log10_activity, mineral_saturation, pe_of
 from gossan.coupling.beyond import Beyond, watched
 from gossan.coupling.certify import certify_state, diluted_since
 from gossan.coupling.drive import Drive, pore_volumes, settled
+from gossan.coupling.follower import Follower
 from gossan.coupling.ledger import Books
 from gossan.coupling.march import Clogged, Stride, march
 from gossan.coupling.pace import Pace
-from gossan.coupling.pores import conductivity
-from gossan.coupling.problem import Port, Problem
+from gossan.coupling.problem import Problem
+from gossan.coupling.shadow import Shadow, apart, shadow_from, shadow_of
 from gossan.coupling.state import State, StillWater, state_of
-from gossan.store.file import Axes
-from gossan.store.read import Result, open_result
+from gossan.coupling.watching import OFF, WHEN, nothing_seen, seen
+from gossan.observing import axes_of, frame_of, ports_of
+from gossan.store.read import Crossing, Result, open_result
 from gossan.store.write import ResultWriter, last_parts
-from gossan.transport.faces import Faces
-from gossan.transport.step import passages
 
 CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
 COMMIT_EVERY = 0.2  # s of wall clock after which others see what was recorded; each time costs some ms
@@ -65,11 +66,11 @@ def run_case(case: Case, path: Path, *, overwrite: bool = False, progress: Progr
     """
     problem = build(case)
     state, pace = problem.initial, first_pace(problem)
+    shadow = shadow_of(problem, state) if problem.errors_carried else None
     writer = ResultWriter(
         path, axes_of(problem), case.title, case.text, CAUTION, overwrite, case.constants_text, case.files
     )
-    with writer:
-        run = _Run(problem, writer, progress)
+    with writer, _Run(problem, writer, progress, shadow) as run:
         run.beyond = watched(problem, state, run.beyond)
         run.frame(state)
         run.records(state)
@@ -84,10 +85,10 @@ def resume(path: Path, *, progress: Progress | None = None) -> Ending:
     """
     problem = build(case_of(open_result(path)))
     writer, parts = ResultWriter.resume(path)
-    with writer:
-        run = _Run(problem, writer, progress)
+    shadow = shadow_from(parts["shadow"]) if parts["shadow"] else None
+    with writer, _Run(problem, writer, progress, shadow) as run:
         state = state_of(parts["state"])
-        run.seen = parts["seen"]
+        run.seen, run.limits = parts["seen"], parts["limits"]
         run.beyond = Beyond(**parts["beyond"])
         return run.walk(state, Pace(**parts["pace"]))
 
@@ -150,39 +151,27 @@ def _print_share(share: float, state: State) -> None:
     print(f"\r{100.0 * share:5.1f} %  day {state.time / 86400.0:.6g}", end=end, file=sys.stderr)
 
 
-def axes_of(problem: Problem) -> Axes:
-    """What stands along the axes of a result file of this problem."""
-    grid = problem.grid
-    names = [layer.name for layer in grid.layers]
-    return Axes(
-        component=problem.solutes,
-        mineral=problem.system.minerals,
-        species=problem.system.species,
-        x=grid.centres,
-        face=grid.edges,
-        layer=tuple(names[i] for i in grid.layer),
-        ports={port.name: port.x for port in problem.ports},
-        parts=frozenset(_parts(problem)),
-    )
-
-
-def _parts(problem: Problem) -> Iterator[str]:
-    if problem.isotherms is not None:
-        yield "isotherms"
-    if problem.stagnant is not None:
-        yield "immobile"
-
-
 class _Run:
     """One run into one file."""
 
-    def __init__(self, problem: Problem, writer: ResultWriter, progress: Progress | None):
+    def __init__(
+        self, problem: Problem, writer: ResultWriter, progress: Progress | None, shadow: Shadow | None
+    ):
         self.problem, self.writer, self.progress = problem, writer, progress
+        self.follower = Follower(shadow, problem.system) if shadow else None
         self.books = Books(problem)
         self.steps: list[dict[str, float]] = []
         self.seen = {"frame": -1.0, "records": -1.0}  # times of the last ones, s
+        self.limits = nothing_seen(len(problem.watched))
         self.beyond = Beyond()
         self.asked_to_stop = False
+
+    def __enter__(self) -> _Run:
+        return self
+
+    def __exit__(self, *_: Any) -> None:
+        if self.follower:
+            self.follower.close()
 
     def walk(self, state: State, pace: Pace) -> Ending:
         """March to the end, recording; an interrupt is heard between two steps, never within one."""
@@ -201,6 +190,11 @@ class _Run:
                 now = wall.monotonic()
                 self.step(stride, now - last)
                 last = now
+                self.limits = seen(
+                    stride.turn.problem, self.limits, state, stride.state, stride.turn.faces.darcy_flux
+                )
+                if self.follower:
+                    self.follower.follow(stride)
                 self.beyond = watched(self.problem, stride.state, self.beyond)
                 if stride.frame_due:
                     self.frame(stride.state)
@@ -232,9 +226,26 @@ class _Run:
         counts, parts = dict(self.writer.counts), self.parts(state, pace)
         if ending.status != "finished":
             self.last(state)  # to be seen, but a run never stopped has none here: who goes on drops it
-        figures = {"wall_clock_seconds": wall.monotonic() - began, "warnings": self.beyond.told(self.problem)}
+        said = [self.beyond.told(self.problem), self.follower.shadow().told() if self.follower else ""]
+        figures = {
+            "wall_clock_seconds": wall.monotonic() - began,
+            "warnings": "\n".join(filter(None, said)),
+            "crossings": self.crossings(),
+        }
         self.writer.finish(ending.status, parts, ending.reason, figures, counts)
         return ending
+
+    def crossings(self) -> str:
+        """When each limit was first exceeded, by port and quantity, as JSON (docs/result-file.md)."""
+        shadows = self.follower.shadow().seen if self.follower else np.full_like(self.limits, np.nan)
+        found: dict[str, dict[str, Crossing]] = {}
+        for limit, own, other in zip(self.problem.watched, self.limits, shadows, strict=True):
+            if own[WHEN] == own[WHEN]:
+                quantity = self.problem.solutes[limit.solute] if limit.solute >= 0 else PH
+                beside = float(other[WHEN]) if other[WHEN] == other[WHEN] else None
+                when = float(own[WHEN]), float(own[OFF]), beside
+                found.setdefault(self.problem.ports[limit.port].name, {})[quantity] = when
+        return json.dumps(found)
 
     def last(self, state: State) -> None:
         """Record a state at which no record falls due."""
@@ -255,7 +266,11 @@ class _Run:
 
     def parts(self, state: State, pace: Pace) -> dict[str, Any]:
         """All that the run needs to go on from here."""
-        return {"state": state, "pace": pace, "seen": dict(self.seen), "beyond": self.beyond}
+        shadow = self.follower.shadow() if self.follower else None
+        return {
+            "state": state, "pace": pace, "seen": dict(self.seen), "beyond": self.beyond, "shadow": shadow,
+            "limits": self.limits,
+        }  # fmt: skip
 
     def step(self, stride: Stride, seconds: float) -> None:
         self.steps.append(
@@ -275,17 +290,19 @@ class _Run:
 
     def records(self, state: State) -> None:
         self.seen["records"] = state.time
-        drive = Drive(self.problem, state)
-        inflow = drive.inflow
-        darcy_flux, _ = drive.flow(settled_dt(state), 0.0)
-        faces = drive.faces(darcy_flux)
-        through = passages(faces, state.dissolved, inflow, 1.0).passed
-        for index, port in enumerate(self.problem.ports):
-            values = port_of(self.problem, state, port, index, faces, inflow, through)
-            self.writer.port(port.name, state.time, values)
+        problem, values = self.problem, ports_of(self.problem, state)
         ledger = self.books.closed(state)
         names = ("entered", "left", "stored", "made", "error", "water_error", "charge_error")
-        self.writer.ledger(state.time, {name: getattr(ledger, name) for name in names})
+        row = {name: getattr(ledger, name) for name in names}
+        if self.follower:
+            shadow = self.follower.shadow().state
+            row["splitting_error"] = apart(problem, state, shadow, Drive(problem, state).inflow)
+            for here, beside in zip(values, ports_of(problem, shadow), strict=True):
+                here["dissolved_error"] = here["dissolved"] - beside["dissolved"]
+                here["pH_error"] = here["pH"] - beside["pH"]
+        for port, shown in zip(problem.ports, values, strict=True):
+            self.writer.port(port.name, state.time, shown)
+        self.writer.ledger(state.time, row)
 
 
 @contextmanager
@@ -299,59 +316,3 @@ def _interrupts(handler: Callable[..., None]) -> Iterator[None]:
         yield
     finally:
         signal.signal(signal.SIGINT, before)
-
-
-def settled_dt(state: State) -> float:
-    """A time over which the last step's surplus of water counts as spread, for a flux to report, s."""
-    return state.time / state.step if state.step else 1.0
-
-
-def frame_of(problem: Problem, state: State) -> dict[str, Any]:
-    """The profiles of a state."""
-    system = settled(problem, state).system
-    darcy_flux, head = Drive(problem, state).flow(settled_dt(state), 0.0)
-    activity = log10_activity(system, state.ln_activity)
-    retained: dict[str, np.ndarray] = {}
-    if problem.isotherms is not None:
-        retained["sorbed"] = np.zeros_like(state.dissolved)
-        retained["sorbed"][problem.sorbates] = problem.sorbed(state)
-    if problem.stagnant is not None and state.still is not None:
-        retained["immobile_dissolved"] = np.full_like(state.dissolved, np.nan)
-        retained["immobile_dissolved"][:, problem.stagnant.cells] = state.still.dissolved
-    return {
-        **retained,
-        "dissolved": state.dissolved,
-        "solid": problem.solid(state),
-        "saturation": mineral_saturation(system, state.ln_activity),
-        "activity": activity,
-        "porosity": problem.water(state),
-        "conductivity": conductivity(problem, problem.water(state), system.temperature),
-        "pH": -state.ln_activity[0] / LN10,
-        "pe": pe_of(system, state.ln_activity),
-        "ionic_strength": state.ionic_strength,
-        "darcy_flux": darcy_flux,
-        "head": head,
-        "temperature": system.temperature,
-    }
-
-
-def port_of(
-    problem: Problem, state: State, port: Port, index: int, faces: Faces, inflow: np.ndarray,
-    through: np.ndarray,
-) -> dict[str, Any]:
-    """What a port shows (equations.md, 45).
-
-    inflow (solute,) mol m-3; through (solute, face) mol m-2 s-1 is what passes every face at this instant
-    """
-    flux, before = faces.darcy_flux[port.face], max(port.face - 1, 0)
-    passing = through[:, port.face]
-    return {
-        "pore_volumes": pore_volumes(problem, state),
-        "darcy_flux": flux,
-        "pH": -state.ln_activity[0, before] / LN10,
-        "pe": pe_of(problem.system, state.ln_activity)[before],
-        # flux-averaged; where no water passes there is none
-        "dissolved": passing / flux if flux != 0.0 else np.full(len(through), np.nan),
-        "resident": faces.resident(state.dissolved, inflow, passing, port.face),
-        "passed": state.passed[2 + index].sum(axis=-1),
-    }

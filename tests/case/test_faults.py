@@ -264,8 +264,6 @@ NOT_LANDED = [
     ("[layers.clogging]", '[layers.surface]\nferrihydrite = "0.2 wt%"\n[layers.clogging]'),
     ("[[ports]]", '[rates.sulfate]\nlaw = "monod"\n[[ports]]'),
     ('Zn = "0.12 mg/L"', 'Cu = {criterion = "x", hardness = "port"}'),
-    ("[run]", '[run]\ncoupling = "strang"'),
-    ("[run]", '[run]\ncoupling = "iterated"'),
     ("[run]", '[unknowns]\n"a.b" = {low = "1 cm"}\n[run]'),
     ("[run]", "[size]\nsafety = 1.5\n[run]"),
     ("[run]", "[spread]\nmembers = 5\n[run]"),

@@ -211,7 +211,8 @@ def test_the_schema_knows_every_key():
     assert layer["additionalProperties"] is False
     assert "from" in schema["$defs"]["Feed"]["properties"]
     assert schema["properties"]["spread"]["not"] == {}
-    assert schema["$defs"]["Run"]["properties"]["coupling"]["enum"] == ["two-stage", "lie"]
+    ways = schema["$defs"]["Run"]["properties"]["coupling"]["enum"]
+    assert ways == ["two-stage", "lie", "strang", "iterated"]
 
 
 def test_reading_needs_neither_pint_nor_numba():

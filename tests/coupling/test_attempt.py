@@ -13,6 +13,7 @@ from tests.support.salts import Salt, water, write_salts
 from gossan.chemistry.equilibrium import Solver
 from gossan.coupling.attempt import attempt
 from gossan.coupling.problem import Problem
+from gossan.coupling.splitting import Turn
 from gossan.coupling.state import State
 from gossan.transport.faces import Faces, faces_of
 from gossan.transport.step import DAMPING
@@ -61,7 +62,7 @@ def marched(problem: Problem, state: State, steps: int, theta: float | None) -> 
     solver = Solver(problem.system)
     for _ in range(steps):
         inflow, now = problem.feeds.inflow[0, 0], faces(problem, state)
-        state = attempt(problem, solver, state, now, inflow, dt, theta).state
+        state = attempt(Turn(problem, solver, state, now, inflow, dt, theta)).state
     held = state.dissolved * state.water
     return held + problem.system.mineral_stoichiometry.T @ state.solid, state.splitting_error
 
@@ -97,11 +98,24 @@ def test_lie_is_first_order_and_its_estimate_follows_the_error(tmp_path, dispers
     assert ratio.max() < (8.0 if theta else 4.0)  # backward Euler, against a second order that halves it
 
 
+@pytest.mark.parametrize(("dispersivity", "theta"), [EXPLICIT, IMPLICIT])
+def test_iterated_is_second_order_in_time(tmp_path, dispersivity, theta):
+    found, _ = errors(tmp_path, "iterated", dispersivity, theta)
+    assert observed_order(STEPS, found) >= 1.9
+    assert found[-1] < 5e-6
+
+
+def test_strang_gains_nothing_where_reactions_are_at_equilibrium(tmp_path):
+    """Reacting before and after transport is reacting once: first order, as numerics have it."""
+    found, _ = errors(tmp_path, "strang", *EXPLICIT)
+    assert observed_order(STEPS, found) == pytest.approx(1.1, abs=0.15)
+
+
 def test_nothing_that_was_given_is_changed(tmp_path):
     problem, state = salty(tmp_path, "two-stage", "2 cm")
     before = {name: np.array(getattr(state, name), copy=True) for name in State.__slots__}
     solver, now = Solver(problem.system), faces(problem, state)
-    attempt(problem, solver, state, now, problem.feeds.inflow[0, 0], 600.0, None)
+    attempt(Turn(problem, solver, state, now, problem.feeds.inflow[0, 0], 600.0, None))
     for name, values in before.items():
         assert np.array_equal(values, getattr(state, name)), name
 
@@ -111,9 +125,9 @@ def test_a_step_tried_twice_gives_the_same_bits(tmp_path):
     problem, state = salty(tmp_path, "two-stage", "2 cm")
     solver, now = Solver(problem.system), faces(problem, state)
     inflow = problem.feeds.inflow[0, 0]
-    one = attempt(problem, solver, state, now, inflow, 600.0, None)
-    attempt(problem, solver, one.state, faces(problem, one.state), 0.5 * inflow, 1200.0, DAMPING)
-    two = attempt(problem, solver, state, now, inflow, 600.0, None)
+    one = attempt(Turn(problem, solver, state, now, inflow, 600.0, None))
+    attempt(Turn(problem, solver, one.state, faces(problem, one.state), 0.5 * inflow, 1200.0, DAMPING))
+    two = attempt(Turn(problem, solver, state, now, inflow, 600.0, None))
     for name in State.__slots__:
         a, b = (np.asarray(getattr(trial.state, name)) for trial in (one, two))
         assert a.tobytes() == b.tobytes(), name

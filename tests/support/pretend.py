@@ -84,9 +84,11 @@ def record(writer: ResultWriter, state: Pretended, pace: PretendedPace) -> None:
         for name, x in writer.axes.ports.items():
             writer.port(name, state.time, {"pore_volumes": state.time / x, "darcy_flux": x, "pH": sums[2],
                                            "pe": 4.0, "dissolved": sums, "resident": sums / 2,
-                                           "passed": sums * x})
+                                           "passed": sums * x, "dissolved_error": 1e-3 * sums,
+                                           "pH_error": -1e-3})
         writer.ledger(state.time, {"entered": sums, "left": sums / 3, "stored": sums / 5, "made": 0 * sums,
-                                   "error": sums * 1e-16, "water_error": 0.0, "charge_error": 1e-17})
+                                   "error": sums * 1e-16, "splitting_error": sums * 1e-3, "water_error": 0.0,
+                                   "charge_error": 1e-17})
     if state.step % FRAME_EVERY == 0:
         writer.frame(state.time, profile(state))
     if state.step % CHECKPOINT_EVERY == 0:

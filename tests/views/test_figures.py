@@ -7,10 +7,10 @@ import numpy as np
 import pytest
 from tests.support.small_cases import GYPSUM
 
+from gossan.case.bounds import bounds_of
 from gossan.case.read import case_from_text
 from gossan.recording import run
 from gossan.views import figures, style
-from gossan.views.limits import bounds_of
 
 
 @pytest.fixture(scope="module")
@@ -124,14 +124,19 @@ def test_drawing_leaves_the_settings_of_matplotlib_alone(result):
 def test_a_run_that_has_only_begun_can_be_drawn(result, tmp_path):
     """One frame, one record, no steps."""
     from gossan.case.build import build, first_pace
-    from gossan.recording import CAUTION, _Run, axes_of
+    from gossan.coupling.shadow import shadow_of
+    from gossan.observing import axes_of
+    from gossan.recording import CAUTION, _Run
     from gossan.store.read import open_result
     from gossan.store.write import ResultWriter
 
     case = case_from_text(GYPSUM)
     problem = build(case)
-    with ResultWriter(tmp_path / "begun.h5", axes_of(problem), case.title, case.text, CAUTION) as writer:
-        run = _Run(problem, writer, None)
+    shadow = shadow_of(problem, problem.initial)
+    with (
+        ResultWriter(tmp_path / "begun.h5", axes_of(problem), case.title, case.text, CAUTION) as writer,
+        _Run(problem, writer, None, shadow) as run,
+    ):
         run.frame(problem.initial)
         run.records(problem.initial)
         writer.checkpoint({"state": problem.initial, "pace": first_pace(problem)})

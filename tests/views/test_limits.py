@@ -1,4 +1,4 @@
-"""Limits: in SI whatever their unit, and crossed when straight lines between records cross them."""
+"""Limits: in SI whatever their unit, and when the steps of a run first exceed them."""
 
 from __future__ import annotations
 
@@ -6,9 +6,12 @@ import numpy as np
 import pytest
 from tests.support.small_cases import GYPSUM
 
+from gossan.case.bounds import bounds_of
 from gossan.case.read import case_from_text
 from gossan.constants.water import density
-from gossan.views.limits import bounds_of, first_outside, verdicts
+from gossan.recording import run
+from gossan.views.crossing import SURE
+from gossan.views.limits import verdicts
 
 INF = np.inf
 
@@ -28,25 +31,6 @@ def test_a_limit_is_in_moles_per_volume(written, mol_per_m3):
     assert bound.low == -INF
 
 
-def test_a_crossing_lies_on_the_straight_line_between_records():
-    time = np.array([0.0, 10.0, 30.0, 40.0])
-    rising = np.array([1.0, 1.0, 2.0, 5.0])
-    assert first_outside(time, rising, -INF, 1.5) == (20.0, 10.0)
-    assert first_outside(time, rising, -INF, 5.0) is None  # a limit that is met is kept
-    assert first_outside(time, rising, -INF, 0.5) == (0.0, 0.0)
-
-
-def test_a_range_can_be_left_at_either_end():
-    time = np.array([0.0, 10.0])
-    assert first_outside(time, np.array([7.0, 6.0]), 6.5, 9.0) == (5.0, 5.0)
-    assert first_outside(time, np.array([8.0, 10.0]), 6.5, 9.0) == (5.0, 5.0)
-
-
-def test_only_the_first_crossing_counts():
-    time = np.arange(5.0)
-    assert first_outside(time, np.array([0.0, 2.0, 0.0, 2.0, 0.0]), -INF, 1.0) == (0.5, 0.5)
-
-
 def test_peak_and_last_are_those_of_the_port(result):
     found = {v.quantity: v for v in verdicts(result, [])}
     sulfate = result.ports["outlet"].dissolved.sel(component="SO4^2-").values
@@ -62,9 +46,21 @@ def test_limits_come_first_and_every_solute_has_a_verdict(result):
     assert set(found) == {*result.axes.component, "pH", "Zn^2+"}
 
 
-def test_the_error_is_never_less_than_half_a_record(result):
+def test_steps_tell_closer_than_records(result):
+    """Half the interval of records is 864 s; the case's steps are some 20 s long."""
     bromide = next(v for v in verdicts(result, bounds_of(case_from_text(GYPSUM))) if v.quantity == "bromide")
-    interval = np.diff(result.ports["outlet"].time.values).min()
-    assert bromide.error > 0.5 * interval
-    # what the steps add is little beside it: their errors are held to 1e-3 each
-    assert bromide.error < 0.6 * interval
+    when, off, shadow = result.crossings["outlet"]["bromide"]
+    assert bromide.first_exceeded == when
+    assert bromide.error == pytest.approx(off + SURE * abs(shadow - when))
+    port = result.ports["outlet"]
+    recorded = np.interp(when, port.time.values, port.dissolved.sel(component="bromide").values)
+    assert recorded == pytest.approx(0.5, abs=0.02)  # on the straight line between two records
+
+
+def test_where_no_errors_were_carried_none_is_stated(tmp_path):
+    case = case_from_text(GYPSUM.replace("[run]\n", '[run]\nerrors = "none"\n'))
+    found = run(case, tmp_path / "plain.h5")
+    late = [v for v in verdicts(found, bounds_of(case)) if v.first_exceeded]
+    assert late
+    assert all(v.error is None for v in late)
+    assert "dissolved_error" not in list(found.ports["outlet"])

@@ -7,6 +7,7 @@ from functools import lru_cache, partial
 import numpy as np
 
 from gossan.base.amounts import Amount
+from gossan.case.bounds import PH, bounds_of
 from gossan.case.build_feeds import feeds_of, frames_of, records_of, waters_entering
 from gossan.case.build_initial import initial_state
 from gossan.case.build_retention import decay_of, isotherms_of, stagnant_of
@@ -23,7 +24,7 @@ from gossan.constants.entries import Mineral, Table
 from gossan.constants.find import find_mineral
 from gossan.coupling.drive import Drive
 from gossan.coupling.pace import Pace
-from gossan.coupling.problem import Port, Problem
+from gossan.coupling.problem import Port, Problem, Watched
 from gossan.coupling.schedule import Schedule
 from gossan.transport import clogging, grid
 from gossan.transport.faces import transport_of
@@ -91,10 +92,22 @@ def build(case: Case) -> Problem:
         coupling=case.run.coupling,
         accuracy=case.run.accuracy,
         max_courant=case.run.max_courant,
+        watched=_watched(case, ports, (*system.components, *tracers)),
+        errors_carried=case.run.errors == "carried",
         decay=decay_of(case, cells, chemical),
         isotherms=isotherms,
         stagnant=stagnant,
     )
+
+
+def _watched(case: Case, ports: tuple[Port, ...], solutes: tuple[str, ...]) -> tuple[Watched, ...]:
+    """The limits of a case on what it holds."""
+    names = [port.name for port in ports]
+    return tuple(
+        Watched(names.index(bound.port), -1 if bound.quantity == PH else solutes.index(bound.quantity),
+                bound.low, bound.high)
+        for bound in bounds_of(case) if bound.quantity in (PH, *solutes)
+    )  # fmt: skip
 
 
 def first_pace(problem: Problem) -> Pace:

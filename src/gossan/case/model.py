@@ -249,7 +249,7 @@ class Run(TableOfCase):
     ports_every: Annotated[Amount | None, INTERVAL] = Field(
         default=None, description="between two records at the ports; default duration/1000"
     )
-    coupling: Annotated[str, Choice(("two-stage", "lie"), ("strang", "iterated"))] = Field(
+    coupling: Annotated[str, Choice(("two-stage", "lie", "strang", "iterated"))] = Field(
         default="two-stage", description="how transport and chemistry take turns"
     )
     accuracy: Annotated[float, Number("an accuracy", 0, 1, is_open=True, example="1e-3")] = Field(
@@ -257,6 +257,10 @@ class Run(TableOfCase):
     )
     max_courant: Annotated[float, Number("a Courant number", 0, 1, example="0.5")] = Field(
         default=0.5, description="cells that water may pass in a step"
+    )
+    errors: Annotated[str, Choice(("carried", "none"))] = Field(
+        default="carried",
+        description="whether what each step missed is carried on to every answer; costs up to as much again",
     )
     limiter: Annotated[str, Choice(("van-leer", "minmod", "none", "upwind"))] = Field(
         default="van-leer",

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
@@ -28,6 +28,10 @@ class Kept:
     early: np.ndarray
     late: np.ndarray
 
+    def arrived(self) -> Kept:
+        """The same where all that arrives has done so before anything decays."""
+        return replace(self, first=self.whole, late=self.early)
+
 
 @dataclass(frozen=True, eq=False)
 class KeptByCell:
@@ -39,6 +43,10 @@ class KeptByCell:
     def at(self, cells: np.ndarray) -> KeptByCell:
         """The same of some cells."""
         return KeptByCell(self.kept, self.zone[cells])
+
+    def arrived(self) -> KeptByCell:
+        """The same where all that arrives has done so before anything decays."""
+        return replace(self, kept=tuple(kept.arrived() for kept in self.kept))
 
     def alone(self, stock: np.ndarray) -> np.ndarray:
         """(member, cell) what is left of a stock that nothing is added to."""

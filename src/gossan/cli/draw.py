@@ -24,10 +24,10 @@ def parser() -> argparse.ArgumentParser:
 
 def run(args: argparse.Namespace) -> int:
     """Draw all figures; returns the exit code."""
+    from gossan.case.bounds import bounds_of, tracer_masses
     from gossan.recording import case_of
     from gossan.store.read import open_result
     from gossan.views.figures import all_figures
-    from gossan.views.limits import bounds_of, tracer_masses
     from gossan.views.style import PIXELS_PER_INCH
 
     result = open_result(args.file).loaded()

@@ -1,24 +1,21 @@
-"""One trial step: transport, then chemistry, once or twice (equations.md, 35-37)."""
+"""One trial step: where its scheme leads, how far that may be wrong, what passed meanwhile."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from gossan.base.sums import added
-from gossan.chemistry.equilibrium import Solver
-from gossan.coupling.pores import pore_space
+from gossan.coupling.drive import at_once
+from gossan.coupling.pores import pore_space, still_pore_space
 from gossan.coupling.problem import Problem
+from gossan.coupling.splitting import SCHEMES, Taken, Turn
 from gossan.coupling.state import State
-from gossan.coupling.waters import Waters
-from gossan.transport.faces import LIMITERS, Faces
-from gossan.transport.step import Passages, corrected, kept_positive, passages
+from gossan.transport.faces import faces_of
 
-# What is measured is how far first and second order are apart.  That is the error of the one-step scheme;
-# the two-stage one was at least 30 times nearer to the truth while dispersion was explicit, and lost its
-# second order beside mineral fronts while it was not (docs/decisions.md).
-SHARE_OF_DIFFERENCE = {"lie": 1.0, "two-stage": 1.0 / 30.0}
+ROUNDING = 1e-12  # of the most there is of any solute
+INSTANT = 1e-9  # s: while nothing flows and this goes by, no solute gets anywhere
 
 
 @dataclass(frozen=True, eq=False)
@@ -30,82 +27,76 @@ class Trial:
     error: float  # estimated relative error in time and splitting
     pore_change: float  # largest relative change of a cell's pores
     courant: float
+    taken: Taken
 
 
-def attempt(
-    problem: Problem, solver: Solver, state: State, faces: Faces, inflow: np.ndarray, dt: float,
-    theta: float | None,
-) -> Trial:
-    """March one step of dt from a state.
+def attempt(turn: Turn) -> Trial:
+    """March one step by the scheme of its problem, and estimate its error (equations.md, 37).
 
-    faces      during the step; inflow (solute,) mol m-3
-    theta      None: explicit; else the weight of the end in an implicit step
-    Raises     SolveError where a cell finds no equilibrium
+    Raises   SolveError where a cell finds no equilibrium, or the scheme no agreement
     """
-    width = problem.grid.width
-    waters = Waters(problem, solver, state, faces.darcy_flux, dt)
-    made = waters.foreseen() if theta is not None else None
-    first = passages(faces, state.dissolved, inflow, dt, theta, made)
-    passed = _held_back(problem, state, first, waters.amount, first.passed)
-    stage = waters.stage(passed)
-    whole = corrected(first, state.dissolved, stage.flowing.dissolved)
-    size = _relative(waters.difference(stage, whole, whole - passed), _scale(problem, state, inflow))
-    if problem.coupling == "two-stage":
-        passed = _held_back(problem, state, first, waters.amount, whole)
-        stage = waters.stage(passed, stage)
-    error = size * (SHARE_OF_DIFFERENCE[problem.coupling] if theta is None else 1.0)
-    flowing, found = stage.flowing, stage.flowing.found
-    freed = problem.whole(flowing.freed, stage.still.freed if stage.still else None)
-    lost = pore_space(problem, state.solid) - pore_space(problem, found.solid)
-    after = State(
+    problem, scheme = turn.problem, SCHEMES[turn.problem.coupling]
+    taken = scheme.take(turn)
+    size = relative(taken.difference, scale_of(problem, turn.state, turn.inflow))
+    error = size * (scheme.share if turn.theta is None else 1.0)
+    after = stepped(turn, taken)
+    after = replace(after, splitting_error=turn.state.splitting_error + error)
+    return Trial(after, turn.dt, error, _pore_change(turn, after), turn.faces.fastest * turn.dt, taken)
+
+
+def settled_anew(turn: Turn) -> State:
+    """A state after its temperature has jumped: the same amounts in equilibrium anew, in no time.
+
+    Raises   SolveError where a cell finds no equilibrium
+    """
+    at_rest = faces_of(turn.problem.transport, turn.state.water, np.zeros_like(turn.faces.darcy_flux))
+    instant = replace(turn, faces=at_rest, dt=INSTANT, theta=None)
+    return at_once(stepped(instant, SCHEMES[turn.problem.coupling].take(instant)), turn.state)
+
+
+def stepped(turn: Turn, taken: Taken) -> State:
+    """The state after a step, with all its sums."""
+    problem, state, dt, darcy_flux = turn.problem, turn.state, turn.dt, turn.faces.darcy_flux
+    after = taken.waters.after(taken.stage)
+    legs = taken.legs
+    made = np.sum([waters.made(stage) for waters, stage in legs], axis=0)
+    flowing_freed = np.sum([stage.flowing.freed for _, stage in legs], axis=0)
+    lost = pore_space(problem, state.solid) - pore_space(problem, after.solid)
+    freed, still = flowing_freed, after.still
+    if still is not None and state.still is not None:
+        still_freed = np.sum([stage.still.freed for _, stage in legs if stage.still], axis=0)
+        still_lost = still_pore_space(problem, state.still.solid) - still_pore_space(problem, still.solid)
+        still = replace(still, swelling=(still_lost + still_freed) / dt)
+        freed = problem.whole(flowing_freed, still_freed)
+    came = dt * np.array([*darcy_flux[[0, -1]], float(freed @ problem.grid.width) / dt])
+    return replace(
+        after,
         time=state.time + dt,
         step=state.step + 1,
-        dissolved=flowing.dissolved,
-        solid=found.solid,
-        sorbed=flowing.sorbed,
-        water=flowing.water,
-        swelling=(lost + flowing.freed) / dt,
-        ln_activity=found.ln_activity,
-        ionic_strength=found.ionic_strength,
-        presence=found.presence,
-        solved=found.solved,
-        seen=found.seen,
-        still=waters.still_after(stage),
-        passed=added(state.passed, passed[:, problem.gates].T),
-        made=added(state.made, waters.made(stage)),
-        water_passed=added(
-            state.water_passed, dt * np.array([*faces.darcy_flux[[0, -1]], float(freed @ width) / dt])
-        ),
-        splitting_error=state.splitting_error + error,
+        swelling=(lost + flowing_freed) / dt,
+        still=still,
+        passed=added(state.passed, taken.passed[:, problem.gates].T),
+        made=added(state.made, made),
+        water_passed=added(state.water_passed, came),
     )
-    change = float(np.max(np.abs(lost) / state.water)) if len(lost) else 0.0
-    change = max(change, waters.still_pores_changed(stage))
-    return Trial(after, dt, error, change, faces.fastest * dt)
 
 
-def _held_back(
-    problem: Problem, state: State, first: Passages, amount: np.ndarray, passed: np.ndarray
-) -> np.ndarray:
-    """Passages that take no more from a cell than it holds; explicit, limited ones never do.
-
-    Without a limiter tracers may fall below nothing: to show that is what it is for.
-    """
-    unlimited = problem.transport.limiter == LIMITERS["none"]
-    if first.elimination is None and not unlimited:
-        return passed
-    total = amount.copy()
-    total[problem.sorbates] += state.sorbed
-    total[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
-    positive = ~np.isin(np.arange(len(amount)), problem.system.signed)
-    if unlimited:
-        positive[problem.chemical :] = False
-    return kept_positive(first, state.dissolved, total, passed, positive)
+def _pore_change(turn: Turn, after: State) -> float:
+    """The largest relative change of a cell's flowing or immobile pores."""
+    problem, state = turn.problem, turn.state
+    lost = pore_space(problem, state.solid) - pore_space(problem, after.solid)
+    change = float(np.max(np.abs(lost) / state.water))
+    if state.still is not None and after.still is not None:
+        lost = still_pore_space(problem, state.still.solid) - still_pore_space(problem, after.still.solid)
+        change = max(change, float(np.max(np.abs(lost) / state.still.water, initial=0.0)))
+    return change
 
 
-def _scale(problem: Problem, state: State, inflow: np.ndarray) -> np.ndarray:
+def scale_of(problem: Problem, state: State, inflow: np.ndarray) -> np.ndarray:
     """(solute,) mol m-2: what an error is measured against, the most that was ever there to be wrong.
 
-    What can decay into a solute counts with it.
+    What can decay into a solute counts with it. What is rounding beside the other solutes, such as the excess
+    of H+ in salts of strong acids and bases, counts no less than that rounding.
     """
     came = np.abs(state.passed[0, :, 0]) + np.maximum(-state.passed[1, :, 0], 0.0)  # and back, by diffusion
     near = np.abs(inflow) + np.abs(problem.transport.beyond[0])
@@ -113,10 +104,10 @@ def _scale(problem: Problem, state: State, inflow: np.ndarray) -> np.ndarray:
     if problem.decay is not None:
         members = problem.decay.solutes
         scale[members] += problem.decay.descent @ scale[members]
-    return scale
+    return np.maximum(scale, ROUNDING * scale.max(initial=0.0))
 
 
-def _relative(difference: np.ndarray, scale: np.ndarray) -> float:
+def relative(difference: np.ndarray, scale: np.ndarray) -> float:
     """The largest L1 norm of a difference (solute, cell) mol m-2, relative to each solute's scale."""
     size = np.abs(difference).sum(axis=1)
     known = scale > 0.0

@@ -73,21 +73,26 @@ class Drive:
         courses = (feeds.darcy_flux, feeds.head_drop, feeds.temperature)
         return any(feeds.slope(values, self.piece) for values in courses)
 
-    def flow(self, dt: float, span: float | None = None) -> tuple[np.ndarray, np.ndarray]:
+    def flow(
+        self, dt: float, span: float | None = None, water: np.ndarray | None = None
+    ) -> tuple[np.ndarray, np.ndarray]:
         """Darcy flux (face,) m s-1 and head (face,) m, the mean over the next span, s; 0 for this instant.
 
-        dt  s, within which water in excess of the pores leaves; also the span, where none is given
+        dt     s, within which water in excess of the pores leaves; also the span, where none is given
+        water  (cell,) all water per bulk, which conductivities follow; default the state's
         """
         span = dt if span is None else span
-        return flow(self.problem, self.state, dt, self._push(0.5 * span))
+        return flow(self.problem, self.state, dt, self._push(0.5 * span), water)
 
-    def faces(self, darcy_flux: np.ndarray, span: float = 0.0) -> Faces:
+    def faces(self, darcy_flux: np.ndarray, span: float = 0.0, water: np.ndarray | None = None) -> Faces:
         """The faces of the column, as warm as it is on the mean over the next span, s; 0 for this instant.
 
         darcy_flux  (face,) m s-1
+        water       (cell,) flowing water per bulk; default the state's
         """
+        water = self.state.water if water is None else water
         warmth = diffusion_ratio(self._push(0.5 * span).temperature, self.problem.reference_temperature)
-        return faces_of(self.problem.transport, self.state.water, darcy_flux, warmth)
+        return faces_of(self.problem.transport, water, darcy_flux, warmth)
 
     def rise(self, dt: float) -> float:
         """How fast the Darcy flux through the inlet changes, m s-2; dt as in `flow`."""

@@ -10,24 +10,23 @@ import numpy as np
 
 from gossan.base.errors import SolveError
 from gossan.chemistry.equilibrium import Solver
-from gossan.coupling.attempt import Trial, attempt
-from gossan.coupling.drive import Drive, at_once, pore_volumes, settled, time_to_pass
+from gossan.coupling.attempt import Trial, attempt, settled_anew
+from gossan.coupling.drive import Drive, pore_volumes, settled, time_to_pass
+from gossan.coupling.feedback import fed_back
 from gossan.coupling.pace import Pace, acceptable
 from gossan.coupling.pores import LANDING, pore_room, share_to_close
 from gossan.coupling.problem import Problem
 from gossan.coupling.schedule import Schedule
+from gossan.coupling.splitting import SCHEMES, Turn
 from gossan.coupling.state import State
-from gossan.transport.faces import Faces, faces_of
-from gossan.transport.step import DAMPING
+from gossan.transport.faces import Faces
 
 SHORTEST = 1e-9  # of the run: a step below this has no chance left
-INSTANT = 1e-9  # s: while nothing flows and this goes by, no solute gets anywhere
 # Explicit transport may cost so many times the steps; beyond, it is implicit, which is as good for tracers
 # but only first order beside a front of what solids hold.
 GAIN_OF_TRACERS, GAIN_OF_RETENTION = 3.0, 10.0
 GAIN_OF_SHORT_CELLS = 10.0  # implicit advection smears what crosses them: measured in docs/decisions.md
 TURNED_BACK = "the flow has turned back at the inlet: solids push out more water than the head drives through"
-WEIGHT_OF_END = {"two-stage": DAMPING, "lie": 1.0}  # in an implicit step
 
 
 @dataclass(frozen=True, eq=False)
@@ -37,6 +36,8 @@ class Stride:
     state: State
     pace: Pace
     trial: Trial
+    turn: Turn
+    jump: Turn | None  # what it began with where the temperature had jumped
     head: np.ndarray  # (face,) m
     frame_due: bool
     record_due: bool
@@ -96,18 +97,23 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
             darcy_flux, head = drive.flow(pace.dt, wish)
         faces = drive.faces(darcy_flux)
         longest, implicit = longest_step(problem, faces)
-        theta = WEIGHT_OF_END[problem.coupling] if implicit else None
+        theta = SCHEMES[problem.coupling].weight if implicit else None
         dt, lands = _fitted(problem, state, entered, inlet, min(pace.dt, longest))
         if drive.ramps:
             darcy_flux, head = drive.flow(pace.dt, dt)
             faces = drive.faces(darcy_flux, dt)
         try:
-            begun, start = state, problem.at(drive.temperature, before)
+            begun, jump = state, None
+            start = problem.at(drive.temperature, before)
             if start.system is not before.system:
-                begun = _settled_anew(start, solvers, state, drive.inflow)
+                jump = Turn(start, solvers.of(start), state, faces, drive.inflow, dt, None)
+                begun = settled_anew(jump)
             moment = problem.at(drive.temperature_after(dt, inlet), start)
             inflow = drive.mean_inflow(dt, inlet)
-            trial = attempt(moment, solvers.of(moment), begun, faces, inflow, dt, theta)
+            turn = Turn(moment, solvers.of(moment), begun, faces, inflow, dt, theta)
+            trial = attempt(turn)
+            if problem.coupling == "iterated" and trial.pore_change > 0.0:
+                turn, trial, head = fed_back(drive, turn, trial)
         except SolveError as error:
             failure, trial = error, None
         if trial is not None:
@@ -132,6 +138,8 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
         state=trial.state,
         pace=following,
         trial=trial,
+        turn=turn,
+        jump=jump,
         head=head,
         frame_due=ended or _due(problem.frames, state, trial.state, entered, now),
         record_due=ended or _due(problem.records, state, trial.state, entered, now),
@@ -141,16 +149,6 @@ def _step(problem: Problem, solvers: Solvers, state: State, pace: Pace) -> Strid
 
 def _ended(problem: Problem, state: State) -> bool:
     return problem.end.passed(problem.end.clock(state.time, pore_volumes(problem, state))) > 0
-
-
-def _settled_anew(problem: Problem, solvers: Solvers, state: State, inflow: np.ndarray) -> State:
-    """A state after its temperature has jumped: the same amounts in equilibrium anew, in no time.
-
-    Raises   SolveError where a cell finds no equilibrium
-    """
-    nothing = faces_of(problem.transport, state.water, np.zeros(len(problem.grid.edges)))
-    trial = attempt(problem, solvers.of(problem), state, nothing, inflow, INSTANT, None)
-    return at_once(trial.state, state)
 
 
 def _due(schedule: Schedule, before: State, after: State, entered: float, now: float) -> bool:

@@ -76,17 +76,21 @@ def conductivity(problem: Problem, water: np.ndarray, temperature: float) -> np.
     return problem.conductivity * (left * fluidity_ratio(temperature, problem.reference_temperature))
 
 
-def flow(problem: Problem, state: State, dt: float, push: Push) -> tuple[np.ndarray, np.ndarray]:
+def flow(
+    problem: Problem, state: State, dt: float, push: Push, water: np.ndarray | None = None
+) -> tuple[np.ndarray, np.ndarray]:
     """Darcy flux and head at every face for the coming step: (face,) m s-1, (face,) m.
 
     What the solids pushed out in the last step they are taken to push out in this one, and what is now in
     excess of the pores leaves within dt: so water and pores agree to second order in dt and never drift.
+    water  (cell,) all there is per bulk, which conductivities follow; default the state's
     """
     excess = (state.water - pore_space(problem, state.solid)) / dt + state.swelling
     if state.still is not None:
         excess = problem.whole(excess, squeezed(problem, state.still, dt))
     made_up = np.concatenate([[0.0], np.cumsum(excess * problem.grid.width)])
-    conductivities = np.maximum(conductivity(problem, problem.water(state), push.temperature), NEARLY_CLOSED)
+    water = problem.water(state) if water is None else water
+    conductivities = np.maximum(conductivity(problem, water, push.temperature), NEARLY_CLOSED)
     if is_held(push.head_drop):
         return _flow_of_head(problem, push.head_drop, conductivities, made_up)
     return flow_of_flux(push.darcy_flux, conductivities, problem.grid.width, made_up)

@@ -31,6 +31,16 @@ class Port:
     x: float  # m, of that face
 
 
+@dataclass(frozen=True, slots=True)
+class Watched:
+    """A limit at a port: of the flux-averaged concentration of a solute, or of pH."""
+
+    port: int  # which of the ports
+    solute: int  # -1: pH
+    low: float  # mol m-3; of pH 1
+    high: float
+
+
 @dataclass(frozen=True, eq=False)
 class Stagnant:
     """The immobile water of a column."""
@@ -59,9 +69,11 @@ class Problem:
     frames: Schedule
     records: Schedule
     ports: tuple[Port, ...]
-    coupling: str  # "two-stage" or "lie"
+    coupling: str  # one of `splitting.SCHEMES`
     accuracy: float
     max_courant: float
+    watched: tuple[Watched, ...] = ()
+    errors_carried: bool = True  # whether a shadow walks beside the column
     decay: Decay | None = None
     isotherms: Isotherms | None = None  # of the whole solid
     stagnant: Stagnant | None = None
@@ -155,12 +167,17 @@ class Problem:
 
     def stored(self, state: State) -> np.ndarray:
         """(solute,) mol m-2 of cross-section: dissolved, sorbed and solid in the whole column."""
+        return self.amounts(state) @ self.grid.width
+
+    def amounts(self, state: State) -> np.ndarray:
+        """(solute, cell) mol m-3 of bulk: dissolved, sorbed and solid in every cell."""
         return self._held(state, self.system.mineral_stoichiometry, lambda amount: amount)
 
     @cached_property
     def stock(self) -> np.ndarray:
         """(solute,) mol m-2: what the column held at the start, every mole counted without its sign."""
-        return self._held(self.initial, np.abs(self.system.mineral_stoichiometry), np.abs)
+        formulas = np.abs(self.system.mineral_stoichiometry)
+        return self._held(self.initial, formulas, np.abs) @ self.grid.width
 
     def _held(
         self, state: State, formulas: np.ndarray, counted: Callable[[np.ndarray], np.ndarray]
@@ -170,7 +187,7 @@ class Problem:
             held = self.whole(held, counted(state.still.dissolved) * state.still.water)
         held[self.sorbates] += self.sorbed(state)
         held[: self.chemical] += formulas.T @ self.solid(state)
-        return held @ self.grid.width
+        return held
 
     @cached_property
     def closing(self) -> np.ndarray:

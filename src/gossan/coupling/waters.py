@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from typing import Any
 
 import numpy as np
 
+from gossan.chemistry.decay import KeptByCell
 from gossan.chemistry.equilibrium import Equilibrium, Solver
 from gossan.coupling.landing import Landed, land
-from gossan.coupling.pores import squeezed, still_pore_space
+from gossan.coupling.pores import squeezed
 from gossan.coupling.problem import Problem
 from gossan.coupling.state import State, StillWater
 from gossan.transport.immobile import exchanged
@@ -30,14 +32,26 @@ class Stage:
 class Waters:
     """The waters of a column at the start of a step, and what the stages of the step make of them."""
 
-    def __init__(self, problem: Problem, solver: Solver, state: State, darcy_flux: np.ndarray, dt: float):
-        self.problem, self.solver, self.state, self.dt = problem, solver, state, dt
-        self.kept = problem.decay.over(dt) if problem.decay else None
+    def __init__(
+        self, problem: Problem, solver: Solver, state: State, darcy_flux: np.ndarray, dt: float,
+        rates: float | None = None, kept: KeptByCell | None = None,
+    ):  # fmt: skip
+        """Take up the waters of a state.
+
+        darcy_flux (face,) m s-1, for dt, s, in which solids squeeze water out; 0: nothing moves
+        rates      s, for how long decay and exchange go on; default dt
+        kept       what decay leaves; default: of rates, of what was there and of what arrives evenly
+        """
+        self.problem, self.solver, self.state = problem, solver, state
+        rates = dt if rates is None else rates
+        self.kept = kept
+        if kept is None and problem.decay is not None:
+            self.kept = problem.decay.over(rates)
         self.amount = state.dissolved * state.water
         self.water = state.water + dt * (darcy_flux[:-1] - darcy_flux[1:]) / problem.grid.width
         self.beside = None
         if state.still is not None:
-            self.beside = Beside(problem, state, self.water, dt)
+            self.beside = Beside(problem, state, self.water, dt, rates)
             self.water = self.beside.water
 
     def foreseen(self) -> np.ndarray | None:
@@ -56,9 +70,12 @@ class Waters:
             made[members] += (self.kept.alone(stock[members]) - stock[members]) * width
         return made
 
-    def stage(self, passed: np.ndarray, before: Stage | None = None) -> Stage:
+    def stage(
+        self, passed: np.ndarray, before: Stage | None = None, more: np.ndarray | None = None
+    ) -> Stage:
         """What passages (solute, face) mol m-2 of the whole step lead to; before is the first stage.
 
+        more     (solute, still) mol m-3 of bulk that go on into immobile water besides
         Raises   SolveError where a cell finds no equilibrium
         """
         problem, state, beside = self.problem, self.state, self.beside
@@ -66,6 +83,8 @@ class Waters:
         arriving = exchange = None
         if beside is not None:
             arriving, exchange = beside.exchange(moved, before)
+            if more is not None:
+                exchange = exchange + more
             moved[:, beside.cells] -= exchange
         moved[np.abs(moved) < NO_ATOM] = 0.0
         start = before.flowing.found if before else equilibrium_of(problem, state)
@@ -106,45 +125,26 @@ class Waters:
             total += _made(problem, stage.still, width[self.beside.cells], len(total))
         return total
 
-    def still_after(self, stage: Stage) -> StillWater | None:
-        """The immobile water at the end of the step."""
-        if self.beside is None or stage.still is None:
-            return None
-        landed, found = stage.still, stage.still.found
-        return replace(
-            self.beside.still,
-            dissolved=landed.dissolved,
-            solid=found.solid,
-            sorbed=landed.sorbed,
-            water=landed.water,
-            swelling=(self.beside.pores_lost(landed) + landed.freed) / self.dt,
-            ln_activity=found.ln_activity,
-            ionic_strength=found.ionic_strength,
-            presence=found.presence,
-            solved=found.solved,
-            seen=found.seen,
-        )
-
-    def still_pores_changed(self, stage: Stage) -> float:
-        """The largest relative change of any cell's immobile pores."""
-        if self.beside is None or stage.still is None:
-            return 0.0
-        lost = np.abs(self.beside.pores_lost(stage.still))
-        return float(np.max(lost / self.beside.still.water, initial=0.0))
+    def after(self, stage: Stage) -> State:
+        """The state that a stage leaves, with the time and the sums of the one that it began with."""
+        state, still = self.state, self.state.still
+        if still is not None and stage.still is not None:
+            still = replace(still, **_left(stage.still))
+        return replace(state, **_left(stage.flowing), still=still)
 
 
 class Beside:
     """Immobile water beside the flowing water of some cells, during one step."""
 
-    def __init__(self, problem: Problem, state: State, water: np.ndarray, dt: float):
+    def __init__(self, problem: Problem, state: State, water: np.ndarray, dt: float, rates: float):
         assert problem.stagnant is not None
         assert state.still is not None
-        self.problem, self.stagnant, self.still, self.dt = problem, problem.stagnant, state.still, dt
+        self.problem, self.stagnant, self.still, self.rates = problem, problem.stagnant, state.still, rates
         self.cells = cells = problem.stagnant.cells
         self.dissolved, self.flowing, self.sorbed = (
             state.dissolved[:, cells], state.water[cells], state.sorbed[:, cells]
         )
-        squeezed_out = dt * squeezed(problem, self.still, dt)
+        squeezed_out = dt * squeezed(problem, self.still, dt) if dt > 0.0 else np.zeros(len(cells))
         self.water = water.copy()
         self.water[cells] += squeezed_out
         self.still_water = self.still.water - squeezed_out
@@ -165,7 +165,7 @@ class Beside:
         moved = moved[:, self.cells]
         swelling = self.dissolved * (self.water[self.cells] - self.flowing)
         arriving = moved - self.dissolved * self.flowing + self.carried - swelling
-        begun = (self.stagnant.transfer, self.dt, self.dissolved - self.still.dissolved)
+        begun = (self.stagnant.transfer, self.rates, self.dissolved - self.still.dissolved)
         passed, _, _ = exchanged(*begun, arriving, *self.capacities)
         if before is not None and before.still is not None and before.arriving is not None:
             _, told, weight = exchanged(*begun, before.arriving, *self.capacities)
@@ -188,15 +188,20 @@ class Beside:
         bounds = problem.transport.bounds
         return passed * np.repeat(np.minimum.reduceat(share, bounds[:-1], axis=0), np.diff(bounds), axis=0)
 
-    def pores_lost(self, landed: Landed) -> np.ndarray:
-        """(still,) m3 m-3 of immobile pores that solids have taken since the start of the step."""
-        before = still_pore_space(self.problem, self.still.solid)
-        return before - still_pore_space(self.problem, landed.found.solid)
-
 
 def net(passed: np.ndarray) -> np.ndarray:
     """(solute, cell) in less out of passages (solute, face)."""
     return passed[:, :-1] - passed[:, 1:]
+
+
+def _left(landed: Landed) -> dict[str, Any]:
+    """What a state keeps of a water and its solids."""
+    found = landed.found
+    return {
+        "dissolved": landed.dissolved, "solid": found.solid, "sorbed": landed.sorbed, "water": landed.water,
+        "ln_activity": found.ln_activity, "ionic_strength": found.ionic_strength,
+        "presence": found.presence, "solved": found.solved, "seen": found.seen,
+    }  # fmt: skip
 
 
 def equilibrium_of(problem: Problem, water: State | StillWater) -> Equilibrium:

@@ -225,7 +225,10 @@ def read_axes(file: h5py.File) -> Axes:
 
     ports = {name: float(group["x"][()]) for name, group in file["ports"].items()} if "ports" in file else {}
     ports = dict(sorted(ports.items(), key=lambda item: item[1]))
-    parts = frozenset(row.part for row in recorded("profiles") if row.part and row.name in profiles)
+    parts = frozenset(
+        row.part for group in ("profiles", "ledger") for row in recorded(group)
+        if row.part and row.name in file[group]
+    )  # fmt: skip
     return Axes(names("component"), names("mineral"), names("species"), profiles["x"][:], profiles["face"][:],
                 names("layer"), ports, parts)
 

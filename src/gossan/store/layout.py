@@ -44,7 +44,11 @@ class Variable:
 
 
 PORT = "ports/NAME"
-PARTS = {"isotherms": "a case with isotherms", "immobile": "a case with immobile water"}
+PARTS = {
+    "isotherms": "a case with isotherms",
+    "immobile": "a case with immobile water",
+    "errors": 'a case with run.errors = "carried", the default',
+}
 
 _COMPONENT = "name of the component or tracer"
 
@@ -93,6 +97,10 @@ VARIABLES: tuple[Variable, ...] = (
              "concentration in the pore water at the port", "port"),
     Variable(PORT, "passed", ("time", "component"), "mol m-2",
              "amount passed so far per cross-section of the column", "port"),
+    Variable(PORT, "dissolved_error", ("time", "component"), "mol m-3",
+             "estimated error of dissolved in time and splitting, with its sign", "port", "errors"),
+    Variable(PORT, "pH_error", ("time",), "1",
+             "estimated error of pH in time and splitting, with its sign", "port", "errors"),
     Variable("ledger", "time", ("time",), "s", "time since the start", "axis"),
     Variable("ledger", "component", ("component",), "1", _COMPONENT, "axis"),
     Variable("ledger", "entered", ("time", "component"), "mol m-2",
@@ -105,6 +113,9 @@ VARIABLES: tuple[Variable, ...] = (
              "amount made by decay or given by open gases so far per cross-section of the column", "ledger"),
     Variable("ledger", "error", ("time", "component"), "1",
              "entered - left - stored + made over the largest amount so far", "ledger"),
+    Variable("ledger", "splitting_error", ("time", "component"), "1",
+             "estimated error in time and splitting: all that is elsewhere over the largest amount so far",
+             "ledger", "errors"),
     Variable("ledger", "water_error", ("time",), "1", "error of the water balance", "ledger"),
     Variable("ledger", "charge_error", ("time",), "1", "error of the charge balance", "ledger"),
     Variable("steps", "step", ("step",), "1", "number of the accepted step", "axis"),
@@ -128,6 +139,10 @@ ATTRIBUTES: dict[str, str] = {
     "files": "the texts of the other files that the case names, by name, as JSON",
     "caution": "what the numbers must not be used for",
     "warnings": "what the run went beyond, a line each; empty while it runs, or without any",
+    "crossings": (
+        "once the run has ended, by port and quantity as JSON: when a limit was first exceeded, by how much "
+        "that may be off between steps, and when it was in the column that carries the errors, s"
+    ),
     "started": "when the run began, UTC; it also marks the run's own state files",
 }
 

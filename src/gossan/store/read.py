@@ -19,6 +19,8 @@ from gossan.store.layout import growing_axis, variable, variables
 if TYPE_CHECKING:
     import xarray
 
+# when a limit was first exceeded; by how much that may be off between steps; when it was in the shadow; s
+Crossing = tuple[float, float, float | None]
 _Read = TypeVar("_Read")
 
 # A running file changes under the reader's eyes: what cannot be read now may be whole in a moment.
@@ -138,6 +140,12 @@ class Result:
     def files(self) -> dict[str, str]:
         """The texts of the other files that the case names, by name."""
         found: dict[str, str] = json.loads(self.attributes.get("files", "{}"))
+        return found
+
+    @property
+    def crossings(self) -> dict[str, dict[str, Crossing]]:
+        """When limits were first exceeded, step by step: see `crossings` in docs/result-file.md."""
+        found: dict[str, dict[str, Crossing]] = json.loads(self.attributes.get("crossings", "{}"))
         return found
 
     @property

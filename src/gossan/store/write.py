@@ -45,7 +45,7 @@ class ResultWriter:
         attributes = {"Conventions": CONVENTIONS, "title": title, "status": "running", "reason": "",
                       "gossan_version": __version__, "case": case, "constants": constants,
                       "files": json.dumps(dict(files or {}), ensure_ascii=False), "caution": caution,
-                      "warnings": "", "started": started}
+                      "warnings": "", "crossings": "{}", "started": started}
         with _told(self.path):
             lock = Lock(self.path)
         with _released_on_error(lock), _told(self.path):
@@ -86,7 +86,7 @@ class ResultWriter:
             born = disk.beside(path, "new")
             with _opened(path) as old:
                 axes, attributes, checkpoint = _last_seen(path, old)
-                attributes |= {"status": "running", "reason": "", "warnings": ""}
+                attributes |= {"status": "running", "reason": "", "warnings": "", "crossings": "{}"}
                 file.create(born, axes, attributes, file.rooms(axes, checkpoint.counts))
                 with file.open_running(born) as new:
                     file.copy_rows(old, new, axes, checkpoint.counts)

@@ -58,7 +58,7 @@ class Passages:
 
 def passages(
     faces: Faces, dissolved: np.ndarray, inflow: np.ndarray, dt: float, theta: float | None = None,
-    made: np.ndarray | None = None,
+    made: np.ndarray | None = None, shaped: float | None = None,
 ) -> Passages:
     """The first stage of a step, or the whole of a one-step scheme (equations.md, 21 to 25).
 
@@ -70,9 +70,10 @@ def passages(
                 1 (backward Euler) where none does
     made        (solute, cell) mol m-2 that reactions make meanwhile, as far as it is known: what they take
                 away again must not disperse
+    shaped      s, the step for which slopes are shaped (equations.md, 23); default dt
     """
     transport = faces.transport
-    slopes, crossing = _slopes(faces, dt, theta)
+    slopes, crossing = _slopes(faces, dt, theta, dt if shaped is None else shaped)
     half, before = 0.5 * transport.grid.width[-1], 0.5 * transport.grid.width[-2:][0]
     outlet = Outlet(faces.outlet_rise, float(half), float(half + before), faces.outlet_spread,
                     transport.held_outlet, transport.beyond)
@@ -94,10 +95,13 @@ def passages(
     return Passages(passed, explicit, faces, slopes, outlet, inflow, dt, elimination)
 
 
-def corrected(first: Passages, dissolved: np.ndarray, predicted: np.ndarray) -> np.ndarray:
+def corrected(
+    first: Passages, dissolved: np.ndarray, predicted: np.ndarray, last: np.ndarray | None = None
+) -> np.ndarray:
     """What passes over the whole step, from its start and what the first stage led to (equations.md, 26).
 
     dissolved, predicted (solute, cell) mol m-3 of water; returns (solute, face) mol m-2.
+    last      (solute, face) mol m-2, the passages that led to the predicted state; default the first stage's
 
     The mean of both ends' explicit passages; implicit, besides, what spreads of the change that the predicted
     state still lacks.
@@ -110,7 +114,8 @@ def corrected(first: Passages, dissolved: np.ndarray, predicted: np.ndarray) -> 
     passed *= 0.5
     made = first.elimination
     if made is not None:
-        _spread(made, predicted, np.zeros(predicted.shape[1]), passed - first.passed, passed)
+        before = first.passed if last is None else last
+        _spread(made, predicted, np.zeros(predicted.shape[1]), passed - before, passed)
     return passed
 
 
@@ -148,7 +153,7 @@ def kept_positive(
     return low + np.repeat(held, np.diff(bounds), axis=0) * more
 
 
-def _slopes(faces: Faces, dt: float, theta: float | None) -> tuple[Slopes, np.ndarray]:
+def _slopes(faces: Faces, dt: float, theta: float | None, shaped: float) -> tuple[Slopes, np.ndarray]:
     """Weights of the slopes (equations.md, 23), and the flux (face,) m s-1 whose advection is implicit.
 
     A parabola through three cell means rises from the middle one's to its face by these weights; the Courant
@@ -156,7 +161,7 @@ def _slopes(faces: Faces, dt: float, theta: float | None) -> tuple[Slopes, np.nd
     """
     transport = faces.transport
     number = faces.speed * dt
-    square = np.minimum(number, 1.0) ** 2
+    square = np.minimum(faces.speed * shaped, 1.0) ** 2
     rise_left, rise_right = (1.0 - square) / 6.0, (2.0 + square) / 6.0
     here = transport.uneven
     left, right = faces.lean_left[here], faces.lean_right[here]

@@ -6,9 +6,10 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from gossan.case.bounds import PH, Bound
 from gossan.store.read import Group, Result
 from gossan.views import chosen, style
-from gossan.views.limits import PH, Bound, first_outside
+from gossan.views.crossing import first_outside
 from gossan.views.scales import TRACE, Scale, axis_label, printed_ion, solute_scale, time_scale
 
 if TYPE_CHECKING:
@@ -26,7 +27,7 @@ def breakthrough(
 ) -> Figure:
     """Concentrations at a port: watched solutes linear and log, the other solutes, the pH.
 
-    bounds  limits to draw (`limits.bounds_of`); masses  kg/mol by tracer
+    bounds  limits to draw (`case.bounds.bounds_of`); masses  kg/mol by tracer
     """
     group = result.ports[port]
     own = [bound for bound in bounds or () if bound.port == port]

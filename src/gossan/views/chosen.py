@@ -5,8 +5,8 @@ from __future__ import annotations
 import numpy as np
 
 from gossan.base.notation import parse_formula
+from gossan.case.bounds import Bound
 from gossan.store.read import Result
-from gossan.views.limits import Bound
 from gossan.views.scales import TRACE
 
 METALS = ("Fe", "Mn", "Zn", "Cu", "Ni", "Co", "Cd", "Pb", "Al")  # what mine water is treated for

@@ -6,11 +6,12 @@ import math
 from collections.abc import Callable, Iterator
 from typing import Any
 
+from gossan.case.bounds import bounds_of
 from gossan.recording import case_of, certified
 from gossan.store.layout import variable, variables
 from gossan.store.read import Group, Result
 from gossan.views.bed import bed_of, head_loss_of
-from gossan.views.limits import bounds_of, verdicts
+from gossan.views.limits import verdicts
 
 Row = list[Any]
 

@@ -7,9 +7,9 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from gossan.case.bounds import PH, Bound
 from gossan.store.read import Result
 from gossan.views import chosen, style
-from gossan.views.limits import PH, Bound
 from gossan.views.scales import Scale, axis_label, length_scale, printed_ion, solute_scale, time_scale
 
 if TYPE_CHECKING:

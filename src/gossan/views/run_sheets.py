@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from gossan.case.bounds import PH
 from gossan.views.bed import LEVELS, SPOKEN, HeadLoss, Left
-from gossan.views.limits import PH, Verdict
+from gossan.views.limits import Verdict
 from gossan.views.scales import PLAIN, Scale, dissolved_text, solute_scale, time_scale, time_text
 from gossan.views.sheet import Sheet
 from gossan.views.summary import Stock, Summary
@@ -171,12 +172,18 @@ def _ledger(summary: Summary) -> Sheet:
     return Sheet("Ledger", ("", "largest error"), rows, note="relative to the largest amount there ever was")
 
 
+def _error_of_steps(summary: Summary) -> str:
+    if summary.splitting_error is None:
+        return "not carried (run.errors)"
+    return f"{summary.splitting_error:.2g} of the most there was of a solute stood elsewhere"
+
+
 def _effort(summary: Summary) -> Sheet:
     result = summary.result
     rows = (
         ("simulated", time_text(summary.time)),
         ("steps", f"{summary.steps}"),
-        ("error of steps", f"{summary.splitting_error:.2g} pore volumes of feed, root of summed squares"),
+        ("error of steps", _error_of_steps(summary)),
         ("wall clock", f"{summary.seconds:.3g} s"),
         ("file", str(result.path)),
     )

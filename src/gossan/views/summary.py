@@ -8,13 +8,14 @@ from typing import Any
 import numpy as np
 
 from gossan.base.notation import molar_mass
+from gossan.case.bounds import bounds_of, tracer_masses
 from gossan.case.model import Case
 from gossan.constants.potential import potential_of_pe
 from gossan.recording import case_of
 from gossan.store.read import Result
 from gossan.views.bed import Bed, Bottleneck, HeadLoss, bed_of, bottleneck_of, head_loss_of
 from gossan.views.bed_json import conductivity_json, head_loss_json
-from gossan.views.limits import Verdict, bounds_of, tracer_masses, verdicts
+from gossan.views.limits import Verdict, verdicts
 from gossan.views.scales import round_times
 
 
@@ -53,7 +54,7 @@ class Summary:
     least_porosity: tuple[float, float]  # and where, m
     stocks: list[Stock]
     ledger: dict[str, float]  # largest error by solute, "water" and "charge"
-    splitting_error: float  # of all steps together, as squares add
+    splitting_error: float | None  # the largest ever carried, relative; None where none was
     steps: int
     seconds: float  # of all its steps, those before a stop too
     time: float  # s, reached
@@ -94,11 +95,17 @@ def summary_of(result: Result, case: Case | None = None) -> Summary:
         least_porosity=(float(porosity.min()), float(result.axes.x[cell])),
         stocks=_stocks(result, case, width),
         ledger=errors,
-        splitting_error=float(np.sqrt(np.sum(steps.splitting_error.values**2))),
+        splitting_error=_carried(result),
         steps=steps.count,
         seconds=float(steps.seconds.values.sum()),
         time=time,
     )
+
+
+def _carried(result: Result) -> float | None:
+    if "splitting_error" not in result.ledger:
+        return None
+    return float(result.ledger.splitting_error.values.max(initial=0.0))
 
 
 def _redox(result: Result, temperature: float) -> dict[str, tuple[float, float]]:
