@@ -135,3 +135,29 @@ def test_oxygen_arrives_when_the_sum_on_paper_says(end_of_life):
     arrived = float(volumes[np.argmax(pe > 10.0)])
     assert arrived == pytest.approx(1 + demand / supply + 1, rel=0.04)
     assert arrived < 1 + demand / supply + 1
+
+
+@pytest.fixture(scope="module")
+def sulfide_bands(tmp_path_factory: pytest.TempPathFactory) -> Summary:
+    """Copper and lead into zinc sulfide, run once."""
+    out = tmp_path_factory.mktemp("bands") / "bands.h5"
+    return summary_of(gossan.run(gossan.load_case(CASES / "sulfide-bands" / "case.toml"), out))
+
+
+def test_sulfide_bands_arrive_when_the_theory_of_waves_says(sulfide_bands):
+    """v / (1 + M / (n c)), Helfferich (1989), AIChE J. 35, 75-87: see the case's page."""
+    speed = {metals: 0.1 / (1.0 + 20.0 / (0.3 * metals)) for metals in (1.0, 1.5)}
+    assert first_exceeded(sulfide_bands, "Zn^2+") == pytest.approx(3.0, abs=0.1)
+    assert first_exceeded(sulfide_bands, "Pb^2+") == pytest.approx(0.3 / speed[1.5], rel=0.002)
+    assert first_exceeded(sulfide_bands, "Cu^2+") == pytest.approx(0.3 / speed[1.0], rel=0.002)
+    port = sulfide_bands.result.ports["outlet"]
+
+    def at(day: float, metal: str) -> float:
+        return float(np.interp(day * DAY, port.time.values, port.dissolved.sel(component=metal).values))
+
+    assert at(100.0, "Zn^2+") == pytest.approx(1.5, rel=1e-3)
+    assert at(170.0, "Pb^2+") == pytest.approx(1.5, rel=1e-3)
+    assert at(219.0, "Pb^2+") == pytest.approx(0.5, rel=1e-3)
+    assert at(219.0, "Cu^2+") == pytest.approx(1.0, rel=1e-3)
+    assert sulfide_bands.steps == pytest.approx(4805, rel=0.05)
+    assert sulfide_bands.ledger_error < 1e-12

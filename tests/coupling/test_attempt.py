@@ -105,12 +105,6 @@ def test_iterated_is_second_order_in_time(tmp_path, dispersivity, theta):
     assert found[-1] < 5e-6
 
 
-def test_strang_gains_nothing_where_reactions_are_at_equilibrium(tmp_path):
-    """Reacting before and after transport is reacting once: first order, as numerics have it."""
-    found, _ = errors(tmp_path, "strang", *EXPLICIT)
-    assert observed_order(STEPS, found) == pytest.approx(1.1, abs=0.15)
-
-
 def test_nothing_that_was_given_is_changed(tmp_path):
     problem, state = salty(tmp_path, "two-stage", "2 cm")
     before = {name: np.array(getattr(state, name), copy=True) for name in State.__slots__}
