@@ -58,17 +58,22 @@ class Ending:
     error: SolveError | None = None
 
 
-def run_case(case: Case, path: Path, *, overwrite: bool = False, progress: Progress | None = None) -> Ending:
+def run_case(
+    case: Case, path: Path, *, overwrite: bool = False, progress: Progress | None = None,
+    coarse: dict[str, dict[str, float]] | None = None,
+) -> Ending:
     """Run a case into a new result file.
 
     progress is called after every step with the share of the run done and the state.
+    coarse   when limits were first exceeded in half the cells, see `study.grid`; kept in the file
     Raises   InputError before anything is written; ResultError where the file exists or cannot be written
     """
     problem = build(case)
     state, pace = problem.initial, first_pace(problem)
     shadow = shadow_of(problem, state) if problem.errors_carried else None
     writer = ResultWriter(
-        path, axes_of(problem), case.title, case.text, CAUTION, overwrite, case.constants_text, case.files
+        path, axes_of(problem), case.title, case.text, CAUTION, overwrite, case.constants_text, case.files,
+        json.dumps(coarse) if coarse is not None else "",
     )
     with writer, _Run(problem, writer, progress, shadow) as run:
         run.beyond = watched(problem, state, run.beyond)

@@ -49,6 +49,15 @@ def test_check_lists_every_fault_with_its_line(case_file, capsys):
     assert ":13:" in printed.err
 
 
+def test_check_warns_of_cells_longer_than_twice_the_dispersivity(case_file, capsys):
+    """20 cm in 8 cells of 2.5 cm, dispersivity 1 cm: 10 cells would do."""
+    (warning,) = as_json(capsys, "check", str(case_file))["column_warnings"]
+    assert "layer sand: cells of 0.025 m are longer than twice the dispersivity, 0.01 m" in warning
+    assert "10 cells" in warning
+    case_file.write_text(GYPSUM.replace("cells = 8", "cells = 10"))
+    assert as_json(capsys, "check", str(case_file))["column_warnings"] == []
+
+
 def test_check_of_waters_alone_is_in_order(waters_file, capsys):
     assert main(["check", str(waters_file)]) == 0
     assert "below detection" in capsys.readouterr().err
@@ -297,7 +306,8 @@ def test_check_and_assay_tell_of_constants_in_one_line(case_file, waters_file, c
     assert "water mine: at 12 degC" in told[0]
     found = as_json(capsys, "assay", str(waters_file), "mine")["waters"]["mine"]
     assert sum("outside the temperatures" in warning for warning in found["warnings"]) == 1
-    case_file.write_text(GYPSUM + '[chemistry]\nalso = ["siderite"]\n')
+    fine = GYPSUM.replace("cells = 8", "cells = 10")
+    case_file.write_text(fine + '[chemistry]\nalso = ["siderite"]\n')
     assert as_json(capsys, "check", str(case_file))["column_warnings"] == []  # 25 degC, and no iron
     cold = GYPSUM.replace("[waters", 'temperature = "5 degC"\n[waters', 1)
     case_file.write_text(cold.replace("{Ca = ", '{Zn = "1 mg/L", Ca = ', 1))

@@ -60,6 +60,19 @@ def test_half_a_tracer_step_arrives_with_the_first_pore_volume(finished):
     assert 0.0 < verdict.error < 0.05 * 0.1 * 0.2 * 86400.0  # far below 0.1 PV, the interval of the records
 
 
+def test_a_grid_check_gives_every_answer_the_error_of_its_cells(case_file, capsys):
+    path = case_file.with_suffix(".h5")
+    assert main(["run", str(case_file), "-o", str(path), "--grid-check", "--json"]) == 0
+    ports = json.loads(capsys.readouterr().out)["ports"]
+    bromide = ports["outlet"]["bromide"]
+    assert 0.0 < bromide["error_s"] < bromide["grid_error_s"] < 0.1 * bromide["first_exceeded_s"]
+    assert ports["outlet"]["SO4^2-"]["grid_error_s"] is None  # exceeded from the start
+    assert main(["run", "--resume", str(path), "--grid-check"]) == 2
+    assert main(["run", str(case_file), "-o", str(path), "--grid-check"]) == 2  # the file exists
+    assert main(["run", str(case_file), "-o", str(path), "--grid-check", "--overwrite"]) == 0
+    assert ", cells ± " in capsys.readouterr().out
+
+
 def test_tables_go_to_standard_output_and_the_caution_to_standard_error(case_file, capsys):
     assert main(["run", str(case_file), "-o", str(case_file.with_suffix(".h5"))]) == 0
     printed = capsys.readouterr()

@@ -7,7 +7,7 @@ from collections.abc import Callable
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from gossan.base.errors import DONE, GAVE_UP, LIMIT_EXCEEDED, STOPPED, Fault, InputError
+from gossan.base.errors import DONE, GAVE_UP, LIMIT_EXCEEDED, STOPPED, Fault, InputError, ResultError
 from gossan.cli import shell
 from gossan.cli.compiling import announce_compiling
 
@@ -28,6 +28,10 @@ def parser() -> argparse.ArgumentParser:
     made.add_argument("-o", "--output", metavar="FILE", help="default: the case's stem + .h5 in this folder")
     made.add_argument("--overwrite", action="store_true", help="replace FILE where it exists")
     made.add_argument("--resume", metavar="FILE", help="go on with this result file from its last checkpoint")
+    made.add_argument(
+        "--grid-check", action="store_true",
+        help="run half the cells first, and state how far each answer depends on them",
+    )
     made.add_argument("--enforce-limits", action="store_true", help="exit code 1 where a limit is exceeded")
     made.add_argument("--json", action="store_true", help="print the outcome as JSON, SI inside")
     made.add_argument("--quiet", action="store_true", help="no progress and no tables")
@@ -49,13 +53,27 @@ def run(args: argparse.Namespace) -> int:
     from gossan.recording import run_case
 
     def walk(tell: Tell) -> Ending:
-        return run_case(case, path, overwrite=args.overwrite, progress=tell)
+        coarse = _in_half_the_cells(args, case, path, tell) if args.grid_check else None
+        return run_case(case, path, overwrite=args.overwrite, progress=tell, coarse=coarse)
 
     return _walked(args, case, path, walk)
 
 
+def _in_half_the_cells(
+    args: argparse.Namespace, case: Case, path: Path, tell: Tell
+) -> dict[str, dict[str, float]]:
+    """When limits are exceeded in half the cells, found before the run itself, which keeps it in its file."""
+    from gossan.study.grid import crossed_in_half_the_cells
+
+    if path.exists() and not args.overwrite:
+        raise ResultError(f"{path} exists: name another file, or give --overwrite to replace it")
+    if not args.quiet:
+        shell.say("first in half the cells, then in all of them")
+    return crossed_in_half_the_cells(case, tell)
+
+
 def _resumed(args: argparse.Namespace) -> int:
-    if args.case is not None or args.output or args.overwrite:
+    if args.case is not None or args.output or args.overwrite or args.grid_check:
         wrong = "takes its case from the file: give nothing else but --enforce-limits, --json, --quiet"
         raise InputError([Fault("gossan run --resume", 0, "", wrong)])
     from gossan.recording import case_of

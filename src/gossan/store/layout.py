@@ -143,6 +143,10 @@ ATTRIBUTES: dict[str, str] = {
         "once the run has ended, by port and quantity as JSON: when a limit was first exceeded, by how much "
         "that may be off between steps, and when it was in the column that carries the errors, s"
     ),
+    "coarse": (
+        "after `gossan run --grid-check`: when the limits were first exceeded in half the cells, s, by port "
+        "and quantity as JSON; empty otherwise"
+    ),
     "started": "when the run began, UTC; it also marks the run's own state files",
 }
 

@@ -149,6 +149,12 @@ class Result:
         return found
 
     @property
+    def coarse(self) -> dict[str, dict[str, float]] | None:
+        """When limits were first exceeded in half the cells, s, by port and quantity; None: not asked."""
+        found: dict[str, dict[str, float]] = json.loads(self.attributes.get("coarse") or "null")
+        return found
+
+    @property
     def warnings(self) -> tuple[str, ...]:
         """What the run went beyond, such as the range of its activity law; a sentence each."""
         return tuple(str(self.attributes.get("warnings", "")).splitlines())

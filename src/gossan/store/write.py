@@ -33,7 +33,8 @@ class ResultWriter:
     """
 
     def __init__(self, path: str | Path, axes: Axes, title: str, case: str, caution: str = "",
-                 overwrite: bool = False, constants: str = "", files: Mapping[str, str] | None = None):
+                 overwrite: bool = False, constants: str = "", files: Mapping[str, str] | None = None,
+                 coarse: str = ""):
         """Take the lock and begin a file; ResultError where it exists, unless overwrite."""
         self.path = Path(path)
         if self.path.exists() and not overwrite:
@@ -45,7 +46,7 @@ class ResultWriter:
         attributes = {"Conventions": CONVENTIONS, "title": title, "status": "running", "reason": "",
                       "gossan_version": __version__, "case": case, "constants": constants,
                       "files": json.dumps(dict(files or {}), ensure_ascii=False), "caution": caution,
-                      "warnings": "", "crossings": "{}", "started": started}
+                      "warnings": "", "crossings": "{}", "coarse": coarse, "started": started}
         with _told(self.path):
             lock = Lock(self.path)
         with _released_on_error(lock), _told(self.path):

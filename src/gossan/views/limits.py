@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -24,6 +24,7 @@ class Verdict:
     first_exceeded: float | None = None  # s
     pore_volumes: float | None = None  # when first exceeded
     error: float | None = None  # s, of first_exceeded by steps and records; None where it is not known
+    grid_error: float | None = None  # s, of first_exceeded by the cells; None where it was not looked for
     last: float | None = None
     peak: float | None = None  # the largest; of a pH the farthest beyond its range or nearest to an end
 
@@ -44,7 +45,10 @@ def verdicts(result: Result, bounds: list[Bound]) -> list[Verdict]:
         solutes = [*result.axes.component, PH]
         order = [*held, *(solute for solute in solutes if solute not in held)]
         crossings = result.crossings.get(name, {})
-        found += [_verdict(name, port, quantity, held.get(quantity), crossings) for quantity in order]
+        own_verdicts = [_verdict(name, port, quantity, held.get(quantity), crossings) for quantity in order]
+        if result.coarse is not None:
+            own_verdicts = [_checked(verdict, result.coarse.get(name, {})) for verdict in own_verdicts]
+        found += own_verdicts
     return found
 
 
@@ -70,7 +74,17 @@ def _verdict(
                 error += error_of_steps(time, values, errors[known], bound.low, bound.high, when)
             passed = float(np.interp(when, time, volumes))
             error = error if np.isfinite(error) else None
-    return Verdict(name, quantity, bound, when, passed, error, float(values[-1]), peak)
+    return Verdict(name, quantity, bound, when, passed, error, last=float(values[-1]), peak=peak)
+
+
+def _checked(verdict: Verdict, coarse: dict[str, float]) -> Verdict:
+    """A verdict with the error of its grid: the whole difference, as if it only fell by half with the cells.
+
+    It falls faster where nothing is sharp, and about like that at a front of minerals (docs/decisions.md).
+    """
+    if not verdict.first_exceeded or verdict.quantity not in coarse:
+        return verdict
+    return replace(verdict, grid_error=abs(coarse[verdict.quantity] - verdict.first_exceeded))
 
 
 def _values(port: Group, quantity: str) -> tuple[np.ndarray, np.ndarray | None]:

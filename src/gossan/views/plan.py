@@ -14,10 +14,12 @@ from gossan.base.errors import SolveError
 from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.waters import read_waters
+from gossan.chemistry.equilibrium import Solver
 from gossan.chemistry.validity import validity_note
 from gossan.coupling.drive import Drive
-from gossan.coupling.march import march
+from gossan.coupling.march import Solvers, march
 from gossan.coupling.problem import Problem
+from gossan.coupling.shadow import followed, shadow_of
 from gossan.views.assay import assay
 from gossan.views.extent import extent_of
 
@@ -93,8 +95,23 @@ def plan_of(case: Case) -> Plan:
         steps=extent.steps,
         seconds=None if each is None else extent.steps * each,
         warnings=_told({name: one.said for name, one in assay(case).waters.items()}),
-        column_warnings=tuple(filter(None, validity)),
+        column_warnings=(*filter(None, validity), *_long_cells(problem)),
     )
+
+
+def _long_cells(problem: Problem) -> list[str]:
+    """A sentence for every layer whose cells are longer than fronts in it are wide (equations.md, 38)."""
+    grid, said = problem.grid, []
+    for number, layer in enumerate(grid.layers):
+        here = grid.layer == number
+        longest, dispersivity = float(grid.width[here].max()), float(grid.dispersivity[here][0])
+        if 0.0 < 2.0 * dispersivity < longest * (1.0 - 1e-9):
+            said.append(
+                f"layer {layer.name}: cells of {longest:.3g} m are longer than twice the dispersivity, "
+                f"{dispersivity:.3g} m: fronts come out wider than they are; give it "
+                f"{math.ceil(layer.length / (2.0 * dispersivity))} cells, or see what --grid-check says"
+            )
+    return said
 
 
 def _first_flow(problem: Problem) -> np.ndarray:
@@ -103,10 +120,13 @@ def _first_flow(problem: Problem) -> np.ndarray:
 
 
 def _seconds_per_step(problem: Problem) -> float | None:
-    """Wall-clock time of a step, from the first few, which nobody keeps."""
+    """Time of a step on one processor, from the first few, which nobody keeps."""
     ends = []
     try:
-        for _ in islice(march(problem, problem.initial, first_pace(problem)), TRIED):
+        shadow, solvers = shadow_of(problem, problem.initial), Solvers(Solver(problem.system))
+        for stride in islice(march(problem, problem.initial, first_pace(problem)), TRIED):
+            if problem.errors_carried:
+                shadow = followed(shadow, stride, solvers)
             ends.append(wall.perf_counter())
     except SolveError:
         return None

@@ -75,6 +75,8 @@ def _port_row(verdict: Verdict, time: Scale, masses: dict[str, float]) -> tuple[
         when = f"{verdict.first_exceeded * time.factor:.4g}"
         if verdict.error:
             when += f" ± {verdict.error * time.factor:.1g}"
+        if verdict.grid_error is not None:
+            when += f", cells ± {verdict.grid_error * time.factor:.1g}"
         volumes = f"{verdict.pore_volumes:.4g}"
     return (verdict.quantity, scale.unit, limit, when, volumes, number(verdict.last), number(verdict.peak))
 

@@ -140,7 +140,7 @@ def run_json(summary: Summary) -> dict[str, Any]:
             "limit": verdict.limit,
             "first_exceeded_s": verdict.first_exceeded,
             "error_s": verdict.error,
-            "grid_error_s": None,
+            "grid_error_s": verdict.grid_error,
             "last": verdict.last,
             "peak": verdict.peak,
         }

@@ -1,0 +1,1 @@
+"""Runs of a case in other forms: what its answers owe to the form."""
