@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import os
 import signal
 import sys
 import threading
@@ -21,6 +22,7 @@ from gossan.case.build import build, first_pace
 from gossan.case.model import Case
 from gossan.case.read import case_from_text
 from gossan.chemistry.certificate import Certificate
+from gossan.chemistry.equilibrium import Solver
 from gossan.coupling.beyond import Beyond, watched
 from gossan.coupling.certify import certify_state, diluted_since
 from gossan.coupling.drive import Drive, pore_volumes, settled
@@ -37,6 +39,7 @@ from gossan.store.read import Crossing, Result, open_result
 from gossan.store.write import ResultWriter, last_parts
 
 CHECKPOINT_EVERY = 2.0  # s of wall clock between two checkpoints
+MOST_THREADS = 8  # of a run by default
 COMMIT_EVERY = 0.2  # s of wall clock after which others see what was recorded; each time costs some ms
 CAUTION = (
     "A one-dimensional aid for screening and design; no substitute for licensed practice, local codes and "
@@ -60,11 +63,12 @@ class Ending:
 
 def run_case(
     case: Case, path: Path, *, overwrite: bool = False, progress: Progress | None = None,
-    coarse: dict[str, dict[str, float]] | None = None,
+    coarse: dict[str, dict[str, float]] | None = None, threads: int | None = None,
 ) -> Ending:
     """Run a case into a new result file.
 
     progress is called after every step with the share of the run done and the state.
+    threads  over which the cells are spread; by default half the processors, never more than MOST_THREADS
     coarse   when limits were first exceeded in half the cells, see `study.grid`; kept in the file
     Raises   InputError before anything is written; ResultError where the file exists or cannot be written
     """
@@ -75,7 +79,7 @@ def run_case(
         path, axes_of(problem), case.title, case.text, CAUTION, overwrite, case.constants_text, case.files,
         json.dumps(coarse) if coarse is not None else "",
     )
-    with writer, _Run(problem, writer, progress, shadow) as run:
+    with writer, _Run(problem, writer, progress, shadow, threads) as run:
         run.beyond = watched(problem, state, run.beyond)
         run.frame(state)
         run.records(state)
@@ -83,15 +87,17 @@ def run_case(
         return run.walk(state, pace)
 
 
-def resume(path: Path, *, progress: Progress | None = None) -> Ending:
+def resume(path: Path, *, progress: Progress | None = None, threads: int | None = None) -> Ending:
     """Go on with a result file from its last checkpoint, to the same bits as a run never stopped.
+
+    threads  as in `run_case`
 
     Raises   ResultError where there is nothing to go on with
     """
     problem = build(case_of(open_result(path)))
     writer, parts = ResultWriter.resume(path)
     shadow = shadow_from(parts["shadow"]) if parts["shadow"] else None
-    with writer, _Run(problem, writer, progress, shadow) as run:
+    with writer, _Run(problem, writer, progress, shadow, threads) as run:
         state = state_of(parts["state"])
         run.seen, run.limits = parts["seen"], parts["limits"]
         run.beyond = Beyond(**parts["beyond"])
@@ -160,9 +166,12 @@ class _Run:
     """One run into one file."""
 
     def __init__(
-        self, problem: Problem, writer: ResultWriter, progress: Progress | None, shadow: Shadow | None
-    ):
+        self, problem: Problem, writer: ResultWriter, progress: Progress | None, shadow: Shadow | None,
+        threads: int | None = None,
+    ):  # fmt: skip
         self.problem, self.writer, self.progress = problem, writer, progress
+        default = max(1, min(MOST_THREADS, (os.cpu_count() or 1) // 2))
+        self.solver = Solver(problem.system, threads or default)
         self.follower = Follower(shadow, problem.system) if shadow else None
         self.books = Books(problem)
         self.steps: list[dict[str, float]] = []
@@ -191,7 +200,7 @@ class _Run:
         began = kept = committed = last = wall.monotonic()
         ending = Ending("finished", "")
         try:
-            for stride in march(self.problem, state, pace):
+            for stride in march(self.problem, state, pace, self.solver):
                 now = wall.monotonic()
                 self.step(stride, now - last)
                 last = now

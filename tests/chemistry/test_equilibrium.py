@@ -14,6 +14,7 @@ from tests.support.small_systems import MINE_COMPONENTS, MINE_MINERALS
 from tools.battery.mixes import mine_system
 
 from gossan.base.errors import SolveError
+from gossan.chemistry import equilibrium
 from gossan.chemistry.equilibrium import Solver, equilibrate
 from gossan.chemistry.system import LN10, build_system
 from gossan.constants.load import load_table
@@ -209,3 +210,23 @@ def test_no_minerals_no_waters():
     assert equilibrate(system, [0.0, 0.1, 0.1]).solid.shape == (0, 1)
     nothing = Solver(MINE).cold(np.ones(0), np.zeros((len(PLACE), 0)), np.zeros((len(MINE.minerals), 0)))
     assert nothing.amount.shape == (len(PLACE), 0)
+
+
+@pytest.mark.parametrize("threads", [2, 3, 7])
+def test_threads_change_no_bit(threads, found, monkeypatch):
+    """Blocks of any size, of which the last may be a single cell."""
+    monkeypatch.setattr(equilibrium, "BLOCK", 5)
+    totals = waters(61, 40)
+    nothing = np.zeros((len(MINE.minerals), 40))
+    spread = Solver(MINE, threads).cold(np.ones(40), totals, nothing)
+    for name in ("amount", "solid", "presence", "ln_activity", "ionic_strength", "solved", "steps"):
+        assert getattr(spread, name).tobytes() == getattr(found, name).tobytes(), name
+
+
+def test_a_cell_that_fails_is_named_whatever_thread_it_was_in(monkeypatch):
+    monkeypatch.setattr(equilibrium, "BLOCK", 5)
+    totals = waters(61, 40)
+    totals[SULFATE, 33] = np.nan
+    with pytest.raises(SolveError) as caught:
+        Solver(MINE, 4).cold(np.ones(40), totals, np.zeros((len(MINE.minerals), 40)))
+    assert caught.value.cell == 33

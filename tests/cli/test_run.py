@@ -73,6 +73,11 @@ def test_a_grid_check_gives_every_answer_the_error_of_its_cells(case_file, capsy
     assert ", cells ± " in capsys.readouterr().out
 
 
+def test_threads_must_be_a_number_of_them(case_file, capsys):
+    assert main(["run", str(case_file), "--threads", "0"]) == 2
+    assert "--threads: 0 is no number of threads: give 1 or more" in capsys.readouterr().err
+
+
 def test_tables_go_to_standard_output_and_the_caution_to_standard_error(case_file, capsys):
     assert main(["run", str(case_file), "-o", str(case_file.with_suffix(".h5"))]) == 0
     printed = capsys.readouterr()

@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
+from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, replace
+from functools import lru_cache, partial
+from typing import Any
 
 import numpy as np
 
@@ -13,6 +16,7 @@ from gossan.chemistry.system import LN10, System
 
 START_STRENGTH = 0.1  # mol/kg, where a cold start begins
 UNBOUNDED = np.inf
+BLOCK = 500  # cells: a block of fewer is done in a millisecond or two, and not worth a thread
 
 
 @dataclass(frozen=True, eq=False)
@@ -93,14 +97,23 @@ def saturation(stoichiometry: np.ndarray, ln_k: np.ndarray, ln_activity: np.ndar
     return np.where(ln < -1e4, np.nan, ln / LN10)
 
 
+@lru_cache(maxsize=4)
+def _workers(threads: int) -> ThreadPoolExecutor:
+    """Threads for blocks of cells, shared by all solvers: kernels release Python's lock."""
+    return ThreadPoolExecutor(threads, "gossan-cells")
+
+
 class Solver:
     """Local equilibrium of many cells of one system, with its working space laid out once."""
 
-    def __init__(self, system: System):
+    def __init__(self, system: System, threads: int = 1):
+        """Lay out the working space of so many threads; what a cell comes to does not depend on them."""
         from gossan.chemistry.kernel.matrices import bench
 
         self.system = system
-        self._bench = bench(system.matrices)
+        self.threads = threads
+        self._benches = [bench(system.matrices) for _ in range(threads)]
+        self._bench = self._benches[0]
 
     def cold(
         self, kilograms: np.ndarray, amount: np.ndarray, solid: np.ndarray, upper: np.ndarray | None = None
@@ -143,7 +156,7 @@ class Solver:
             where that was of this same system, at this temperature
         Raises   SolveError naming the cell; nothing given is changed
         """
-        from gossan.chemistry.kernel.cells import COLD, WARM, settle_cells
+        from gossan.chemistry.kernel.cells import COLD, WARM
 
         system = self.system
         if start.system is not system:
@@ -157,20 +170,31 @@ class Solver:
         cells = amount.shape[1]
         outcome, steps = np.zeros(cells, np.int64), np.zeros(cells, np.int64)
         given = np.zeros((len(system.open_gases), cells))
-        failed = settle_cells(
-            system.matrices, self._bench, kilograms, amount, solid, upper, presence, ln_activity,
-            ionic_strength, solved, given, seen, skip, COLD if cold else WARM, outcome, steps, 0, cells,
+        arrays = (
+            kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, given, seen
         )  # fmt: skip
-        if failed:
-            arrays = (
-                kilograms, amount, solid, upper, presence, ln_activity, ionic_strength, solved, given, seen
-            )  # fmt: skip
+        if self._settle(cells, *arrays, skip, COLD if cold else WARM, outcome, steps):
             self._rescue(arrays, outcome, steps)
         return replace(
             start, system=system, amount=amount, solid=solid, presence=presence, ln_activity=ln_activity,
             ionic_strength=ionic_strength, solved=solved, steps=steps, given=given,
             seen=seen,
         )  # fmt: skip
+
+    def _settle(self, cells: int, *arrays: Any) -> int:
+        """Settle so many cells, a block of them in each thread; returns how many failed."""
+        from gossan.chemistry.kernel.cells import settle_cells
+
+        blocks = max(1, min(self.threads, cells // BLOCK))
+        if blocks == 1:
+            return int(settle_cells(self.system.matrices, self._bench, *arrays, 0, cells))
+        bounds = [cells * number // blocks for number in range(blocks + 1)]
+        settle = partial(settle_cells, self.system.matrices)
+        running = [
+            _workers(self.threads).submit(settle, bench, *arrays, first, last)
+            for bench, first, last in zip(self._benches[:blocks], bounds[:-1], bounds[1:], strict=True)
+        ]
+        return sum(int(block.result()) for block in running)
 
     def _rescue(self, arrays: tuple[np.ndarray, ...], outcome: np.ndarray, steps: np.ndarray) -> None:
         """Find the minerals of failed cells another way, then settle them again; in place."""

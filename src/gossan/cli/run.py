@@ -32,10 +32,21 @@ def parser() -> argparse.ArgumentParser:
         "--grid-check", action="store_true",
         help="run half the cells first, and state how far each answer depends on them",
     )
+    made.add_argument(
+        "--threads", type=_count, metavar="N",
+        help="threads for the cells of long columns, to the same bits; default: half the processors",
+    )
     made.add_argument("--enforce-limits", action="store_true", help="exit code 1 where a limit is exceeded")
     made.add_argument("--json", action="store_true", help="print the outcome as JSON, SI inside")
     made.add_argument("--quiet", action="store_true", help="no progress and no tables")
     return made
+
+
+def _count(text: str) -> int:
+    """A number of threads."""
+    if not text.isdecimal() or int(text) < 1:
+        raise argparse.ArgumentTypeError(f"{text} is no number of threads: give 1 or more")
+    return int(text)
 
 
 def run(args: argparse.Namespace) -> int:
@@ -54,7 +65,8 @@ def run(args: argparse.Namespace) -> int:
 
     def walk(tell: Tell) -> Ending:
         coarse = _in_half_the_cells(args, case, path, tell) if args.grid_check else None
-        return run_case(case, path, overwrite=args.overwrite, progress=tell, coarse=coarse)
+        return run_case(case, path, overwrite=args.overwrite, progress=tell, coarse=coarse,
+                        threads=args.threads)
 
     return _walked(args, case, path, walk)
 
@@ -88,7 +100,7 @@ def _resumed(args: argparse.Namespace) -> int:
     announce_compiling()
     from gossan.recording import resume
 
-    return _walked(args, case, path, lambda tell: resume(path, progress=tell))
+    return _walked(args, case, path, lambda tell: resume(path, progress=tell, threads=args.threads))
 
 
 def _walked(args: argparse.Namespace, case: Case, path: Path, walk: Callable[[Tell], Ending]) -> int:

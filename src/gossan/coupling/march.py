@@ -73,7 +73,7 @@ class Solvers:
     def of(self, problem: Problem) -> Solver:
         """The solver of a problem as it is at one moment."""
         if self._solver.system is not problem.system:
-            self._solver = Solver(problem.system)
+            self._solver = Solver(problem.system, self._solver.threads)
         return self._solver
 
 
