@@ -149,6 +149,7 @@ STRAYS = {
     "coupled": [(900001, 1, [1369]), (910001, 4, [1438])],  # two balances that said nearly the same
     "partial": [
         (900003, 3, [111, 122, 486, 817, 852, 1542, 1566]),  # the same
+        (910004, 3, [176]),  # the same, with a step of 10^32 instead of none
         (910001, 9, [216, 1206]),  # a mineral of no more than the last digit of the largest total
     ],
     # sulfide held by a gas beside sulfate: no start near enough

@@ -138,23 +138,18 @@ def trim(matrices, bench, amount, solid, upper, presence, i, weight):
         largest = max(largest, bench.weight[k])
     if taken == 0.0:
         return
-    for k in range(components):
-        if k == matrices.signed or k == matrices.electron or not 0.0 < bench.weight[k] < BESIDE * largest:
+    for m in range(solid.shape[0]):
+        if presence[m, i] != 1:
             continue
-        holder = -1
-        for m in range(solid.shape[0]):
-            if presence[m, i] == 1 and matrices.supplied[m, k] != 0.0:
-                scarcest = True
-                for j in range(components):
-                    if matrices.supplied[m, j] != 0.0 and j != matrices.signed and j != matrices.electron:
-                        scarcest = scarcest and bench.weight[j] >= bench.weight[k]
-                if scarcest:
-                    holder = m
-        if holder < 0:
+        scarce = -1
+        for k in range(components):
+            if matrices.supplied[m, k] != 0.0 and k != matrices.signed and k != matrices.electron:
+                scarce = k if scarce < 0 or bench.weight[k] < bench.weight[scarce] else scarce
+        if scarce < 0 or not bench.weight[scarce] < BESIDE * largest:
             continue
-        over = amount[k, i] - row_dot(matrices.conserved, k, bench.molality) * weight
-        gained = over / matrices.supplied[holder, k]
-        shown = SHOWN * bench.weight[k] < abs(over) < ROUNDED * largest
-        if shown and 0.0 <= solid[holder, i] + gained < upper[holder, i]:
-            solid[holder, i] += gained
-            take(matrices, bench, amount, holder, i, gained)
+        over = amount[scarce, i] - row_dot(matrices.conserved, scarce, bench.molality) * weight
+        gained = over / matrices.supplied[m, scarce]
+        shown = SHOWN * bench.weight[scarce] < abs(over) < ROUNDED * largest
+        if shown and 0.0 <= solid[m, i] + gained < upper[m, i]:
+            solid[m, i] += gained
+            take(matrices, bench, amount, m, i, gained)

@@ -47,6 +47,7 @@ NEWTON_LIMIT = 300  # steps for one set of marks, or for one stage on the way to
 STAGES = 10  # times as many steps are for all of them
 BRIM = 100.0  # mol/kg: no water holds more; far from the answer the sums may claim it
 CHOICES = 5  # of pivots once the answer shows what is scarce
+BEYOND = 1e30  # of ln activity: the step of a matrix that is as good as singular
 SWIFT = 10  # steps within which a warm water settles: it is spared what only the wayward need
 ROUNDING = 4e-16  # relative: marks that go round must not hang on the last digit of a total
 REVIEW = 25  # far steps after which the pivots are looked at again
@@ -93,7 +94,8 @@ def begin(matrices, bench, dissolved, solid, upper, presence):
 def take_step(bench, free, newton):
     """Add bench.right to the free ln activities, or the share of it that is allowed so late in the walk.
 
-    Returns (largest component of the whole step, the share); what was added is left in bench.taken.
+    Returns (largest component of the whole step, the share); what was added is left in bench.taken.  Of a
+    step beyond all bounds nothing is.
     """
     largest = 0.0
     for j in range(free):
@@ -102,6 +104,8 @@ def take_step(bench, free, newton):
             largest = size
     cap = 30.0 if newton < 25 else (3.0 if newton < 50 else 1.0)
     share = cap / largest if largest > cap else 1.0
+    if not largest < BEYOND:
+        return largest, 0.0
     for j in range(free):
         bench.taken[j] = share * bench.right[j]
         bench.ln_activity[bench.free[j]] += bench.taken[j]
@@ -239,7 +243,9 @@ def close_balances(
             if mode == CONVEX:
                 rise = 0.0
         largest, share = take_step(bench, free, newton)
-        if not largest < 1e30:
+        if not largest < BEYOND:
+            if doubts > 0 and unfit(matrices, bench, active, free, ionic_strength, left):
+                return UNFIT, ionic_strength, steps, drop, add, first
             return DIVERGED, ionic_strength, steps, drop, add, first
         risen = risen_strength(ionic_strength, share * rise, brim)
         move = abs(risen - ionic_strength) / (ionic_strength + 1e-6)
