@@ -54,7 +54,8 @@ class Turn:
             return passed
         total = waters.amount.copy()
         total[problem.sorbates] += state.sorbed
-        total[: problem.chemical] += problem.system.mineral_stoichiometry.T @ state.solid
+        # a solid that takes a component up when it dissolves has none of it to give
+        total[: problem.chemical] += np.maximum(problem.system.mineral_stoichiometry, 0.0).T @ state.solid
         positive = ~np.isin(np.arange(len(total)), problem.system.signed)
         if unlimited:
             positive[problem.chemical :] = False
