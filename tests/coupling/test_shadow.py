@@ -62,6 +62,27 @@ def bent(_: Path) -> str:
     )  # fmt: skip
 
 
+def oxygen(_: Path) -> str:
+    """Oxygen enters a bed of iron and zinc sulfide: acid, sulfate, iron hydroxide, zinc set free."""
+    return column(
+        """
+[waters.feed]
+pH = 6.5
+dissolved_oxygen = "8 mg/L"
+balance_on = "Cl"
+analysis = {Na = "1 mmol/L", Cl = "1 mmol/L", CO2 = "20 mg/L"}
+[waters.pore]
+pH = 7.0
+balance_on = "Cl"
+analysis = {Na = "1 mmol/L", Cl = "1 mmol/L"}
+""",
+        minerals='mackinawite = "0.02 mmol/L", "fresh zinc sulfide" = "0.01 mmol/L"', cells=6, length="12 cm",
+        dispersivity="2 cm", flow='darcy_flux = "0.1 m/d"', duration="2 d",
+        chemistry='coupled = ["Fe(II)/Fe(III)", "S(-II)/S(VI)", "O(0)/O(-II)"]\n'
+        'minerals = ["mackinawite", "fresh zinc sulfide", "ferrihydrite"]',
+    )  # fmt: skip
+
+
 def still(folder: Path) -> str:
     """A salt dissolves by diffusion alone, in implicit steps."""
     return column(
@@ -108,6 +129,7 @@ def course(problem: Problem, monkeypatch: pytest.MonkeyPatch, finer: int = 1) ->
 
 @pytest.mark.parametrize(("family", "coupling"), [
     (replacement, "two-stage"), (dissolution, "two-stage"), (gypsum, "two-stage"), (bent, "two-stage"),
+    (oxygen, "two-stage"),
     (replacement, "lie"), (dissolution, "lie"), (gypsum, "lie"), (gypsum, "strang"), (bent, "strang"),
     (replacement, "iterated"), (gypsum, "iterated"),
 ])  # fmt: skip
