@@ -73,7 +73,7 @@ def diffusion_ratio(temperature_k: float, reference: float) -> float:
     Source   Einstein (1905), Ann. Phys. 322, 549-560, with Stokes's law of drag; from memory
 
     >>> round(diffusion_ratio(275.15, 295.15), 3)
-    0.533
+    0.532
     """
     return temperature_k / reference * viscosity(reference) / viscosity(temperature_k)
 
