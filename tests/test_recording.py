@@ -14,6 +14,7 @@ import pytest
 from tests.support.columns import case_of, column
 from tests.support.killing import in_a_child
 from tests.support.salts import Salt, water, write_salts
+from tests.support.small_cases import GYPSUM
 
 import gossan
 from gossan import recording
@@ -301,3 +302,16 @@ def test_a_held_head_lets_the_flow_die_before_the_pores_close(tmp_path):
     assert 0.0 < flux[-1] < 1e-2 * flux[0]
     assert result.profiles.porosity.values[-1].min() > 1e-3
     assert np.abs(result.ledger.water_error.values).max() < 1e-12
+
+
+@pytest.mark.parametrize(("coupling", "rounds"), [("lie", 1.0), ("two-stage", 2.0), ("strang", 1.0)])
+def test_steps_say_how_often_chemistry_was_solved(coupling, rounds, tmp_path):
+    result = gossan.run(case_of(GYPSUM.replace("[run]\n", f'[run]\ncoupling = "{coupling}"\n')),
+                        tmp_path / "run.h5")  # fmt: skip
+    assert (result.steps.iterations.values == rounds).all()
+
+
+def test_an_iterated_step_says_how_many_rounds_it_took(tmp_path):
+    result = gossan.run(case_of(GYPSUM.replace("[run]\n", '[run]\ncoupling = "iterated"\n')),
+                        tmp_path / "run.h5")  # fmt: skip
+    assert result.steps.iterations.values.max() > 3.0

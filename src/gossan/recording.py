@@ -292,7 +292,7 @@ class _Run:
                 "time": stride.state.time,
                 "dt": stride.trial.dt,
                 "courant": stride.trial.courant,
-                "iterations": 2.0 if self.problem.coupling == "two-stage" else 1.0,
+                "iterations": float(stride.trial.taken.rounds),
                 "splitting_error": stride.trial.error,
                 "seconds": seconds,
             }

@@ -12,6 +12,7 @@ from gossan.coupling.pores import pore_space, still_pore_space
 from gossan.coupling.problem import Problem
 from gossan.coupling.splitting import SCHEMES, Taken, Turn
 from gossan.coupling.state import State
+from gossan.coupling.waters import Stage, Waters
 from gossan.transport.faces import faces_of
 
 ROUNDING = 1e-12  # of the most there is of any solute
@@ -39,7 +40,7 @@ def attempt(turn: Turn) -> Trial:
     taken = scheme.take(turn)
     size = relative(taken.difference, scale_of(problem, turn.state, turn.inflow))
     error = size * (scheme.share if turn.theta is None else 1.0)
-    after = stepped(turn, taken)
+    after = stepped(turn, taken.legs, taken.passed)
     after = replace(after, splitting_error=turn.state.splitting_error + error)
     return Trial(after, turn.dt, error, _pore_change(turn, after), turn.faces.fastest * turn.dt, taken)
 
@@ -51,14 +52,18 @@ def settled_anew(turn: Turn) -> State:
     """
     at_rest = faces_of(turn.problem.transport, turn.state.water, np.zeros_like(turn.faces.darcy_flux))
     instant = replace(turn, faces=at_rest, dt=INSTANT, theta=None)
-    return at_once(stepped(instant, SCHEMES[turn.problem.coupling].take(instant)), turn.state)
+    taken = SCHEMES[turn.problem.coupling].take(instant)
+    return at_once(stepped(instant, taken.legs, taken.passed), turn.state)
 
 
-def stepped(turn: Turn, taken: Taken) -> State:
-    """The state after a step, with all its sums."""
+def stepped(turn: Turn, legs: list[tuple[Waters, Stage]], passed: np.ndarray) -> State:
+    """The state after a step, with all its sums.
+
+    legs    waters and where they came to, one after the other; passed (solute, face) mol m-2
+    """
     problem, state, dt, darcy_flux = turn.problem, turn.state, turn.dt, turn.faces.darcy_flux
-    after = taken.waters.after(taken.stage)
-    legs = taken.legs
+    waters, stage = legs[-1]
+    after = waters.after(stage)
     made = np.sum([waters.made(stage) for waters, stage in legs], axis=0)
     flowing_freed = np.sum([stage.flowing.freed for _, stage in legs], axis=0)
     lost = pore_space(problem, state.solid) - pore_space(problem, after.solid)
@@ -75,7 +80,7 @@ def stepped(turn: Turn, taken: Taken) -> State:
         step=state.step + 1,
         swelling=(lost + flowing_freed) / dt,
         still=still,
-        passed=added(state.passed, taken.passed[:, problem.gates].T),
+        passed=added(state.passed, passed[:, problem.gates].T),
         made=added(state.made, made),
         water_passed=added(state.water_passed, came),
     )

@@ -91,21 +91,27 @@ def _turned(before: State, after: State) -> bool:
 
 
 def _walked(shadow: Shadow, stride: Stride, solvers: Solvers, turning: bool) -> State:
-    """Where the shadow goes in a step; in halves where minerals turn, or a whole one finds no equilibrium."""
+    """Where the shadow goes in a step.
+
+    In halves where minerals turn, where dispersion is implicit or rates went ahead of transport, and where
+    a whole step finds no equilibrium.
+    """
     turn, state = stride.turn, shadow.state
     if stride.jump is not None:
         jump = stride.jump
         state = settled_anew(replace(jump, state=state, solver=solvers.of(jump.problem)))
     turn = replace(turn, state=state, solver=solvers.of(turn.problem))
-    if not turning and turn.theta is None:
+    taken = stride.trial.taken
+    if not turning and turn.theta is None and taken.ahead is None:
         try:
-            return _carried(turn, stride.trial.taken, _missed(shadow, stride))
+            return _carried(turn, taken, _missed(shadow, stride))
         except SolveError:
             pass  # what was missed may be more than there is: halves tell it another way
     half = replace(turn, dt=turn.dt / HALVES)
     for _ in range(HALVES):
         half = replace(half, state=state)
-        state = stepped(half, SCHEMES[turn.problem.coupling].take(half))
+        found = SCHEMES[turn.problem.coupling].take(half)
+        state = stepped(half, found.legs, found.passed)
     return state
 
 
@@ -118,17 +124,16 @@ def _missed(shadow: Shadow, stride: Stride) -> np.ndarray:
 
 
 def _carried(turn: Turn, taken: Taken, missed: np.ndarray) -> State:
-    """The column's step, taken by the shadow's own concentrations, and what it missed besides.
+    """The column's explicit step, taken by the shadow's own concentrations, and what it missed besides.
 
     Slopes are those of a short step: their part in the error of a long one is carried with the rest.
     """
     waters = turn.waters()
-    made = waters.foreseen() if turn.theta is not None else None
-    first = passages(turn.faces, turn.state.dissolved, turn.inflow, turn.dt, turn.theta, made, shaped=0.0)
+    first = passages(turn.faces, turn.state.dissolved, turn.inflow, turn.dt, shaped=0.0)
     passed = first.passed + (taken.passed - taken.first) + missed
     passed = turn.held_back(first, waters, passed, doubted=True)
     more = None
     if taken.stage.exchange is not None and taken.begun.exchange is not None:
         more = taken.stage.exchange - taken.begun.exchange
     stage = waters.stage(passed, more=more)
-    return stepped(turn, Taken(waters, stage, passed, missed, missed, passed, stage))
+    return stepped(turn, [(waters, stage)], passed)

@@ -66,11 +66,13 @@ def _verdict(
     when = error = passed = None
     if bound:
         found = first_outside(time, values, bound.low, bound.high)
+        from_the_start = found is not None and found[0] == time[0]
+        if quantity in crossings and not from_the_start:
+            found = closer(crossings[quantity])
+            errors = None
         if found:
             when, error = found
-            if quantity in crossings:
-                when, error = closer(crossings[quantity])
-            elif errors is not None:
+            if errors is not None:
                 error += error_of_steps(time, values, errors[known], bound.low, bound.high, when)
             passed = float(np.interp(when, time, volumes))
             error = error if np.isfinite(error) else None
