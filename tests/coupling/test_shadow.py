@@ -155,6 +155,11 @@ def test_what_is_stated_covers_the_error_and_not_ten_times_as_much(family, coupl
     assert coarse.shadow.lost == -1.0
     assert (stated[worth] >= true[worth]).all(), (stated / true)[worth]
     assert (stated[worth] <= AT_MOST * true[worth]).all(), (stated / true)[worth]
+    # and it has the right sign: the shadow is the nearer one, as far as there is an error worth its sign
+    worth &= (true > 3e-5 * most) & (family is not oxygen)
+    left = np.sqrt(np.mean((coarse.told - fine.shown) ** 2, axis=0))
+    wrong = np.sqrt(np.mean((coarse.shown - fine.shown) ** 2, axis=0))
+    assert (left[worth] < 0.9 * wrong[worth]).all(), left[worth] / wrong[worth]
 
 
 @pytest.mark.parametrize("coupling", ["two-stage", "lie"])

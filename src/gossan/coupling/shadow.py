@@ -32,7 +32,7 @@ class Shadow:
     dt: float  # s, of the last step
     turned: bool  # whether minerals came or went in it
     lost: float  # s, when it last had to start anew from the column; -1: never
-    seen: np.ndarray  # (limit, 5) of its own limits, see `watching`
+    seen: np.ndarray  # (limit, 6) of its own limits, see `watching`
 
     def told(self) -> str:
         """A sentence for people where an estimate was lost, else none."""

@@ -8,16 +8,17 @@ from gossan.chemistry.equilibrium import LN10
 from gossan.coupling.problem import Problem, Watched
 from gossan.coupling.state import State
 
-TIME, VALUE, CHANGE, WHEN, OFF = range(5)
+TIME, VALUE, SPAN, SLOPE, WHEN, OFF = range(6)
 
 
 def nothing_seen(limits: int) -> np.ndarray:
-    """(limit, 5): what `seen` hands on from step to step, before the first.
+    """(limit, 6): what `seen` hands on from step to step, before the first.
 
-    Columns: time (s) and value of the last step, its change from the step before; when the value first left
-    its range (s) and how far off that may be between steps (s); NaN for what is not known.
+    Columns: time (s) and value of the last step; how long ago the one before it was (s) and the slope from
+    there; when the value first left its range (s) and how far off that may be between steps (s); NaN for what
+    is not known.
     """
-    return np.full((limits, 5), np.nan)
+    return np.full((limits, 6), np.nan)
 
 
 def seen(
@@ -26,23 +27,23 @@ def seen(
     """The same after one more step.
 
     darcy_flux (face,) m s-1 of the step. What passed in a step over the water that did is the concentration
-    of its middle to second order; pH is that of its end. Values are taken to change evenly between, which is
-    off by an eighth of how the change itself changes (equations.md, 46).
+    of its middle to second order; pH is that of its end. Values are taken to change evenly between; how far
+    that is off, the change of the slope tells (equations.md, 46).
     """
     found = known.copy()
     for row, limit in zip(found, problem.watched, strict=True):
         time, value = _value(problem, limit, before, after, darcy_flux)
         if value != value:
             continue
-        change = value - row[VALUE]
+        span = time - row[TIME]
+        slope = (value - row[VALUE]) / span
         out, was_out = (not limit.low <= v <= limit.high for v in (value, row[VALUE]))
         if out and not was_out and row[VALUE] == row[VALUE] and row[WHEN] != row[WHEN]:
             edge = limit.high if value > limit.high else limit.low
-            between = time - row[TIME]
-            row[WHEN] = row[TIME] + (edge - row[VALUE]) / change * between
-            bend = abs(change - row[CHANGE]) / abs(change) if row[CHANGE] == row[CHANGE] else 4.0
-            row[OFF] = between * min(bend / 8.0, 0.5)
-        row[TIME], row[VALUE], row[CHANGE] = time, value, change
+            row[WHEN] = row[TIME] + (edge - row[VALUE]) / slope
+            bend = span / (span + row[SPAN]) * abs(slope - row[SLOPE]) / (3.0 * abs(slope))
+            row[OFF] = span * (min(bend, 0.5) if bend == bend else 0.5)
+        row[TIME], row[VALUE], row[SPAN], row[SLOPE] = time, value, span, slope
     return found
 
 
